@@ -1,0 +1,191 @@
+"""What the computation hands to the outputs: the record, the ledger, and what was found, as frozen values.
+
+Numbers stand in the ledger alone; everything here refers to them by key.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from datetime import datetime, timedelta
+from enum import Enum
+
+from reporter.equation import Citation
+from reporter.ledger import Ledger
+from reporter.problems import Grade, Problem
+from reporter.record import Channel, Limit, Reading, Record, Run
+
+
+class RunState(Enum):
+    """Whether a run's results count: invalid (a criterion) and excluded (the user) are different things."""
+
+    VALID = "valid"
+    INVALID = "invalid"
+    EXCLUDED = "excluded by the user"
+
+
+@dataclass(frozen=True, slots=True)
+class Check:
+    """One criterion as it was applied.
+
+    `key` is the indicator entry (1 is met); `value`, `bound`, `difference`, `alternative` are keys of the
+    entries compared (empty where the criterion has none).  `runs` are the runs it bears on, by key segment.
+    """
+
+    key: str
+    title: str
+    gas: str
+    runs: tuple[str, ...]
+    value: str
+    bound: str
+    citation: Citation
+    met: bool
+    consequence: str = ""
+    difference: str = ""
+    alternative: str = ""
+    relation: str = "at most"
+    decides_validity: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class Exclusion:
+    """Readings of a run left out of its mean, and why."""
+
+    run: str
+    start: datetime
+    end: datetime
+    reason: str
+    count: int
+
+
+@dataclass(frozen=True, slots=True)
+class Series:
+    """The readings of one channel that a run's mean rests on, and what was left out.
+
+    `first_row` and `last_row` are the sheet rows of the window; `used` the (time, value) pairs in the mean;
+    `left_out` the others with their reading; `missing_minutes` each clock minute without a valid reading.
+    """
+
+    key: str
+    channel: str
+    used: tuple[tuple[datetime, float], ...]
+    left_out: tuple[tuple[datetime, Reading, str], ...]
+    missing_minutes: tuple[datetime, ...]
+    interval: timedelta
+    first_row: int
+    last_row: int
+
+
+@dataclass(frozen=True, slots=True)
+class CalibrationPoint:
+    """One calibration reading as it was used: ledger keys of reading and certified value."""
+
+    time: datetime
+    channel: str
+    route: str
+    level: str
+    reading: str
+    certified: str
+    cylinder: str
+    used_as: str
+
+
+@dataclass(frozen=True, slots=True)
+class GasResult:
+    """One gas in one run.  `segment` is the gas part of its ledger keys, so that keys are
+    ``run.<run>.<segment>.<quantity>``; `valid` is the key of its validity indicator."""
+
+    gas: str
+    segment: str
+    channel: Channel
+    run: str
+    is_valid: bool
+    valid: str
+    reasons: tuple[str, ...]
+    series: Series | None
+    pollutant: bool
+
+
+@dataclass(frozen=True, slots=True)
+class RunResult:
+    """One run: its state, why, and its gases."""
+
+    run: Run
+    key: str
+    state: RunState
+    reasons: tuple[str, ...]
+    gases: tuple[GasResult, ...]
+    exclusions: tuple[Exclusion, ...]
+
+    def gas(self, segment: str) -> GasResult | None:
+        """The result of a gas, by key segment."""
+        return next((gas for gas in self.gases if gas.segment == segment), None)
+
+
+@dataclass(frozen=True, slots=True)
+class Comparison:
+    """One limit beside what was measured.
+
+    Keys: `runs` the value of each run (run key segment, entry key, key of the indicator that it counts);
+    `value` the unrounded average, `rounded` the compared number, `limit_key`, `margin`, `met` (1: within the
+    relation as entered).  `reason` says why no comparison was made; then the keys that could not be made are
+    empty.  `cross` is the key of the second route's average, where there is one.
+    """
+
+    limit: Limit
+    key: str
+    quantity: str
+    runs: tuple[tuple[str, str, str], ...]
+    value: str = ""
+    rounded: str = ""
+    limit_key: str = ""
+    margin: str = ""
+    met: str = ""
+    count: str = ""
+    required: str = ""
+    is_met: bool | None = None
+    reason: str = ""
+    rounding_words: str = ""
+    with_excluded: str = ""
+    cross: str = ""
+    cross_words: str = ""
+    notes: tuple[str, ...] = ()
+
+    @property
+    def compared(self) -> bool:
+        """Whether a comparison was made."""
+        return self.is_met is not None
+
+
+@dataclass(frozen=True, slots=True)
+class Finding:
+    """What the combustion balance says of a run, in words, with the keys it rests on."""
+
+    run: str
+    words: str
+    keys: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Outcome:
+    """Everything about one test."""
+
+    record: Record
+    ledger: Ledger
+    runs: tuple[RunResult, ...]
+    checks: tuple[Check, ...]
+    comparisons: tuple[Comparison, ...]
+    problems: tuple[Problem, ...]
+    findings: tuple[Finding, ...] = ()
+    calibration_points: tuple[CalibrationPoint, ...] = ()
+    averages: tuple[str, ...] = ()
+    stated: tuple[str, ...] = field(default=())
+
+    def run(self, key: str) -> RunResult:
+        """The run of a key segment."""
+        return next(run for run in self.runs if run.key == key)
+
+    @property
+    def worst(self) -> Grade | None:
+        """The gravest grade among the problems."""
+        order = (Grade.UNREADABLE, Grade.BLOCKS, Grade.NOTE)
+        return next((grade for grade in order if any(p.grade is grade for p in self.problems)), None)
