@@ -79,7 +79,7 @@ class Standard:
         assert self.pressure_kpa is not None and other.pressure_kpa is not None
         return (
             abs(self.temperature_k - other.temperature_k) <= 0.01
-            and abs(self.pressure_kpa - other.pressure_kpa) <= 0.02
+            and abs(self.pressure_kpa - other.pressure_kpa) <= 0.01
         )
 
 

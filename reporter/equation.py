@@ -13,7 +13,7 @@ from __future__ import annotations
 
 import inspect
 import math
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 from enum import Enum
 from typing import Any, Generic, ParamSpec
@@ -21,7 +21,8 @@ from typing import Any, Generic, ParamSpec
 import numpy as np
 
 from reporter.basis import NO_BASIS, Basis, Need
-from reporter.errors import EquationError, LedgerError
+from reporter.errors import EquationError, LedgerError, UnitError
+from reporter.functions import is_quantity, stacked
 from reporter.trace import Name, Number, Term, Terms, is_traced
 
 P = ParamSpec("P")
@@ -131,24 +132,41 @@ class Equation(Generic[P]):
         return Equation(**{**self.__dict__, "system": system})
 
     def evaluate(self, values: Mapping[str, Any], system: System) -> Any:
-        """The value for arguments by name; constants not given are the printed ones of `system`."""
-        unknown = set(values) - set(self.parameters)
-        missing = {n for n, p in self.parameters.items() if p.constant is None} - set(values)
-        if unknown or missing:
-            raise TypeError(f"{self.name}: unknown {sorted(unknown)}, missing {sorted(missing)}")
-        arguments = {name: _series(value) for name, value in values.items()}
+        """The value for arguments by name; constants not given are the printed ones of `system`.
+
+        Raises
+        ------
+        EquationError
+            The result is not a finite real number.
+        UnitError
+            Quantities of these units do not give the equation's unit.
+        """
+        self._check_names(values)
+        arguments = _aligned(self.parameters, {name: stacked(value) for name, value in values.items()})
         lift = _lifter(arguments.values())
         for name, parameter in self.parameters.items():
             if name not in arguments and parameter.constant is not None:
                 arguments[name] = lift(parameter.constant, system)
         try:
-            with np.errstate(all="ignore"):
+            with np.errstate(divide="raise", over="raise", invalid="raise", under="ignore"):
                 result = self.body(**arguments)  # type: ignore[call-arg]
-        except (ZeroDivisionError, ValueError, OverflowError) as error:
+                if any(map(is_quantity, arguments.values())):
+                    result = _in_unit(result, self, arguments, system)
+        except (ArithmeticError, ValueError) as error:
             raise EquationError(f"{self.name} has no value: {error}", _shown(values)) from error
-        if _is_quantity(result):
-            return result.to(_pint_unit(result, self, arguments, system))
+        except TypeError as error:
+            if hasattr(error, "units1"):
+                raise UnitError(f"{self.name}: {error}", _shown(values)) from error
+            if "complex" in str(error):
+                raise EquationError(f"{self.name} has no real value", _shown(values)) from error
+            raise
         return _finite(result, self.name, values)
+
+    def _check_names(self, given: Iterable[str]) -> None:
+        unknown = set(given) - set(self.parameters)
+        missing = {n for n, p in self.parameters.items() if p.constant is None} - set(given)
+        if unknown or missing:
+            raise TypeError(f"{self.name}: unknown {sorted(unknown)}, missing {sorted(missing)}")
 
     def trace(self, terms: Mapping[str, Term | Terms], system: System) -> Term:
         """The expression tree of the body for named terms."""
@@ -175,6 +193,7 @@ class Equation(Generic[P]):
         LedgerError
             An input is not in the unit the equation is printed for.
         """
+        self._check_names(units)
         bound: dict[str, str] = {}
         for name, unit in units.items():
             wanted = unit_in(self.parameters[name].unit, system)
@@ -186,7 +205,7 @@ class Equation(Generic[P]):
         return bound[result] if result.startswith("*") else result
 
     def basis_of(self, bases: Mapping[str, Basis], values: Mapping[str, Any]) -> Basis:
-        """Check the bases of the inputs and give the basis of the result (`BasisError` where they do not fit)."""
+        """Check the bases of the inputs and give the basis of the result (`BasisError`: they do not fit)."""
         for name, basis in bases.items():
             need = self.parameters[name].need
             if need is not None:
@@ -272,35 +291,36 @@ def _gives(rule: Gives | Basis | str) -> Gives:
     return rule
 
 
-def _series(value: Any) -> Any:
-    """A sequence of one kind as one operand."""
-    if not isinstance(value, (list, tuple)):
-        return value
-    if value and is_traced(value[0]):
-        return Terms(tuple(value))
-    if value and _is_quantity(value[0]):
-        quantity = type(value[0])
-        units = value[0].units
-        return quantity(np.array([v.to(units).magnitude for v in value]), units)
-    return np.array(value)
+def _aligned(parameters: Mapping[str, Parameter], arguments: dict[str, Any]) -> dict[str, Any]:
+    """Where some argument carries draws (its last axis), a series of plain numbers gets that axis too."""
+    arrays = {name: value for name, value in arguments.items() if isinstance(value, np.ndarray)}
+    if any(value.ndim == (2 if parameters[name].series else 1) for name, value in arrays.items()):
+        for name, value in arrays.items():
+            if parameters[name].series and value.ndim == 1:
+                arguments[name] = value[:, np.newaxis]
+    return arguments
 
 
-def _is_quantity(value: Any) -> bool:
-    return hasattr(value, "_REGISTRY")
-
-
-def _lifter(values: Any) -> Callable[[Constant, System], Any]:
+def _lifter(values: Iterable[Any]) -> Callable[[Constant, System], Any]:
     for value in values:
         if is_traced(value):
             return lambda c, system: Number(c.value(system), c.symbol, unit_in(c.unit, system))
-        if _is_quantity(value):
+        if is_quantity(value):
             from reporter.units import quantity
 
             return lambda c, system: quantity(c.value(system), unit_in(c.unit, system))
     return lambda c, system: c.value(system)
 
 
-def _pint_unit(result: Any, eq: Equation[Any], arguments: Mapping[str, Any], system: System) -> Any:
+def _in_unit(result: Any, eq: Equation[Any], arguments: Mapping[str, Any], system: System) -> Any:
+    """The result of quantities in the equation's unit; a bare number is one without dimension."""
+    from reporter.units import quantity
+
+    unit = _pint_unit(eq, arguments, system)
+    return (result if is_quantity(result) else quantity(result, "1")).to(unit)
+
+
+def _pint_unit(eq: Equation[Any], arguments: Mapping[str, Any], system: System) -> Any:
     from reporter.units import pint_unit
 
     wanted = unit_in(eq.unit, system)
@@ -309,17 +329,22 @@ def _pint_unit(result: Any, eq: Equation[Any], arguments: Mapping[str, Any], sys
     for name, parameter in eq.parameters.items():
         if unit_in(parameter.unit, system) == wanted:
             return arguments[name].units
-    return result.units
+    raise LedgerError(f"{eq.name}: no argument has the unit of the result")
 
 
 def _finite(result: Any, name: str, values: Mapping[str, Any]) -> Any:
+    """The result, if each of its numbers is finite and real."""
     if isinstance(result, Term):
         return result
-    if isinstance(result, np.ndarray):
-        if result.dtype != object and (np.iscomplexobj(result) or not np.all(np.isfinite(result))):
+    number = getattr(result, "magnitude", result)
+    if isinstance(number, np.ndarray):
+        numbers = (
+            [getattr(n, "nominal_value", n) for n in number.ravel()] if number.dtype == object else number
+        )
+        if np.iscomplexobj(numbers) or not np.all(np.isfinite(numbers)):
             raise EquationError(f"{name} has no finite real value", _shown(values))
-        return result
-    nominal = getattr(result, "nominal_value", result)
+        return float(result) if result is number and number.ndim == 0 else result
+    nominal = getattr(number, "nominal_value", number)
     if isinstance(nominal, complex) or not math.isfinite(nominal):
         raise EquationError(f"{name} has no finite real value", _shown(values))
     return float(result) if isinstance(result, (int, float, np.floating, np.integer)) else result

@@ -3,19 +3,28 @@
 Each takes floats, NumPy arrays, pint quantities, numbers with uncertainty and traced terms alike.  A series
 runs along the first axis, which is the axis the reducing functions reduce; draws run along the last.
 Indicator functions give 1.0 or 0.0; on numbers with uncertainty they use the nominal value.
+
+Most decimal fractions have no exact binary number: 47.0 - 45.1 is not 1.9.  So that a value on a bound, or on
+a half, on paper is on it here and in every spreadsheet, a comparison takes numbers as equal that agree to
+`SAME` of the bound, and a rounding lifts the magnitude by `LIFT` of itself before it rounds.
 """
 
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
-from decimal import ROUND_DOWN, ROUND_HALF_EVEN, ROUND_HALF_UP, Decimal
+from collections.abc import Callable, Sequence
+from decimal import ROUND_DOWN, ROUND_HALF_UP, Decimal
 from functools import reduce
 from typing import Any
 
 import numpy as np
 
 from reporter.trace import Call, Term, Terms, as_term, is_traced
+
+#: Share of the bound within which a compared number counts as equal to it.
+SAME = 1e-9
+#: Share of itself a number is lifted by before it is rounded.
+LIFT = 1e-12
 
 
 def _traced(*values: Any) -> bool:
@@ -26,12 +35,28 @@ def _flat(*values: Any) -> tuple[Term, ...]:
     """Arguments of a call: a series of separate terms is spread out."""
     spread: list[Term] = []
     for value in values:
-        spread.extend(value if isinstance(value, (Terms, list, tuple)) else (as_term(value),))
+        parts = value if isinstance(value, (Terms, list, tuple)) else (value,)
+        spread.extend(as_term(part) for part in parts)
     return tuple(spread)
 
 
-def _is_quantity(value: Any) -> bool:
+def is_quantity(value: Any) -> bool:
+    """Whether a value is a pint quantity (asked without importing pint)."""
     return hasattr(value, "_REGISTRY")
+
+
+def stacked(values: Any) -> Any:
+    """Several values of one kind as one operand whose first axis is the series; anything else as it is."""
+    if not isinstance(values, (list, tuple)):
+        return values
+    if any(is_traced(value) for value in values):
+        return Terms(tuple(as_term(value) for value in values))
+    if values and is_quantity(values[0]):
+        units = values[0].units
+        return type(values[0])(stacked([value.to(units).magnitude for value in values]), units)
+    if any(isinstance(value, np.ndarray) and value.ndim for value in values):
+        return np.array(np.broadcast_arrays(*values))
+    return np.array(values)
 
 
 def _is_uncertain(value: Any) -> bool:
@@ -43,6 +68,8 @@ def _nominal(value: Any) -> Any:
         return value.nominal_value
     if isinstance(value, np.ndarray) and value.dtype == object:
         return np.array([_nominal(v) for v in value], dtype=float)
+    if isinstance(value, (list, tuple)):
+        return stacked([_nominal(v) for v in value])
     return value
 
 
@@ -55,14 +82,23 @@ def mean(series: Any) -> Any:
     """Arithmetic mean of a series."""
     if _traced(series):
         return Call("mean", _flat(series))
+    series = stacked(series)
     return total(series) / len(series)
+
+
+def count(series: Any) -> Any:
+    """How many values a series has."""
+    if _traced(series):
+        return Call("count", _flat(series))
+    return float(len(series))
 
 
 def total(series: Any) -> Any:
     """Sum of a series."""
     if _traced(series):
         return Call("total", _flat(series))
-    if _is_quantity(series):
+    series = stacked(series)
+    if is_quantity(series):
         return np.sum(series, axis=0)
     array = np.asarray(series)
     if array.dtype == object:
@@ -75,13 +111,11 @@ def total(series: Any) -> Any:
 def dot(left: Any, right: Any) -> Any:
     """Sum of the products of two series of one length."""
     if _traced(left, right):
-        if isinstance(left, Terms) or isinstance(right, Terms):
-            products = [as_term(a) * as_term(b) for a, b in zip(left, right, strict=True)]
-            return reduce(lambda a, b: a + b, products)
-        return Call("dot", (as_term(left), as_term(right)))
-    if _is_quantity(left) or _is_quantity(right):
-        return total(left * right)
-    return total(np.asarray(left) * np.asarray(right))
+        if isinstance(left, Term) and isinstance(right, Term):
+            return Call("dot", (left, right))
+        products = [as_term(a) * as_term(b) for a, b in zip(left, right, strict=True)]
+        return reduce(lambda a, b: a + b, products)
+    return total(stacked(left) * stacked(right))
 
 
 def absolute(value: Any) -> Any:
@@ -96,10 +130,12 @@ def _elementary(name: str, value: Any) -> Any:
         from uncertainties import umath
 
         return getattr(umath, "log" if name == "ln" else name)(value)
-    if _is_quantity(value):
+    if is_quantity(value):
         value = value.to("dimensionless")
         return type(value)(_elementary(name, value.magnitude), "dimensionless")
     if isinstance(value, np.ndarray):
+        if value.dtype == object:
+            return np.array([_elementary(name, v) for v in value])
         return getattr(np, "log" if name == "ln" else name)(value)
     return getattr(math, "log" if name == "ln" else name)(value)
 
@@ -122,46 +158,52 @@ def log10(value: Any) -> Any:
 def _extreme(name: str, values: tuple[Any, ...]) -> Any:
     if _traced(*values):
         return Call(name, _flat(*values))
-    if any(isinstance(v, np.ndarray) for v in values):
+    if len(values) == 1:
+        series = stacked(values[0])
+        if is_quantity(series) or series.dtype != object:
+            return _plain((np.min if name == "lower" else np.max)(series, axis=0))
+        return (min if name == "lower" else max)(series)
+    if any(isinstance(getattr(v, "magnitude", v), np.ndarray) for v in values):
         return reduce(np.minimum if name == "lower" else np.maximum, values)
     return (min if name == "lower" else max)(values)
 
 
 def lower(*values: Any) -> Any:
-    """The lowest of its arguments."""
+    """The lowest of its arguments, element by element; of one series, its lowest value."""
     return _extreme("lower", values)
 
 
 def higher(*values: Any) -> Any:
-    """The highest of its arguments."""
+    """The highest of its arguments, element by element; of one series, its highest value."""
     return _extreme("higher", values)
 
 
 def _compare(name: str, left: Any, right: Any) -> Any:
     if _traced(left, right):
         return Call(name, (as_term(left), as_term(right)))
-    a, b = _nominal(left), _nominal(right)
+    difference = _nominal(left) - _nominal(right)
+    same = SAME * abs(_nominal(right))
     if name == "at_most":
-        result = a <= b
+        result = difference <= same
     elif name == "at_least":
-        result = a >= b
+        result = difference >= -same
     else:
-        result = a < b
+        result = difference < -same
     return np.asarray(result, dtype=float) if isinstance(result, np.ndarray) else 1.0 if result else 0.0
 
 
 def at_most(value: Any, bound: Any) -> Any:
-    """1 where value <= bound, else 0."""
+    """1 where value <= bound, else 0; see `SAME`."""
     return _compare("at_most", value, bound)
 
 
 def at_least(value: Any, bound: Any) -> Any:
-    """1 where value >= bound, else 0."""
+    """1 where value >= bound, else 0; see `SAME`."""
     return _compare("at_least", value, bound)
 
 
 def less_than(value: Any, bound: Any) -> Any:
-    """1 where value < bound, else 0."""
+    """1 where value < bound, else 0; see `SAME`."""
     return _compare("less_than", value, bound)
 
 
@@ -169,14 +211,14 @@ def all_of(flags: Any) -> Any:
     """1 where every one of a series of indicators is 1, else 0."""
     if _traced(flags):
         return Call("all_of", _flat(flags))
-    return _plain(np.min(np.asarray(flags, dtype=float), axis=0))
+    return _plain(np.min(_nominal(stacked(flags)), axis=0))
 
 
 def any_of(flags: Any) -> Any:
     """1 where at least one of a series of indicators is 1, else 0."""
     if _traced(flags):
         return Call("any_of", _flat(flags))
-    return _plain(np.max(np.asarray(flags, dtype=float), axis=0))
+    return _plain(np.max(_nominal(stacked(flags)), axis=0))
 
 
 def choose(flag: Any, yes: Any, no: Any) -> Any:
@@ -188,23 +230,42 @@ def choose(flag: Any, yes: Any, no: Any) -> Any:
     return yes if flag >= 0.5 else no
 
 
-def _decimal_shift(value: float, decimals: float, rule: str) -> float:
-    step = Decimal(1).scaleb(-int(decimals))
-    mode = {"half_up": ROUND_HALF_UP, "half_even": ROUND_HALF_EVEN, "truncated": ROUND_DOWN}[rule]
-    # A spreadsheet looks at 15 significant digits before it rounds; so do we.
-    return float(Decimal(format(value, ".15g")).quantize(step, rounding=mode))
+def _half_up(value: float, decimals: float) -> float:
+    return _quantized(value * (1.0 + LIFT), decimals, ROUND_HALF_UP)
+
+
+def _half_even(value: float, decimals: float) -> float:
+    scaled = abs(value) * 10.0**decimals
+    above_even = scaled - 2.0 * math.floor(scaled / 2.0)
+    if abs(above_even - 0.5) <= LIFT * scaled:
+        return _quantized(value, decimals, ROUND_DOWN)
+    return _half_up(value, decimals)
+
+
+def _truncated(value: float, decimals: float) -> float:
+    return _quantized(value * (1.0 + LIFT), decimals, ROUND_DOWN)
+
+
+def _quantized(value: float, decimals: float, mode: str) -> float:
+    return float(Decimal(value).quantize(Decimal(1).scaleb(-int(decimals)), rounding=mode)) + 0.0
+
+
+def _each(rule: Callable[[float, float], float], value: Any, second: Any) -> Any:
+    """A scalar rule on the nominal value, element by element for an array."""
+    value, second = _nominal(value), _nominal(second)
+    if isinstance(value, np.ndarray) or isinstance(second, np.ndarray):
+        return np.vectorize(rule, otypes=[float])(value, second)
+    return rule(float(value), float(second))
 
 
 def _rounded(rule: str, value: Any, decimals: Any) -> Any:
     if _traced(value, decimals):
         return Call(rule, (as_term(value), as_term(decimals)))
-    if _is_quantity(value):
-        places = decimals.magnitude if _is_quantity(decimals) else decimals
+    places = decimals.magnitude if is_quantity(decimals) else decimals
+    if is_quantity(value):
         return type(value)(_rounded(rule, value.magnitude, places), value.units)
-    value, decimals = _nominal(value), _nominal(decimals)
-    if isinstance(value, np.ndarray):
-        return np.array([_decimal_shift(float(v), float(decimals), rule) for v in value])
-    return _decimal_shift(float(value), float(decimals), rule)
+    scalar = {"half_up": _half_up, "half_even": _half_even, "truncated": _truncated}[rule]
+    return _each(scalar, value, places)
 
 
 def half_up(value: Any, decimals: Any) -> Any:
@@ -226,14 +287,16 @@ def significant_decimals(value: Any, digits: Any) -> Any:
     """How many decimals give `value` that number of significant digits (value not zero)."""
     if _traced(value, digits):
         return Call("significant_decimals", (as_term(value), as_term(digits)))
-    if _is_quantity(value):
-        value = value.magnitude
-    if _is_quantity(digits):
-        digits = digits.magnitude
-    return float(digits) - 1.0 - math.floor(math.log10(abs(float(_nominal(value)))))
+    plain = [v.magnitude if is_quantity(v) else v for v in (value, digits)]
+    return _each(_significant_decimals, *plain)
+
+
+def _significant_decimals(value: float, digits: float) -> float:
+    return digits - 1.0 - math.floor(math.log10(abs(value) * (1.0 + LIFT)))
 
 
 FUNCTIONS: Sequence[str] = (
-    "mean", "total", "dot", "absolute", "exp", "ln", "log10", "lower", "higher", "at_most", "at_least",
-    "less_than", "all_of", "any_of", "choose", "half_up", "half_even", "truncated", "significant_decimals",
+    "mean", "count", "total", "dot", "absolute", "exp", "ln", "log10", "lower", "higher",
+    "at_most", "at_least", "less_than", "all_of", "any_of", "choose",
+    "half_up", "half_even", "truncated", "significant_decimals",
 )  # fmt: skip

@@ -8,8 +8,9 @@ that share a leaf stay correlated, because the leaf is one.
 
 from __future__ import annotations
 
+import math
 import re
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import Any
 
@@ -20,11 +21,13 @@ from reporter.problems import Place
 from reporter.trace import Name, Term, Terms
 
 KEY = re.compile(r"[a-z][a-z0-9_]*(\.[a-z0-9_]+)*")
+#: A key of one segment that a spreadsheet would take for a cell; a key is a defined name of the workbook.
+_CELL = re.compile(r"[a-z]{1,3}[0-9]+|r[0-9]*c[0-9]*|r|c|true|false")
 _NOT_SLUG = re.compile(r"[^a-z0-9]+")
 
 
 def slug(text: str) -> str:
-    """A key segment from a name people wrote: lower case, anything else than a letter or digit becomes ``_``."""
+    """A key segment from a name people wrote: lower case, all but letters and digits become ``_``."""
     return _NOT_SLUG.sub("_", text.strip().lower()).strip("_") or "x"
 
 
@@ -155,9 +158,12 @@ class Ledger:
         Raises
         ------
         LedgerError
-            The key is taken or ill-formed.
+            The key is taken or ill-formed, or a value is not a finite number.
         """
-        plain = float(value) if isinstance(value, (int, float)) else tuple(float(v) for v in value)
+        plain = tuple(float(v) for v in value) if isinstance(value, Iterable) else float(value)
+        numbers = plain if isinstance(plain, tuple) else (plain,)
+        if not numbers or not all(map(math.isfinite, numbers)):
+            raise LedgerError(f"{key}: {value} is no finite number, or no number at all")
         return self._add(Entry(key, plain, unit, basis, origin, label, symbol, note, decimals))
 
     def apply(
@@ -183,6 +189,7 @@ class Ledger:
             The inputs do not fit the equation, or it has no finite real value.
         """
         given = {name: self._resolve(value) for name, value in inputs.items()}
+        _check_series(eq, given)
         units = {n: v.unit if isinstance(v, Entry) else _one_unit(eq, n, v) for n, v in given.items()}
         unit = eq.units_of(units, self.system)
         bases = {n: v.basis if isinstance(v, Entry) else _one_basis(eq, n, v) for n, v in given.items()}
@@ -192,6 +199,8 @@ class Ledger:
             value = eq.evaluate(values, self.system)
         except EquationError as error:
             raise EquationError(f"{key}: {error.message}", error.place) from error
+        if not isinstance(value, float):
+            raise LedgerError(f"{key}: {eq.name} gives a series, and an entry is computed as one number")
         keys = tuple(
             (n, v.key if isinstance(v, Entry) else tuple(e.key for e in v)) for n, v in given.items()
         )
@@ -205,6 +214,11 @@ class Ledger:
         entry = self[key]
         self._entries[key] = replace(entry, note=f"{entry.note}; {note}" if entry.note else note)
 
+    def set_basis(self, key: str, basis: Basis) -> Entry:
+        """Give an entry that is not computed from others of a basis its printed basis (a table's column)."""
+        self._entries[key] = replace(self[key], basis=basis)
+        return self._entries[key]
+
     def _resolve(self, value: Given) -> Entry | tuple[Entry, ...]:
         if isinstance(value, Entry):
             return self[value.key]
@@ -213,8 +227,10 @@ class Ledger:
         return tuple(self[v.key if isinstance(v, Entry) else v] for v in value)
 
     def _add(self, entry: Entry) -> Entry:
-        if not KEY.fullmatch(entry.key) or len(entry.key) > 200:
-            raise LedgerError(f"{entry.key!r} is not a key: lower-case segments joined by dots")
+        if not KEY.fullmatch(entry.key) or len(entry.key) > 200 or _CELL.fullmatch(entry.key):
+            raise LedgerError(
+                f"{entry.key!r} is not a key: lower-case segments joined by dots, no cell's name"
+            )
         if entry.key in self._entries:
             raise LedgerError(f"the key {entry.key!r} is taken")
         self._entries[entry.key] = entry
@@ -299,6 +315,14 @@ class Ledger:
         return equation.trace(terms, self.system)
 
 
+def _check_series(eq: Equation[Any], given: Mapping[str, Entry | tuple[Entry, ...]]) -> None:
+    for name, value in given.items():
+        parameter = eq.parameters.get(name)
+        many = isinstance(value, tuple) or value.is_series
+        if parameter is not None and many != parameter.series:
+            raise LedgerError(f"{eq.name}: {name} is {'one number' if many else 'a series'}")
+
+
 def _one_unit(eq: Equation[Any], name: str, entries: tuple[Entry, ...]) -> str:
     units = {entry.unit for entry in entries}
     if len(units) != 1:
@@ -310,7 +334,7 @@ def _one_basis(eq: Equation[Any], name: str, entries: tuple[Entry, ...]) -> Basi
     from reporter.errors import BasisError
 
     bases = {entry.basis for entry in entries}
-    if len(bases) > 1:
+    if len(bases) != 1:
         texts = ", ".join(sorted(basis.text() or "none" for basis in bases))
         raise BasisError(f"{eq.name}: {name} needs entries of one basis, but has: {texts}")
     return bases.pop()

@@ -166,6 +166,7 @@ class Test:
     revision: Text | None = None
     status: Text | None = None
     clock_note: Text | None = None
+    not_detected_counted_as: Text | None = None
     extra: tuple[ExtraItem, ...] = ()
 
     __test__ = False

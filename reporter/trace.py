@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from numbers import Real
 from typing import Any, NoReturn
 
 
@@ -19,32 +20,36 @@ class Term:
     __slots__ = ()
     __array_ufunc__ = None
 
-    def __add__(self, other: Any) -> Term:
-        return Operation("+", self, as_term(other))
+    def _with(self, other: Any, operator: str) -> Any:
+        """A node; a series of terms takes over, and works element by element."""
+        return NotImplemented if isinstance(other, Terms) else Operation(operator, self, as_term(other))
+
+    def __add__(self, other: Any) -> Any:
+        return self._with(other, "+")
 
     def __radd__(self, other: Any) -> Term:
         return Operation("+", as_term(other), self)
 
-    def __sub__(self, other: Any) -> Term:
-        return Operation("-", self, as_term(other))
+    def __sub__(self, other: Any) -> Any:
+        return self._with(other, "-")
 
     def __rsub__(self, other: Any) -> Term:
         return Operation("-", as_term(other), self)
 
-    def __mul__(self, other: Any) -> Term:
-        return Operation("*", self, as_term(other))
+    def __mul__(self, other: Any) -> Any:
+        return self._with(other, "*")
 
     def __rmul__(self, other: Any) -> Term:
         return Operation("*", as_term(other), self)
 
-    def __truediv__(self, other: Any) -> Term:
-        return Operation("/", self, as_term(other))
+    def __truediv__(self, other: Any) -> Any:
+        return self._with(other, "/")
 
     def __rtruediv__(self, other: Any) -> Term:
         return Operation("/", as_term(other), self)
 
-    def __pow__(self, other: Any) -> Term:
-        return Operation("^", self, as_term(other))
+    def __pow__(self, other: Any) -> Any:
+        return self._with(other, "^")
 
     def __rpow__(self, other: Any) -> Term:
         return Operation("^", as_term(other), self)
@@ -160,12 +165,33 @@ class Terms:
     def __pow__(self, other: Any) -> Terms:
         return self._with(other, False, "^")
 
+    def __rpow__(self, other: Any) -> Terms:
+        return self._with(other, True, "^")
+
+    def __neg__(self) -> Terms:
+        return Terms(tuple(-item for item in self.items))
+
+    def __bool__(self) -> NoReturn:
+        raise TypeError("a traced series is neither true nor false")
+
+    def _refuse(self, other: object) -> NoReturn:
+        raise TypeError("a traced series cannot be compared: use at_most, at_least, lower, higher")
+
+    __lt__ = __le__ = __gt__ = __ge__ = _refuse
+    __eq__ = _refuse
+    __ne__ = _refuse
+    __hash__ = None  # type: ignore[assignment]
+
+
+#: Functions that make one number of a series.
+REDUCING = frozenset({"mean", "count", "total", "dot", "all_of", "any_of"})
+
 
 def as_term(value: Any) -> Term:
     """A node for a value: nodes stay, plain numbers become `Number`."""
     if isinstance(value, Term):
         return value
-    if isinstance(value, (int, float)):
+    if isinstance(value, Real) and not isinstance(value, bool):
         return Number(float(value))
     raise TypeError(f"{type(value).__name__} cannot stand in a traced equation")
 
@@ -185,6 +211,7 @@ def has_series(term: Term) -> bool:
         case Negation(operand=operand):
             return has_series(operand)
         case Call(function=function, arguments=arguments):
-            return function not in {"mean", "total", "dot"} and any(map(has_series, arguments))
+            reduces = function in REDUCING or (function in {"lower", "higher"} and len(arguments) == 1)
+            return not reduces and any(map(has_series, arguments))
         case _:
             return False

@@ -1,7 +1,9 @@
 """Printers of traced equations: spreadsheet formula, one line of text, typeset HTML.
 
 A spreadsheet reads ``-x^2`` as ``(-x)^2`` and ``2^3^2`` as 64, so every negation, every negative number,
-every base of a power that is no atom, and every right operand of equal precedence is bracketed.
+every base of a power that is no atom, and every right operand of equal precedence is bracketed.  Blank cells
+of a range are readings left out: ``AVERAGE``, ``SUM`` and ``COUNT`` pass over them, arithmetic on a range
+asks for them with ``ISNUMBER``.
 """
 
 from __future__ import annotations
@@ -9,16 +11,20 @@ from __future__ import annotations
 from collections.abc import Callable
 from html import escape
 
+from reporter.functions import LIFT, SAME
 from reporter.trace import Call, Name, Negation, Number, Operation, Term, has_series
 
 _PRECEDENCE = {"+": 1, "-": 1, "*": 2, "/": 2, "^": 3}
 _ATOM = 9
+#: A spreadsheet function takes at most 255 arguments.
+_MOST_ARGUMENTS = 200
 NameOf = Callable[[Name], str]
 
 _SHEET_FUNCTIONS = {
-    "mean": "AVERAGE", "total": "SUM", "dot": "SUMPRODUCT", "absolute": "ABS", "exp": "EXP", "ln": "LN",
-    "log10": "LOG10", "lower": "MIN", "higher": "MAX", "half_up": "ROUND", "truncated": "ROUNDDOWN",
+    "count": "COUNT", "mean": "AVERAGE", "total": "SUM", "dot": "SUMPRODUCT", "absolute": "ABS",
+    "exp": "EXP", "ln": "LN", "log10": "LOG10", "lower": "MIN", "higher": "MAX",
 }  # fmt: skip
+_ELEMENTWISE = frozenset({"absolute", "exp", "ln", "log10"})
 _WORDS = {
     "lower": "lower of",
     "higher": "higher of",
@@ -35,7 +41,13 @@ def number_text(value: float) -> str:
 
 
 def sheet_formula(term: Term, name_of: NameOf = lambda name: name.key) -> str:
-    """The spreadsheet formula of a tree, without its leading ``=``."""
+    """The spreadsheet formula of a tree, without its leading ``=``.
+
+    Raises
+    ------
+    TypeError
+        A function of the tree cannot be written for a range of cells.
+    """
     return _sheet(term, name_of)[0]
 
 
@@ -50,41 +62,102 @@ def _sheet(term: Term, name_of: NameOf) -> tuple[str, int]:
             inner, rank = _sheet(operand, name_of)
             return f"(-{inner if rank == _ATOM else f'({inner})'})", _ATOM
         case Operation(operator=operator, left=left, right=right):
-            return _bracketed(operator, _sheet(left, name_of), _sheet(right, name_of), " ")
+            a, b, rank = _operands(operator, _sheet(left, name_of), _sheet(right, name_of))
+            return f"{a}^{b}" if operator == "^" else f"{a} {operator} {b}", rank
         case Call(function=function, arguments=arguments):
             return _sheet_call(function, arguments, name_of), _ATOM
     raise TypeError(f"no such node: {type(term).__name__}")
 
 
-def _bracketed(operator: str, left: tuple[str, int], right: tuple[str, int], space: str) -> tuple[str, int]:
+def _operands(operator: str, left: tuple[str, int], right: tuple[str, int]) -> tuple[str, str, int]:
+    """Both operands, bracketed where the operator needs it, and the rank of the whole."""
     rank = _PRECEDENCE[operator]
     left_floor = _ATOM if operator == "^" else rank
     a = left[0] if left[1] >= left_floor else f"({left[0]})"
     b = right[0] if right[1] > rank else f"({right[0]})"
-    gap = "" if operator == "^" else space
-    return f"{a}{gap}{operator}{gap}{b}", rank
+    return a, b, rank
 
 
 def _sheet_call(function: str, arguments: tuple[Term, ...], name_of: NameOf) -> str:
-    texts = [_sheet(argument, name_of)[0] for argument in arguments]
+    if any(map(has_series, arguments)):
+        return _sheet_call_on_range(function, arguments, name_of)
+    ranked = [_sheet(argument, name_of) for argument in arguments]
+    texts = [text for text, _ in ranked]
+    atoms = [text if rank == _ATOM else f"({text})" for text, rank in ranked]
     if function in _COMPARISONS:
-        return f"IF({texts[0]}{_COMPARISONS[function]}{texts[1]},1,0)"
+        return f"IF({_comparison(function, *ranked)},1,0)"
     if function in {"all_of", "any_of"}:
         joiner = "AND" if function == "all_of" else "OR"
-        return f"IF({joiner}({','.join(f'{text}=1' for text in texts)}),1,0)"
+        return f"IF({_grouped(joiner, [f'{text}=1' for text in atoms])},1,0)"
     if function == "choose":
         return f"IF({texts[0]}>=0.5,{texts[1]},{texts[2]})"
-    if function == "half_even":
-        value, places = texts
-        odd = f"MOD(ABS({value})*10^({places}),2)=0.5"
-        return f"IF({odd},ROUNDDOWN({value},{places}),ROUND({value},{places}))"
+    if function in {"half_up", "half_even", "truncated"}:
+        return _sheet_rounding(function, *atoms)
     if function == "significant_decimals":
-        return f"({texts[1]}-1-INT(LOG10(ABS({texts[0]}))))"
-    if function in {"mean", "total"} and len(arguments) == 1 and not isinstance(arguments[0], Name):
-        if has_series(arguments[0]):
-            count = f"/COUNT({name_of(_first_series(arguments[0]))})" if function == "mean" else ""
-            return f"(SUMPRODUCT({texts[0]}){count})"
-    return f"{_SHEET_FUNCTIONS[function]}({','.join(texts)})"
+        lifted = f"ABS({texts[0]})*{_lifted()}"
+        return f"({atoms[1]}-1-INT(LOG10({lifted})))"
+    if function == "mean" and len(arguments) > _MOST_ARGUMENTS:
+        return f"({_grouped('SUM', texts)}/{len(texts)})"
+    return _grouped(_SHEET_FUNCTIONS[function], texts)
+
+
+def _comparison(function: str, left: tuple[str, int], right: tuple[str, int]) -> str:
+    """The condition of an indicator: the difference against the share `SAME` of the bound."""
+    if right[0] == "0":
+        return f"{left[0]}{_COMPARISONS[function]}0"
+    a, b, _ = _operands("-", left, right)
+    sign = "" if function == "at_most" else "-"
+    return f"{a} - {b}{_COMPARISONS[function]}{sign}{number_text(SAME)}*ABS({right[0]})"
+
+
+def _lifted() -> str:
+    return f"(1+{number_text(LIFT)})"
+
+
+def _sheet_rounding(rule: str, value: str, places: str) -> str:
+    up = f"ROUND({value}*{_lifted()},{places})"
+    if rule == "half_up":
+        return up
+    if rule == "truncated":
+        return f"ROUNDDOWN({value}*{_lifted()},{places})"
+    scaled = f"ABS({value})*10^{places}"
+    is_half_above_even = f"ABS({scaled}-2*INT({scaled}/2)-0.5)<={number_text(LIFT)}*{scaled}"
+    return f"IF({is_half_above_even},ROUNDDOWN({value},{places}),{up})"
+
+
+def _grouped(function: str, texts: list[str]) -> str:
+    """A call, nested where it has more arguments than a spreadsheet takes."""
+    while len(texts) > _MOST_ARGUMENTS:
+        groups = range(0, len(texts), _MOST_ARGUMENTS)
+        texts = [f"{function}({','.join(texts[i : i + _MOST_ARGUMENTS])})" for i in groups]
+    return f"{function}({','.join(texts)})"
+
+
+def _sheet_call_on_range(function: str, arguments: tuple[Term, ...], name_of: NameOf) -> str:
+    """A call with a range of cells among its arguments; only what works without array entry is written."""
+    ranked = [_sheet(argument, name_of) for argument in arguments]
+    first = arguments[0]
+    if function in _COMPARISONS:
+        return f"(({_comparison(function, *ranked)})*1)"
+    if function in _ELEMENTWISE:
+        return f"{_SHEET_FUNCTIONS[function]}({ranked[0][0]})"
+    if function == "dot":
+        return f"SUMPRODUCT({ranked[0][0]},{ranked[1][0]})"
+    if len(arguments) == 1 and isinstance(first, Name):
+        if function in {"all_of", "any_of"}:
+            return f"IF({'MIN' if function == 'all_of' else 'MAX'}({ranked[0][0]})=1,1,0)"
+        if function in _SHEET_FUNCTIONS:
+            return f"{_SHEET_FUNCTIONS[function]}({ranked[0][0]})"
+    if len(arguments) == 1 and function in {"mean", "total", "all_of", "any_of"}:
+        cells = name_of(_first_series(first))
+        summed = f"SUMPRODUCT(ISNUMBER({cells})*({ranked[0][0]}))"
+        return {
+            "mean": f"({summed}/COUNT({cells}))",
+            "total": summed,
+            "all_of": f"IF({summed}=COUNT({cells}),1,0)",
+            "any_of": f"IF({summed}>0,1,0)",
+        }[function]
+    raise TypeError(f"{function} cannot be written for a range of cells")
 
 
 def _first_series(term: Term) -> Name:
@@ -111,19 +184,16 @@ def _text(term: Term, name_of: NameOf) -> tuple[str, int]:
             text = name_of(term)
             return text, _ATOM if not text.startswith(("-", "−")) else 0
         case Number(value=value):
-            return _constant_text(value), _ATOM if value >= 0 else 0
+            return _constant_text(value), _number_rank(value)
         case Negation(operand=operand):
             inner, rank = _text(operand, name_of)
             return f"−{inner if rank >= 2 else f'({inner})'}", 0
         case Operation(operator=operator, left=left, right=right):
+            if operator == "^" and _is_half(right):
+                return f"{_operands('^', _text(left, name_of), ('', _ATOM))[0]}^(1/2)", 3
+            a, b, rank = _operands(operator, _text(left, name_of), _text(right, name_of))
             shown = {"*": "·", "-": "−"}.get(operator, operator)
-            text, rank = _bracketed(operator, _text(left, name_of), _text(right, name_of), " ")
-            if shown != operator:
-                a, b = _text(left, name_of), _text(right, name_of)
-                left_text = a[0] if a[1] >= rank else f"({a[0]})"
-                right_text = b[0] if b[1] > rank else f"({b[0]})"
-                text = f"{left_text} {shown} {right_text}"
-            return text, rank
+            return f"{a}^{b}" if operator == "^" else f"{a} {shown} {b}", rank
         case Call(function=function, arguments=arguments):
             inner_texts = [_text(argument, name_of)[0] for argument in arguments]
             if function in _COMPARISONS:
@@ -136,6 +206,15 @@ def _text(term: Term, name_of: NameOf) -> tuple[str, int]:
             word = _WORDS.get(function, function.replace("_", " "))
             return f"{word}({', '.join(inner_texts)})", _ATOM
     raise TypeError(f"no such node: {type(term).__name__}")
+
+
+def _is_half(term: Term) -> bool:
+    return isinstance(term, Number) and term.value == 0.5
+
+
+def _number_rank(value: float) -> int:
+    """A negative number is bracketed everywhere, one with a power of ten as the base of a power."""
+    return 0 if value < 0 else 3 if "E" in number_text(value) else _ATOM
 
 
 def _constant_text(value: float) -> str:
@@ -176,7 +255,7 @@ def _html(term: Term, name_of: NameOf) -> tuple[str, int]:
             text = name_of(term)
             return text, _ATOM if not text.startswith(("-", "−")) else 0
         case Number(value=value):
-            return _number_html(value), _ATOM if value >= 0 else 0
+            return _number_html(value), _number_rank(value)
         case Negation(operand=operand):
             inner, rank = _html(operand, name_of)
             return f"−{inner if rank >= 2 else _parens(inner)}", 0
@@ -189,7 +268,8 @@ def _html(term: Term, name_of: NameOf) -> tuple[str, int]:
         case Operation(operator="^", left=left, right=right):
             base, rank = _html(left, name_of)
             base = base if rank == _ATOM else _parens(base)
-            return f"{base}<sup>{text_formula(right)}</sup>", 3
+            power = "1/2" if _is_half(right) else _html(right, name_of)[0]
+            return f"{base}<sup>{power}</sup>", 3
         case Operation(operator=operator, left=left, right=right):
             rank = _PRECEDENCE[operator]
             a, b = _html(left, name_of), _html(right, name_of)

@@ -141,12 +141,19 @@ def convert(value: float, source: str, target: str) -> float:
 
 
 def pint_expression(name: str) -> str:
-    """The registry's expression of a canonical unit or of a product and quotient of them."""
+    """The registry's expression of a canonical unit or of a product of them, with powers as ``^0.5``."""
     units, _ = _table()
     if name in units:
         return units[name].pint
-    parts = re.split(r"([*/])", name)
-    return "".join(p if p in "*/" else f"({units[p].pint if p in units else p})" for p in parts)
+    return "".join(_pint_part(part) for part in re.split(r"([*/])", name))
+
+
+def _pint_part(part: str) -> str:
+    if part in "*/":
+        return part
+    base, _, power = part.partition("^")
+    expression = f"({_table()[0][base].pint if base in _table()[0] else base})"
+    return f"{expression}**{power}" if power else expression
 
 
 @cache
@@ -158,7 +165,7 @@ def registry() -> Any:
     ureg.define("ppb = 1e-9")
     ureg.define("therm_it = 1e5 * Btu_it")
     ureg.define("MMBtu = 1e6 * Btu_it")
-    ureg.define("pound_mole = 453.59237 * mole")
+    ureg.define("pound_mole = 453.59237 * mole = lbmol")
     return ureg
 
 

@@ -1,1 +1,1 @@
-"""Published methods: one file per method, one function per printed equation, tables as data with their source."""
+"""Published methods: one file per method, one function per printed equation; tables are data files."""

@@ -48,10 +48,9 @@ def _tables() -> dict[str, Any]:
 
 
 def method_family(method: str) -> str:
-    """The key of a method in the table, from how people write it (``EPA Method 7E`` gives ``7E``); or empty."""
-    found = re.search(r"(?<![0-9A-Z])([0-9]+[A-Z]?)(?![0-9A-Z])", method.upper())
-    key = found.group(1) if found else ""
-    return key if key in _tables()["methods"] else ""
+    """The key of a method in the table from how people write it, ``7E`` from ``EPA Method 7E``; or empty."""
+    written = re.findall(r"(?<![0-9A-Z])[0-9]+[A-Z]?(?![0-9A-Z])", method.upper())
+    return next((key for key in written if key in _tables()["methods"]), "")
 
 
 def criteria(method: str) -> Mapping[str, Criterion] | None:
@@ -80,10 +79,14 @@ def criteria(method: str) -> Mapping[str, Criterion] | None:
             alternative_unit=unit,
             paragraph=row["paragraph"],
             consequence=row["consequence"],
-            status=row["status"],
+            status=_weaker(row["status"], family["status"]),
             citation=Citation(row["document"], row["paragraph"]),
         )
     return held
+
+
+def _weaker(*statuses: str) -> str:
+    return "found" if set(statuses) == {"found"} else "memory"
 
 
 def not_held_reason(method: str) -> str:

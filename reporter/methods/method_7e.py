@@ -65,9 +65,7 @@ def calibration_error(
     symbols={"system": "C_S", "direct": "C_Dir", "span": "CS"},
     difference=True,
 )
-def system_bias(
-    *, system: Value, direct: Value, span: Value, hundred: Value = constant(100.0, "%")
-) -> Value:
+def system_bias(*, system: Value, direct: Value, span: Value, hundred: Value = constant(100.0, "%")) -> Value:
     """System bias in percent of the calibration span, against the direct reading of the same gas.
 
     Parameters
@@ -228,7 +226,7 @@ def corrected_low(
     "C_NO2",
     "*c",
     {"nox": "*c", "no": "*c"},
-    _cite("12.7", "Eq. 7E-6"),
+    _cite("12", "NO2 as NOx − NO"),
     symbols={"nox": "C_NOx", "no": "C_NO"},
     gives="nox",
     difference=True,

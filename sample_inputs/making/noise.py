@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 import random
 from collections.abc import Sequence
+from itertools import pairwise
 
 
 class Noise:
@@ -29,9 +30,9 @@ class Noise:
         """A slow oscillation between about -1 and 1, as a load controller gives."""
         phases = [self._random.random() * 2 * math.pi for _ in periods]
         weights = [1.0 / (i + 1) for i in range(len(periods))]
+        waves = list(zip(weights, periods, phases, strict=True))
         return [
-            sum(w * math.sin(2 * math.pi * t / p + f) for w, p, f in zip(weights, periods, phases, strict=True))
-            / sum(weights)
+            sum(w * math.sin(2 * math.pi * t / p + f) for w, p, f in waves) / sum(weights)
             for t in range(length)
         ]
 
@@ -40,7 +41,7 @@ def interpolate(knots: Sequence[tuple[float, float]], at: float) -> float:
     """Straight lines between (minute, value) points, level outside them."""
     if at <= knots[0][0]:
         return knots[0][1]
-    for (t0, v0), (t1, v1) in zip(knots, knots[1:], strict=False):
+    for (t0, v0), (t1, v1) in pairwise(knots):
         if at <= t1:
             return v0 + (v1 - v0) * (at - t0) / (t1 - t0)
     return knots[-1][1]

@@ -1,0 +1,164 @@
+"""The stream from record to outcome, in the order in which a reviewer would recompute it."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from reporter.assess.averages import Average, average
+from reporter.assess.comparison import Made, compare
+from reporter.assess.findings import look_at_balance, look_at_record
+from reporter.assess.states import run_results
+from reporter.ledger import Ledger
+from reporter.methods.averages import mean_of_valid
+from reporter.outcome import Comparison, Outcome
+from reporter.record import Record, Run
+from reporter.reduction.bases import RunBook, put_on_bases
+from reporter.reduction.book import Book, Lane, lanes, runs_in_order
+from reporter.reduction.calibration import calibrations
+from reporter.reduction.combust import balance
+from reporter.reduction.converter import check_converter
+from reporter.reduction.correction import correct
+from reporter.reduction.diluents import reduce_diluents
+from reporter.reduction.flow import dry_standard_flow
+from reporter.reduction.fuels import heat_input, heat_inputs, run_factors, shares
+from reporter.reduction.moisture import moisture
+from reporter.reduction.plans import Plan, plans
+from reporter.reduction.process import reduce_load
+from reporter.reduction.readings import reduce_readings, window
+from reporter.reduction.results import Means, Missing, result
+
+#: Quantities averaged over the valid runs for the table of runs, whatever the limits ask.
+_SHOWN = ("mean", "corrected", "dry", "wet")
+
+
+def assess(record: Record) -> Outcome:
+    """Reduce, check, balance, average and compare one test.
+
+    Parameters
+    ----------
+    record
+        The test as entered.
+
+    Returns
+    -------
+    Outcome
+        The filled ledger and everything found; problems never stop it.
+    """
+    book = Book(record, Ledger(record.system))
+    tracks = lanes(record)
+    runs = runs_in_order(record)
+    windows = {run.key: window(book, run) for run in runs}
+    series = {
+        (lane.segment, run.key): reduce_readings(book, lane, windows[run.key])
+        for lane in tracks
+        for run in runs
+    }
+    abouts = [RunBook(run) for run in runs]
+    _correct(book, tracks, runs, abouts)
+    wanted = plans(book, tracks)
+    missing: dict[str, list[Missing]] = {}
+    for about in abouts:
+        _reduce_run(book, about, wanted, missing)
+    look_at_record(book, tracks, abouts, windows, series)
+    comparisons = _compare(book, abouts, wanted, missing)
+    averages = _averages(book, abouts, wanted)
+    look_at_balance(book, abouts)
+    return Outcome(
+        record=record,
+        ledger=book.ledger,
+        runs=run_results(book, tracks, abouts, windows, series),
+        checks=tuple(book.checks),
+        comparisons=comparisons,
+        problems=tuple(book.problems),
+        findings=tuple(book.findings),
+        calibration_points=tuple(book.points),
+        averages=averages,
+        stated=tuple(sentence for sentence in book.stated if sentence),
+    )
+
+
+def _correct(book: Book, tracks: Sequence[Lane], runs: Sequence[Run], abouts: Sequence[RunBook]) -> None:
+    """Moisture of each run, then every channel's calibrations, corrected means and bases."""
+    for about in abouts:
+        about.moisture = moisture(book, about.run)
+    for lane in tracks:
+        found = calibrations(book, lane)
+        check_converter(book, lane)
+        for about, corrected in zip(abouts, correct(book, found, runs), strict=True):
+            put_on_bases(book, about, corrected)
+
+
+def _reduce_run(
+    book: Book, about: RunBook, wanted: Sequence[Plan], missing: dict[str, list[Missing]]
+) -> None:
+    """Everything of one run from its corrected means: diluents, heat input, flow, balance, results."""
+    parts = heat_inputs(book, about)
+    heat = heat_input(book, about, parts)
+    share = shares(book, about, parts)
+    factors = run_factors(book, about, share)
+    means = Means(share, heat, dry_standard_flow(book, about))
+    reduce_load(book, about)
+    reduce_diluents(book, about, tuple(share), factors)
+    balance(book, about, share)
+    for plan in wanted:
+        made = result(book, about, means, plan)
+        if isinstance(made, Missing):
+            name = f"{plan.lane.segment}.{plan.ending}" if plan.limit is None else plan.limit.key
+            missing.setdefault(name, []).append(made)
+
+
+def _compare(
+    book: Book, abouts: Sequence[RunBook], wanted: Sequence[Plan], missing: dict[str, list[Missing]]
+) -> tuple[Comparison, ...]:
+    made: list[Comparison] = []
+    used: set[str] = set()
+    for plan in wanted:
+        if plan.limit is None:
+            continue
+        name = f"{plan.lane.segment}.{plan.ending}"
+        own = plan.limit.minimum_run_length is not None and name in used
+        used.add(name)
+        mean = average(book, abouts, name, plan.limit, suffix=f".limit_{plan.limit.key}" if own else "")
+        _cross_average(book, abouts, name, mean)
+        gaps = tuple(dict.fromkeys(missing.get(plan.limit.key, ())))
+        made.append(compare(book, abouts, Made(plan, mean, gaps)))
+    return tuple(made)
+
+
+def _cross_average(book: Book, abouts: Sequence[RunBook], name: str, mean: Average) -> None:
+    """Average of the second route, where every run that counts has it."""
+    if mean.entry is None:
+        return
+    for route in ("by_flow", "by_heat_input"):
+        pairs = [(book.ledger.get(about.key(f"{name}.{route}")), flag) for about, _, flag in mean.runs]
+        entries = [entry for entry, _ in pairs if entry is not None]
+        if entries and len(entries) == len(pairs):
+            inputs = {"values": entries, "flags": [flag for _, flag in pairs]}
+            book.apply(mean_of_valid, f"average.{name}.cross_check", inputs)
+
+
+def _averages(book: Book, abouts: Sequence[RunBook], wanted: Sequence[Plan]) -> tuple[str, ...]:
+    """Averages of the table of runs."""
+    names: dict[str, None] = {}
+    for about in abouts:
+        for segment in about.measured:
+            names.update(dict.fromkeys(f"{segment}.{quantity}" for quantity in _SHOWN))
+        names.update(dict.fromkeys(_run_quantities(book, about)))
+    for plan in wanted:
+        names[f"{plan.lane.segment}.{plan.ending}"] = None
+    keys: list[str] = []
+    for name in names:
+        made = average(book, abouts, name)
+        if made.entry is not None:
+            keys.append(made.entry.key)
+    return tuple(keys)
+
+
+def _run_quantities(book: Book, about: RunBook) -> list[str]:
+    wanted = (
+        "moisture", "heat_input", "flow.dry_standard", "load", "output", "combustion.excess_air",
+        "combustion.fuel_factor", "combustion.molecular_weight_dry", "combustion.molecular_weight_wet",
+        "combustion.equivalence_ratio", "combustion.air_fuel_mole", "combustion.air_fuel_mass",
+        "combustion.co2_expected", "combustion.moisture_expected",
+    )  # fmt: skip
+    return [name for name in wanted if about.key(name) in book.ledger]

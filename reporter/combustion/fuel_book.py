@@ -1,0 +1,55 @@
+"""What the entries of a fuel share while they are made."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+from reporter.combustion.fuel import Fuel
+from reporter.ledger import Entry, FromTable, Ledger, Origin, Stated
+
+#: Elements counted, with their symbols.
+SYMBOLS = {"carbon": "C", "hydrogen": "H", "oxygen": "O", "nitrogen": "N", "sulfur": "S"}
+
+
+@dataclass(frozen=True, slots=True)
+class FuelBook:
+    """A fuel, where it is entered, where its shares come from, and the shares that are entries already."""
+
+    ledger: Ledger
+    prefix: str
+    fuel: Fuel
+    origin: Origin | Mapping[str, Origin] | None
+    entries: Mapping[str, Entry]
+
+    def origin_of(self, name: str) -> Origin:
+        """Where a share, or `heat`, comes from."""
+        if isinstance(self.origin, Mapping):
+            found = self.origin.get(name)
+            if found is not None:
+                return found
+        elif self.origin is not None:
+            return self.origin
+        if self.fuel.assumed:
+            return FromTable(self.fuel.citation, self.fuel.name)
+        return Stated("as given", self.fuel.citation)
+
+    def given(self, name: str, key: str, value: float, unit: str, spread: float, label: str) -> Entry:
+        """The entry of a share as given."""
+        if name in self.entries:
+            return self.entries[name]
+        note = f"assumed, ± {spread:g} {unit}" if self.fuel.assumed else ""
+        return self.ledger.enter(
+            f"{self.prefix}.{key}", value, unit, self.origin_of(name), label=label, note=note
+        )
+
+    def zero(self, name: str, reason: str) -> Entry:
+        """An amount that is zero, and why."""
+        return self.ledger.enter(
+            f"{self.prefix}.{name}",
+            0.0,
+            self.fuel.amount_unit,
+            Stated(reason),
+            label=f"{self.fuel.name}: {name}",
+            symbol=f"n_{SYMBOLS.get(name, name)}",
+        )

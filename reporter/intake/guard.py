@@ -1,0 +1,217 @@
+"""A look at a file before it is opened: is it a workbook, is it whole, and could opening it do harm?
+
+The parts of the zip container are streamed and searched with regular expressions; nothing is parsed, nothing
+is written.  The same pass finds formulas that have no stored value, so that the workbook is loaded once.
+"""
+
+from __future__ import annotations
+
+import io
+import re
+import zipfile
+import zlib
+from collections.abc import Iterator
+from dataclasses import dataclass, field
+
+MEGABYTE = 1 << 20
+#: Caps on what a workbook may unpack to.
+MAX_TOTAL = 200 * MEGABYTE
+MAX_RATIO = 200
+MAX_ENTRIES = 2000
+#: A part smaller than this may be packed at any ratio (repeated styles pack very well).
+SMALL_PART = MEGABYTE
+#: Caps on the cells of one sheet: outermost column and row, number of cells, area of merged cells and links.
+MAX_COLUMN = 512
+MAX_ROW = 1_048_576
+MAX_CELLS = 2_500_000
+MAX_AREA = 200_000
+MAX_ROW_BYTES = 8 * MEGABYTE
+
+_OLE = b"\xd0\xcf\x11\xe0\xa1\xb1\x1a\xe1"
+_OLE_ENCRYPTED = "EncryptedPackage".encode("utf-16-le")
+_DTD = re.compile(rb"<!(?:DOCTYPE|ENTITY)")
+_ENCODING = re.compile(rb"^\s*<\?xml[^>]*?encoding\s*=\s*[\"']([^\"']*)[\"']")
+_PREFIX = rb"(?:[^\s<>/:!?]+:)?"
+_ATTRIBUTES = rb"((?:[^\"'<>]|\"[^\"]*\"|'[^']*')*+)"
+_FAR = re.compile(
+    rb"<" + _PREFIX + rb"c\s[^<>]*?\br\s*=\s*[\"']"
+    rb"((?:[A-Z]{3,}|S[S-Z]|[T-Z][A-Z])\d+|[A-Z]+(?:\d{8,}|[2-9]\d{6}|1[1-9]\d{5}|10[5-9]\d{4}))[\"']"
+)
+_CELL = re.compile(rb"<" + _PREFIX + rb"c[\s>/]")
+_AREA = re.compile(rb"<" + _PREFIX + rb"(?:mergeCell|hyperlink)\s" + _ATTRIBUTES + rb">")
+_REF = re.compile(rb"\bref\s*=\s*[\"']([^\"']*)[\"']")
+_RANGE = re.compile(rb"^\$?([A-Z]{1,3})\$?(\d{1,7})(?::\$?([A-Z]{1,3})\$?(\d{1,7}))?$")
+_FORMULA_CELL = re.compile(
+    rb"<" + _PREFIX + rb"c\s" + _ATTRIBUTES + rb">\s*<" + _PREFIX + rb"f\b[^<>]*(?:/>|>[^<]*</[^<>]*>)\s*"
+    rb"(?:</" + _PREFIX + rb"c>|<" + _PREFIX + rb"v\s*/>|<" + _PREFIX + rb"v\s*></)"
+)
+_ROW_END = re.compile(rb"</" + _PREFIX + rb"(?:row|si|xf)\s*>")
+_ADDRESS = re.compile(rb"\br\s*=\s*[\"']([A-Z]+\d+)[\"']")
+_TEXT_RESULT = re.compile(rb"\bt\s*=\s*[\"']str[\"']")
+
+
+@dataclass(frozen=True, slots=True)
+class Finding:
+    """What the look found: a code of the catalogue, what was found, and the part of the file."""
+
+    code: str
+    found: str
+    sheet_part: str = ""
+    cell: str = ""
+
+
+@dataclass(slots=True)
+class Look:
+    """Result of the look: findings, and by part of the container the formulas without a stored value."""
+
+    findings: list[Finding] = field(default_factory=list)
+    uncalculated: dict[str, frozenset[str]] = field(default_factory=dict)
+    macros: bool = False
+
+    @property
+    def stops(self) -> bool:
+        """Whether the file must not be opened."""
+        return bool(self.findings)
+
+
+def look_at(content: bytes) -> Look:
+    """Look at the bytes of a workbook file; a file that must not be opened has findings."""
+    if content.startswith(_OLE):
+        code = "encrypted" if _OLE_ENCRYPTED in content else "old-workbook"
+        return Look([Finding(code, "a file of the old binary container")])
+    if not content.startswith(b"PK"):
+        found = "an empty file" if not content else "a file that is no zip container"
+        return Look([Finding("not-a-workbook", found)])
+    look = Look()
+    try:
+        with zipfile.ZipFile(io.BytesIO(content)) as archive:
+            if not _container(archive, look):
+                for info in archive.infolist():
+                    _part(archive, info, look)
+                    if look.stops:
+                        break
+    except (zipfile.BadZipFile, zlib.error, EOFError, OSError, ValueError, NotImplementedError) as error:
+        look.findings.append(Finding("truncated", str(error) or type(error).__name__))
+    return look
+
+
+def _container(archive: zipfile.ZipFile, look: Look) -> bool:
+    """Look at the list of parts; True if that alone stops."""
+    infos = archive.infolist()
+    names = {info.filename for info in infos}
+    look.macros = any(name.endswith("vbaProject.bin") for name in names)
+    total = sum(info.file_size for info in infos)
+    tight = [i for i in infos if i.file_size > SMALL_PART and i.file_size > MAX_RATIO * max(i.compress_size, 1)]
+    if any(info.flag_bits & 1 for info in infos):
+        look.findings.append(Finding("encrypted", "parts of the file are encrypted"))
+    elif len(infos) > MAX_ENTRIES:
+        look.findings.append(Finding("zip-bomb", f"{len(infos)} parts"))
+    elif total > MAX_TOTAL:
+        look.findings.append(Finding("zip-bomb", f"{total // MEGABYTE} MB unpacked"))
+    elif tight:
+        ratio = tight[0].file_size // max(tight[0].compress_size, 1)
+        look.findings.append(Finding("zip-bomb", f"a part packed {ratio} to 1"))
+    elif "[Content_Types].xml" not in names or not any(n.endswith("workbook.xml") for n in names):
+        look.findings.append(Finding("not-a-workbook", "a zip container that holds no workbook of sheets"))
+    return look.stops
+
+
+def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look) -> None:
+    """Look through one part, if it is XML: the name of a part says nothing about what a reader takes it for."""
+    name, cells, area = info.filename, 0, 0
+    uncalculated: set[str] = set()
+    for number, piece in enumerate(_pieces(archive, info)):
+        if number == 0:
+            kind = _kind(piece)
+            if kind == "binary" and not name.endswith((".xml", ".rels")):
+                return
+            if kind:
+                look.findings.append(Finding("not-a-workbook", f"the part {name} is {kind}, not UTF-8 text"))
+                return
+        cells += sum(1 for _ in _CELL.finditer(piece))
+        area += sum(_areas(piece))
+        if _DTD.search(piece):
+            look.findings.append(Finding("dtd", f"in the part {name}"))
+        elif far := _FAR.search(piece):
+            look.findings.append(Finding("far-cell", "", name, far[1].decode("ascii", "replace")))
+        elif len(piece) > MAX_ROW_BYTES:
+            look.findings.append(Finding("zip-bomb", f"a row of more than {MAX_ROW_BYTES // MEGABYTE} MB", name))
+        elif cells > MAX_CELLS:
+            look.findings.append(Finding("zip-bomb", f"more than {MAX_CELLS:,} cells", name))
+        elif area > MAX_AREA:
+            look.findings.append(Finding("far-cell", "merged cells or links over a vast area", name))
+        if look.stops:
+            return
+        uncalculated.update(_uncalculated(piece))
+    if uncalculated:
+        look.uncalculated[name] = frozenset(uncalculated)
+
+
+def _pieces(archive: zipfile.ZipFile, info: zipfile.ZipInfo) -> Iterator[bytes]:
+    """The part in pieces of about a megabyte that end where a row, or another element, ends.
+
+    A literal ``<`` cannot stand inside an attribute, so that no element is cut in two.
+    """
+    with archive.open(info) as stream:
+        rest = b""
+        while chunk := stream.read(MEGABYTE):
+            rest += chunk
+            cut = rest.rfind(b"</row>")
+            cut = cut if cut >= 0 else _last_end_of_row(rest)
+            if cut > 0 or len(rest) > MAX_ROW_BYTES:
+                yield rest if cut <= 0 else rest[:cut]
+                rest = b"" if cut <= 0 else rest[cut:]
+        yield rest
+
+
+def _last_end_of_row(data: bytes) -> int:
+    """Where the last closing tag of a row (any prefix), or of a shared string, begins; -1 if there is none."""
+    ends = [match.start() for match in _ROW_END.finditer(data)]
+    return ends[-1] if ends else -1
+
+
+def _kind(piece: bytes) -> str:
+    """What a part is, by its first bytes: empty for UTF-8 text with a tag first."""
+    if piece.startswith((b"\xff\xfe", b"\xfe\xff", b"<\x00", b"\x00<")):
+        return "UTF-16"
+    start = piece.removeprefix(b"\xef\xbb\xbf").lstrip()
+    if start and not start.startswith(b"<"):
+        return "binary"
+    match = _ENCODING.match(start)
+    if match and match[1].lower() not in (b"utf-8", b"us-ascii"):
+        return match[1].decode("ascii", "replace")
+    return ""
+
+
+def _areas(piece: bytes) -> Iterator[int]:
+    """The number of cells of each merged range and each link."""
+    if b"mergeCell" not in piece and b"hyperlink" not in piece:
+        return
+    for match in _AREA.finditer(piece):
+        reference = _REF.search(match[1])
+        if reference is None:
+            continue
+        corners = _RANGE.match(reference[1])
+        if corners is None:
+            yield MAX_AREA + 1
+        elif corners[3]:
+            columns = column_number(corners[3].decode()) - column_number(corners[1].decode()) + 1
+            yield max(1, columns) * max(1, int(corners[4]) - int(corners[2]) + 1)
+
+
+def column_number(letters: str) -> int:
+    """1 for A, 27 for AA."""
+    number = 0
+    for letter in letters:
+        number = number * 26 + ord(letter) - 64
+    return number
+
+
+def _uncalculated(piece: bytes) -> Iterator[str]:
+    """Addresses of formulas that carry no value; an empty text is a value."""
+    if b"<f" not in piece and b":f" not in piece:
+        return
+    for match in _FORMULA_CELL.finditer(piece):
+        address = _ADDRESS.search(match[1])
+        if address and not (_TEXT_RESULT.search(match[1]) and not match[0].rstrip().endswith(b"c>")):
+            yield address[1].decode("ascii")

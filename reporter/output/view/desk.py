@@ -1,0 +1,185 @@
+"""The desk at which the view is made: the outcome, the phrases, and the one way a number becomes text.
+
+Whatever is shown is remembered, so that the register can hold a derivation row for each printed number that
+is derived nowhere else.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field, replace
+from datetime import datetime
+from typing import Any
+
+from reporter.equation import Equation
+from reporter.errors import LedgerError
+from reporter.gases import find_gas
+from reporter.ledger import Entry, FromCells, FromEquation, FromTable
+from reporter.output.numbers import decimals_in, formulas, shortest, shown, unit_text
+from reporter.output.phrases import Phrases
+from reporter.output.view.model import AnyCell, Cell, Column, Heading, Row, Shown, Table
+from reporter.outcome import Outcome
+from reporter.quantities import label_of, quantity_of
+from reporter.record import Real, Text
+from reporter.typeset import text_formula
+
+#: The sections in the order of the report; each has a heading ``title.<name>``.
+SECTIONS = (
+    "summary", "quality_summary", "process", "location", "runs", "combustion", "traces", "criteria",
+    "calibrations", "sample", "inputs", "register", "attachments", "checklist", "references", "statements",
+    "signatures",
+)  # fmt: skip
+
+
+@dataclass
+class Desk:
+    """What the parts of the view share; `anchors` holds the keys whose derivation stands in the report."""
+
+    outcome: Outcome
+    issued: datetime
+    version: str
+    phrases: Phrases
+    printed: dict[str, None] = field(default_factory=dict)
+    anchors: set[str] = field(default_factory=set)
+    _lines: dict[str, str] = field(default_factory=dict)
+
+    def words(self, name: str, **values: object) -> str:
+        """A fixed phrase."""
+        return self.phrases(name, **values)
+
+    @property
+    def missing(self) -> str:
+        """What stands where a value was not formed."""
+        return self.words("missing.value")
+
+    def headings(self) -> dict[str, Heading]:
+        """Anchor, number and title of every section."""
+        return {
+            name: Heading(f"section-{name}", str(number), self.words(f"title.{name}"))
+            for number, name in enumerate(SECTIONS, 1)
+        }
+
+    def section_number(self, name: str) -> str:
+        """The number of a section."""
+        return str(SECTIONS.index(name) + 1)
+
+    def show(self, key: str, *, unit: bool = False) -> AnyCell:
+        """The number of a key as a cell (a dash where there is none); `unit` puts its unit behind it."""
+        entry = self.outcome.ledger.get(key) if key else None
+        if entry is None:
+            return self.missing
+        return self.shown(entry, unit=unit)
+
+    def shown(self, entry: Entry, *, unit: bool = False) -> Shown:
+        """The printed number of an entry, remembered as printed."""
+        self.printed[entry.key] = None
+        text = shown(entry)
+        name = unit_text(entry.unit)
+        return Shown(entry.key, f"{text} {name}".strip() if unit else text, name, decimals_in(text))
+
+    def number_text(self, key: str) -> str:
+        """The printed number of a key with its unit, for a sentence; remembered as printed."""
+        cell = self.show(key, unit=True)
+        return cell.text if isinstance(cell, Shown) else str(cell)
+
+    def label(self, key: str) -> str:
+        """The words for a key: its entry's label, else the words of the quantity table, else the key."""
+        entry = self.outcome.ledger.get(key)
+        if entry is not None and entry.label:
+            return formulas(entry.label)
+        try:
+            return formulas(label_of(key))
+        except LedgerError:
+            return key
+
+    def quantity_label(self, key: str) -> str:
+        """The words for the quantity of a key and its variants, without gas and run."""
+        try:
+            found, variants = quantity_of(key)
+        except LedgerError:
+            return key.rsplit(".", 1)[-1].replace("_", " ")
+        more = [segment.replace("_", " ") for segment in variants]
+        return ", ".join([found.label, *more])
+
+    def origin_words(self, entry: Entry) -> str:
+        """Where an entry that is not computed comes from: cell, table or statement."""
+        origin = entry.origin
+        if isinstance(origin, FromCells):
+            return cell_words(origin)
+        if isinstance(origin, FromTable):
+            return ", ".join(part for part in (origin.citation.text(), origin.row) if part)
+        if isinstance(origin, FromEquation):
+            return origin.equation.citation.text()
+        cited = f" ({origin.citation.text()})" if origin.citation is not None else ""
+        return f"{origin.reason}{cited}"
+
+    def equation_line(self, equation: Equation[Any]) -> str:
+        """An equation in symbols, in one line of text."""
+        name = equation.name
+        if name not in self._lines:
+            term = equation.in_system(self.outcome.ledger.system).symbols()
+            self._lines[name] = f"{equation.symbol} = {text_formula(term)}"
+        return self._lines[name]
+
+    def roots(self, key: str) -> str:
+        """The root cells of an entry, gathered by sheet."""
+        by_sheet: dict[str, dict[str, None]] = {}
+        for root in sorted(self.outcome.ledger.roots([key])):
+            origin = self.outcome.ledger[root].origin
+            if isinstance(origin, FromCells) and origin.place.cell:
+                by_sheet.setdefault(origin.place.sheet, {})[origin.place.cell] = None
+        return "; ".join(f"{sheet} {' '.join(cells)}" for sheet, cells in sorted(by_sheet.items()))
+
+
+def cell_words(origin: FromCells) -> str:
+    """A place in the field workbook as ``Sheet!C5``."""
+    place = origin.place
+    return f"{place.sheet}!{place.cell}" if place.sheet and place.cell else place.sheet or place.text()
+
+
+def gas_name(text: str) -> str:
+    """A gas as it is printed."""
+    found = find_gas(text)
+    return formulas(found.label if found is not None else text)
+
+
+def entered(value: Real | None, missing: str) -> str:
+    """A number as it was entered, with its unit."""
+    if value is None:
+        return missing
+    unit = unit_text(value.unit.unit) if value.unit is not None else ""
+    return f"{shortest(value.value, 8)} {unit}".strip()
+
+
+def said(value: Text | None, missing: str = "") -> str:
+    """An entered text, or what stands for a missing one."""
+    return missing if value is None or not value.value.strip() else value.value
+
+
+def aligned(table: Table) -> Table:
+    """The table with each number padded to the most decimals of its column."""
+    most = [0] * len(table.columns)
+    for row in table.rows:
+        for index, cell in enumerate(row.cells):
+            if isinstance(cell, Shown):
+                most[index] = max(most[index], cell.decimals)
+    rows = tuple(replace(row, cells=_padded(row.cells, most)) for row in table.rows)
+    return replace(table, rows=rows)
+
+
+def _padded(cells: Sequence[AnyCell], most: Sequence[int]) -> tuple[AnyCell, ...]:
+    return tuple(
+        replace(cell, pad=most[index] - cell.decimals) if isinstance(cell, Shown) else cell
+        for index, cell in enumerate(cells)
+    )
+
+
+def simple_table(titles: Sequence[str], rows: Sequence[Sequence[str]], widths: Sequence[float]) -> Table:
+    """A table of texts."""
+    columns = tuple(Column(title, width=width) for title, width in zip(titles, widths, strict=True))
+    return Table(columns, tuple(Row(tuple(row)) for row in rows))
+
+
+def group_row(text: str, span: int) -> Row:
+    """A row that names the group of rows below it."""
+    return Row((Cell(text, strong=True, span=span),), style="group")

@@ -1,0 +1,220 @@
+"""The answer: each limit beside the runs, the average, the margin, and how it was entered."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from reporter.output.charts import Bar, ComparisonBars, comparison_strip
+from reporter.output.numbers import day, formulas, shortest, unit_text
+from reporter.output.view.desk import Desk, aligned, entered, gas_name, said
+from reporter.output.view.model import AnyCell, Cell, Column, Item, LimitsView, LimitView, Picture, Row, Shown, Table
+from reporter.outcome import Comparison, RunState
+from reporter.record import Limit, Run, text_of
+
+_YES = "yes"
+_RELATIONS = {"at most": "at_most", "less than": "less_than", "at least": "at_least"}
+
+
+def limits(desk: Desk) -> LimitsView:
+    """All limits in the order they were entered."""
+    made = desk.outcome.comparisons
+    if not made:
+        return LimitsView(None, (), desk.words("lead.no_limits"))
+    return LimitsView(
+        _table(desk), tuple(_limit(desk, comparison) for comparison in made), desk.words("lead.summary")
+    )
+
+
+def relation_words(desk: Desk, comparison: Comparison) -> str:
+    """The fixed phrase that says how the measured value stands to the limit, or why it was not compared."""
+    if comparison.is_met is None:
+        return desk.words("limit.not_compared", reason=formulas(comparison.reason))
+    ending = "met" if comparison.is_met else "not_met"
+    return desk.words(f"limit.{_relation(comparison.limit)}_{ending}")
+
+
+def limit_words(desk: Desk, limit: Limit) -> str:
+    """A limit in words as it was entered, e.g. ``at most 30 ppm, dry, at 3 % O₂``."""
+    relation = desk.words(f"limit.symbol_{_relation(limit)}")
+    unit = unit_text(limit.unit.value.unit)
+    basis = _basis(limit)
+    return f"{relation} {shortest(limit.limit.value, 8)} {unit}{', ' if basis else ''}{basis}"
+
+
+def _relation(limit: Limit) -> str:
+    return _RELATIONS[text_of(limit.relation, "at most")]
+
+
+def _basis(limit: Limit) -> str:
+    parts = []
+    if limit.moisture_basis is not None:
+        parts.append(limit.moisture_basis.value.value)
+    if limit.reference_oxygen is not None:
+        parts.append(f"at {shortest(limit.reference_oxygen.value, 4)} % O₂")
+    if limit.reference_carbon_dioxide is not None:
+        parts.append(f"at {shortest(limit.reference_carbon_dioxide.value, 4)} % CO₂")
+    if limit.expressed_as is not None:
+        parts.append(f"as {gas_name(limit.expressed_as.value)}")
+    return ", ".join(parts)
+
+
+def _limit(desk: Desk, comparison: Comparison) -> LimitView:
+    limit = comparison.limit
+    return LimitView(
+        anchor=f"limit-{limit.key}",
+        name=limit.limit_id.value,
+        heading=f"{gas_name(limit.pollutant.value)} {limit_words(desk, limit)}",
+        relation_words=relation_words(desk, comparison),
+        is_met=comparison.is_met,
+        facts=_facts(desk, comparison),
+        picture=_picture(desk, comparison),
+        notes=tuple(formulas(note) for note in _notes(desk, comparison)),
+    )
+
+
+def _table(desk: Desk) -> Table:
+    """One column per run, then average, rounded, limit, margin; load and fuel of the runs at the foot."""
+    runs = desk.outcome.runs
+    columns = [Column("", width=2.6)]
+    columns += [Column(f"Run {run.run.run.value}", number=True) for run in runs]
+    columns += [Column(title, number=True) for title in ("Average", "Rounded", "Limit", "Margin")]
+    rows: list[Row] = []
+    for comparison in desk.outcome.comparisons:
+        rows += _rows(desk, comparison, len(columns))
+    load, fuel = Cell("Load", strong=True), Cell("Fuel", strong=True)
+    rows.append(Row((load, *(_load(desk, run.run) for run in runs), Cell("", span=4)), style="foot"))
+    rows.append(Row((fuel, *(_fuel(desk, run.run) for run in runs), Cell("", span=4))))
+    return aligned(Table(tuple(columns), tuple(rows)))
+
+
+def _rows(desk: Desk, comparison: Comparison, columns: int) -> list[Row]:
+    limit = comparison.limit
+    unit = unit_text(limit.unit.value.unit)
+    of_run = {segment: (key, at) for at, (segment, key, _) in enumerate(comparison.runs)}
+    runs = [run.key for run in desk.outcome.runs]
+    words = f"{limit.limit_id.value}: {relation_words(desk, comparison)}"
+    measured: list[AnyCell] = [f"{gas_name(limit.pollutant.value)} [{unit}]"]
+    measured += [desk.show(of_run[run][0]) if run in of_run else desk.missing for run in runs]
+    keys = (comparison.value, comparison.rounded, comparison.limit_key, comparison.margin)
+    measured += [desk.show(key) for key in keys]
+    rows = [Row((Cell(words, strong=True, span=columns),), style="group"), Row(tuple(measured))]
+    counts = [_counts(desk, comparison, of_run[run][1]) if run in of_run else "" for run in runs]
+    if any(count != _YES for count in counts):
+        rows.append(Row((desk.words("limit.counts"), *counts, Cell("", span=4))))
+    return rows
+
+
+def _counts(desk: Desk, comparison: Comparison, at: int) -> str:
+    segment, _, indicator = comparison.runs[at]
+    entry = desk.outcome.ledger.get(indicator) if indicator else None
+    state = desk.outcome.run(segment).state
+    if entry is not None and float(entry.value) == 1.0:
+        return _YES
+    return "excluded" if state is RunState.EXCLUDED else "no"
+
+
+def _load(desk: Desk, run: Run) -> str:
+    key = f"run.{run.key}.load"
+    ledger = desk.outcome.ledger
+    if key not in ledger:
+        return said_load(desk, run)
+    share = f"{key}.share"
+    text = (
+        desk.number_text(key)
+        if ledger[key].unit not in {"", "1"}
+        else f"{desk.number_text(key)} {said(run.load_unit)}"
+    )
+    return f"{text} ({desk.number_text(share)})" if share in ledger else text
+
+
+def said_load(desk: Desk, run: Run) -> str:
+    """The load of a run as it was entered."""
+    if run.load is None:
+        return desk.missing
+    return f"{entered(run.load, desk.missing)} {said(run.load_unit)}".strip()
+
+
+def _fuel(desk: Desk, run: Run) -> str:
+    used = [use.fuel.value for use in desk.outcome.record.fuel_use if use.run.value == run.run.value]
+    names = used or [fuel.fuel.value for fuel in desk.outcome.record.fuels]
+    return ", ".join(dict.fromkeys(names)) or desk.missing
+
+
+def _facts(desk: Desk, comparison: Comparison) -> tuple[Item, ...]:
+    limit = comparison.limit
+    source = ", ".join(part for part in (said(limit.authority), said(limit.citation)) if part)
+    rows = [
+        ("Source", source or desk.words("limit.no_source")),
+        ("Entered", _entered_by(desk, limit)),
+        ("In force", _in_force(desk, limit)),
+        ("Applies", said(limit.applies_when)),
+        ("Basis", _full_basis(desk, comparison)),
+        ("Averaging", f"{text_of(limit.averaging, 'mean of runs')}{_runs_required(desk, comparison)}"),
+        ("Rounding", formulas(comparison.rounding_words)),
+    ]
+    if comparison.with_excluded:
+        rows.append(("With excluded runs", desk.number_text(comparison.with_excluded)))
+    if comparison.cross:
+        rows.append(
+            ("Second route", f"{desk.number_text(comparison.cross)}. {formulas(comparison.cross_words)}")
+        )
+    return tuple(Item(label, text) for label, text in rows if text)
+
+
+def _entered_by(desk: Desk, limit: Limit) -> str:
+    if limit.entered_by is None:
+        return desk.words("limit.entered_by_nobody")
+    if limit.entered_on is None:
+        return desk.words("limit.entered_by", who=limit.entered_by.value)
+    return desk.words("limit.entered_by_on", who=limit.entered_by.value, day=day(limit.entered_on.value))
+
+
+def _in_force(desk: Desk, limit: Limit) -> str:
+    if limit.in_force_from is None:
+        return desk.words("limit.no_effective_date")
+    until = f" to {day(limit.in_force_until.value)}" if limit.in_force_until is not None else ""
+    return f"from {day(limit.in_force_from.value)}{until}"
+
+
+def _full_basis(desk: Desk, comparison: Comparison) -> str:
+    entry = desk.outcome.ledger.get(comparison.value) if comparison.value else None
+    words = entry.basis.text() if entry is not None else _basis(comparison.limit)
+    route = said(comparison.limit.mass_rate_route)
+    return formulas(", ".join(part for part in (words, f"mass rate by {route}" if route else "") if part))
+
+
+def _runs_required(desk: Desk, comparison: Comparison) -> str:
+    if not comparison.count or not comparison.required:
+        return ""
+    return (
+        f"; {desk.number_text(comparison.count)} runs count, {desk.number_text(comparison.required)} required"
+    )
+
+
+def _notes(desk: Desk, comparison: Comparison) -> Sequence[str]:
+    return tuple(dict.fromkeys(comparison.notes))
+
+
+def _picture(desk: Desk, comparison: Comparison) -> Picture | None:
+    """The runs and the average on one axis with the limit; nothing where no run has a value."""
+    ledger = desk.outcome.ledger
+    unit = unit_text(comparison.limit.unit.value.unit)
+    bars = []
+    for segment, key, indicator in comparison.runs:
+        cell = desk.show(key)
+        if isinstance(cell, Shown):
+            counts = ledger.get(indicator) if indicator else None
+            counted = counts is not None and float(counts.value) == 1.0
+            name = desk.outcome.run(segment).run.run.value
+            bars.append(Bar(f"run {name}", float(ledger[key].value), cell.text, counted))
+    if not bars:
+        return None
+    average = limit = None
+    if comparison.value in ledger:
+        average = Bar("average", float(ledger[comparison.value].value), desk.number_text(comparison.value))
+    if comparison.limit_key in ledger:
+        limit = float(ledger[comparison.limit_key].value)
+    heading = f"limit {limit_words(desk, comparison.limit)}"
+    strip = ComparisonBars(tuple(bars), average, limit, heading, unit)
+    title = f"{gas_name(comparison.limit.pollutant.value)}: runs and average beside the {heading}."
+    return Picture(comparison_strip(strip, title=title))

@@ -1,0 +1,311 @@
+"""The view: what the report shows, as frozen values that are sorted, rounded and worded.
+
+A number is a `Shown`: the key of its ledger entry and its text.  Templates place these values and do nothing
+else.  A cell of a table is a `Shown` or a text.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+
+@dataclass(frozen=True, slots=True)
+class Shown:
+    """One printed number: entry key, rounded text, unit, digits behind the point and those missing to the
+    most of its column (so that decimals align)."""
+
+    key: str
+    text: str
+    unit: str = ""
+    decimals: int = 0
+    pad: int = 0
+
+
+@dataclass(frozen=True, slots=True)
+class Cell:
+    """A text cell with more to it than its text: a key whose derivation row is here, emphasis, a span."""
+
+    text: str
+    anchor: str = ""
+    strong: bool = False
+    span: int = 1
+
+
+AnyCell = Shown | Cell | str
+
+
+@dataclass(frozen=True, slots=True)
+class Column:
+    """One column: heading, unit (printed once, below it), share of the width, whether it holds numbers."""
+
+    title: str
+    unit: str = ""
+    width: float = 1.0
+    number: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class Row:
+    """One row; `anchor` is the key whose derivation row it is; `style` is a class of the style sheet."""
+
+    cells: tuple[AnyCell, ...]
+    anchor: str = ""
+    style: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Table:
+    """A table with fixed column widths in percent; `small` sets it in the size of the appendix."""
+
+    columns: tuple[Column, ...]
+    rows: tuple[Row, ...]
+    caption: str = ""
+    note: str = ""
+    small: bool = False
+
+    @property
+    def widths(self) -> tuple[str, ...]:
+        """The widths of the columns in percent, as text."""
+        whole = sum(column.width for column in self.columns)
+        return tuple(f"{100 * column.width / whole:.2f}" for column in self.columns)
+
+
+@dataclass(frozen=True, slots=True)
+class Item:
+    """A labelled entry, as on a cover or in a list of facts."""
+
+    label: str
+    text: str
+
+
+@dataclass(frozen=True, slots=True)
+class Heading:
+    """A section of the report: anchor, number and title, as contents and heading print it."""
+
+    anchor: str
+    number: str
+    title: str
+
+
+@dataclass(frozen=True, slots=True)
+class Picture:
+    """An inline SVG and its caption."""
+
+    svg: str
+    caption: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Cover:
+    """Identity of the test and of this report."""
+
+    firm: str
+    title: str
+    unit: str
+    facility: str
+    address: str
+    days: str
+    items: tuple[Item, ...]
+    statements: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class LimitView:
+    """One limit beside what was measured."""
+
+    anchor: str
+    name: str
+    heading: str
+    relation_words: str
+    is_met: bool | None
+    facts: tuple[Item, ...]
+    picture: Picture | None
+    notes: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class LimitsView:
+    """All limits: one table of runs, averages and margins, and what was entered for each."""
+
+    table: Table | None
+    limits: tuple[LimitView, ...]
+    lead: str
+
+
+@dataclass(frozen=True, slots=True)
+class ProblemView:
+    """One problem in words."""
+
+    grade: str
+    title: str
+    found: str
+    where: str
+    remedy: str
+    code: str
+
+
+@dataclass(frozen=True, slots=True)
+class QualityView:
+    """The outcome of the quality criteria and everything invalid, missing or estimated."""
+
+    lead: str
+    table: Table | None
+    not_met: tuple[str, ...]
+    runs: tuple[str, ...]
+    problems: tuple[ProblemView, ...]
+    assumed: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Block:
+    """A titled part of a section: text, facts, tables, pictures, notes, in this order."""
+
+    title: str = ""
+    text: tuple[str, ...] = ()
+    facts: tuple[Item, ...] = ()
+    tables: tuple[Table, ...] = ()
+    pictures: tuple[Picture, ...] = ()
+    notes: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Source:
+    """Where a number of a calculation comes from: symbol, number, place in words and the key it leads to."""
+
+    symbol: str
+    value: str
+    unit: str
+    where: str
+    key: str
+
+
+@dataclass(frozen=True, slots=True)
+class Step:
+    """One step of the sample calculation; `formula` and `numbers` are markup made by the typesetter."""
+
+    key: str
+    number: int
+    title: str
+    symbol: str
+    formula: str
+    numbers: str
+    result: Shown
+    basis: str
+    line: str
+    citation: str
+    sources: tuple[Source, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Chapter:
+    """The steps of the sample calculation that belong to one gas or limit."""
+
+    title: str
+    steps: tuple[Step, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Derivation:
+    """One row of the register: an entry, what it was computed from, and its root cells."""
+
+    key: str
+    value: Shown
+    inputs: tuple[Source, ...]
+    roots: str
+
+
+@dataclass(frozen=True, slots=True)
+class DerivationGroup:
+    """The rows of one equation."""
+
+    equation: str
+    citation: str
+    rows: tuple[Derivation, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Leaf:
+    """An entry that is not computed: key, value with its unit and basis, and where it stands."""
+
+    key: str
+    value: str
+    where: str
+
+
+@dataclass(frozen=True, slots=True)
+class Register:
+    """Derivation rows of the printed numbers that are derived nowhere else in the report."""
+
+    groups: tuple[DerivationGroup, ...]
+    leaves: tuple[Leaf, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class BoundDocument:
+    """A document of the Attachments sheet: what it is, its hash, and its pages where it is bound in."""
+
+    anchor: str
+    letter: str
+    file: str
+    what: str
+    sha256: str
+    pages: int
+    picture: str
+    remark: str
+
+
+@dataclass(frozen=True, slots=True)
+class CheckRow:
+    """One line of the content checklist: `anchor` leads to the page where it stands, else `words` say more."""
+
+    number: str
+    text: str
+    anchor: str
+    words: str
+
+
+@dataclass(frozen=True, slots=True)
+class CheckGroup:
+    """A group of the content checklist."""
+
+    title: str
+    rows: tuple[CheckRow, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Signature:
+    """A signature block: role, name where known, and what is certified."""
+
+    role: str
+    name: str
+    words: str
+
+
+@dataclass(frozen=True, slots=True)
+class View:
+    """Everything the report shows."""
+
+    title: str
+    language: str
+    page: str
+    draft_mark: str
+    report_number: str
+    revision: str
+    input_hash: str
+    firm: str
+    issued: str
+    headings: Mapping[str, Heading]
+    cover: Cover
+    limits: LimitsView
+    quality: QualityView
+    sections: Mapping[str, tuple[Block, ...]]
+    sample_run: str
+    sample: tuple[Chapter, ...]
+    register: Register
+    documents: tuple[BoundDocument, ...]
+    checklist: tuple[CheckGroup, ...]
+    signatures: tuple[Signature, ...]
+    cautions: tuple[str, ...]
+    statements: tuple[str, ...]
+    printed: frozenset[str] = field(default=frozenset())

@@ -1,0 +1,197 @@
+"""The results workbook as a file: sheets, cells, formats, defined names, print set-up.
+
+Text is always written as text: never a formula, never a link.  A formula is written with the value it had
+when it was computed, so that a viewer that does not calculate shows it too.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
+from datetime import date, datetime
+from io import BytesIO
+from typing import Any
+
+import xlsxwriter
+from xlsxwriter.utility import xl_col_to_name
+
+from reporter.errors import OutputError
+
+#: What a cell, and a formula, may hold at most in a workbook.
+MOST_TEXT, MOST_FORMULA = 32_000, 8_000
+_MOST_HEADER = 200
+
+_FONT = {"font_name": "Calibri", "font_size": 10, "valign": "top"}
+_LINE = {"bottom": 1, "bottom_color": "#D0D5DA"}
+_STYLES: dict[str, dict[str, Any]] = {
+    "title": {"bold": True, "font_size": 15, "font_color": "#1F3A4D"},
+    "note": {"font_color": "#5A6570", "italic": True},
+    "section": {"bold": True, "font_size": 11, "font_color": "#1F3A4D", "bottom": 2, "bottom_color": "#1F3A4D"},
+    "head": {
+        "bold": True, "text_wrap": True, "valign": "vcenter", "bg_color": "#E4EAEE", "font_color": "#1F3A4D",
+        "top": 1, "bottom": 1, "border_color": "#8A98A5",
+    },
+    "text": {**_LINE},
+    "wrap": {**_LINE, "text_wrap": True},
+    "strong": {**_LINE, "bold": True, "text_wrap": True},
+    "key": {**_LINE, "font_name": "Consolas", "font_size": 9},
+    "number": {**_LINE, "align": "right"},
+    "input": {"bg_color": "#FFF6D6", "align": "right", "border": 1, "border_color": "#E3CF8F"},
+    "given": {"bg_color": "#EEF3EA", "align": "right", "border": 1, "border_color": "#C9D8BE"},
+    "input_text": {"bg_color": "#FFF6D6", "border": 1, "border_color": "#E3CF8F", "text_wrap": True},
+    "grey": {**_LINE, "font_color": "#7A8590"},
+}  # fmt: skip
+DATE, TIME = "yyyy-mm-dd", "yyyy-mm-dd hh:mm:ss"
+
+
+@dataclass(frozen=True, slots=True)
+class Column:
+    """A column of a table: its heading, its width in characters and the style of its text cells."""
+
+    name: str
+    width: float = 12.0
+    style: str = "text"
+
+
+@dataclass
+class Book:
+    """The workbook while it is written; `report` names it in the footer of each printed page."""
+
+    issued: datetime
+    report: str
+    metric_paper: bool
+    _buffer: BytesIO = field(default_factory=BytesIO)
+    _formats: dict[tuple[str, str], Any] = field(default_factory=dict)
+    _names: dict[str, str] = field(default_factory=dict)
+
+    def __post_init__(self) -> None:
+        options = {
+            "in_memory": True,
+            "strings_to_formulas": False,
+            "strings_to_urls": False,
+            "strings_to_numbers": False,
+            "nan_inf_to_errors": False,
+        }
+        self._file = xlsxwriter.Workbook(self._buffer, options)
+        created = self.issued.replace(tzinfo=None)
+        self._file.set_properties({"title": self.report, "comments": "Results workbook", "created": created})
+
+    def sheet(self, name: str) -> Sheet:
+        """A new sheet with the print set-up all sheets share."""
+        made = self._file.add_worksheet(name)
+        made.hide_gridlines(2)
+        made.set_landscape()
+        made.set_paper(9 if self.metric_paper else 1)
+        made.fit_to_pages(1, 0)
+        made.set_margins(left=0.5, right=0.5, top=0.6, bottom=0.7)
+        report = self.report.replace("&", "&&")[:_MOST_HEADER]
+        made.set_footer(f"&L&8{report}&C&8{name}&R&8&P / &N")
+        return Sheet(self, name, made)
+
+    def format(self, style: str, numbers: str = "") -> Any:
+        """The format of a style and a number format, made once."""
+        known = (style, numbers)
+        if known not in self._formats:
+            more = {"num_format": numbers} if numbers else {}
+            self._formats[known] = self._file.add_format(_FONT | _STYLES[style] | more)
+        return self._formats[known]
+
+    def define(self, name: str, cells: str) -> None:
+        """Name a cell or a range.
+
+        Raises
+        ------
+        OutputError
+            The name is taken or no defined name.
+        """
+        if name in self._names or self._file.define_name(name, f"={cells}") != 0:
+            raise OutputError(f"{name!r} cannot name a cell of the workbook")
+        self._names[name] = cells
+
+    def cells_of(self, name: str) -> str:
+        """The cell or range of a name, e.g. ``Inputs!$C$12``."""
+        return self._names[name]
+
+    def close(self) -> bytes:
+        """Finish, and give the file's bytes."""
+        self._file.close()
+        return self._buffer.getvalue()
+
+
+@dataclass
+class Sheet:
+    """One sheet; rows and columns are counted from 0."""
+
+    book: Book
+    name: str
+    made: Any
+    row: int = 0
+
+    def title(self, title: str, note: str = "") -> None:
+        """The sheet's title and what it shows."""
+        self.made.set_row(0, 24)
+        self.made.write_string(0, 0, title, self.book.format("title"))
+        if note:
+            self.made.write_string(1, 0, note, self.book.format("note"))
+        self.row = 3
+
+    def section(self, title: str, columns: int) -> None:
+        """A heading over a part of the sheet."""
+        self.row += 1
+        for column in range(columns):
+            self.made.write_blank(self.row, column, None, self.book.format("section"))
+        self.made.write_string(self.row, 0, title, self.book.format("section"))
+        self.row += 1
+
+    def head(self, columns: Sequence[Column], *, freeze: int = -1, widths: bool = True) -> None:
+        """The heading row of a table; `freeze` is the number of columns that stay in view (-1: no freezing)."""
+        for index, column in enumerate(columns):
+            self.made.write_string(self.row, index, column.name, self.book.format("head"))
+            if widths:
+                self.made.set_column(index, index, column.width)
+        self.made.set_row(self.row, 30)
+        if freeze >= 0:
+            self.made.freeze_panes(self.row + 1, freeze)
+            self.made.repeat_rows(self.row)
+        self.row += 1
+
+    def text(self, column: int, text: str, style: str = "text") -> None:
+        """Text as text, cut where a cell cannot hold it."""
+        shown = text if len(text) <= MOST_TEXT else text[: MOST_TEXT - 1] + "…"
+        if shown:
+            self.made.write_string(self.row, column, shown, self.book.format(style))
+        else:
+            self.made.write_blank(self.row, column, None, self.book.format(style))
+
+    def texts(self, texts: Mapping[int, str] | Sequence[str], columns: Sequence[Column]) -> None:
+        """Several texts in the styles of their columns."""
+        cells = texts.items() if isinstance(texts, Mapping) else enumerate(texts)
+        for column, text in cells:
+            self.text(column, text, columns[column].style)
+
+    def number(self, column: int, value: float, numbers: str = "", style: str = "number") -> None:
+        """A number as it is."""
+        self.made.write_number(self.row, column, value, self.book.format(style, numbers))
+
+    def moment(self, column: int, moment: date, style: str = "text") -> None:
+        """A date, or a date with its time."""
+        numbers = TIME if isinstance(moment, datetime) else DATE
+        self.made.write_datetime(self.row, column, moment, self.book.format(style, numbers))
+
+    def live(
+        self, column: int, formula: str, value: float | str, numbers: str = "", style: str = "number"
+    ) -> None:
+        """A formula with the value it has now.
+
+        Raises
+        ------
+        OutputError
+            The formula is longer than a cell can hold.
+        """
+        if len(formula) > MOST_FORMULA:
+            raise OutputError(f"a formula of {len(formula)} characters does not fit a cell: {formula[:80]}…")
+        self.made.write_formula(self.row, column, f"={formula}", self.book.format(style, numbers), value)
+
+    def here(self, column: int) -> str:
+        """The address of a cell of the present row, e.g. ``Inputs!$C$12``."""
+        return f"{self.name}!${xl_col_to_name(column)}${self.row + 1}"

@@ -1,0 +1,383 @@
+"""The small equations between the methods: values taken over, heat from fuel meters, oxygen uncertainty."""
+
+from __future__ import annotations
+
+from reporter.basis import NEED_DRY
+from reporter.equation import Citation, Value, constant, equation
+from reporter.functions import at_least, choose, higher, lower, total
+
+_PRACTICE = Citation("practice")
+_UNITS = Citation("units")
+_READABLE = Citation("practice", "", "smallest amount a gas analysis reads")
+_HEAT = ("MMBtu/h", "GJ/h")
+
+
+@equation("x", "*v", {"value": "*v"}, _PRACTICE, symbols={"value": "x"}, gives="value")
+def carried(*, value: Value) -> Value:
+    """A value taken over unchanged: it is already on the basis asked for.
+
+    Parameters
+    ----------
+    value
+        Value [any unit].
+
+    Returns
+    -------
+    float
+        The same value [same unit and basis].
+    """
+    return value
+
+
+@equation(
+    "q",
+    ("ft3/h", "m3/h"),
+    {"end": ("ft3", "m3"), "start": ("ft3", "m3"), "factor": "1", "duration": "h"},
+    _PRACTICE,
+    symbols={"end": "M_end", "start": "M_start", "factor": "Y", "duration": "t"},
+)
+def metered_volume_rate(*, end: Value, start: Value, factor: Value, duration: Value) -> Value:
+    """Fuel rate by volume from a meter read at the start and the end of a run.
+
+    Parameters
+    ----------
+    end, start
+        Meter readings [ft3 or m3].
+    factor
+        Meter factor [1].
+    duration
+        Length of the run [h], not zero.
+
+    Returns
+    -------
+    float
+        Fuel rate [ft3/h or m3/h], at the meter's base conditions.
+    """
+    return (end - start) * factor / duration
+
+
+@equation(
+    "H",
+    _HEAT,
+    {"rate": ("ft3/h", "m3/h"), "heating_value": ("Btu/ft3", "MJ/m3")},
+    _PRACTICE,
+    symbols={"rate": "q", "heating_value": "GCV"},
+)
+def heat_from_volume(
+    *,
+    rate: Value,
+    heating_value: Value,
+    scale: Value = constant(1e-6, ("MMBtu/Btu", "GJ/MJ"), si=1e-3, cite=_UNITS),
+) -> Value:
+    """Heat input from a fuel rate by volume and a gross heating value at the same conditions.
+
+    Parameters
+    ----------
+    rate
+        Fuel rate [ft3/h or m3/h].
+    heating_value
+        Gross heating value [Btu/ft3 or MJ/m3].
+    scale
+        Factor between the units.
+
+    Returns
+    -------
+    float
+        Heat input, gross [MMBtu/h or GJ/h].
+    """
+    return rate * heating_value * scale
+
+
+@equation(
+    "H",
+    _HEAT,
+    {"rate": ("lb/h", "kg/h"), "heating_value": ("Btu/lb", "kJ/kg")},
+    _PRACTICE,
+    symbols={"rate": "q", "heating_value": "GCV"},
+)
+def heat_from_mass(
+    *,
+    rate: Value,
+    heating_value: Value,
+    scale: Value = constant(1e-6, ("MMBtu/Btu", "GJ/kJ"), cite=_UNITS),
+) -> Value:
+    """Heat input from a fuel rate by mass and a gross heating value.
+
+    Parameters
+    ----------
+    rate
+        Fuel rate [lb/h or kg/h].
+    heating_value
+        Gross heating value [Btu/lb or kJ/kg].
+    scale
+        Factor between the units.
+
+    Returns
+    -------
+    float
+        Heat input, gross [MMBtu/h or GJ/h].
+    """
+    return rate * heating_value * scale
+
+
+@equation(
+    "H",
+    _HEAT,
+    {"rate": ("gal/h", "L/h"), "heating_value": ("Btu/gal", "MJ/L")},
+    _PRACTICE,
+    symbols={"rate": "q", "heating_value": "GCV"},
+)
+def heat_from_liquid(
+    *,
+    rate: Value,
+    heating_value: Value,
+    scale: Value = constant(1e-6, ("MMBtu/Btu", "GJ/MJ"), si=1e-3, cite=_UNITS),
+) -> Value:
+    """Heat input from a liquid fuel's rate by volume and a gross heating value by volume.
+
+    Parameters
+    ----------
+    rate
+        Fuel rate [gal/h or L/h].
+    heating_value
+        Gross heating value [Btu/gal or MJ/L].
+    scale
+        Factor between the units.
+
+    Returns
+    -------
+    float
+        Heat input, gross [MMBtu/h or GJ/h].
+    """
+    return rate * heating_value * scale
+
+
+@equation("X", "1", {"part": "*h", "whole": "*h"}, _PRACTICE, symbols={"part": "H_k", "whole": "H"})
+def heat_share(*, part: Value, whole: Value) -> Value:
+    """Share of one fuel in the heat input.
+
+    Parameters
+    ----------
+    part
+        Heat input of the fuel [MMBtu/h or GJ/h].
+    whole
+        Heat input of all fuels [same unit], not zero.
+
+    Returns
+    -------
+    float
+        Share [1].
+    """
+    return part / whole
+
+
+@equation(
+    "%CO",
+    "%",
+    {"co": "%"},
+    Citation("m3b", "12.3.1"),
+    symbols={"co": "%CO"},
+    needs={"co": NEED_DRY},
+    gives="co",
+)
+def carbon_monoxide_counted(
+    *,
+    co: Value,
+    readable: Value = constant(
+        0.1, "%", cite=_READABLE
+    ),
+    none: Value = constant(0.0, "%"),
+) -> Value:
+    """Carbon monoxide that the adjustments of Method 3B count: none where it is below what they read.
+
+    Parameters
+    ----------
+    co
+        Carbon monoxide [%; dry].
+    readable
+        Smallest amount counted [%] (common practice).
+    none
+        Zero [%].
+
+    Returns
+    -------
+    float
+        Carbon monoxide counted [%; dry].
+    """
+    return choose(at_least(co, readable), co, none)
+
+
+@equation(
+    "u_O2",
+    "%",
+    {"certified": "%", "certificate": "%", "low_shift": "%", "upscale_shift": "%"},
+    Citation("gum", "4.3.7", "rectangular distributions"),
+    symbols={
+        "certified": "C_MA",
+        "certificate": "U",
+        "low_shift": "Δ_low",
+        "upscale_shift": "Δ_up",
+    },
+)
+def oxygen_uncertainty(
+    *,
+    certified: Value,
+    certificate: Value,
+    low_shift: Value,
+    upscale_shift: Value,
+    hundred: Value = constant(100.0, "%"),
+) -> Value:
+    """Standard uncertainty of oxygen from the cylinder and half the drift, each taken as rectangular.
+
+    Parameters
+    ----------
+    certified
+        Certified value of the upscale gas [%].
+    certificate
+        Stated uncertainty of the certificate [% of value], taken as the half-width.
+    low_shift, upscale_shift
+        Reading after less reading before the run [%]; half of each is the half-width.
+    hundred
+        The 100 of a percentage [%].
+
+    Returns
+    -------
+    float
+        Standard uncertainty [%].
+    """
+    cylinder = certified * certificate / hundred
+    return (cylinder**2 / 3 + low_shift**2 / 12 + upscale_shift**2 / 12) ** 0.5
+
+
+@equation(
+    "H",
+    _HEAT,
+    {"parts": _HEAT},
+    _PRACTICE,
+    symbols={"parts": "H_k"},
+    series=("parts",),
+)
+def heat_total(*, parts: Value) -> Value:
+    """Heat input of all fuels of a run.
+
+    Parameters
+    ----------
+    parts
+        Heat input of each fuel [MMBtu/h or GJ/h], a series.
+
+    Returns
+    -------
+    float
+        Sum [same unit].
+    """
+    return total(parts)
+
+
+@equation(
+    "F_o,bound",
+    "1",
+    {"expected": "1", "share": "%"},
+    Citation("m3b", "12.3.3"),
+    symbols={"expected": "F_o", "share": "s"},
+)
+def fuel_factor_bound(*, expected: Value, share: Value, hundred: Value = constant(100.0, "%")) -> Value:
+    """End of the range of the fuel factor for fuels burned together.
+
+    Parameters
+    ----------
+    expected
+        Fuel factor of the prorated F factors [1].
+    share
+        Tolerance [%], negative for the lower end.
+    hundred
+        The 100 of a percentage [%].
+
+    Returns
+    -------
+    float
+        Bound [1].
+    """
+    return expected * (hundred + share) / hundred
+
+
+@equation(
+    "x_max",
+    "*v",
+    {"values": "*v", "flags": "1"},
+    Citation("record", "", "each run is compared"),
+    symbols={"values": "x", "flags": "v"},
+    gives="values",
+    series=("values", "flags"),
+)
+def highest_of_valid(*, values: Value, flags: Value) -> Value:
+    """The highest result among the runs that count.
+
+    Parameters
+    ----------
+    values
+        Result of each run [any unit], a series.
+    flags
+        1 where the run counts, else 0 [1], a series.
+
+    Returns
+    -------
+    float
+        Highest [same unit and basis]; the lowest of all where no run counts.
+    """
+    floor = lower(*values)
+    return higher(*(choose(flag, value, floor) for value, flag in zip(values, flags, strict=True)))
+
+
+@equation(
+    "x_min",
+    "*v",
+    {"values": "*v", "flags": "1"},
+    Citation("record", "", "each run is compared"),
+    symbols={"values": "x", "flags": "v"},
+    gives="values",
+    series=("values", "flags"),
+)
+def lowest_of_valid(*, values: Value, flags: Value) -> Value:
+    """The lowest result among the runs that count.
+
+    Parameters
+    ----------
+    values
+        Result of each run [any unit], a series.
+    flags
+        1 where the run counts, else 0 [1], a series.
+
+    Returns
+    -------
+    float
+        Lowest [same unit and basis]; the highest of all where no run counts.
+    """
+    ceiling = higher(*values)
+    return lower(*(choose(flag, value, ceiling) for value, flag in zip(values, flags, strict=True)))
+
+
+@equation(
+    "load",
+    "%",
+    {"load": "*u", "permitted": "*u"},
+    Citation("practice", "", "load as a share of the permitted maximum"),
+    symbols={"load": "L", "permitted": "L_max"},
+)
+def load_share(*, load: Value, permitted: Value, hundred: Value = constant(100.0, "%")) -> Value:
+    """Load in percent of the permitted maximum.
+
+    Parameters
+    ----------
+    load
+        Load of the run [the plant's unit].
+    permitted
+        Permitted maximum [same unit], not zero.
+    hundred
+        The 100 of a percentage [%].
+
+    Returns
+    -------
+    float
+        Share [%].
+    """
+    return hundred * load / permitted

@@ -1,0 +1,175 @@
+"""What is to be computed for each pollutant: one plan per limit, and the plain results where no limit asks.
+
+A plan is fixed by the limit's record before any result is seen.  Plans with the same parameters share one
+ledger key; the first of a quantity has the plain key, others have ``.limit_<id>`` appended.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+
+from reporter.basis import NO_VOLUME, Standard
+from reporter.gases import find_gas
+from reporter.methods.tables import DEFAULT_TABLE
+from reporter.record import Limit, MoistureBasis, text_of
+from reporter.reduction.book import Book, Lane
+from reporter.reduction.flow import entered_standard, method_standard
+from reporter.units import dimension
+
+CONCENTRATION, MASS_CONCENTRATION = "concentration", "mass_concentration"
+EMISSION_RATE, MASS_RATE, OUTPUT_RATE = "emission_rate", "mass_rate", "output_rate"
+_PER_OUTPUT = ("lb/MWh", "g/kWh", "mg/kWh")
+_QUANTITIES = {
+    "mass_concentration": MASS_CONCENTRATION,
+    "mass_by_energy": EMISSION_RATE,
+    "mass_flow": MASS_RATE,
+}
+
+
+@dataclass(frozen=True, slots=True)
+class Plan:
+    """How one result is made: quantity, key ending, and the parameters the limit fixes.
+
+    `ending` is the part of the key after the gas, e.g. ``at_reference.limit_2``; `problem` says why nothing
+    can be computed, as (code, words).
+    """
+
+    lane: Lane
+    quantity: str
+    ending: str
+    limit: Limit | None = None
+    moisture: MoistureBasis = MoistureBasis.DRY
+    diluent: str = "O2"
+    referenced: bool = False
+    standard: Standard = NO_VOLUME
+    table: str = DEFAULT_TABLE
+    route: str = ""
+    problem: tuple[str, str] | None = None
+
+    @property
+    def parameters(self) -> tuple[object, ...]:
+        """What decides the result; plans with the same parameters are one result."""
+        limit = self.limit
+        reference = k = None
+        if self.referenced and limit is not None:
+            reference = (
+                limit.reference_oxygen.value if limit.reference_oxygen is not None else None,
+                limit.reference_carbon_dioxide.value if limit.reference_carbon_dioxide is not None else None,
+            )
+            k = limit.oxygen_constant.value if limit.oxygen_constant is not None else None
+        conditions = (self.standard.temperature_k, self.standard.pressure_kpa)
+        return (
+            self.lane.segment,
+            self.quantity,
+            self.moisture,
+            self.diluent,
+            reference,
+            k,
+            conditions,
+            self.table,
+            self.route,
+        )
+
+
+def plans(book: Book, lanes: Sequence[Lane]) -> list[Plan]:
+    """The plans of all limits in order, then the plain results that no limit asks for."""
+    made: list[Plan] = []
+    seen: dict[tuple[object, ...], str] = {}
+    taken: set[str] = set()
+    for limit in book.record.limits:
+        pollutant = find_gas(limit.pollutant.value)
+        lane = next((x for x in lanes if pollutant is not None and x.gas.key == pollutant.key), None)
+        if lane is None:
+            said = f"limit {limit.limit_id.value}: no channel measures {limit.pollutant.value}"
+            book.trouble("pollutant-missing", limit.place, said, concerns=(f"comparison.{limit.key}",))
+            continue
+        plan = _of_limit(book, lane, limit)
+        ending = seen.get(plan.parameters)
+        if ending is None:
+            ending = _ending(plan)
+            if f"{lane.segment}.{ending}" in taken:
+                ending = f"{ending}.limit_{limit.key}"
+            taken.add(f"{lane.segment}.{ending}")
+            seen[plan.parameters] = ending
+        made.append(_with(plan, ending))
+    return made + _plain(book, lanes, taken)
+
+
+def _with(plan: Plan, ending: str) -> Plan:
+    return replace(plan, ending=ending)
+
+
+def _ending(plan: Plan) -> str:
+    if plan.quantity == CONCENTRATION:
+        return "at_reference" if plan.referenced else plan.moisture.value
+    if plan.quantity == MASS_CONCENTRATION:
+        return "mass_concentration.at_reference" if plan.referenced else MASS_CONCENTRATION
+    return plan.quantity
+
+
+def _of_limit(book: Book, lane: Lane, limit: Limit) -> Plan:
+    unit = limit.unit.value.unit
+    kind = dimension(unit)
+    quantity = OUTPUT_RATE if unit in _PER_OUTPUT else _QUANTITIES.get(kind, CONCENTRATION)
+    referenced = limit.reference_oxygen is not None or limit.reference_carbon_dioxide is not None
+    hinted = limit.unit.value.moisture
+    moisture = limit.moisture_basis.value if limit.moisture_basis is not None else None
+    if moisture is None and hinted is not None:
+        moisture = MoistureBasis(hinted.value)
+    problem: tuple[str, str] | None = None
+    concentration = quantity in {CONCENTRATION, MASS_CONCENTRATION}
+    if kind not in {"fraction", *_QUANTITIES}:
+        problem = ("basis-missing", f"limit {limit.limit_id.value}: no result is computed in {unit}")
+    elif concentration and moisture is None and not referenced:
+        problem = ("basis-missing", f"limit {limit.limit_id.value}: dry or wet is not entered")
+    elif concentration and referenced and moisture is MoistureBasis.WET:
+        problem = (
+            "basis-missing",
+            f"limit {limit.limit_id.value}: a reference diluent goes with a dry basis",
+        )
+    diluent = text_of(limit.diluent, "CO2" if limit.reference_carbon_dioxide is not None else "O2")
+    return Plan(
+        lane=lane,
+        quantity=quantity,
+        ending="",
+        limit=limit,
+        moisture=(moisture or MoistureBasis.DRY) if concentration else MoistureBasis.DRY,
+        diluent=diluent.upper(),
+        referenced=referenced and concentration,
+        standard=_standard(book, limit) if quantity == MASS_CONCENTRATION else NO_VOLUME,
+        table=text_of(limit.factor_table, DEFAULT_TABLE).removeprefix("Table ").strip(),
+        route=text_of(limit.mass_rate_route) if quantity in {MASS_RATE, OUTPUT_RATE} else "",
+        problem=problem,
+    )
+
+
+def _standard(book: Book, limit: Limit) -> Standard:
+    """Standard conditions of a mass concentration: entered, by the unit's spelling, else the unit system's."""
+    from reporter.methods.mass_concentration import standard_of
+
+    entered = entered_standard(limit.standard_temperature, limit.standard_pressure)
+    if entered is not None:
+        assert entered.temperature_k is not None
+        assert entered.pressure_kpa is not None
+        return standard_of(round(entered.temperature_k, 6), round(entered.pressure_kpa, 6))
+    if limit.unit.value.standard.temperature_k is not None:
+        return limit.unit.value.standard
+    standard = method_standard(book)
+    said = f"limit {limit.limit_id.value}: no standard temperature and pressure; {standard.text()} taken"
+    book.trouble("standard-conditions-assumed", limit.place, said)
+    return standard
+
+
+def _plain(book: Book, lanes: Sequence[Lane], taken: set[str]) -> list[Plan]:
+    """Emission rate and mass rate of each pollutant that no limit asks for."""
+    made: list[Plan] = []
+    diluents = {lane.gas.key for lane in lanes if lane.gas.is_diluent}
+    diluent = "O2" if "o2" in diluents or "co2" not in diluents else "CO2"
+    for lane in lanes:
+        if lane.gas.is_diluent or lane.gas.unit != "ppm":
+            continue
+        for quantity in (EMISSION_RATE, MASS_RATE):
+            if f"{lane.segment}.{quantity}" not in taken:
+                made.append(Plan(lane=lane, quantity=quantity, ending=quantity, diluent=diluent))
+    return made
