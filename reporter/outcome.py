@@ -5,7 +5,7 @@ Numbers stand in the ledger alone; everything here refers to them by key.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from datetime import datetime, timedelta
 from enum import Enum
 
@@ -179,6 +179,10 @@ class Outcome:
     calibration_points: tuple[CalibrationPoint, ...] = ()
     averages: tuple[str, ...] = ()
     stated: tuple[str, ...] = field(default=())
+
+    def after(self, problems: tuple[Problem, ...]) -> Outcome:
+        """The same outcome with the problems of reading the input before its own."""
+        return replace(self, problems=problems + self.problems)
 
     def run(self, key: str) -> RunResult:
         """The run of a key segment."""

@@ -222,9 +222,7 @@ def nominal_fuel(name: str) -> Fuel:
 def _check_range(name: str, shares: tuple[Share, ...]) -> None:
     for share in shares:
         if not 0.0 <= share.percent <= 100.0:
-            raise RecordError(
-                f"{name}: {share.percent:g} % of {share.name} was found; 0 to 100 % is expected"
-            )
+            raise RecordError(f"{name}: {share.percent:g} % of {share.name} was found; 0 to 100 % is expected")
 
 
 def _check_sum(name: str, total: float, tolerance: float, by: str) -> None:

@@ -39,9 +39,7 @@ class FuelBook:
         if name in self.entries:
             return self.entries[name]
         note = f"assumed, ± {spread:g} {unit}" if self.fuel.assumed else ""
-        return self.ledger.enter(
-            f"{self.prefix}.{key}", value, unit, self.origin_of(name), label=label, note=note
-        )
+        return self.ledger.enter(f"{self.prefix}.{key}", value, unit, self.origin_of(name), label=label, note=note)
 
     def zero(self, name: str, reason: str) -> Entry:
         """An amount that is zero, and why."""

@@ -88,17 +88,11 @@ def _mean_of(
     )
 
 
-def _enter_gas_heat(
-    book: FuelBook, parts: list[Component], shares: Mapping[str, Entry], whole: Entry
-) -> None:
+def _enter_gas_heat(book: FuelBook, parts: list[Component], shares: Mapping[str, Entry], whole: Entry) -> None:
     ledger, prefix, name = book.ledger, book.prefix, book.fuel.name
     if any(row.heat is None for row in parts):
         return
-    burning = {
-        row.key: _property(ledger, row, "molar_heating_value", row.heat, "kJ/mol")
-        for row in parts
-        if row.heat
-    }
+    burning = {row.key: _property(ledger, row, "molar_heating_value", row.heat, "kJ/mol") for row in parts if row.heat}
     if not burning:
         return
     molar = _mean_of(book, parts, shares, whole, "molar_heating_value", burning)

@@ -54,6 +54,31 @@ def equivalence_ratio(*, air: Value, stoichiometric: Value) -> Value:
 
 
 @equation(
+    "AF",
+    AMOUNT,
+    {"stoichiometric": AMOUNT, "ratio": "1"},
+    BALANCE,
+    symbols={"stoichiometric": "A_st", "ratio": "φ"},
+)
+def air_fuel_by_mole(*, stoichiometric: Value, ratio: Value) -> Value:
+    """Air-fuel ratio by mole from the equivalence ratio.
+
+    Parameters
+    ----------
+    stoichiometric
+        Dry air for complete combustion [mol per kg or mol of fuel].
+    ratio
+        Equivalence ratio φ [1].
+
+    Returns
+    -------
+    float
+        AF [mol dry air per kg or per mol of fuel].
+    """
+    return stoichiometric / ratio
+
+
+@equation(
     "C_d",
     "%",
     {"amount": AMOUNT, "products": AMOUNT},

@@ -42,9 +42,7 @@ def amount_units(*amounts: str, pure: tuple[str, ...] = ()) -> dict[str, str]:
     return dict.fromkeys(amounts, AMOUNT) | dict.fromkeys(pure, "1")
 
 
-@equation(
-    "n", AMOUNT, amount_units("products", pure=("fraction",)), BALANCE, symbols=SYMBOLS, gives=one_moisture
-)
+@equation("n", AMOUNT, amount_units("products", pure=("fraction",)), BALANCE, symbols=SYMBOLS, gives=one_moisture)
 def amount_of(*, fraction: Value, products: Value) -> Value:
     """Amount of a measured gas.
 
@@ -121,9 +119,7 @@ def carbon_dioxide(*, carbon: Value, co: Value, hydrocarbon: Value, carbon_atoms
     BALANCE,
     symbols=SYMBOLS | {"from_fuel": "n_H2O,0"},
 )
-def water_vapour(
-    *, from_fuel: Value, air: Value, humidity: Value, hydrocarbon: Value, hydrogen_atoms: Value
-) -> Value:
+def water_vapour(*, from_fuel: Value, air: Value, humidity: Value, hydrocarbon: Value, hydrogen_atoms: Value) -> Value:
     """Water from the hydrogen balance: of the fuel and of the air.
 
     Parameters
@@ -147,9 +143,7 @@ def water_vapour(
     return from_fuel + humidity * air - hydrogen_atoms / 2 * hydrocarbon
 
 
-@equation(
-    "n_N2", AMOUNT, amount_units("nitrogen", "air", "no", pure=("air_nitrogen",)), BALANCE, symbols=SYMBOLS
-)
+@equation("n_N2", AMOUNT, amount_units("nitrogen", "air", "no", pure=("air_nitrogen",)), BALANCE, symbols=SYMBOLS)
 def nitrogen_left(*, nitrogen: Value, air: Value, air_nitrogen: Value, no: Value) -> Value:
     """Nitrogen from the nitrogen balance, with the argon of the air.
 

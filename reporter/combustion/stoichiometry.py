@@ -84,9 +84,7 @@ def humid_air(*, air: Value, humidity: Value) -> Value:
     BALANCE,
     symbols={"air": "A", "air_mass": "M_air"},
 )
-def air_by_mass(
-    *, air: Value, air_mass: Value, grams: Value = constant(1000.0, "g/kg", "k", cite=_UNIT)
-) -> Value:
+def air_by_mass(*, air: Value, air_mass: Value, grams: Value = constant(1000.0, "g/kg", "k", cite=_UNIT)) -> Value:
     """Air-fuel ratio by mass of a fuel given by weight.
 
     Parameters

@@ -35,9 +35,7 @@ def enter_analysis(book: FuelBook) -> None:
     percents: dict[str, Entry] = {}
     for share in sorted(fuel.shares, key=lambda share: ANALYSIS.index(share.name)):
         label = f"{fuel.name}: {share.name} by weight, {_basis_words(fuel, share.name)}"
-        percents[share.name] = book.given(
-            share.name, f"{share.name}_percent", share.percent, "%", share.spread, label
-        )
+        percents[share.name] = book.given(share.name, f"{share.name}_percent", share.percent, "%", share.spread, label)
     for name in (*SYMBOLS, "water"):
         if name not in percents:
             book.zero(name, f"the analysis names no {name}: taken as zero")

@@ -162,9 +162,7 @@ def dry_products_from_wet_carbon(
     float
         D [mol of dry products per kg or per mol of fuel].
     """
-    return (fixed * sum_per_air + per_air * sum_fixed) / (
-        per_product * sum_per_air + per_air * sum_per_product
-    )
+    return (fixed * sum_per_air + per_air * sum_fixed) / (per_product * sum_per_air + per_air * sum_per_product)
 
 
 @equation(

@@ -32,9 +32,10 @@ def score(spec: Sheet, texts: Sequence[str]) -> int:
     if spec.kind is Kind.ITEMS:
         folded = [fold(text) for text in texts]
         return 2 if all(fold(name) in folded for name in ITEM_COLUMNS[:2]) else 0
+    if spec.kind is not Kind.TABLE:
+        times = [text for text in texts if spec.find(split_header(text)[0]) is spec.columns[0]]
+        return len(texts) if times and len(texts) > 1 else 0
     hits = sum(1 for text in texts if text and match_name(spec, text) is not None)
-    if spec.kind in (Kind.READINGS, Kind.PROCESS):
-        return hits if hits and sum(1 for text in texts if text) > 1 else 0
     return hits if hits >= min(2, len(spec.columns)) else 0
 
 
@@ -102,9 +103,7 @@ def match_columns(table: SheetTable, gathered: Gathered) -> tuple[Matched, ...]:
     return tuple(found.values())
 
 
-def header_unit(
-    column: Column, text: str, *, place_of: tuple[Gathered, SheetTable, HeaderCell]
-) -> ReadUnit | None:
+def header_unit(column: Column, text: str, *, place_of: tuple[Gathered, SheetTable, HeaderCell]) -> ReadUnit | None:
     """The unit of a header as read; None where it names none, or where it cannot be read (then a problem)."""
     if not text or column.type is not Type.NUMBER:
         return None
@@ -114,9 +113,7 @@ def header_unit(
     if ANY in column.dimensions:
         return None
     gathered, table, header = place_of
-    gathered.add(
-        read.code, gathered.place(table.sheet, header.cell, column.name), read.found, expected=read.expected
-    )
+    gathered.add(read.code, gathered.place(table.sheet, header.cell, column.name), read.found, expected=read.expected)
     return None
 
 

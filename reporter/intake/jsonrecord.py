@@ -34,9 +34,7 @@ def read_json(content: bytes, gathered: Gathered) -> tuple[SheetTable, ...]:
         gathered.add("bad-json", gathered.place(), f"{len(content) >> 20} MB of text")
         return ()
     try:
-        data = json.loads(
-            content.decode("utf-8-sig"), object_pairs_hook=_object, parse_constant=_no_constant
-        )
+        data = json.loads(content.decode("utf-8-sig"), object_pairs_hook=_object, parse_constant=_no_constant)
     except (ValueError, RecursionError) as error:
         gathered.add("bad-json", gathered.place(), str(error) or type(error).__name__)
         return ()
@@ -87,10 +85,10 @@ def _table(spec: Sheet, name: str, value: Any, gathered: Gathered) -> SheetTable
 def _items(spec: Sheet, name: str, items: Mapping[str, Any], gathered: Gathered) -> SheetTable:
     header = tuple(HeaderCell(pointer(name), text, text, text) for text in ITEM_COLUMNS)
     rows = []
-    for i, (item, entry) in enumerate(items.items()):
-        at, note = pointer(name, item), None
-        if isinstance(entry, dict) and set(entry) <= set(ITEM_COLUMNS[1:]):
-            entry, note = entry.get("Entry"), entry.get("Note")
+    for i, (item, value) in enumerate(items.items()):
+        at, entry, note = pointer(name, item), value, None
+        if isinstance(value, dict) and set(value) <= set(ITEM_COLUMNS[1:]):
+            entry, note = value.get("Entry"), value.get("Note")
         cells = (Cell(at, item), _cell(at, entry, gathered, name), _cell(at, note, gathered, name))
         rows.append(Row(i, cells))
     return SheetTable(spec, name, header, tuple(rows))

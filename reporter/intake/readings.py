@@ -15,7 +15,7 @@ from reporter.intake.rows import Filled, RowReader
 from reporter.intake.sheets import fold, reading_words, sentinels
 from reporter.intake.table import Cell, HeaderCell, Row, SheetTable, clean, plain_number
 from reporter.problems import Place
-from reporter.record import ProcessLog, Reading, ReadingKind, ReadingRow, Readings
+from reporter.record import Reading, ReadingKind, ReadingRow, Readings
 from reporter.units import ReadUnit, read_unit
 
 _BOUND = re.compile(r"^([<>])\s*(.+)$")
@@ -37,14 +37,14 @@ def read_readings(
 ) -> Readings | None:
     """The series of the sheet Readings; None where its columns cannot be matched with channels."""
     lanes = _lanes(table, channels, reader, find_gas_key)
-    clock = _time_positions(table)
+    clock = time_positions(table)
     if clock is None:
         place = reader.gathered.place(table.sheet, table.header[0].cell if table.header else "", "Time")
         reader.gathered.add("missing-column", place, expected="a column 'Time'")
         return None
     tally = _Tally(len(lanes))
     rows = []
-    for row, moment in _timed(table, clock, reader):
+    for row, moment in timed(table, clock, reader):
         readings = []
         for index, lane in enumerate(lanes):
             cell = row.cells[lane.position]
@@ -74,7 +74,7 @@ def _lanes(
     by_name = {fold(c.text("channel")): c for c in channels if c.text("channel")}
     taken: dict[str, _Lane] = {}
     for position, header in enumerate(table.header):
-        if _is_clock(table, header) or not header.text:
+        if is_clock(table, header) or not header.text:
             continue
         channel, unit_text = _channel_of(header, by_name, channels, find_gas_key)
         place = reader.gathered.place(table.sheet, header.cell, header.text)
@@ -141,25 +141,24 @@ def _check_unit(channel: Filled, text: str, place: Place, reader: RowReader) -> 
     return own.unit
 
 
-def _is_clock(table: SheetTable, header: HeaderCell) -> bool:
-    return table.spec.find(header.text) is not None
+def is_clock(table: SheetTable, header: HeaderCell) -> bool:
+    """Whether a header is that of the time or the date."""
+    return table.spec.find(header.name) is not None
 
 
-def _time_positions(table: SheetTable) -> tuple[int, int | None] | None:
+def time_positions(table: SheetTable) -> tuple[int, int | None] | None:
     """Where the time stands, and the date if it has a column of its own."""
     found: dict[str, int] = {}
     for position, header in enumerate(table.header):
-        column = table.spec.find(header.text)
+        column = table.spec.find(header.name)
         if column is not None:
             found.setdefault(column.attr, position)
     return (found["time"], found.get("date")) if "time" in found else None
 
 
-def _timed(
-    table: SheetTable, clock: tuple[int, int | None], reader: RowReader
-) -> list[tuple[Row, datetime]]:
+def timed(table: SheetTable, clock: tuple[int, int | None], reader: RowReader) -> list[tuple[Row, datetime]]:
     """Each row with its time; rows whose time cannot be read are problems."""
-    timed: list[tuple[Row, datetime]] = []
+    found: list[tuple[Row, datetime]] = []
     watch, bare = OrderWatch(), []
     for row in table.rows:
         cell = row.cells[clock[0]]
@@ -169,16 +168,16 @@ def _timed(
         if isinstance(read, Fault):
             reader.gathered.add(read.code, place, read.found, expected=read.expected)
         elif read is not None:
-            timed.append((row, read.value))
+            found.append((row, read.value))
             bare.append(read.bare)
     reader.say_order(watch, table, "Time")
-    for (one, before), (two, after) in pairwise(timed):
+    for (one, before), (two, after) in pairwise(found):
         if all(bare) and before - after > timedelta(hours=12):
             place = reader.gathered.place(table.sheet, two.cells[clock[0]].cell, "Time")
-            found = f"{before:%H:%M} in row {one.number}, then {after:%H:%M}, without dates"
-            reader.gathered.add("run-across-midnight", place, found)
+            words = f"{before:%H:%M} in row {one.number}, then {after:%H:%M}, without dates"
+            reader.gathered.add("run-across-midnight", place, words)
             break
-    return timed
+    return found
 
 
 def _moment(row: Row, clock: tuple[int, int | None], reader: RowReader) -> MomentRead | Fault | None:
@@ -230,6 +229,10 @@ def _word(text: str, unit: str) -> Reading | Fault:
     return Reading(ReadingKind.BELOW if bound[1] == "<" else ReadingKind.OVER, read.value, text)
 
 
+def _count(number: int) -> str:
+    return "1 reading" if number == 1 else f"{number} readings"
+
+
 class _Tally:
     """Counts what is worth a note in each channel."""
 
@@ -251,26 +254,20 @@ class _Tally:
 
     def say(self, lanes: Sequence[_Lane], table: SheetTable, reader: RowReader) -> None:
         """One note for each channel and kind."""
-        for lane, negative, sentinel, texts in zip(
-            lanes, self.negative, self.sentinel, self.texts, strict=True
-        ):
+        for lane, negative, sentinel, texts in zip(lanes, self.negative, self.sentinel, self.texts, strict=True):
             if sentinel:
                 place = reader.gathered.place(table.sheet, sentinel[0][1], lane.channel)
-                reader.gathered.add("sentinel-value", place, f"{len(sentinel)} times {sentinel[0][0]:g}")
+                reader.gathered.add("sentinel-value", place, f"{_count(len(sentinel))} of {sentinel[0][0]:g}")
             if negative:
                 lowest = min(negative)
                 place = reader.gathered.place(table.sheet, lowest[1], lane.channel)
-                reader.gathered.add(
-                    "negative-reading", place, f"{len(negative)} readings, the lowest {lowest[0]:g}"
-                )
+                reader.gathered.add("negative-reading", place, f"{_count(len(negative))}, the lowest {lowest[0]:g}")
             if texts:
                 place = reader.gathered.place(table.sheet, texts[0], lane.channel)
-                reader.gathered.add("text-as-number", place, f"{len(texts)} readings")
+                reader.gathered.add("text-as-number", place, _count(len(texts)))
 
 
-def _in_order(
-    rows: list[ReadingRow], table: SheetTable, clock: int, reader: RowReader
-) -> list[ReadingRow]:
+def _in_order(rows: list[ReadingRow], table: SheetTable, clock: int, reader: RowReader) -> list[ReadingRow]:
     """The rows by time, with problems for rows out of order and for a time that stands twice."""
     cells = {row.number: row.cells[clock].cell for row in table.rows}
     for before, after in pairwise(rows):
@@ -285,42 +282,3 @@ def _in_order(
             found = f"{after.time:%Y-%m-%d %H:%M:%S}, also in {cells[before.row]}"
             reader.gathered.add("duplicate-time", place, found)
     return ordered
-
-
-def read_process(table: SheetTable, reader: RowReader) -> ProcessLog:
-    """The process log: each column with its unit, each row with its time; words stay words."""
-    clock = _time_positions(table)
-    if clock is None:
-        place = reader.gathered.place(table.sheet, table.header[0].cell if table.header else "", "Time")
-        reader.gathered.add("missing-column", place, expected="a column 'Time'")
-        return ProcessLog()
-    columns = [(i, h) for i, h in enumerate(table.header) if h.text and not _is_clock(table, h)]
-    timed = _timed(table, clock, reader)
-    values = tuple(
-        tuple(_process_value(row.cells[i], table, header, reader) for i, header in columns) for row, _ in timed
-    )
-    units = tuple(_process_unit(header) for _, header in columns)
-    names = tuple(h.name if unit else h.text for (_, h), unit in zip(columns, units, strict=True))
-    place = reader.gathered.place(table.sheet)
-    return ProcessLog(names, units, tuple(moment for _, moment in timed), values, place)
-
-
-def _process_unit(header: HeaderCell) -> ReadUnit | None:
-    try:
-        return read_unit(header.unit) if header.unit else None
-    except UnitError:
-        return None
-
-
-def _process_value(
-    cell: Cell, table: SheetTable, header: HeaderCell, reader: RowReader
-) -> float | str | None:
-    if cell.uncalculated:
-        place = reader.gathered.place(table.sheet, cell.cell, header.text)
-        reader.gathered.add("formula-without-value", place, "a formula that was never calculated")
-        return None
-    if cell.blank:
-        return None
-    if isinstance(cell.value, float):
-        return cell.value * 100.0 if cell.percent else cell.value
-    return cell.text

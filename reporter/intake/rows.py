@@ -85,9 +85,7 @@ class RowReader:
                     self.gathered.add("missing-entry", self.gathered.place(table.sheet, cell.cell, column.name))
         return made
 
-    def take(
-        self, made: Filled, column: Column, cell: Cell, *, unit: ReadUnit | None = None, sheet: str = ""
-    ) -> None:
+    def take(self, made: Filled, column: Column, cell: Cell, *, unit: ReadUnit | None = None, sheet: str = "") -> None:
         """Put the value of one cell into a row, or a problem into the gathered ones."""
         place = self.gathered.place(sheet, cell.cell, column.name)
         if cell.uncalculated:
@@ -157,9 +155,7 @@ class RowReader:
             fault = perhaps_fraction(value, used, column)
         return fault or Given(value, place, cell.text, used)
 
-    def _unit(
-        self, made: Filled, column: Column, named: ReadUnit | None, *, place: Place
-    ) -> ReadUnit | None | Fault:
+    def _unit(self, made: Filled, column: Column, named: ReadUnit | None, *, place: Place) -> ReadUnit | Fault | None:
         """The unit of a number: of its header or cell, of its row, of its channel, or of the unit system."""
         if column.unit_from:
             own = self._unit_of_row(made, column)
@@ -205,9 +201,7 @@ class RowReader:
                 self.gathered.add("missing-entry", place, expected=f"a row {column.name!r} with its entry")
         return made, tuple(extra)
 
-    def _item(
-        self, made: Filled, table: SheetTable, column: Column, *, unit_text: str, entry: Cell
-    ) -> None:
+    def _item(self, made: Filled, table: SheetTable, column: Column, *, unit_text: str, entry: Cell) -> None:
         header = HeaderCell(entry.cell, "", column.name, column.name, unit_text)
         unit = header_unit(column, unit_text, place_of=(self.gathered, table, header))
         before = made.values.get(column.attr)

@@ -222,9 +222,7 @@ def footer_words() -> frozenset[str]:
 @cache
 def months() -> dict[str, int]:
     """Month names and their abbreviations to the number of the month."""
-    return {
-        name: number for number, names in enumerate(_data()["months"]["names"], start=1) for name in names
-    }
+    return {name: number for number, names in enumerate(_data()["months"]["names"], start=1) for name in names}
 
 
 def suggestions(name: str) -> tuple[str, ...]:

@@ -35,9 +35,7 @@ class Cell:
     @property
     def blank(self) -> bool:
         """Whether nothing stands in the cell."""
-        return not self.uncalculated and (
-            self.value is None or (isinstance(self.value, str) and not clean(self.value))
-        )
+        return not self.uncalculated and (self.value is None or (isinstance(self.value, str) and not clean(self.value)))
 
 
 @dataclass(frozen=True, slots=True)

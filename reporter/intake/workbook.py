@@ -176,9 +176,7 @@ def _fill_merged(sheet: Any, grid: Grid, start: int) -> None:
             for number in range(merged.min_row + 1, merged.max_row + 1):
                 if number in grid:
                     address = f"{_letters(merged.min_col)}{number}"
-                    grid[number][merged.min_col] = Cell(
-                        address, first.value, first.percent, first.uncalculated
-                    )
+                    grid[number][merged.min_col] = Cell(address, first.value, first.percent, first.uncalculated)
 
 
 def _hidden(sheet: Any, grid: Grid) -> tuple[str, ...]:
@@ -209,4 +207,3 @@ def ranges(numbers: Iterable[int]) -> str:
         else:
             spans.append([number, number])
     return ", ".join(str(a) if a == b else f"{a} to {b}" for a, b in spans)
-

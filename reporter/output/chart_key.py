@@ -40,8 +40,12 @@ def filled(colour: str) -> Sample:
     return lambda x, y: svg.rectangle(x, y - 3, _SAMPLE, 6, fill=colour)
 
 
+def framed(look: Style) -> Sample:
+    """A sample of an area in a broken frame."""
+    frame: svg.Attributes = {"stroke": look.grey, "stroke_width": 0.6, "stroke_dasharray": "2 1.5"}
+    return lambda x, y: svg.rectangle(x, y - 3, _SAMPLE, 6, fill=look.paper, **frame)
+
+
 def hatched(colour: str) -> Sample:
     """A sample of hatching."""
-    return lambda x, y: svg.element(
-        "path", d=svg.hatch_data(x, y - 3, _SAMPLE, 6), stroke=colour, stroke_width=0.5
-    )
+    return lambda x, y: svg.element("path", d=svg.hatch_data(x, y - 3, _SAMPLE, 6), stroke=colour, stroke_width=0.5)

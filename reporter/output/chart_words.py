@@ -13,6 +13,7 @@ class ChartWords:
     other: str = "other readings"
     mean: str = "mean of the run"
     mean_value: str = "mean {value}"
+    not_counting: str = "run that does not count"
     zero: str = "zero or low gas"
     upscale: str = "upscale gas"
     converter: str = "NO₂ to the converter"

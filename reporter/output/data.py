@@ -14,6 +14,7 @@ from importlib.metadata import version as installed
 from typing import Any
 
 from reporter.equation import Equation, System, unit_in
+from reporter.errors import LedgerError
 from reporter.ledger import Entry, FromCells, FromEquation, FromTable, Ledger, Stated
 from reporter.outcome import Outcome
 from reporter.output.data_rows import (
@@ -130,7 +131,7 @@ def _equation(equation: Equation[Any], system: System) -> dict[str, Any]:
 
 def _entry(entry: Entry, names: Mapping[Any, str]) -> dict[str, Any]:
     return {
-        "label": entry.label or label_of(entry.key),
+        "label": entry.label or _label(entry.key),
         "symbol": entry.symbol or None,
         "value": entry.value,
         "unit": entry.unit,
@@ -138,6 +139,14 @@ def _entry(entry: Entry, names: Mapping[Any, str]) -> dict[str, Any]:
         "origin": _origin(entry, names),
         "note": entry.note or None,
     }
+
+
+def _label(key: str) -> str:
+    """The label of a key in words; the key itself where the quantity table has none."""
+    try:
+        return label_of(key)
+    except LedgerError:
+        return key
 
 
 def _origin(entry: Entry, names: Mapping[Any, str]) -> dict[str, Any]:

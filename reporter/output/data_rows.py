@@ -132,8 +132,7 @@ def comparison_row(comparison: Comparison) -> dict[str, Any]:
         "reason": comparison.reason or None,
         "rounding": comparison.rounding_words or None,
         "runs": [
-            {"run": run, "value": value or None, "counts": counts or None}
-            for run, value, counts in comparison.runs
+            {"run": run, "value": value or None, "counts": counts or None} for run, value, counts in comparison.runs
         ],
         **{name: getattr(comparison, name) or None for name in keys},
         "cross_words": comparison.cross_words or None,

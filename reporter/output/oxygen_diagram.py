@@ -139,9 +139,7 @@ class _Panel:
             + self.ticks()
             + svg.label(box.left - 20, box.top - 7, self.look.words.carbon_dioxide, font_weight=600)
             + svg.label(box.right, box.top - 7, words, text_anchor="end", fill=self.look.muted)
-            + svg.label(
-                box.right, box.bottom + 19, self.look.words.oxygen, text_anchor="end", font_weight=600
-            )
+            + svg.label(box.right, box.bottom + 19, self.look.words.oxygen, text_anchor="end", font_weight=600)
             + (self.names() if labelled else "")
         )
 
@@ -170,9 +168,7 @@ class _Panel:
     def rules(self) -> str:
         """Light rules at the ticks."""
         box = self.frame
-        lines = [
-            [(x, box.top), (x, box.bottom)] for x in map(self.across.at, self._ticks(self.across).values)
-        ]
+        lines = [[(x, box.top), (x, box.bottom)] for x in map(self.across.at, self._ticks(self.across).values)]
         lines += [[(box.left, y), (box.right, y)] for y in map(self.up.at, self._ticks(self.up).values)]
         return svg.element("path", d=svg.path_data(lines), stroke=self.look.rule, stroke_width=0.5)
 
@@ -186,13 +182,12 @@ class _Panel:
             for v in across.values
         ]
         beside = [
-            svg.label(box.left - 4, self.up.at(v) + 2.4, up.text(v), text_anchor="end", fill=muted)
-            for v in up.values
+            svg.label(box.left - 4, self.up.at(v) + 2.4, up.text(v), text_anchor="end", fill=muted) for v in up.values
         ]
         return "".join(below + beside)
 
     def _ticks(self, axis: Axis) -> Ticks:
-        return ticks(axis.low, axis.high, 5)
+        return ticks(axis.low, axis.high, 7)
 
     def expected(self, labelled: bool) -> str:
         """The CO2 expected at each point's O2, joined with the point."""
@@ -218,9 +213,7 @@ class _Panel:
             x, y = self.at(point.oxygen, point.carbon_dioxide)
             if labelled:
                 lines = [[(a.left, a.top), (a.right, a.bottom)] for a in self.bars(point)]
-                parts.append(
-                    svg.element("path", d=svg.path_data(lines), stroke=self.look.ink, stroke_width=0.7)
-                )
+                parts.append(svg.element("path", d=svg.path_data(lines), stroke=self.look.ink, stroke_width=0.7))
             parts.append(_measured(self.look, x, y) if labelled else svg.circle(x, y, 1.4))
         return "".join(parts)
 
@@ -236,7 +229,7 @@ class _Panel:
         """The names of the points, where they cover least, each joined with its point by a thin line."""
         points = self.diagram.points
         places = [self.at(point.oxygen, point.carbon_dioxide) for point in points]
-        taken = [Box(x - 4, y - 4, x + 4, y + 4) for x, y in places]
+        taken = [Box(x - 4, y - 4, x + 4, y + 4) for x, y in places] + self.along_line()
         for point in points:
             taken += [Box(b.left - 1, b.top - 1, b.right + 1, b.bottom + 1) for b in self.bars(point)]
             if point.expected is not None:
@@ -250,6 +243,17 @@ class _Panel:
             parts.append(svg.line(place, put.joint, stroke=self.look.muted, stroke_width=0.4))
             parts.append(svg.label(put.box.left, put.baseline, point.label, font_weight=600))
         return "".join(parts)
+
+    def along_line(self) -> list[Box]:
+        """The fuel's line in this view, as small areas that a name should not cover."""
+        line = self.diagram.line
+        if line is None:
+            return []
+        width = self.across.end - self.across.start
+        steps = [self.across.low + (self.across.high - self.across.low) * i * 4 / width for i in range(int(width / 4))]
+        slope = line.carbon_dioxide_max / line.oxygen_in_air
+        places = [self.at(oxygen, line.carbon_dioxide_max - slope * oxygen) for oxygen in steps]
+        return [Box(x - 2, y - 2, x + 2, y + 2) for x, y in places]
 
     def outline(self, near: _Panel) -> str:
         """Where the other view lies in this one."""

@@ -98,9 +98,7 @@ def time_ticks(low: datetime, high: datetime, about: int = 8) -> tuple[datetime,
     return tuple(times)
 
 
-def unbroken(
-    readings: Sequence[tuple[datetime, float]], gap: timedelta
-) -> list[list[tuple[datetime, float]]]:
+def unbroken(readings: Sequence[tuple[datetime, float]], gap: timedelta) -> list[list[tuple[datetime, float]]]:
     """Readings in time order cut wherever two are further apart than `gap`."""
     pieces: list[list[tuple[datetime, float]]] = []
     previous: datetime | None = None

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from html import escape
 
 from reporter.output.chart_words import ChartWords
@@ -34,7 +34,7 @@ class Style:
     font: str = "Source Sans Pro"
     size: float = 7.0
     width: float = 500.0
-    words: ChartWords = ChartWords()
+    words: ChartWords = field(default_factory=ChartWords)
 
 
 def number(value: float) -> str:
@@ -126,9 +126,7 @@ def circle(x: float, y: float, radius: float, **attributes: str | float) -> str:
 def triangle(x: float, y: float, radius: float, **attributes: str | float) -> str:
     """A triangle with its point up, of about the weight of a circle of that radius."""
     low, side = y + radius * 0.85, radius * 1.15
-    return element(
-        "path", d=polygon_data([(x, y - radius * 1.25), (x + side, low), (x - side, low)]), **attributes
-    )
+    return element("path", d=polygon_data([(x, y - radius * 1.25), (x + side, low), (x - side, low)]), **attributes)
 
 
 def diamond(x: float, y: float, radius: float, **attributes: str | float) -> str:

@@ -12,19 +12,17 @@ from datetime import timedelta
 from functools import partial
 
 from reporter.output import svg
-from reporter.output.chart_key import Key, hatched, key_rows, stroke
+from reporter.output.chart_key import Key, framed, hatched, key_rows, stroke
 from reporter.output.scale import TimeAxis, time_ticks
 from reporter.output.svg import Style
 from reporter.output.trace_model import MarkKind, Trace
 from reporter.output.trace_panel import LEFT, LIMIT_LINE, MEAN_LINE, TracePanel, mark_svg
 
 # Places on the paper [pt]: right margin, heading of a panel, space below it.
-_RIGHT, _HEADING, _SPACE = 4.0, 13.0, 7.0
+_RIGHT, _HEADING, _SPACE = 10.0, 13.0, 7.0
 
 
-def trace_chart(
-    traces: Sequence[Trace], style: Style | None = None, *, title: str, panel_height: float = 92.0
-) -> str:
+def trace_chart(traces: Sequence[Trace], style: Style | None = None, *, title: str, panel_height: float = 92.0) -> str:
     """Panels of one time axis, one above the other, as one SVG.
 
     Parameters
@@ -76,9 +74,7 @@ def _time_labels(times: TimeAxis, bottom: float, look: Style) -> str:
         parts.append(svg.label(x, bottom + 10.5, f"{time:%H:%M}", text_anchor="middle", fill=look.muted))
         if several and time.date() != day:
             day = time.date()
-            parts.append(
-                svg.label(x, bottom + 18.5, f"{day:%Y-%m-%d}", text_anchor="middle", fill=look.muted)
-            )
+            parts.append(svg.label(x, bottom + 18.5, f"{day:%Y-%m-%d}", text_anchor="middle", fill=look.muted))
     return "".join(parts)
 
 
@@ -94,6 +90,8 @@ def _keys(traces: Sequence[Trace], look: Style) -> list[Key]:
         keys.append((stroke(look.grey, stroke_width=0.8), words.other))
     if any(run.mean is not None for run in runs):
         keys.append((stroke(look.ink, **MEAN_LINE), words.mean))
+    if any(run.note for run in runs):
+        keys.append((framed(look), words.not_counting))
     for kind in MarkKind:
         if any(mark.kind is kind for mark in marks):
             keys.append((partial(_key_mark, kind, True, look), getattr(words, kind.value)))

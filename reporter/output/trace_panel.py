@@ -42,7 +42,7 @@ class TracePanel:
         layers = [self.bands(), self.rules(axis), self.exclusions()]
         layers.append(svg.window(*frame, self.lines(axis)))
         layers += [self.limit(axis), self.means(axis), self.calibrations(axis)]
-        layers += [self.heading(axis), self.names()]
+        layers += [self.numbers(), self.heading(axis), self.names()]
         return "".join(layers)
 
     def axis(self) -> Axis:
@@ -57,11 +57,14 @@ class TracePanel:
         return Axis(low, high, self.bottom, self.top + _LANE)
 
     def bands(self) -> str:
-        """The run windows."""
+        """The run windows, one with a note as an empty broken frame."""
+        look = self.look
+        frame: Attributes = {"stroke": look.grey, "stroke_width": 0.6, "stroke_dasharray": "2 1.5"}
         parts = []
         for run in self.trace.runs:
             x, end = self.times.at(run.start), self.times.at(run.end)
-            parts.append(svg.rectangle(x, self.top, end - x, self.height, fill=self.look.band))
+            drawn: Attributes = {"fill": look.paper, **frame} if run.note else {"fill": look.band}
+            parts.append(svg.rectangle(x, self.top, end - x, self.height, **drawn))
         return "".join(parts)
 
     def rules(self, axis: Axis) -> str:
@@ -84,9 +87,9 @@ class TracePanel:
         every = svg.path_data(self.placed(self.trace.readings, axis))
         over = svg.path_data(used)
         thin: Attributes = {"fill": "none", "stroke_linejoin": "round"}
-        return (
-            svg.element("path", d=every, stroke=self.look.grey, stroke_width=0.6, **thin) if every else ""
-        ) + (svg.element("path", d=over, stroke=self.look.accent, stroke_width=0.9, **thin) if over else "")
+        return (svg.element("path", d=every, stroke=self.look.grey, stroke_width=0.6, **thin) if every else "") + (
+            svg.element("path", d=over, stroke=self.look.accent, stroke_width=0.9, **thin) if over else ""
+        )
 
     def placed(self, readings: Sequence[TimedValue], axis: Axis) -> list[list[svg.Point]]:
         """Readings as polylines on paper, cut at gaps, thinned where there are more than paper can show."""
@@ -95,18 +98,24 @@ class TracePanel:
         return [thinned(points, _THIN) for points in lines] if len(readings) > _MANY else lines
 
     def exclusions(self) -> str:
-        """Excluded periods, hatched, with the number of their reason."""
+        """Excluded periods, hatched."""
         parts = []
         for period in self.trace.excluded:
             x, end = self.times.at(period.start), self.times.at(period.end)
-            width = max(end - x, 1.5)
-            data = svg.hatch_data(x, self.top + _LANE, width, self.height - _LANE)
+            data = svg.hatch_data(x, self.top + _LANE, max(end - x, 1.5), self.height - _LANE)
             parts.append(svg.element("path", d=data, stroke=self.look.grey, stroke_width=0.5))
-            middle, baseline = x + width / 2, self.bottom - 4
-            box = svg.text_width(period.number, self.look.size) + 4
-            parts.append(svg.rectangle(middle - box / 2, baseline - 6.5, box, 8.5, fill=self.look.paper,
-                                       stroke=self.look.muted, stroke_width=0.5))  # fmt: skip
-            parts.append(svg.label(middle, baseline, period.number, text_anchor="middle"))
+        return "".join(parts)
+
+    def numbers(self) -> str:
+        """The number of the reason at the foot of each excluded period."""
+        look = self.look
+        frame: Attributes = {"fill": look.paper, "stroke": look.muted, "stroke_width": 0.5}
+        parts = []
+        for period in self.trace.excluded:
+            x = (self.times.at(period.start) + self.times.at(period.end)) / 2
+            width, baseline = svg.text_width(period.number, look.size) + 4, self.bottom - 4
+            parts.append(svg.rectangle(x - width / 2, baseline - 6.5, width, 8.5, **frame))
+            parts.append(svg.label(x, baseline, period.number, text_anchor="middle"))
         return "".join(parts)
 
     def limit(self, axis: Axis) -> str:
@@ -155,18 +164,18 @@ class TracePanel:
         )
 
     def names(self) -> str:
-        """Run names with their means, in the lane above the values."""
-        words = self.look.words
+        """Run names with what else fits of note and mean, in the lane above the values."""
         parts = []
         for run in self.trace.runs:
             x, end = self.times.at(run.start), self.times.at(run.end)
-            name = f"{run.name}, {run.note}" if run.note else run.name
-            mean = words.mean_value.format(value=run.mean_text) if run.mean_text else ""
-            both = ": ".join(part for part in (name, mean) if part)
-            fits = svg.text_width(both, self.look.size) < end - x - 4
-            parts.append(
-                svg.label((x + end) / 2, self.top + 7.5, both if fits else name, text_anchor="middle")
-            )
+            mean = self.look.words.mean_value.format(value=run.mean_text) if run.mean_text else ""
+            noted = f"{run.name}, {run.note}" if run.note else run.name
+            choices = [f"{noted}: {mean}", f"{run.name}: {mean}"] if mean else []
+            choices += [noted, run.name]
+            room = end - x - 4
+            fitting = (words for words in choices if svg.text_width(words, self.look.size) <= room)
+            words = next(fitting, run.name)
+            parts.append(svg.label((x + end) / 2, self.top + 7.5, words, text_anchor="middle"))
         return "".join(parts)
 
 

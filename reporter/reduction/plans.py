@@ -11,7 +11,7 @@ from dataclasses import dataclass, replace
 
 from reporter.basis import NO_VOLUME, Standard
 from reporter.gases import find_gas
-from reporter.methods.tables import DEFAULT_TABLE
+from reporter.methods.tables import DEFAULT_TABLE, factor_tables
 from reporter.record import Limit, MoistureBasis, text_of
 from reporter.reduction.book import Book, Lane
 from reporter.reduction.flow import entered_standard, method_standard
@@ -45,6 +45,7 @@ class Plan:
     standard: Standard = NO_VOLUME
     table: str = DEFAULT_TABLE
     route: str = ""
+    rate_ending: str = ""
     problem: tuple[str, str] | None = None
 
     @property
@@ -93,7 +94,18 @@ def plans(book: Book, lanes: Sequence[Lane]) -> list[Plan]:
             taken.add(f"{lane.segment}.{ending}")
             seen[plan.parameters] = ending
         made.append(_with(plan, ending))
-    return made + _plain(book, lanes, taken)
+    return [_with_rate(plan, made) for plan in (made := made + _plain(book, lanes, taken))]
+
+
+def _with_rate(plan: Plan, all_plans: Sequence[Plan]) -> Plan:
+    """A mass rate with the emission rate it rests on: one with its table and diluent, or one of its own."""
+    if plan.quantity not in {MASS_RATE, OUTPUT_RATE}:
+        return plan
+    same = (plan.lane.segment, plan.table, plan.diluent)
+    for other in all_plans:
+        if other.quantity == EMISSION_RATE and (other.lane.segment, other.table, other.diluent) == same:
+            return replace(plan, rate_ending=other.ending)
+    return replace(plan, rate_ending=f"emission_rate.for_{plan.ending.replace('.', '_')}")
 
 
 def _with(plan: Plan, ending: str) -> Plan:
@@ -138,10 +150,17 @@ def _of_limit(book: Book, lane: Lane, limit: Limit) -> Plan:
         diluent=diluent.upper(),
         referenced=referenced and concentration,
         standard=_standard(book, limit) if quantity == MASS_CONCENTRATION else NO_VOLUME,
-        table=text_of(limit.factor_table, DEFAULT_TABLE).removeprefix("Table ").strip(),
+        table=_table(text_of(limit.factor_table)),
         route=text_of(limit.mass_rate_route) if quantity in {MASS_RATE, OUTPUT_RATE} else "",
         problem=problem,
     )
+
+
+def _table(text: str) -> str:
+    """The table of F factors a limit names; the text as it stands where no known table is in it."""
+    if not text.strip():
+        return DEFAULT_TABLE
+    return next((name for name in factor_tables() if name in text), text.strip())
 
 
 def _standard(book: Book, limit: Limit) -> Standard:

@@ -260,8 +260,7 @@ def _route(book: Book, about: RunBook, means: Means, plan: Plan, name: str) -> A
 
 def _rate_for_route(book: Book, about: RunBook, means: Means, plan: Plan) -> Entry | Missing:
     """The emission rate a mass rate rests on: one already made with the same table and diluent, or new."""
-    suffix = "" if plan.diluent == "O2" and plan.table == "19-2" else f".for_{plan.ending.replace('.', '_')}"
-    wanted = replace(plan, quantity=kinds.EMISSION_RATE, ending=f"emission_rate{suffix}", route="")
+    wanted = replace(plan, quantity=kinds.EMISSION_RATE, ending=plan.rate_ending, route="")
     return result(book, about, means, wanted)
 
 

@@ -149,9 +149,7 @@ def test_a_body_uses_arithmetic_and_the_allowed_functions_only(name: str) -> Non
         ("%", "1", 12.5, 0.125),
     ],
 )
-def test_conversions_by_definition_of_the_units(
-    source: str, target: str, value: float, expected: float
-) -> None:
+def test_conversions_by_definition_of_the_units(source: str, target: str, value: float, expected: float) -> None:
     eq = conversion_equation(source, target)
     assert eq(value=value) == pytest.approx(expected, rel=1e-14)
     assert eq(value=quantity(value, source)).magnitude == pytest.approx(expected, rel=1e-12)

@@ -42,6 +42,7 @@ class Desk:
     printed: dict[str, None] = field(default_factory=dict)
     anchors: set[str] = field(default_factory=set)
     _lines: dict[str, str] = field(default_factory=dict)
+    _below: dict[str, list[str]] = field(default_factory=dict)
 
     def words(self, name: str, **values: object) -> str:
         """A fixed phrase."""
@@ -112,6 +113,15 @@ class Desk:
             return origin.equation.citation.text()
         cited = f" ({origin.citation.text()})" if origin.citation is not None else ""
         return f"{origin.reason}{cited}"
+
+    def keys_under(self, stem: str) -> list[str]:
+        """The keys below a stem, in the order they were made."""
+        if not self._below:
+            for entry in self.outcome.ledger:
+                parts = entry.key.split(".")
+                for count in range(1, len(parts)):
+                    self._below.setdefault(".".join(parts[:count]), []).append(entry.key)
+        return self._below.get(stem, [])
 
     def equation_line(self, equation: Equation[Any]) -> str:
         """An equation in symbols, in one line of text."""

@@ -19,13 +19,12 @@ _SHARED = ("span",)
 def quality(desk: Desk) -> QualityView:
     """The outcome of all criteria, the runs that do not count, and every problem in words."""
     checks = desk.outcome.checks
-    met = [check for check in checks if check.met]
     if not checks:
         lead = desk.words("lead.quality_none")
-    elif len(met) == len(checks):
-        lead = desk.words("lead.quality_all_met", count=len(checks))
+    elif all(check.met for check in checks):
+        lead = desk.words("lead.quality_all_met")
     else:
-        lead = desk.words("lead.quality_some", met=len(met), count=len(checks))
+        lead = desk.words("lead.quality_some")
     return QualityView(
         lead=lead,
         table=_overview(desk) if checks else None,
@@ -45,21 +44,20 @@ def _groups(checks: Sequence[Check]) -> dict[str, list[Check]]:
 
 
 def _overview(desk: Desk) -> Table:
-    """One row per criterion: how many of how many are met, for each gas."""
+    """One row per criterion: whether it is met, for each gas."""
     groups = _groups(desk.outcome.checks)
     gases = list(dict.fromkeys(check.gas for check in desk.outcome.checks if check.gas))
-    columns = [Column("Criterion", width=4), Column("Paragraph", width=2.4)]
-    columns += [Column(gas_name(gas), number=True) for gas in gases]
+    columns = [Column("Criterion", width=3.6), Column("Paragraph", width=2.2)]
+    columns += [Column(gas_name(gas), width=1.1) for gas in gases]
     rows = []
     for title, checks in groups.items():
         cells: list[AnyCell] = [title, checks[0].citation.text()]
         for gas in gases:
-            mine = [check for check in checks if check.gas == gas]
-            count = f"{sum(check.met for check in mine)} of {len(mine)}" if mine else desk.missing
-            cells.append(count)
+            mine = [check.met for check in checks if check.gas == gas]
+            words = desk.words("criterion.met" if all(mine) else "criterion.not_met")
+            cells.append(Cell(words, strong=not all(mine)) if mine else desk.missing)
         rows.append(Row(tuple(cells)))
-    note = desk.words("criterion.counted")
-    return Table(tuple(columns), tuple(rows), note=note)
+    return Table(tuple(columns), tuple(rows), note=desk.words("criterion.overview"))
 
 
 def _not_met(desk: Desk, check: Check) -> str:

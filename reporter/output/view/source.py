@@ -6,9 +6,9 @@ from collections.abc import Sequence
 
 from reporter.ledger import Entry
 from reporter.methods.criteria import method_family
-from reporter.output.numbers import fixed, formulas, moment, shortest, unit_text
+from reporter.output.numbers import formulas, moment, shortest, unit_text
 from reporter.output.view.desk import Desk, aligned, entered, gas_name, said, simple_table
-from reporter.output.view.model import AnyCell, Block, Column, Item, Row, Shown, Table
+from reporter.output.view.model import AnyCell, Block, Column, Item, Row, Table
 from reporter.record import Channel, FuelRow, Point, Run
 from reporter.references import bibliography
 
@@ -45,7 +45,7 @@ def process(desk: Desk) -> tuple[Block, ...]:
     blocks = [Block(facts=facts), _operation(desk)]
     if desk.outcome.record.fuels:
         blocks.append(_fuels(desk))
-    if desk.outcome.record.process.rows:
+    if desk.outcome.record.process.times:
         blocks.append(_process_log(desk))
     return tuple(blocks)
 
@@ -120,25 +120,22 @@ def _analysis(row: FuelRow) -> str:
 
 
 def _process_log(desk: Desk) -> Block:
-    """The process log averaged over each run.  These are plain averages of the log, no results."""
-    log = desk.outcome.record.process
+    """Means of the process log over each run, where the ledger holds them; else where the log is printed."""
     runs = [run.run for run in desk.outcome.runs]
+    ledger = desk.outcome.ledger
+    names = dict.fromkeys(
+        entry.key.split(".")[3] for run in runs for entry in ledger.under(f"run.{run.key}.process")
+    )
+    if not names:
+        return Block(notes=(desk.words("lead.process_log", inputs=desk.section_number("inputs")),))
     columns = (Column("Process log, mean over the run", width=3), Column("Unit", width=1.4), *_run_columns(runs))
-    rows: list[Row] = []
-    for index, name in enumerate(log.columns):
-        cells = []
-        for run in runs:
-            values = [
-                value
-                for row in log.rows
-                if run.start.value <= row.time <= run.end.value
-                and (value := row.values[index]) is not None
-            ]
-            cells.append(f"{shortest(sum(values) / len(values), 4)} ({len(values)})" if values else desk.missing)
-        unit = log.units[index]
-        rows.append(Row((name, unit_text(unit.unit) if unit is not None else "", *cells)))
-    note = desk.words("lead.process_log")
-    return Block(tables=(Table(columns, tuple(rows), note=note),))
+    rows = []
+    for name in names:
+        entries = [ledger.get(f"run.{run.key}.process.{name}") for run in runs]
+        found = next(entry for entry in entries if entry is not None)
+        label = formulas(found.label or name.replace("_", " "))
+        rows.append(Row((label, unit_text(found.unit), *(_shown(desk, entry) for entry in entries))))
+    return Block(tables=(aligned(Table(columns, tuple(rows))),))
 
 
 def location(desk: Desk) -> tuple[Block, ...]:

@@ -1,0 +1,184 @@
+"""The command line: each command parses, makes one library call, prints, and gives an exit code.
+
+Exit codes: 0 nothing is withheld; 1 a result is withheld, for a reason said; 2 the command is wrong;
+3 an input cannot be read; 4 a file cannot be written.
+"""
+
+from __future__ import annotations
+
+import argparse
+import sys
+from collections.abc import Callable, Sequence
+from pathlib import Path
+from typing import TextIO
+
+from reporter.version import VERSION
+
+OK, WITHHELD, USAGE, UNREADABLE, UNWRITTEN = 0, 1, 2, 3, 4
+
+_EXIT_CODES = """exit codes:
+  0  nothing is withheld (notes may be)
+  1  a result is withheld: a criterion is not met or a fact is missing
+  2  the command is wrong
+  3  an input cannot be read
+  4  a file cannot be written
+"""
+
+
+def parser() -> argparse.ArgumentParser:
+    """The whole command line."""
+    top = argparse.ArgumentParser(
+        prog="fluebook",
+        description="Stack-test readings to a report a reviewer can recompute. It decides no compliance.",
+        epilog=_EXIT_CODES,
+        formatter_class=argparse.RawDescriptionHelpFormatter,
+    )
+    top.add_argument("--version", action="version", version=f"fluebook {VERSION}")
+    commands = top.add_subparsers(dest="command", required=True, metavar="COMMAND")
+    _report_parser(commands.add_parser("report", help="write PDF, workbook and JSON"))
+    check = commands.add_parser("check", help="read, assess and print; write nothing")
+    check.add_argument("inputs", nargs="+", type=Path, metavar="INPUT", help="field workbook or JSON record")
+    blank = commands.add_parser("blank", help="write an empty field workbook")
+    blank.add_argument("file", type=Path, help="where to write it (.xlsx)")
+    blank.add_argument("--gases", default="NOx,CO,O2,CO2", help="gases measured, by comma (default: %(default)s)")
+    blank.add_argument("--runs", type=int, default=3, help="number of runs (default: %(default)s)")
+    blank.add_argument("--units", choices=("US", "SI"), default="US", help="unit system (default: %(default)s)")
+    fuel = commands.add_parser("fuel", help="heating value, F factors, air, fuel factor, maximum CO2 of a fuel")
+    fuel.add_argument("fuel", nargs="+", help="a published fuel name, or a composition such as CH4 94, C2H6 4, N2 2")
+    fuel.add_argument("--units", choices=("US", "SI"), default="US", help="unit system (default: %(default)s)")
+    schema = commands.add_parser("schema", help="print a JSON Schema")
+    schema.add_argument(
+        "which", nargs="?", choices=("record", "results"), default="record",
+        help="of the record given as JSON, or of the results (default: %(default)s)",
+    )  # fmt: skip
+    return top
+
+
+def _report_parser(command: argparse.ArgumentParser) -> None:
+    command.add_argument("inputs", nargs="+", type=Path, metavar="INPUT", help="field workbook or JSON record")
+    command.add_argument("--out", type=Path, required=True, metavar="DIR", help="folder for the results")
+    command.add_argument("--templates", type=Path, metavar="DIR", help="letterhead, wording and style of a firm")
+    command.add_argument("--issued", metavar="TIME", help="issue time, ISO 8601 (default: SOURCE_DATE_EPOCH, else now)")
+    command.add_argument("--minute-data", action="store_true", help="print the logged readings too")
+
+
+def main(
+    arguments: Sequence[str] | None = None, out: TextIO | None = None, err: TextIO | None = None
+) -> int:
+    """Run one command; streams can be given."""
+    given = parser().parse_args(arguments)
+    commands: dict[str, Callable[[argparse.Namespace, TextIO, TextIO], int]] = {
+        "report": _report,
+        "check": _check,
+        "blank": _blank,
+        "fuel": _fuel,
+        "schema": _schema,
+    }
+    return commands[given.command](given, out or sys.stdout, err or sys.stderr)
+
+
+def entry_point() -> None:
+    """The installed command."""
+    sys.exit(main())
+
+
+def _check(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
+    from reporter.tasks import Task, check_input
+
+    return _each(given.inputs, lambda path: check_input(path), out, err, Task)
+
+
+def _report(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
+    from reporter.api import issue_time
+    from reporter.tasks import Task, report_input
+
+    try:
+        issued = issue_time(given.issued)
+    except ValueError:
+        print(f"fluebook: --issued {given.issued!r} is not an ISO date and time", file=err)
+        return USAGE
+    names = [path.stem.lower() for path in given.inputs]
+    twice = sorted({name for name in names if names.count(name) > 1})
+    if twice:
+        print(f"fluebook: two inputs of one name would overwrite each other: {', '.join(twice)}", file=err)
+        return USAGE
+    if given.templates is not None and not given.templates.is_dir():
+        print(f"fluebook: --templates: there is no folder {given.templates}", file=err)
+        return USAGE
+    return _each(
+        given.inputs,
+        lambda path: report_input(path, given.out, issued, given.templates, given.minute_data),
+        out,
+        err,
+        Task,
+    )
+
+
+def _each(
+    inputs: Sequence[Path], work: Callable[[Path], object], out: TextIO, err: TextIO, kind: type
+) -> int:
+    """Every input as its own task; an overview closes a run of several."""
+    from reporter.tasks import overview_of
+
+    done = []
+    for path in inputs:
+        task = work(path)
+        assert isinstance(task, kind)
+        done.append(task)
+        stream = err if task.code in {UNREADABLE, UNWRITTEN} else out
+        print(_encodable(task.text, stream), file=stream)
+    if len(done) > 1:
+        print(_encodable(overview_of(done), out), file=out)
+    return max(task.code for task in done)
+
+
+def _encodable(text: str, stream: TextIO) -> str:
+    """The text with what the terminal cannot show replaced."""
+    encoding = getattr(stream, "encoding", None) or "utf-8"
+    return text.encode(encoding, "replace").decode(encoding)
+
+
+def _blank(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
+    from reporter.errors import FluebookError, OutputError
+    from reporter.equation import System
+    from reporter.intake.blank import write_blank
+
+    gases = [name.strip() for name in given.gases.split(",") if name.strip()]
+    try:
+        write_blank(given.file, gases, given.runs, System(given.units))
+    except OutputError as error:
+        print(f"fluebook: {error}", file=err)
+        return UNWRITTEN
+    except FluebookError as error:
+        print(f"fluebook: {error}", file=err)
+        return USAGE
+    print(f"{given.file.name}: field workbook for {', '.join(gases)}, {given.runs} runs, {given.units} units", file=out)
+    return OK
+
+
+def _fuel(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
+    from reporter.equation import System
+    from reporter.errors import FluebookError
+    from reporter.terminal_fuel import fuel_text
+
+    try:
+        print(_encodable(fuel_text(" ".join(given.fuel), System(given.units)), out), file=out)
+    except FluebookError as error:
+        print(f"fluebook: {error}", file=err)
+        return USAGE
+    return OK
+
+
+def _schema(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
+    import json
+
+    if given.which == "results":
+        from reporter.output.results_schema import results_schema as make
+    else:
+        from reporter.intake.schema import input_schema as make
+    print(json.dumps(make(), indent=2, ensure_ascii=False), file=out)
+    return OK
+
+
+if __name__ == "__main__":
+    entry_point()

@@ -1,0 +1,5 @@
+"""From a field workbook, or a record in JSON, to a typed record or problems that name the cell."""
+
+from reporter.intake.read import ReadResult, attachment_path, read, read_bytes
+
+__all__ = ["ReadResult", "attachment_path", "read", "read_bytes"]

@@ -1,0 +1,158 @@
+"""What rows of several sheets must agree on: names, references, bases, and the times of the runs."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from datetime import date, datetime, timedelta
+from itertools import pairwise
+
+from reporter.basis import ACTUAL, Moisture
+from reporter.intake.gather import Gathered
+from reporter.intake.rows import Filled, with_value
+from reporter.intake.sheets import Sheet, fold
+from reporter.ledger import slug
+from reporter.record import Readings
+
+Rows = Sequence[Filled]
+
+
+def unique_names(spec: Sheet, rows: Rows, gathered: Gathered) -> None:
+    """Each row carries a name of its own; names that give one key are one name."""
+    attrs = [spec.column(name).attr for name in spec.unique]
+    seen: dict[tuple[str, ...], Filled] = {}
+    for row in rows:
+        if not attrs or any(attr not in row.values for attr in attrs):
+            continue
+        key = tuple(slug(row.text(attr)) for attr in attrs)
+        if key in seen:
+            words = ", ".join(row.values[attr].text for attr in attrs)
+            place = gathered.place(row.place.sheet, row.place.cell, spec.unique[0])
+            gathered.add("duplicate-id", place, f"{words}, also in {seen[key].place.cell}")
+        else:
+            seen[key] = row
+
+
+def references(spec: Sheet, rows: Rows, names: Mapping[str, Mapping[str, str]], gathered: Gathered) -> None:
+    """Each reference names a row that exists, and is written as that row writes itself."""
+    for column in spec.columns:
+        known = names.get(column.refers)
+        if known is None:
+            continue
+        also = {fold(word): word for word in column.also}
+        for row in rows:
+            given = row.values.get(column.attr)
+            if given is None:
+                continue
+            exact = known.get(fold(given.value)) or also.get(fold(given.value))
+            if exact is not None:
+                row.values[column.attr] = with_value(given, exact)
+                continue
+            there = ", ".join([*known.values(), *column.also]) or "none"
+            expected = f"a name of the sheet {column.refers}: {there}"
+            gathered.add("unknown-reference", given.place, given.text, expected=expected)
+
+
+def names_of(rows: Rows, attr: str) -> dict[str, str]:
+    """The names of the rows of a sheet, by their folded form."""
+    return {fold(row.text(attr)): row.text(attr) for row in rows if row.text(attr)}
+
+
+def unit_against_basis(rows: Rows, gathered: Gathered) -> None:
+    """A unit such as ppmvw and the column Moisture basis say the same."""
+    for row in rows:
+        unit, basis = row.values.get("unit"), row.values.get("moisture_basis")
+        if unit is None or basis is None or unit.value.moisture is None:
+            continue
+        if unit.value.moisture.value != basis.value.value:
+            found = f"unit {unit.text!r}, moisture basis {basis.text!r} ({basis.place.cell})"
+            gathered.add("basis-contradiction", unit.place, found)
+
+
+def flow_against_basis(rows: Rows, gathered: Gathered) -> None:
+    """A flow unit such as dscfm or acfm and the column Flow basis say the same."""
+    for row in rows:
+        flow, basis = row.values.get("stack_flow"), row.values.get("flow_basis")
+        if flow is None or basis is None or flow.unit is None:
+            continue
+        hint, words = flow.unit, str(basis.value)
+        actual = hint.standard is ACTUAL
+        wrong = (
+            (actual and words != "actual")
+            or (hint.standard.words and not actual and words == "actual")
+            or (hint.moisture is Moisture.DRY and words.startswith("wet"))
+            or (hint.moisture is Moisture.WET and words.startswith("dry"))
+        )
+        if wrong:
+            said = ", ".join(t for t in (hint.moisture.value if hint.moisture else "", hint.standard.words) if t)
+            found = f"the unit of the column says {said}, the flow basis {words}"
+            gathered.add("basis-contradiction", flow.place, found)
+
+
+def run_times(rows: Rows, gathered: Gathered, days: tuple[date | None, date | None]) -> None:
+    """Runs end after they start, runs of one group do not overlap, and they lie within the test days."""
+    good = []
+    for row in rows:
+        start, end = row.values.get("start"), row.values.get("end")
+        if start is None or end is None:
+            continue
+        place, found = end.place, f"{start.text} to {end.text}"
+        if end.value > start.value:
+            good.append(row)
+            _within(row, gathered, days)
+        elif {"start", "end"} <= row.bare and start.value.hour >= 12 > end.value.hour:
+            gathered.add("run-across-midnight", place, found)
+        else:
+            gathered.add("reversed-run", place, found)
+    groups: dict[str, list[Filled]] = {}
+    for row in good:
+        groups.setdefault(fold(row.text("group")), []).append(row)
+    for group in groups.values():
+        ordered = sorted(group, key=lambda r: r.values["start"].value)
+        for before, after in pairwise(ordered):
+            if after.values["start"].value < before.values["end"].value:
+                start, end = after.values["start"], before.values["end"]
+                found = (
+                    f"run {after.text('run')} starts {start.value:%Y-%m-%d %H:%M}, "
+                    f"run {before.text('run')} ends {end.value:%Y-%m-%d %H:%M} ({end.place.cell})"
+                )
+                gathered.add("overlapping-runs", start.place, found)
+
+
+def _within(row: Filled, gathered: Gathered, days: tuple[date | None, date | None]) -> None:
+    first, last = days
+    start, end = row.values["start"], row.values["end"]
+    if first is None:
+        return
+    until = (last or first) + timedelta(days=0 if last else 1)
+    if start.value.date() < first or start.value.date() > (last or first) or end.value.date() > until:
+        found = f"{start.value:%Y-%m-%d} for test day {first}" + (f" to {last}" if last else "")
+        gathered.add("date-outside-test", start.place, found)
+
+
+def runs_with_readings(rows: Rows, readings: Readings, gathered: Gathered) -> None:
+    """At least one logged interval lies within each run."""
+    times = [row.time for row in readings.rows]
+    for row in rows:
+        start, end = row.values.get("start"), row.values.get("end")
+        if start is None or end is None or end.value <= start.value:
+            continue
+        if not any(start.value <= moment <= end.value for moment in times):
+            found = f"run {row.text('run')} from {start.value:%Y-%m-%d %H:%M} to {end.value:%Y-%m-%d %H:%M}"
+            gathered.add("run-without-readings", row.place, f"{found}; {_span(times)}")
+
+
+def _span(times: Sequence[datetime]) -> str:
+    if not times:
+        return "no readings"
+    return f"readings from {times[0]:%Y-%m-%d %H:%M} to {times[-1]:%Y-%m-%d %H:%M}"
+
+
+def logging_interval(readings: Readings, seconds: float | None, gathered: Gathered) -> None:
+    """The usual step between readings is the logging interval entered."""
+    steps = sorted((b.time - a.time).total_seconds() for a, b in pairwise(readings.rows))
+    if seconds is None or not steps:
+        return
+    usual = steps[len(steps) // 2]
+    if abs(usual - seconds) > 0.1 * seconds:
+        found = f"{usual:g} s between readings, {seconds:g} s entered"
+        gathered.add("interval-differs", readings.place, found)

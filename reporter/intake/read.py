@@ -1,0 +1,115 @@
+"""A file to a record: the one way in.  Bad input gives problems, never an exception."""
+
+from __future__ import annotations
+
+import hashlib
+import os
+from dataclasses import dataclass
+from pathlib import Path, PurePosixPath, PureWindowsPath
+
+from reporter.intake.build import build
+from reporter.intake.gather import Gathered
+from reporter.intake.guard import Finding, look_at
+from reporter.intake.jsonrecord import looks_like_json, read_json
+from reporter.intake.table import SheetTable
+from reporter.intake.workbook import read_workbook, sheet_parts
+from reporter.problems import Problem
+from reporter.record import Record, SourceFile
+
+#: A larger file is not read into memory.
+MAX_FILE = 100 << 20
+
+
+@dataclass(frozen=True, slots=True)
+class ReadResult:
+    """What reading gave: the record (None where the file is unreadable) and every problem found."""
+
+    record: Record | None
+    problems: tuple[Problem, ...]
+
+
+def read(path: str | Path) -> ReadResult:
+    """Read a field workbook or a JSON record from a file.
+
+    Parameters
+    ----------
+    path
+        A field workbook (.xlsx) or a record in JSON; what it is, is judged by its content.
+
+    Returns
+    -------
+    ReadResult
+        Problems are values; nothing is raised for bad input.
+    """
+    file = Path(path)
+    gathered = Gathered(file.name)
+    try:
+        if file.stat().st_size > MAX_FILE:
+            gathered.add("zip-bomb", gathered.place(), f"a file of {file.stat().st_size >> 20} MB")
+            return ReadResult(None, gathered.all())
+        content = file.read_bytes()
+    except OSError as error:
+        gathered.add("not-a-workbook", gathered.place(), error.strerror or "a file that cannot be opened")
+        return ReadResult(None, gathered.all())
+    return _read(file.name, content, gathered, folder=file.parent)
+
+
+def read_bytes(name: str, content: bytes) -> ReadResult:
+    """Read a field workbook or a JSON record from its bytes; `name` is the base name that places say."""
+    return _read(name, content, Gathered(name))
+
+
+def _read(name: str, content: bytes, gathered: Gathered, folder: Path | None = None) -> ReadResult:
+    source = SourceFile(name, hashlib.sha256(content).hexdigest(), len(content), content)
+    tables = read_json(content, gathered) if looks_like_json(content) else _workbook(content, gathered)
+    if not tables and gathered.unreadable:
+        return ReadResult(None, gathered.all())
+    record = build(tables, gathered, source)
+    if record is not None and folder is not None:
+        _look_for_attachments(record, folder, gathered)
+    return ReadResult(record, gathered.all())
+
+
+def _workbook(content: bytes, gathered: Gathered) -> tuple[SheetTable, ...]:
+    look = look_at(content)
+    if look.macros:
+        gathered.add("macro-enabled", gathered.place())
+    if look.stops:
+        for finding in look.findings:
+            sheet = _sheet_of(finding, content)
+            gathered.add(finding.code, gathered.place(sheet, finding.cell), finding.found)
+        return ()
+    return read_workbook(content, look, gathered)
+
+
+def _sheet_of(finding: Finding, content: bytes) -> str:
+    """The name of the sheet a finding stands in, as far as the file says it."""
+    if finding.code != "far-cell":
+        return ""
+    try:
+        return sheet_parts(content).get(finding.sheet_part, "")
+    except Exception:  # a hostile file may break anything; the finding itself stands
+        return ""
+
+
+def _look_for_attachments(record: Record, folder: Path, gathered: Gathered) -> None:
+    for attachment in record.attachments:
+        name = attachment.file.value
+        if attachment_path(folder, name) is None:
+            gathered.add("attachment-missing", attachment.file.place, name)
+
+
+def attachment_path(folder: Path, name: str) -> Path | None:
+    """The file of an attachment beside the workbook or in a folder below it; None if there is none.
+
+    A path that leads elsewhere (absolute, upwards, or through a link) is none.
+    """
+    plain = name.replace("\\", "/")
+    if PurePosixPath(plain).is_absolute() or PureWindowsPath(name).drive or "\x00" in name:
+        return None
+    try:
+        found = (folder / plain).resolve()
+        inside = os.path.commonpath([found, folder.resolve()]) == str(folder.resolve())
+        return found if inside and found.is_file() else None
+    except (OSError, ValueError):
+        return None

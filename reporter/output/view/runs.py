@@ -1,0 +1,177 @@
+"""Results of each run: every step of each gas that a reader looks for, with the average of runs."""
+
+from __future__ import annotations
+
+import tomllib
+from collections.abc import Sequence
+from dataclasses import dataclass
+from functools import cache
+
+from reporter.ledger import Entry
+from reporter.output.numbers import day, formulas, moment, period, unit_text
+from reporter.output.view.desk import Desk, aligned, gas_name
+from reporter.output.view.model import AnyCell, Block, Cell, Column, Row, Table
+from reporter.outcome import RunResult, RunState
+from reporter.resources import templates_folder
+
+#: Runs beside each other in one table.
+ACROSS = 6
+
+
+@dataclass(frozen=True, slots=True)
+class Layout:
+    """Which quantities stand in which table, in order (`templates/layout.toml`)."""
+
+    gas: tuple[str, ...]
+    run: tuple[str, ...]
+    combustion: tuple[str, ...]
+    balance: tuple[tuple[str, str, str], ...]
+
+
+@cache
+def layout() -> Layout:
+    """The order of the rows."""
+    tables = tomllib.loads((templates_folder() / "layout.toml").read_text(encoding="utf-8"))
+    return Layout(
+        gas=tuple(tables["runs"]["gas"]),
+        run=tuple(tables["runs"]["run"]),
+        combustion=tuple(tables["combustion"]["rows"]),
+        balance=tuple((row["label"], row["measured"], row["expected"]) for row in tables["combustion"]["balance"]),
+    )
+
+
+def runs(desk: Desk) -> tuple[Block, ...]:
+    """Times and states, then conditions and each gas; at most six runs beside each other."""
+    blocks = [_times(desk)]
+    results = desk.outcome.runs
+    for start in range(0, len(results), ACROSS):
+        some = results[start : start + ACROSS]
+        last = start + ACROSS >= len(results)
+        for gas in dict.fromkeys((gas.segment, gas.gas) for run in some for gas in run.gases):
+            blocks.append(_gas(desk, some, *gas, averages=last))
+        blocks.append(_conditions(desk, some))
+    return tuple(block for block in blocks if block.tables)
+
+
+def _times(desk: Desk) -> Block:
+    columns = (
+        Column("Run", width=1), Column("Day", width=1.2), Column("From, until", width=1.4),
+        Column("Length", "min", 1, number=True), Column("State", width=5),
+    )  # fmt: skip
+    rows = []
+    for result in desk.outcome.runs:
+        run = result.run
+        start, end = run.start.value, run.end.value
+        rows.append(
+            Row((run.run.value, day(start), period(start, end), desk.show(f"run.{run.key}.duration"), _state(desk, result)))
+        )
+    return Block(tables=(aligned(Table(columns, tuple(rows))),))
+
+
+def _state(desk: Desk, result: RunResult) -> AnyCell:
+    name = {RunState.VALID: "valid", RunState.INVALID: "invalid", RunState.EXCLUDED: "excluded"}[result.state]
+    reasons = formulas("; ".join(result.reasons))
+    words = desk.words(f"run.{name}")
+    text = f"{words}: {reasons}" if reasons else words
+    return Cell(text, strong=result.state is not RunState.VALID)
+
+
+def _gas(desk: Desk, some: Sequence[RunResult], segment: str, gas: str, *, averages: bool) -> Block:
+    """One gas: a row per quantity, a column per run."""
+    tails = _tails(desk, [f"run.{run.key}.{segment}" for run in some], layout().gas)
+    rows = [_row(desk, some, f"{segment}.{tail}", averages) for tail in tails]
+    valid = [run.gas(segment) for run in some]
+    states = [desk.missing if one is None else desk.words("run.valid" if one.is_valid else "run.not_valid") for one in valid]
+    if rows:
+        rows.append(Row(("State", "", *states, *([""] if averages else [])), style="foot"))
+    first = next(one for one in valid if one is not None)
+    name = gas_name(gas) if first.channel.channel.value == gas else f"{gas_name(gas)}, channel {first.channel.channel.value}"
+    return Block(title=name, tables=_tables(some, rows, averages))
+
+
+def _conditions(desk: Desk, some: Sequence[RunResult]) -> Block:
+    """Quantities of the run as a whole: moisture, flow, molecular weight, heat input."""
+    tails = _tails(desk, [f"run.{run.key}" for run in some], layout().run)
+    rows = [_row(desk, some, tail, averages=False) for tail in tails]
+    return Block(title="Stack gas and heat input", tables=_tables(some, rows, averages=False))
+
+
+def _tables(some: Sequence[RunResult], rows: Sequence[Row], averages: bool) -> tuple[Table, ...]:
+    if not rows:
+        return ()
+    columns = [Column("", width=3.3), Column("Unit and basis", width=2.4)]
+    columns += [Column(f"Run {run.run.run.value}", number=True) for run in some]
+    if averages:
+        columns.append(Column("Average", number=True))
+    return (aligned(Table(tuple(columns), tuple(rows))),)
+
+
+def _tails(desk: Desk, stems: Sequence[str], order: Sequence[str]) -> list[str]:
+    """The keys below some stems that have a row, without the stem, in the order of the layout."""
+    found: dict[str, None] = {}
+    for stem in stems:
+        for key in desk.keys_under(stem):
+            found[key[len(stem) + 1 :]] = None
+    tails: list[str] = []
+    for name in order:
+        tails += [tail for tail in found if tail == name or _is_variant(tail, name, order)]
+    return list(dict.fromkeys(tails))
+
+
+def _is_variant(tail: str, name: str, order: Sequence[str]) -> bool:
+    """Whether a key is a variant of a row that asks for its variants by a star."""
+    if not name.endswith(".*"):
+        return False
+    stem = name[:-2]
+    return tail == stem or (tail.startswith(f"{stem}.") and tail not in order)
+
+
+def _row(desk: Desk, some: Sequence[RunResult], tail: str, averages: bool) -> Row:
+    keys = [f"run.{run.key}.{tail}" for run in some]
+    entries = [desk.outcome.ledger.get(key) for key in keys]
+    found = next(entry for entry in entries if entry is not None)
+    cells: list[AnyCell] = [_label(desk, found), unit_and_basis(found)]
+    cells += [desk.missing if entry is None else desk.shown(entry) for entry in entries]
+    if averages:
+        average = desk.outcome.ledger.get(f"average.{tail}")
+        cells.append("" if average is None else desk.shown(average))
+    return Row(tuple(cells))
+
+
+def _label(desk: Desk, entry: Entry) -> str:
+    words = formulas(desk.quantity_label(entry.key))
+    return words[:1].upper() + words[1:]
+
+
+def unit_and_basis(entry: Entry) -> str:
+    """Unit and basis of an entry in one text."""
+    return formulas(", ".join(part for part in (unit_text(entry.unit), entry.basis.text()) if part))
+
+
+def left_out(desk: Desk) -> tuple[Block, ...]:
+    """Periods left out of the means with their reason, and the clock minutes without a valid reading."""
+    rows = [
+        Row((f"Run {run.run.run.value}", period(one.start, one.end), one.reason))
+        for run in desk.outcome.runs
+        for one in run.exclusions
+    ]
+    blocks = []
+    if rows:
+        columns = (Column("Run", width=1), Column("Period", width=1.6), Column("Reason", width=6))
+        blocks.append(Block(title=desk.words("lead.left_out"), tables=(Table(columns, tuple(rows)),)))
+    lines = list(_missing_minutes(desk))
+    words = lines or [desk.words("lead.no_missing_minutes")]
+    blocks.append(Block(title=desk.words("lead.missing_minutes"), notes=tuple(words)))
+    return tuple(blocks)
+
+
+def _missing_minutes(desk: Desk) -> Sequence[str]:
+    lines = []
+    for run in desk.outcome.runs:
+        by_times: dict[str, list[str]] = {}
+        for gas in run.gases:
+            if gas.series is not None and gas.series.missing_minutes:
+                times = " ".join(moment(minute) for minute in gas.series.missing_minutes)
+                by_times.setdefault(times, []).append(gas_name(gas.gas))
+        lines += [f"Run {run.run.run.value}, {', '.join(names)}: {times}" for times, names in by_times.items()]
+    return lines

@@ -1,0 +1,82 @@
+"""One input, one task: what it prints and its exit code, whatever goes wrong inside."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from datetime import datetime
+from pathlib import Path
+
+from reporter.cli import OK, UNREADABLE, UNWRITTEN, WITHHELD
+from reporter.errors import FluebookError, OutputError, UnreadableError
+from reporter.outcome import Outcome
+from reporter.problems import Grade, Problem
+
+
+@dataclass(frozen=True, slots=True)
+class Task:
+    """The end of one task: text for the terminal, exit code, counts for the overview."""
+
+    name: str
+    text: str
+    code: int
+    words: str
+    withheld: int = 0
+    notes: int = 0
+
+
+def check_input(path: Path) -> Task:
+    """Read and assess an input and say what was found."""
+    from reporter.api import opened
+    from reporter.terminal import summary
+
+    try:
+        outcome = opened(path)
+    except UnreadableError as error:
+        return _unreadable(path, error.problems)
+    return _assessed(path, outcome, summary(outcome), "assessed")
+
+
+def report_input(
+    path: Path, out: Path, issued: datetime, templates: Path | None, minute_data: bool
+) -> Task:
+    """Write the three files of an input and say in a few lines what was found."""
+    from reporter.api import report
+    from reporter.terminal import summary
+
+    try:
+        made = report(path, out, issued=issued, templates=templates, minute_data=minute_data)
+    except UnreadableError as error:
+        return _unreadable(path, error.problems)
+    except OutputError as error:
+        return Task(path.name, f"{path.name}: {error}", UNWRITTEN, "not written")
+    except FluebookError as error:
+        return Task(path.name, f"{path.name}: {error}", UNREADABLE, "stopped by an error")
+    files = ", ".join(file.name for file in made.files)
+    return _assessed(path, made.outcome, f"{summary(made.outcome)}\n\nWritten: {files}", "written")
+
+
+def _assessed(path: Path, outcome: Outcome, text: str, done: str) -> Task:
+    withheld = _count(outcome.problems, Grade.BLOCKS)
+    words = f"{done}; {'a result is withheld' if withheld else 'nothing is withheld'}"
+    code = WITHHELD if withheld else OK
+    return Task(path.name, text, code, words, withheld, _count(outcome.problems, Grade.NOTE))
+
+
+def _unreadable(path: Path, problems: Sequence[Problem]) -> Task:
+    from reporter.terminal import problems_text
+
+    count = _count(problems, Grade.UNREADABLE)
+    head = f"{path.name} cannot be read: {count} problem(s)\n"
+    return Task(path.name, head + problems_text(problems), UNREADABLE, "cannot be read", count)
+
+
+def _count(problems: Sequence[Problem], grade: Grade) -> int:
+    return sum(1 for problem in problems if problem.grade is grade)
+
+
+def overview_of(tasks: Sequence[Task]) -> str:
+    """The short overview that closes a run of several inputs."""
+    from reporter.terminal import overview
+
+    return overview([(task.name, task.words, (task.withheld, task.notes)) for task in tasks])
