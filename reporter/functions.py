@@ -40,6 +40,16 @@ def _flat(*values: Any) -> tuple[Term, ...]:
     return tuple(spread)
 
 
+def _each_term(function: str, *values: Any) -> Term | Terms:
+    """A call on terms; on series of separate terms one call for each element."""
+    lengths = {len(value) for value in values if isinstance(value, Terms)}
+    if not lengths:
+        return Call(function, tuple(as_term(value) for value in values))
+    columns = [value if isinstance(value, Terms) else (value,) * max(lengths) for value in values]
+    rows = zip(*columns, strict=True)
+    return Terms(tuple(Call(function, tuple(as_term(value) for value in row)) for row in rows))
+
+
 def is_quantity(value: Any) -> bool:
     """Whether a value is a pint quantity (asked without importing pint)."""
     return hasattr(value, "_REGISTRY")
@@ -120,12 +130,18 @@ def dot(left: Any, right: Any) -> Any:
 
 def absolute(value: Any) -> Any:
     """Magnitude without its sign."""
-    return Call("absolute", (as_term(value),)) if _traced(value) else abs(value)
+    if _traced(value):
+        return _each_term("absolute", value)
+    if _is_uncertain(value):
+        return -value if value.nominal_value < 0.0 else value
+    if isinstance(value, np.ndarray) and value.dtype == object:
+        return np.array([absolute(v) for v in value])
+    return abs(value)
 
 
 def _elementary(name: str, value: Any) -> Any:
     if _traced(value):
-        return Call(name, (as_term(value),))
+        return _each_term(name, value)
     if _is_uncertain(value):
         from uncertainties import umath
 
@@ -157,15 +173,16 @@ def log10(value: Any) -> Any:
 
 def _extreme(name: str, values: tuple[Any, ...]) -> Any:
     if _traced(*values):
-        return Call(name, _flat(*values))
+        return Call(name, _flat(*values)) if len(values) == 1 else _each_term(name, *values)
+    scalar = min if name == "lower" else max
     if len(values) == 1:
         series = stacked(values[0])
         if is_quantity(series) or series.dtype != object:
             return _plain((np.min if name == "lower" else np.max)(series, axis=0))
-        return (min if name == "lower" else max)(series)
+        return scalar(series, key=_nominal)
     if any(isinstance(getattr(v, "magnitude", v), np.ndarray) for v in values):
         return reduce(np.minimum if name == "lower" else np.maximum, values)
-    return (min if name == "lower" else max)(values)
+    return scalar(values, key=_nominal)
 
 
 def lower(*values: Any) -> Any:
@@ -180,7 +197,7 @@ def higher(*values: Any) -> Any:
 
 def _compare(name: str, left: Any, right: Any) -> Any:
     if _traced(left, right):
-        return Call(name, (as_term(left), as_term(right)))
+        return _each_term(name, left, right)
     difference = _nominal(left) - _nominal(right)
     same = SAME * abs(_nominal(right))
     if name == "at_most":
@@ -224,7 +241,8 @@ def any_of(flags: Any) -> Any:
 def choose(flag: Any, yes: Any, no: Any) -> Any:
     """`yes` where the indicator is 1, else `no`."""
     if _traced(flag, yes, no):
-        return Call("choose", (as_term(flag), as_term(yes), as_term(no)))
+        return _each_term("choose", flag, yes, no)
+    flag = _nominal(flag.to("dimensionless").magnitude if is_quantity(flag) else flag)
     if isinstance(flag, np.ndarray):
         return np.where(flag >= 0.5, yes, no)
     return yes if flag >= 0.5 else no
@@ -260,7 +278,7 @@ def _each(rule: Callable[[float, float], float], value: Any, second: Any) -> Any
 
 def _rounded(rule: str, value: Any, decimals: Any) -> Any:
     if _traced(value, decimals):
-        return Call(rule, (as_term(value), as_term(decimals)))
+        return _each_term(rule, value, decimals)
     places = decimals.magnitude if is_quantity(decimals) else decimals
     if is_quantity(value):
         return type(value)(_rounded(rule, value.magnitude, places), value.units)
@@ -286,7 +304,7 @@ def truncated(value: Any, decimals: Any) -> Any:
 def significant_decimals(value: Any, digits: Any) -> Any:
     """How many decimals give `value` that number of significant digits (value not zero)."""
     if _traced(value, digits):
-        return Call("significant_decimals", (as_term(value), as_term(digits)))
+        return _each_term("significant_decimals", value, digits)
     plain = [v.magnitude if is_quantity(v) else v for v in (value, digits)]
     return _each(_significant_decimals, *plain)
 

@@ -10,7 +10,7 @@ from __future__ import annotations
 import os
 import shutil
 import subprocess
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from io import BytesIO
 from pathlib import Path
 from typing import Any
@@ -74,6 +74,15 @@ def largest_term(ledger: Ledger, entry: Entry) -> float:
     return _magnitude(ledger.trace(entry))
 
 
+_MAGNITUDES: dict[str, Callable[[float, float], float]] = {
+    "+": lambda a, b: a + b,
+    "-": max,
+    "*": lambda a, b: a * b,
+    "/": lambda a, b: a / b if b else 0.0,
+    "^": lambda a, b: a**b,
+}
+
+
 def _magnitude(term: Term) -> float:
     """The value of a tree with the larger operand taken for every difference."""
     match term:
@@ -84,8 +93,7 @@ def _magnitude(term: Term) -> float:
         case Negation(operand=operand):
             return _magnitude(operand)
         case Operation(operator=operator, left=left, right=right):
-            a, b = _magnitude(left), _magnitude(right)
-            return {"+": a + b, "-": max(a, b), "*": a * b, "/": a / b if b else 0.0, "^": a**b}[operator]
+            return _MAGNITUDES[operator](_magnitude(left), _magnitude(right))
         case Call(arguments=arguments):
             return max(_magnitude(argument) for argument in arguments)
     raise TypeError(type(term).__name__)

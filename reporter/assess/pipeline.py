@@ -26,6 +26,7 @@ from reporter.reduction.plans import Plan, plans
 from reporter.reduction.process import reduce_load
 from reporter.reduction.readings import reduce_readings, window
 from reporter.reduction.results import Means, Missing, result
+from reporter.reduction.uncertainty import reading_uncertainty
 
 #: Quantities averaged over the valid runs for the table of runs, whatever the limits ask.
 _SHOWN = ("mean", "corrected", "dry", "wet")
@@ -99,6 +100,8 @@ def _reduce_run(
     means = Means(share, heat, dry_standard_flow(book, about))
     reduce_load(book, about)
     reduce_diluents(book, about, tuple(share), factors)
+    for diluent in ("o2", "co2"):
+        reading_uncertainty(book, about, diluent)
     balance(book, about, share)
     for plan in wanted:
         made = result(book, about, means, plan)

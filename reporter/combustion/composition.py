@@ -91,6 +91,23 @@ def without_water(*, percent: Value, water: Value, share: Value) -> Value:
     return percent - share * water
 
 
+@equation("H_g", HEAT, {"heat": HEAT}, Citation("practice", "", "basis of an analysis"), symbols={"heat": "H"})
+def heat_as_fired(*, heat: Value) -> Value:
+    """The gross heating value as fired, where that is the one given.
+
+    Parameters
+    ----------
+    heat
+        Gross heating value as given [Btu/lb or kJ/kg, as fired].
+
+    Returns
+    -------
+    float
+        The same [Btu/lb or kJ/kg].
+    """
+    return +heat
+
+
 @equation("x", "%", {"shares": "%"}, _MIXTURE, symbols={"shares": "x_k"}, series=("shares",))
 def sum_of_shares(*, shares: Value) -> Value:
     """Sum of the mole percentages of a gas.

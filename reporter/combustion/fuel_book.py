@@ -4,10 +4,13 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from typing import TypeVar
 
+from reporter.combustion.components import find_component
 from reporter.combustion.fuel import Fuel
 from reporter.ledger import Entry, FromTable, Ledger, Origin, Stated
 
+T = TypeVar("T")
 #: Elements counted, with their symbols.
 SYMBOLS = {"carbon": "C", "hydrogen": "H", "oxygen": "O", "nitrogen": "N", "sulfur": "S"}
 
@@ -21,6 +24,19 @@ class FuelBook:
     fuel: Fuel
     origin: Origin | Mapping[str, Origin] | None
     entries: Mapping[str, Entry]
+
+    @classmethod
+    def of(
+        cls,
+        ledger: Ledger,
+        prefix: str,
+        fuel: Fuel,
+        origin: Origin | Mapping[str, Origin] | None,
+        entries: Mapping[str, Entry] | None,
+    ) -> FuelBook:
+        """The book, with shares named as people write components found under the fuel's own names."""
+        named = _named(fuel, origin) if isinstance(origin, Mapping) else origin
+        return cls(ledger, prefix, fuel, named, _named(fuel, entries or {}))
 
     def origin_of(self, name: str) -> Origin:
         """Where a share, or `heat`, comes from."""
@@ -51,3 +67,10 @@ class FuelBook:
             label=f"{self.fuel.name}: {name}",
             symbol=f"n_{SYMBOLS.get(name, name)}",
         )
+
+
+def _named(fuel: Fuel, given: Mapping[str, T]) -> dict[str, T]:
+    if not fuel.is_gas:
+        return dict(given)
+    found = {name: find_component(name) for name in given}
+    return {name if row is None else row.key: given[name] for name, row in found.items()}

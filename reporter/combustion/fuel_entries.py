@@ -81,7 +81,7 @@ def enter_fuel(
     entries
         Shares (in %) and heat (in the unit of the ledger's system) that are entries already, by name.
     """
-    book = FuelBook(ledger, prefix, fuel, origin, entries or {})
+    book = FuelBook.of(ledger, prefix, fuel, origin, entries)
     if fuel.is_gas:
         enter_gas(book)
     else:
@@ -123,3 +123,12 @@ def _enter_net(book: FuelBook) -> None:
 def fuel_prefix(name: str) -> str:
     """The key prefix of a fuel: ``fuel.natural_gas``."""
     return f"fuel.{slug(name)}"
+
+
+def spreads(fuel: Fuel, prefix: str) -> dict[str, float]:
+    """Half of the usual range of each share of an assumed composition, by ledger key; empty for a measured one."""
+    if not fuel.assumed:
+        return {}
+    if fuel.is_gas:
+        return {f"{prefix}.component.{share.name}.mole_percent": share.spread for share in fuel.shares}
+    return {f"{prefix}.{share.name}_percent": share.spread for share in fuel.shares}

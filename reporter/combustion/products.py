@@ -2,6 +2,10 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
+from typing import Any
+
+from reporter.basis import NO_BASIS, Basis
 from reporter.combustion.air import AMOUNT, BALANCE
 from reporter.combustion.balance import WET_PRODUCTS
 from reporter.combustion.shares import one_moisture
@@ -42,7 +46,13 @@ def amount_units(*amounts: str, pure: tuple[str, ...] = ()) -> dict[str, str]:
     return dict.fromkeys(amounts, AMOUNT) | dict.fromkeys(pure, "1")
 
 
-@equation("n", AMOUNT, amount_units("products", pure=("fraction",)), BALANCE, symbols=SYMBOLS, gives=one_moisture)
+def _no_basis_of_one(bases: Mapping[str, Basis], values: Mapping[str, Any]) -> Basis:
+    """An amount has no moisture basis; what it is made of must have one."""
+    one_moisture(bases, values)
+    return NO_BASIS
+
+
+@equation("n", AMOUNT, amount_units("products", pure=("fraction",)), BALANCE, symbols=SYMBOLS, gives=_no_basis_of_one)
 def amount_of(*, fraction: Value, products: Value) -> Value:
     """Amount of a measured gas.
 
@@ -240,3 +250,20 @@ def wet_products(*, dry: Value, water: Value) -> Value:
         T [mol per kg or mol of fuel].
     """
     return dry + water
+
+
+@equation("n_SO2", AMOUNT, amount_units("sulfur"), BALANCE, symbols=SYMBOLS)
+def sulfur_dioxide(*, sulfur: Value) -> Value:
+    """Sulfur dioxide: all sulfur of the fuel leaves as SO2, none stays in the ash.
+
+    Parameters
+    ----------
+    sulfur
+        Sulfur of the fuel [mol per kg or mol of fuel].
+
+    Returns
+    -------
+    float
+        n_SO2 [mol per kg or mol of fuel].
+    """
+    return +sulfur

@@ -8,7 +8,6 @@ from reporter.combustion import composition as eq
 from reporter.combustion.fuel import ANALYSIS, AnalysisBasis, Fuel
 from reporter.combustion.fuel_book import SYMBOLS, FuelBook
 from reporter.equation import Citation, System
-from reporter.errors import LedgerError
 from reporter.gases import atomic_weights, molar_mass
 from reporter.ledger import Entry, FromTable, Ledger
 from reporter.units import convert
@@ -115,4 +114,9 @@ def _enter_weight_heat(book: FuelBook, percents: Mapping[str, Entry]) -> None:
             symbol="H_g",
         )
     elif heat.key != f"{prefix}.gross_heating_value":
-        raise LedgerError(f"the heating value must be the entry {prefix}.gross_heating_value, not {heat.key}")
+        ledger.apply(
+            eq.heat_as_fired,
+            f"{prefix}.gross_heating_value",
+            {"heat": heat},
+            label=f"{fuel.name}: gross heating value, as fired",
+        )

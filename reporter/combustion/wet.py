@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from reporter.basis import Moisture, Need
 from reporter.combustion.air import AMOUNT, BALANCE
-from reporter.combustion.balance import DRY_PRODUCTS
+from reporter.combustion.balance import DRY_PRODUCTS, WET_PRODUCTS
 from reporter.equation import Value, equation
 
 _DRY = Need(moisture=Moisture.DRY)
@@ -192,3 +192,37 @@ def dry_air_from_wet_products(
         a [mol dry air per kg or per mol of fuel].
     """
     return (sum_per_product * products - sum_fixed) / sum_per_air
+
+
+@equation(
+    "T",
+    AMOUNT,
+    {"wet_per_dry": "1", "products": AMOUNT, "wet_per_air": "1", "air": AMOUNT, "fixed": AMOUNT},
+    BALANCE,
+    symbols={
+        "wet_per_dry": "t_D",
+        "products": "D",
+        "wet_per_air": "t_a",
+        "air": "a",
+        "fixed": "t_0",
+    },
+    gives=WET_PRODUCTS,
+)
+def wet_products_of(*, wet_per_dry: Value, products: Value, wet_per_air: Value, air: Value, fixed: Value) -> Value:
+    """Wet products from the dry products and the air.
+
+    Parameters
+    ----------
+    wet_per_dry, wet_per_air
+        t_D and t_a [1].
+    products, air
+        Dry products and dry air [mol per kg or mol of fuel].
+    fixed
+        t_0 [mol per kg or mol of fuel].
+
+    Returns
+    -------
+    float
+        T [mol of wet products per kg or per mol of fuel].
+    """
+    return wet_per_dry * products + wet_per_air * air + fixed

@@ -90,6 +90,7 @@ class Sheet:
     synonyms: tuple[str, ...]
     unique: tuple[str, ...]
     counts_when: tuple[str, ...]
+    empty_rows: int
     columns: tuple[Column, ...]
 
     def column(self, name: str) -> Column:
@@ -167,6 +168,7 @@ def _sheet(row: dict[str, Any]) -> Sheet:
         synonyms=tuple(row.get("synonyms", ())),
         unique=tuple(row.get("unique", ())),
         counts_when=tuple(row.get("counts_when", ())),
+        empty_rows=row.get("empty_rows", 0),
         columns=tuple(_column(column) for column in row["columns"]),
     )
 
@@ -228,3 +230,8 @@ def months() -> dict[str, int]:
 def suggestions(name: str) -> tuple[str, ...]:
     """What the blank form offers in a column where other text is allowed too."""
     return tuple(_data()["suggestions"][name])
+
+
+def process_columns(system: System) -> tuple[str, ...]:
+    """Headers of the columns the blank form prints on the sheet Process."""
+    return tuple(_data()["process_columns"][system.value])

@@ -17,7 +17,7 @@ from reporter.functions import at_most as _at_most
 from reporter.functions import dot, mean, total
 from reporter.functions import less_than as _less_than
 
-_RUNS = Citation("cfr60_8", "f")
+_RUNS = Citation("cfr60_8", "", "paragraph (f)")
 _ENTERED = Citation("record", "", "limit")
 _COMMON = Citation("practice")
 _NO_OXYGEN = (OxygenKind.NONE, OxygenKind.AS_MEASURED)

@@ -19,9 +19,7 @@ def _mass_basis(bases: Mapping[str, Basis], values: Mapping[str, Any]) -> Basis:
     volume, factor = bases["c"], bases["k"]
     names = {name for name in (volume.expressed_as, factor.expressed_as) if name}
     if len(names) > 1:
-        raise BasisError(
-            f"ppm_to_mass: c is expressed as {volume.expressed_as}, but k is for {factor.expressed_as}"
-        )
+        raise BasisError(f"ppm_to_mass: c is expressed as {volume.expressed_as}, but k is for {factor.expressed_as}")
     return volume.but(standard=factor.standard, expressed_as=names.pop() if names else "")
 
 

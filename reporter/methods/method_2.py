@@ -285,8 +285,7 @@ def _restated(bases: Mapping[str, Basis], values: Mapping[str, Any]) -> Basis:
     stated = bases["flow"].standard
     if stated.temperature_k is None or stated.pressure_kpa is None:
         raise BasisError(
-            "restated_flow: flow must be at stated standard conditions, "
-            f"but is {stated.text() or 'without conditions'}"
+            f"restated_flow: flow must be at stated standard conditions, but is {stated.text() or 'without conditions'}"
         )
     return bases["flow"].but(standard=EPA_STANDARD)
 

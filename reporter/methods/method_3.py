@@ -87,9 +87,7 @@ def wet_molecular_weight(*, md: Value, bws: Value, water: Value = constant(18.0,
     needs={"co2": NEED_DRY, "o2": NEED_DRY, "co": NEED_DRY},
     gives=DRY,
 )
-def nitrogen_by_difference(
-    *, co2: Value, o2: Value, co: Value, hundred: Value = constant(100.0, "%")
-) -> Value:
+def nitrogen_by_difference(*, co2: Value, o2: Value, co: Value, hundred: Value = constant(100.0, "%")) -> Value:
     """Nitrogen as what carbon dioxide, oxygen and carbon monoxide leave.
 
     Parameters

@@ -132,7 +132,7 @@ def carbon_dioxide_adjusted(*, co2: Value, co: Value) -> Value:
     "F_o",
     "1",
     {"fd": _FACTOR, "fc": _FACTOR},
-    Citation("m3b", "12.3.3", "Eq. 3B-5"),
+    Citation("m3b", "12.3", "Eq. 3B-5"),
     symbols={"fd": "F_d", "fc": "F_c"},
     needs={"fd": Need(moisture=Moisture.DRY), "fc": Need(moisture=Moisture.NONE)},
 )

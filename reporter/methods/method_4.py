@@ -189,7 +189,7 @@ def saturation_moisture(*, vapour_pressure: Value, pressure: Value) -> Value:
     "B_ws",
     "1",
     {"measured": "1", "saturation": "1"},
-    Citation("m4", "12.1.7"),
+    Citation("m4", "12.1", "saturated gas"),
     symbols={"measured": "B_ws(meas)", "saturation": "B_ws(sat)"},
 )
 def lower_moisture(*, measured: Value, saturation: Value) -> Value:

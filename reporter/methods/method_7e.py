@@ -33,9 +33,7 @@ def _made(moisture: Moisture) -> Any:
     symbols={"direct": "C_Dir", "certified": "C_V", "span": "CS"},
     difference=True,
 )
-def calibration_error(
-    *, direct: Value, certified: Value, span: Value, hundred: Value = constant(100.0, "%")
-) -> Value:
+def calibration_error(*, direct: Value, certified: Value, span: Value, hundred: Value = constant(100.0, "%")) -> Value:
     """Analyzer calibration error in percent of the calibration span.
 
     Parameters
@@ -196,9 +194,7 @@ def corrected_zero(*, average: Value, zero: Value, upscale: Value, certified: Va
     },
     gives="average",
 )
-def corrected_low(
-    *, average: Value, low: Value, upscale: Value, certified: Value, low_certified: Value
-) -> Value:
+def corrected_low(*, average: Value, low: Value, upscale: Value, certified: Value, low_certified: Value) -> Value:
     """Run mean corrected for bias and drift where the low-level gas is not a zero gas.
 
     Parameters
@@ -284,9 +280,7 @@ def converter_efficiency(*, direct: Value, certified: Value, hundred: Value = co
     symbols={"no": "C_NO", "nox": "C_NOx", "efficiency": "Eff_NO2"},
     gives="nox",
 )
-def converter_corrected(
-    *, no: Value, nox: Value, efficiency: Value, hundred: Value = constant(100.0, "%")
-) -> Value:
+def converter_corrected(*, no: Value, nox: Value, efficiency: Value, hundred: Value = constant(100.0, "%")) -> Value:
     """NOx corrected for the efficiency of the converter (optional in the method).
 
     Parameters

@@ -15,9 +15,7 @@ from reporter.equation import Citation, Value, constant, equation
 
 
 def _corrected_o2(bases: Mapping[str, Basis], values: Mapping[str, Any]) -> Basis:
-    return bases["c"].but(
-        oxygen=Oxygen(OxygenKind.CORRECTED, float(values["reference"]), float(values["k"]), "O2")
-    )
+    return bases["c"].but(oxygen=Oxygen(OxygenKind.CORRECTED, float(values["reference"]), float(values["k"]), "O2"))
 
 
 def _corrected_co2(bases: Mapping[str, Basis], values: Mapping[str, Any]) -> Basis:
@@ -28,7 +26,7 @@ def _corrected_co2(bases: Mapping[str, Basis], values: Mapping[str, Any]) -> Bas
     "C_ref",
     "*c",
     {"c": "*c", "o2": "%", "reference": "%", "k": "%"},
-    Citation("cfr60_4213", "d", "(k − ref)/(k − O2)"),
+    Citation("cfr60_4213", "", "paragraph (d), (k − ref)/(k − O2)"),
     symbols={"c": "C", "o2": "%O2", "reference": "%O2_ref", "k": "k"},
     needs={"c": NEED_DRY, "o2": NEED_DRY},
     gives=_corrected_o2,
@@ -98,7 +96,7 @@ def carbon_dioxide_reference(*, c: Value, co2: Value, reference: Value) -> Value
     "X_CO2",
     "%",
     {"reference": "%", "fo": "1", "k": "%"},
-    Citation("cfr60_4213", "d"),
+    Citation("cfr60_4213", "", "paragraph (d)"),
     symbols={"reference": "%O2_ref", "fo": "F_o", "k": "k"},
 )
 def co2_correction_factor(*, reference: Value, fo: Value, k: Value) -> Value:
@@ -125,7 +123,7 @@ def co2_correction_factor(*, reference: Value, fo: Value, k: Value) -> Value:
     "C_ref",
     "*c",
     {"c": "*c", "co2": "%", "reference": "%", "fo": "1", "k": "%"},
-    Citation("cfr60_4213", "d"),
+    Citation("cfr60_4213", "", "paragraph (d)"),
     symbols={"c": "C_d", "co2": "%CO2", "reference": "%O2_ref", "fo": "F_o", "k": "k"},
     needs={"c": NEED_DRY, "co2": NEED_DRY},
     gives=_corrected_o2,
@@ -195,9 +193,7 @@ def gain(*, k: Value, o2: Value, hundred: Value = constant(100.0, "%")) -> Value
     symbols={"u_o2": "u_O2", "k": "k", "o2": "%O2"},
     needs={"o2": NEED_DRY},
 )
-def correction_factor_uncertainty(
-    *, u_o2: Value, k: Value, o2: Value, hundred: Value = constant(100.0, "%")
-) -> Value:
+def correction_factor_uncertainty(*, u_o2: Value, k: Value, o2: Value, hundred: Value = constant(100.0, "%")) -> Value:
     """Relative standard uncertainty of the oxygen correction from that of the oxygen, to first order.
 
     Parameters
@@ -238,7 +234,4 @@ def reference_refusal(k: float, o2: float) -> str | None:
     """
     if o2 < k:
         return None
-    return (
-        f"measured oxygen {o2:.4g} % is not below the {k:g} % of dry air: "
-        "no combustion gas is left to correct"
-    )
+    return f"measured oxygen {o2:.4g} % is not below the {k:g} % of dry air: no combustion gas is left to correct"

@@ -18,7 +18,7 @@ def saturation_pressure(
 ) -> Value:
     """Saturation pressure of water over liquid.
 
-    Within 0.1 percent of the IAPWS formulation from 0 to 100 °C.
+    From 0 to 100 °C it lies 0.08 to 0.11 percent below the IAPWS formulation of 1995.
 
     Parameters
     ----------
@@ -77,12 +77,7 @@ def water_per_dry_air(
     float
         Humidity [mol/mol dry air].
     """
-    return (
-        relative_humidity
-        / hundred
-        * vapour_pressure
-        / (pressure - relative_humidity / hundred * vapour_pressure)
-    )
+    return relative_humidity / hundred * vapour_pressure / (pressure - relative_humidity / hundred * vapour_pressure)
 
 
 @equation(

@@ -57,8 +57,7 @@ def write_whole(path: Path, content: bytes) -> None:
 def _write_beside(path: Path, content: bytes) -> None:
     beside = path.parent / f".{secrets.token_hex(8)}.part"
     try:
-        descriptor = os.open(beside, os.O_WRONLY | os.O_CREAT | os.O_EXCL | getattr(os, "O_BINARY", 0), 0o666)
-        with os.fdopen(descriptor, "wb") as file:
+        with beside.open("xb") as file:
             file.write(content)
             file.flush()
             os.fsync(file.fileno())

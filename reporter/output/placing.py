@@ -67,7 +67,7 @@ def place_label(
         outside = whole - place.box.shared(frame)
         own = place.box.distance(point)
         confused = sum(1 for other in others if other != point and place.box.distance(other) < own)
-        return round(hidden + 10 * max(outside, 0.0) + 8 * confused + 0.2 * own, 3)
+        return round(20 * hidden + 10 * max(outside, 0.0) + 8 * confused + 0.2 * own, 3)
 
     return min((_place(point, size, ring, way) for ring in _RINGS for way in _DIRECTIONS), key=cost)
 

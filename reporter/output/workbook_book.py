@@ -108,6 +108,10 @@ class Book:
             raise OutputError(f"{name!r} cannot name a cell of the workbook")
         self._names[name] = cells
 
+    def has(self, name: str) -> bool:
+        """Whether a name is taken."""
+        return name in self._names
+
     def cells_of(self, name: str) -> str:
         """The cell or range of a name, e.g. ``Inputs!$C$12``."""
         return self._names[name]
@@ -178,9 +182,7 @@ class Sheet:
         numbers = TIME if isinstance(moment, datetime) else DATE
         self.made.write_datetime(self.row, column, moment, self.book.format(style, numbers))
 
-    def live(
-        self, column: int, formula: str, value: float | str, numbers: str = "", style: str = "number"
-    ) -> None:
+    def live(self, column: int, formula: str, value: float | str, numbers: str = "", style: str = "number") -> None:
         """A formula with the value it has now.
 
         Raises

@@ -23,7 +23,7 @@ def number_format(entry: Entry) -> str:
     if entry.is_indicator:
         return "0"
     decimals = entry.decimals
-    quantity = _quantity(entry.key)
+    quantity = known_quantity(entry.key)
     if decimals is None and quantity is not None:
         decimals = quantity.decimals
     if decimals is None or isinstance(entry.value, tuple):
@@ -33,7 +33,8 @@ def number_format(entry: Entry) -> str:
     return "0." + "0" * decimals if decimals > 0 else "0"
 
 
-def _quantity(key: str) -> Quantity | None:
+def known_quantity(key: str) -> Quantity | None:
+    """The quantity of a key, or None where the table has none."""
     try:
         return quantity_of(key)[0]
     except LedgerError:
@@ -49,7 +50,7 @@ def label(entry: Entry) -> str:
     """The entry's label in words."""
     if entry.label:
         return entry.label
-    return label_of(entry.key) if _quantity(entry.key) is not None else ""
+    return label_of(entry.key) if known_quantity(entry.key) is not None else ""
 
 
 def source_text(entry: Entry) -> str:
@@ -75,7 +76,8 @@ class Roots:
         """Keys of the leaves, in order; every entry before it must have been asked for."""
         if isinstance(entry.origin, FromEquation):
             found: dict[str, None] = {}
-            for key in entry.origin.keys():
+            inputs = entry.origin.keys()
+            for key in inputs:
                 found |= self._known[key]
         else:
             found = {entry.key: None}

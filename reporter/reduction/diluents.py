@@ -114,5 +114,6 @@ def _check_range(book: Book, about: RunBook, factor: Entry, fuels: tuple[str, ..
             )
         )
     if met.value != 1.0:
-        found = f"run {about.run.run.value}: fuel factor {factor.value:.3f}, expected {low.value:.3f} to {high.value:.3f}"
+        said = f"fuel factor {factor.value:.3f}, expected {low.value:.3f} to {high.value:.3f}"
+        found = f"run {about.run.run.value}: {said}"
         book.trouble("fuel-factor-out-of-range", about.run.place, found, concerns=(factor.key,))

@@ -183,9 +183,7 @@ def heat_share(*, part: Value, whole: Value) -> Value:
 def carbon_monoxide_counted(
     *,
     co: Value,
-    readable: Value = constant(
-        0.1, "%", cite=_READABLE
-    ),
+    readable: Value = constant(0.1, "%", cite=_READABLE),
     none: Value = constant(0.0, "%"),
 ) -> Value:
     """Carbon monoxide that the adjustments of Method 3B count: none where it is below what they read.
@@ -208,7 +206,7 @@ def carbon_monoxide_counted(
 
 
 @equation(
-    "u_O2",
+    "u",
     "%",
     {"certified": "%", "certificate": "%", "low_shift": "%", "upscale_shift": "%"},
     Citation("gum", "4.3.7", "rectangular distributions"),
@@ -219,7 +217,7 @@ def carbon_monoxide_counted(
         "upscale_shift": "Δ_up",
     },
 )
-def oxygen_uncertainty(
+def diluent_uncertainty(
     *,
     certified: Value,
     certificate: Value,
@@ -227,7 +225,7 @@ def oxygen_uncertainty(
     upscale_shift: Value,
     hundred: Value = constant(100.0, "%"),
 ) -> Value:
-    """Standard uncertainty of oxygen from the cylinder and half the drift, each taken as rectangular.
+    """Standard uncertainty of oxygen or carbon dioxide from the cylinder and half the drift, each taken as rectangular.
 
     Parameters
     ----------
@@ -324,8 +322,7 @@ def highest_of_valid(*, values: Value, flags: Value) -> Value:
     float
         Highest [same unit and basis]; the lowest of all where no run counts.
     """
-    floor = lower(*values)
-    return higher(*(choose(flag, value, floor) for value, flag in zip(values, flags, strict=True)))
+    return higher(choose(flags, values, lower(values)))
 
 
 @equation(
@@ -352,8 +349,7 @@ def lowest_of_valid(*, values: Value, flags: Value) -> Value:
     float
         Lowest [same unit and basis]; the highest of all where no run counts.
     """
-    ceiling = higher(*values)
-    return lower(*(choose(flag, value, ceiling) for value, flag in zip(values, flags, strict=True)))
+    return lower(choose(flags, values, higher(values)))
 
 
 @equation(

@@ -94,7 +94,8 @@ def plans(book: Book, lanes: Sequence[Lane]) -> list[Plan]:
             taken.add(f"{lane.segment}.{ending}")
             seen[plan.parameters] = ending
         made.append(_with(plan, ending))
-    return [_with_rate(plan, made) for plan in (made := made + _plain(book, lanes, taken))]
+    everything = made + _plain(book, lanes, taken)
+    return [_with_rate(plan, everything) for plan in everything]
 
 
 def _with_rate(plan: Plan, all_plans: Sequence[Plan]) -> Plan:

@@ -15,9 +15,9 @@ from reporter.methods.reference import (
 from reporter.record import Limit
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
-from reporter.reduction.equations import oxygen_uncertainty
 from reporter.reduction.fuels import Factors
 from reporter.reduction.plans import Plan
+from reporter.reduction.uncertainty import reading_uncertainty
 
 #: Relative change per percent oxygen [%] above which the report says that the correction is sensitive.
 _SENSITIVE = 25.0
@@ -89,7 +89,7 @@ def _by_carbon_dioxide(
 def _sensitivity(book: Book, about: RunBook, key: str, k: Entry, oxygen: Entry) -> None:
     """What one percent of oxygen changes, and what the oxygen's own uncertainty does."""
     change = book.apply(gain, f"{key}.gain", {"k": k, "o2": oxygen})
-    u_o2 = oxygen_standard_uncertainty(book, about)
+    u_o2 = reading_uncertainty(book, about, "o2")
     relative = None
     if u_o2 is not None:
         inputs = {"u_o2": u_o2, "k": k, "o2": oxygen}
@@ -99,41 +99,3 @@ def _sensitivity(book: Book, about: RunBook, key: str, k: Entry, oxygen: Entry) 
         if relative is not None:
             said += f"; its relative standard uncertainty from oxygen is {relative.value:.1f} %"
         book.trouble("near-oxygen-constant", about.run.place, said)
-
-
-def oxygen_standard_uncertainty(book: Book, about: RunBook) -> Entry | None:
-    """Standard uncertainty of a run's oxygen: as entered, else from the cylinder and half the drift."""
-    lane = about.lanes.get("o2")
-    corrected = about.corrected.get("o2")
-    if lane is None or corrected is None:
-        return None
-    entered = lane.channel.standard_uncertainty
-    if entered is not None:
-        return book.given("channel.o2.uncertainty", entered, "%")
-    pairing = corrected.pairing
-    if pairing is None or pairing.after_up is None or pairing.before_up is None:
-        return None
-    key = about.key("o2.uncertainty")
-    found = book.ledger.get(key)
-    if found is not None:
-        return found
-    row = pairing.after_up.row
-    cylinder = book.record.cylinder(row.cylinder.value, lane.channel.gas.value) if row.cylinder else None
-    if cylinder is None or cylinder.uncertainty is None:
-        return None
-    certificate = book.given(f"{pairing.after_up.certified.key}.uncertainty", cylinder.uncertainty, "%")
-    low = book.ledger.get(about.key("o2.drift_difference.zero"))
-    upscale = book.ledger.get(about.key("o2.drift_difference.upscale"))
-    if low is None or upscale is None or pairing.after_up.certified.unit != "%":
-        return None
-    book.say(
-        "The standard uncertainty of oxygen was not entered; it is taken from the cylinder's certificate "
-        "and half the drift, each as a rectangular distribution."
-    )
-    inputs = {
-        "certified": pairing.after_up.certified,
-        "certificate": certificate,
-        "low_shift": low,
-        "upscale_shift": upscale,
-    }
-    return book.apply(oxygen_uncertainty, key, inputs)

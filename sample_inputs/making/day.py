@@ -180,8 +180,7 @@ class Day:
             sum(
                 fault.get(what, 0.0)
                 for fault in self.scenario.get("faults", [])
-                if fault["channel"] == channel
-                and minute(fault["from"]) <= self.start + k < minute(fault["until"])
+                if fault["channel"] == channel and minute(fault["from"]) <= self.start + k < minute(fault["until"])
             )
         )
 
@@ -198,10 +197,7 @@ class Day:
     def logged(self, channel: str) -> list[float]:
         """The minute series of a channel as the logger stores it."""
         analyzer = self.analyzers[channel]
-        shown = [
-            self.response(channel, self.fed_value(channel, k), k, feed.route)
-            for k, feed in enumerate(self.feeds)
-        ]
+        shown = [self.response(channel, self.fed_value(channel, k), k, feed.route) for k, feed in enumerate(self.feeds)]
         series = []
         for k, value in enumerate(shown):
             changed = k > 0 and self.feeds[k] != self.feeds[k - 1]

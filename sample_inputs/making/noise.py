@@ -31,10 +31,7 @@ class Noise:
         phases = [self._random.random() * 2 * math.pi for _ in periods]
         weights = [1.0 / (i + 1) for i in range(len(periods))]
         waves = list(zip(weights, periods, phases, strict=True))
-        return [
-            sum(w * math.sin(2 * math.pi * t / p + f) for w, p, f in waves) / sum(weights)
-            for t in range(length)
-        ]
+        return [sum(w * math.sin(2 * math.pi * t / p + f) for w, p, f in waves) / sum(weights) for t in range(length)]
 
 
 def interpolate(knots: Sequence[tuple[float, float]], at: float) -> float:

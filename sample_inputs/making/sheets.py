@@ -90,8 +90,7 @@ def runs(day: Day) -> Rows:
     for run in typed(day.scenario, "Runs"):
         span = minute(run["Start"]), minute(run["End"])
         measured = {
-            column: day.shown(rule, day.mean(rule["of"], *span))
-            for column, rule in day.scenario["computed"].items()
+            column: day.shown(rule, day.mean(rule["of"], *span)) for column, rule in day.scenario["computed"].items()
         }
         rows.append({**times(day.scenario, run), **measured})
     return rows
@@ -118,9 +117,7 @@ def train(day: Day) -> Rows:
                 names["start"]: round(volume, data["decimals"]),
                 names["end"]: end,
                 "Meter factor": factor,
-                names["temperature"]: round(
-                    kelvin * data["temperature_scale"] + data["temperature_offset"], 1
-                ),
+                names["temperature"]: round(kelvin * data["temperature_scale"] + data["temperature_offset"], 1),
                 names["pressure"]: round(data["pascal"] * data["pressure_scale"], 2),
                 "Water collected [g]": round(water - gain, 1),
                 "Silica gel gain [g]": gain,

@@ -23,19 +23,15 @@ def columns_of(rows: Rows) -> list[str]:
 def write(title: str, sheets: Mapping[str, Rows]) -> bytes:
     """A workbook with one sheet per table: a title line, a note, the header, the rows."""
     buffer = BytesIO()
-    book = xlsxwriter.Workbook(
-        buffer, {"in_memory": True, "strings_to_formulas": False, "strings_to_urls": False}
-    )
+    book = xlsxwriter.Workbook(buffer, {"in_memory": True, "strings_to_formulas": False, "strings_to_urls": False})
     book.set_properties({"title": title, "comments": "Invented example data", "created": CREATED})
     formats = {
         "title": book.add_format({"bold": True, "font_size": 12}),
         "note": book.add_format({"italic": True, "font_color": "#555555"}),
-        "head": book.add_format(
-            {"bold": True, "text_wrap": True, "bottom": 1, "bg_color": "#EDEDED", "valign": "top"}
-        ),
-        "clock": book.add_format({"num_format": "hh:mm"}),
-        "time": book.add_format({"num_format": "yyyy-mm-dd hh:mm"}),
-        "date": book.add_format({"num_format": "yyyy-mm-dd"}),
+        "head": book.add_format({"bold": True, "text_wrap": True, "bottom": 1, "bg_color": "#EDEDED", "valign": "top"}),
+        "clock": book.add_format({"num_format": "hh:mm", "align": "left"}),
+        "time": book.add_format({"num_format": "yyyy-mm-dd hh:mm", "align": "left"}),
+        "date": book.add_format({"num_format": "yyyy-mm-dd", "align": "left"}),
     }
     for name, rows in sheets.items():
         _write_sheet(book.add_worksheet(name), f"{name}: {title}", rows, formats)
@@ -47,6 +43,7 @@ def _write_sheet(sheet: Any, heading: str, rows: Rows, formats: Mapping[str, Any
     columns = columns_of(rows)
     sheet.write_string(0, 0, heading, formats["title"])
     sheet.write_string(1, 0, NOTE, formats["note"])
+    sheet.set_row(2, 46 if any(len(column) > 18 for column in columns) else 16)
     for c, column in enumerate(columns):
         sheet.write_string(2, c, column, formats["head"])
         sheet.set_column(c, c, _width(column, rows))
@@ -76,4 +73,4 @@ def _write_cell(sheet: Any, row: int, column: int, value: Any, formats: Mapping[
 
 def _width(column: str, rows: Rows) -> float:
     longest = max((len(str(row[column])) for row in rows if row.get(column) is not None), default=0)
-    return float(min(max(longest, len(column) / 2, 9) + 2, 48))
+    return float(min(max(longest, len(column) / 2, 9) + 3, 48))

@@ -9,7 +9,9 @@ import random
 import re
 from typing import Any
 
+import numpy as np
 import pytest
+from uncertainties import ufloat
 
 import reporter.methods
 from reporter.conversions import conversion_equation
@@ -88,6 +90,37 @@ def test_quantities_give_the_float_result(name: str, system: System) -> None:
         wanted = VARIABLES.get(unit_in(eq.unit, system), unit_in(eq.unit, system))
         in_unit = result.to(quantity(1.0, wanted).units).magnitude
         assert in_unit == pytest.approx(expected, rel=1e-12, abs=0)
+
+
+def _nominal(value: Any) -> float:
+    return float(getattr(value, "nominal_value", value))
+
+
+@each_equation
+def test_uncertain_numbers_keep_the_float_result(name: str) -> None:
+    eq = EQUATIONS[name]
+    plain, _ = _drawn(eq, System.US, random.Random(name))
+    uncertain = {
+        key: [ufloat(v, 0.001 * v) for v in value] if isinstance(value, list) else ufloat(value, 0.001 * value)
+        for key, value in plain.items()
+        if key not in ("decimals", "digits")
+    }
+    found = eq.evaluate(plain | uncertain, System.US)
+    assert _nominal(found) == pytest.approx(eq.evaluate(plain, System.US), rel=1e-12, abs=0)
+
+
+@each_equation
+def test_draws_are_computed_one_by_one(name: str) -> None:
+    eq = EQUATIONS[name]
+    rng = random.Random(name)
+    each = [_drawn(eq, System.US, rng)[0] for _ in range(4)]
+    fixed = {key: each[0][key] for key in ("decimals", "digits") if key in each[0]}
+    together = {key: np.array([draw[key] for draw in each]).T for key in each[0] if key not in ("decimals", "digits")}
+    if fixed and "digits" in fixed:
+        pytest.skip("a number of significant digits belongs to one number, not to draws")
+    found = eq.evaluate(together | fixed, System.US)
+    expected = [eq.evaluate(draw | fixed, System.US) for draw in each]
+    assert list(found) == pytest.approx(expected, rel=1e-12, abs=0)
 
 
 def test_a_quantity_of_the_wrong_dimension_is_refused() -> None:

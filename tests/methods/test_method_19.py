@@ -217,16 +217,16 @@ def test_f_factors_of_an_analysis_agree_in_both_systems(eq: Any) -> None:
 def test_mixed_fuels_need_factors_of_one_kind() -> None:
     ledger = _ledger()
     ledger.enter("fd_oil", 9190.0, "ft3/MMBtu", FromTable(Citation("m19")), basis=m19.FD_BASIS)
-    ledger.enter("x1", 0.6, "1", Stated("test value"))
-    ledger.enter("x2", 0.4, "1", Stated("test value"))
-    mixed = ledger.apply(eq_19_16, "mixed", {"shares": ["x1", "x2"], "factors": ["fd", "fd_oil"]})
+    ledger.enter("share.gas", 0.6, "1", Stated("test value"))
+    ledger.enter("share.oil", 0.4, "1", Stated("test value"))
+    mixed = ledger.apply(eq_19_16, "mixed", {"shares": ["share.gas", "share.oil"], "factors": ["fd", "fd_oil"]})
     assert mixed.value == pytest.approx(8902.0, rel=1e-14)
     assert mixed.basis == m19.FD_BASIS
     with pytest.raises(BasisError, match="one basis"):
-        ledger.apply(eq_19_16, "wrong", {"shares": ["x1", "x2"], "factors": ["fd", "fw"]})
+        ledger.apply(eq_19_16, "wrong", {"shares": ["share.gas", "share.oil"], "factors": ["fd", "fw"]})
     for eq in (eq_19_17, eq_19_18):
         with pytest.raises(BasisError, match="must be"):
-            ledger.apply(eq, "wrong", {"shares": ["x1", "x2"], "factors": ["fd", "fd_oil"]})
+            ledger.apply(eq, "wrong", {"shares": ["share.gas", "share.oil"], "factors": ["fd", "fd_oil"]})
 
 
 # Names of the published table's rows.
@@ -341,6 +341,35 @@ def test_derived_carbon_monoxide_in_si() -> None:
     assert conversion("co").si == pytest.approx(1.1644e6, rel=5e-5)
     assert conversion("co").expressed_as == ""
     assert conversion("thc").expressed_as == "C3H8"
+
+
+@pytest.mark.parametrize(
+    "row", _table("method_19/k_constants.json"), ids=lambda row: f"{row['constant']} [{row['status']}]"
+)
+def test_constants_of_an_analysis_are_the_published_file(row: dict[str, Any]) -> None:
+    name = row["constant"][0] + "_" + row["constant"][1:]
+    holders = [eq for eq in (eq_19_13, eq_19_14, eq_19_15) if name in eq.parameters]
+    assert holders
+    for eq in holders:
+        printed = eq.parameters[name].constant
+        assert printed is not None
+        assert (printed.value(System.US), printed.value(System.SI)) == (row["english"], row["metric"])
+
+
+@pytest.mark.parametrize(
+    "row",
+    _table("method_19/table_19_1_conversion_factors.json"),
+    ids=lambda row: f"{row['from']} to {row['to']} [{row['status']}]",
+)
+def test_rows_of_table_19_1_are_the_published_file(row: dict[str, Any]) -> None:
+    units = {"g/scm": "g/m3", "mg/scm": "mg/m3", "lb/scf": "lb/ft3", "ng/scm": "ng/m3"}
+    if row["from"].startswith("ppm"):
+        key = {"ppm SO2": "so2", "ppm NOx": "nox"}[row["from"]]
+        system = System.SI if row["to"] == "ng/scm" else System.US
+        assert conversion(key).value(system) == row["factor"]
+    else:
+        pair = (units[row["from"]], units[row["to"]])
+        assert {(r.source, r.target): r.printed for r in unit_rows()}[pair] == row["factor"]
 
 
 def test_rows_of_table_19_1_that_change_a_unit() -> None:

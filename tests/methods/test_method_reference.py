@@ -167,8 +167,8 @@ def test_mass_concentration_carries_its_own_conditions() -> None:
     assert entry.unit == "mg/m3"
     assert entry.basis.standard == Standard(273.15, 101.3, "273.15 K, 101.3 kPa")
     assert entry.basis.oxygen == AS_MEASURED
+    at_conditions = ledger.enter("c_at", 100.0, "ppm", SAID, basis=DRY.but(standard=NORMAL))
     with pytest.raises(BasisError):
-        at_conditions = ledger.enter("c_at", 100.0, "ppm", SAID, basis=DRY.but(standard=NORMAL))
         ledger.apply(mass_concentration, "again", inputs | {"c": at_conditions})
 
 

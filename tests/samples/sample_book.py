@@ -50,18 +50,13 @@ class Sample:
     def run(self, name: str) -> Row:
         return next(row for row in self.runs if row["Run"] == name)
 
-    def checks(
-        self, channel: str, route: str, level: str | None = None
-    ) -> list[tuple[datetime, float, float]]:
+    def checks(self, channel: str, route: str, level: str | None = None) -> list[tuple[datetime, float, float]]:
         """Time, certified value and reading of a channel's calibration gases of a route, in time order."""
         gas = self.channels[channel]["Gas"]
         return [
             (self.moment(r["Time"]), self.certified[r["Cylinder"], gas], r["Reading"])
             for r in self.tables["Calibrations"]
-            if r["Channel"] == channel
-            and r["Route"] == route
-            and r["Level"] != "NO2"
-            and level in (None, r["Level"])
+            if r["Channel"] == channel and r["Route"] == route and r["Level"] != "NO2" and level in (None, r["Level"])
         ]
 
     def around(self, channel: str, run: Row, upscale: bool) -> tuple[tuple[Any, ...], tuple[Any, ...]]:

@@ -147,10 +147,7 @@ def test_heat_input_and_flow_agree(book: Sample) -> None:
             wet = run["Flow basis"] == "wet standard"
             flow = run["Stack flow [ft3/min]"] * 60 * (1 - run["Moisture [%]"] / 100 if wet else 1)
             shares = book.shares(run)
-            fd = (
-                shares.get("natural gas", 0) * NATURAL_GAS_FD
-                + shares.get("distillate oil", 0) * DISTILLATE_FD
-            )
+            fd = shares.get("natural gas", 0) * NATURAL_GAS_FD + shares.get("distillate oil", 0) * DISTILLATE_FD
             used = [r for r in book.tables["Fuel use"] if r["Run"] == run["Run"]]
             heat = run.get("Heat input [MMBtu/h]") or sum(
                 r["Rate [lb/h]"] * r["Heating value [Btu/lb]"] / 1e6 for r in used
@@ -213,9 +210,7 @@ def test_excluded_minutes_show_the_air_that_came_in() -> None:
     run = book.run("2")
     kept = book.minutes("O2", run)
     assert len(kept) == 60
-    readings = [
-        r for r in book.tables["Readings"] if r["Time"].strftime("%H:%M") in ("10:53", "10:54", "10:55")
-    ]
+    readings = [r for r in book.tables["Readings"] if r["Time"].strftime("%H:%M") in ("10:53", "10:54", "10:55")]
     assert all(r["O2"] > 5.2 for r in readings)
     assert max(v for v in kept if v is not None) < 5
 

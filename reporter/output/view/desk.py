@@ -6,7 +6,7 @@ is derived nowhere else.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field, replace
 from datetime import datetime
 from typing import Any
@@ -131,6 +131,21 @@ class Desk:
             self._lines[name] = f"{equation.symbol} = {text_formula(term)}"
         return self._lines[name]
 
+    def needed(self, keys: Iterable[str]) -> set[str]:
+        """The keys some numbers rest on, themselves too; the answers of criteria are not followed."""
+        ledger = self.outcome.ledger
+        found: set[str] = set()
+        stack = [key for key in keys if key in ledger]
+        while stack:
+            key = stack.pop()
+            entry = ledger[key]
+            if key in found or entry.is_indicator:
+                continue
+            found.add(key)
+            if isinstance(entry.origin, FromEquation):
+                stack.extend(entry.origin.keys())
+        return found
+
     def roots(self, key: str) -> str:
         """The root cells of an entry, gathered by sheet."""
         by_sheet: dict[str, dict[str, None]] = {}
@@ -179,9 +194,15 @@ def aligned(table: Table) -> Table:
 
 def _padded(cells: Sequence[AnyCell], most: Sequence[int]) -> tuple[AnyCell, ...]:
     return tuple(
-        replace(cell, pad=most[index] - cell.decimals) if isinstance(cell, Shown) else cell
+        replace(cell, pad=_pad(cell.decimals, most[index])) if isinstance(cell, Shown) else cell
         for index, cell in enumerate(cells)
     )
+
+
+def _pad(decimals: int, most: int) -> str:
+    if decimals == most:
+        return ""
+    return f"{'p' if decimals else 'q'}{most - decimals}"
 
 
 def simple_table(titles: Sequence[str], rows: Sequence[Sequence[str]], widths: Sequence[float]) -> Table:

@@ -12,14 +12,17 @@ from dataclasses import dataclass, field
 
 @dataclass(frozen=True, slots=True)
 class Shown:
-    """One printed number: entry key, rounded text, unit, digits behind the point and those missing to the
-    most of its column (so that decimals align)."""
+    """One printed number: entry key, rounded text, unit, digits behind the point.
+
+    `pad` is the class of the style sheet that makes up for the decimals missing to the most of its column:
+    ``p2`` for two digits, ``q2`` for two digits and the point.
+    """
 
     key: str
     text: str
     unit: str = ""
     decimals: int = 0
-    pad: int = 0
+    pad: str = ""
 
 
 @dataclass(frozen=True, slots=True)

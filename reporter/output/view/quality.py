@@ -129,7 +129,7 @@ def _block(desk: Desk, title: str, checks: Sequence[Check]) -> Block:
     symbols = [equation.parameters[name].symbol for name in names] if equation is not None else []
     columns += [Column(formulas(symbol.replace("_", " ")), number=True) for symbol in symbols]
     columns.append(Column("Value", _common_unit(values), number=True))
-    has_difference = any(check.alternative for check in checks)
+    has_difference = any(_needs_alternative(desk, check) for check in checks)
     if has_difference:
         columns.append(Column("Difference", number=True))
     columns.append(Column("", width=0.9))
@@ -147,6 +147,12 @@ def _block(desk: Desk, title: str, checks: Sequence[Check]) -> Block:
     return Block(title=title, text=(_bound_words(desk, checks, values[0]),), tables=(aligned(Table(tuple(columns), tuple(rows))),))
 
 
+def _needs_alternative(desk: Desk, check: Check) -> bool:
+    """Whether a share beyond its bound makes the difference decide."""
+    ledger = desk.outcome.ledger
+    return bool(check.alternative) and abs(float(ledger[check.value].value)) > float(ledger[check.bound].value)
+
+
 def _inputs(desk: Desk, checks: Sequence[Check]) -> list[str]:
     """The arguments of the value's equation that have a column: alike in all rows, at most three."""
     shapes = set()
@@ -154,7 +160,8 @@ def _inputs(desk: Desk, checks: Sequence[Check]) -> list[str]:
         origin = desk.outcome.ledger[check.value].origin
         if not isinstance(origin, FromEquation):
             return []
-        shapes.add((origin.equation.name, tuple(n for n, key in origin.inputs if isinstance(key, str))))
+        single = (n for n, key in origin.inputs if isinstance(key, str) and not desk.outcome.ledger[key].is_series)
+        shapes.add((origin.equation.name, tuple(single)))
     if len(shapes) != 1:
         return []
     _, names = shapes.pop()

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import tomllib
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from functools import cache
 
@@ -49,7 +49,7 @@ def runs(desk: Desk) -> tuple[Block, ...]:
         last = start + ACROSS >= len(results)
         for gas in dict.fromkeys((gas.segment, gas.gas) for run in some for gas in run.gases):
             blocks.append(_gas(desk, some, *gas, averages=last))
-        blocks.append(_conditions(desk, some))
+        blocks.append(_conditions(desk, some, averages=last))
     return tuple(block for block in blocks if block.tables)
 
 
@@ -89,11 +89,17 @@ def _gas(desk: Desk, some: Sequence[RunResult], segment: str, gas: str, *, avera
     return Block(title=name, tables=_tables(some, rows, averages))
 
 
-def _conditions(desk: Desk, some: Sequence[RunResult]) -> Block:
+def _conditions(desk: Desk, some: Sequence[RunResult], *, averages: bool) -> Block:
     """Quantities of the run as a whole: moisture, flow, molecular weight, heat input."""
     tails = _tails(desk, [f"run.{run.key}" for run in some], layout().run)
-    rows = [_row(desk, some, tail, averages=False) for tail in tails]
-    return Block(title="Stack gas and heat input", tables=_tables(some, rows, averages=False))
+    rows = [_row(desk, some, tail, averages) for tail in tails]
+    return Block(title="Stack gas, flow and heat input", tables=_tables(some, rows, averages))
+
+
+def rows_table(desk: Desk, some: Sequence[RunResult], order: Sequence[str]) -> tuple[Table, ...]:
+    """A table of the quantities of runs named in an order, with averages; none where the ledger has none."""
+    tails = _tails(desk, [f"run.{run.key}" for run in some], order)
+    return _tables(some, [_row(desk, some, tail, averages=True) for tail in tails], averages=True)
 
 
 def _tables(some: Sequence[RunResult], rows: Sequence[Row], averages: bool) -> tuple[Table, ...]:
@@ -148,16 +154,16 @@ def unit_and_basis(entry: Entry) -> str:
     return formulas(", ".join(part for part in (unit_text(entry.unit), entry.basis.text()) if part))
 
 
-def left_out(desk: Desk) -> tuple[Block, ...]:
-    """Periods left out of the means with their reason, and the clock minutes without a valid reading."""
+def left_out(desk: Desk, numbers: Mapping[str, str]) -> tuple[Block, ...]:
+    """Periods left out of the means, numbered as in the picture, and clock minutes without a valid reading."""
     rows = [
-        Row((f"Run {run.run.run.value}", period(one.start, one.end), one.reason))
+        Row((numbers[period(one.start, one.end)], f"Run {run.run.run.value}", period(one.start, one.end), one.reason))
         for run in desk.outcome.runs
         for one in run.exclusions
     ]
     blocks = []
     if rows:
-        columns = (Column("Run", width=1), Column("Period", width=1.6), Column("Reason", width=6))
+        columns = (Column("No.", width=0.6), Column("Run", width=1), Column("Period", width=1.6), Column("Reason", width=6))
         blocks.append(Block(title=desk.words("lead.left_out"), tables=(Table(columns, tuple(rows)),)))
     lines = list(_missing_minutes(desk))
     words = lines or [desk.words("lead.no_missing_minutes")]

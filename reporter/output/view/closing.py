@@ -1,0 +1,52 @@
+"""References, statements, cautions."""
+
+from __future__ import annotations
+
+from reporter.ledger import FromEquation, FromTable, Stated
+from reporter.output.view.cover import report_number
+from reporter.output.view.desk import Desk, said
+from reporter.output.view.model import Block, Column, Row, Table
+from reporter.references import bibliography
+
+
+def references(desk: Desk) -> tuple[Block, ...]:
+    """The documents that entries and criteria of this test cite, with their editions."""
+    cited: set[str] = set()
+    for entry in desk.outcome.ledger:
+        match entry.origin:
+            case FromEquation(equation=equation):
+                cited.add(equation.citation.document)
+                cited.update(
+                    p.constant.citation.document
+                    for p in equation.parameters.values()
+                    if p.constant is not None and p.constant.citation is not None
+                )
+            case FromTable(citation=citation):
+                cited.add(citation.document)
+            case Stated(citation=citation) if citation is not None:
+                cited.add(citation.document)
+    cited.update(check.citation.document for check in desk.outcome.checks)
+    rows = [
+        Row((reference.short, ". ".join(part for part in (reference.title, reference.edition, reference.note) if part)))
+        for reference in bibliography().values()
+        if reference.id in cited
+    ]
+    columns = (Column("Cited as", width=1.3), Column("Document, edition", width=7))
+    return (Block(text=(desk.words("lead.references"),), tables=(Table(columns, tuple(rows)),)),)
+
+
+def statements(desk: Desk, attached: tuple[str, ...]) -> tuple[str, ...]:
+    """The statements of every report; what is attached to this one."""
+    names = ("limits", "no_decision", "review", "items", "copy", "representative", "rounding", "methods")
+    made = [desk.words(f"statements.{name}") for name in names]
+    made.append(desk.words("statements.computed", version=desk.version))
+    if attached:
+        made.append(desk.words("statements.attached", names=", ".join(attached)))
+    if said(desk.outcome.record.test.revision, "0") not in {"0", ""}:
+        made.append(desk.words("status.supplement", number=report_number(desk)))
+    return tuple(made)
+
+
+def cautions(desk: Desk) -> tuple[str, ...]:
+    """The usual cautions for work at a stack."""
+    return tuple(words for name, words in desk.phrases.all("cautions").items() if name != "title")

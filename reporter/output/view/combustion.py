@@ -1,0 +1,100 @@
+"""Combustion: the O2-CO2 diagram, what the balance gives, measured against expected, findings."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from reporter.ledger import Entry
+from reporter.output.charts import DiagramPoint, FactorBand, FuelLine, OxygenDiagram, oxygen_diagram
+from reporter.output.numbers import formulas
+from reporter.output.view.desk import Desk, aligned
+from reporter.output.view.model import AnyCell, Block, Column, Picture, Row, Table
+from reporter.output.view.runs import layout, rows_table, unit_and_basis
+from reporter.outcome import RunResult
+
+#: Percent oxygen of dry air: in physics, and as the methods print it (the fuel factor's range).
+_OXYGEN_OF_AIR, _OXYGEN_PRINTED = 20.95, 20.9
+
+
+def combustion(desk: Desk) -> tuple[Block, ...]:
+    """The parts of the page; those without numbers are left out."""
+    runs = desk.outcome.runs
+    blocks = [_diagram(desk)]
+    tables = rows_table(desk, runs, layout().combustion)
+    if tables:
+        blocks.append(Block(title="Air, fuel and products", tables=tables))
+    blocks.append(_balance(desk, runs))
+    words = tuple(f"Run {one.run}: {formulas(one.words)}" if one.run else formulas(one.words) for one in desk.outcome.findings)
+    blocks.append(Block(title="Findings", notes=words or (desk.words("lead.no_findings"),)))
+    return tuple(block for block in blocks if block.tables or block.pictures or block.notes)
+
+
+def _balance(desk: Desk, runs: Sequence[RunResult]) -> Block:
+    """Measured and expected side by side for each run."""
+    columns = [Column("Measured, expected", width=2.2), Column("Unit and basis", width=1.6)]
+    for run in runs:
+        columns += [Column(f"Run {run.run.run.value}", "measured", number=True), Column("", "expected", number=True)]
+    rows = []
+    for label, measured, expected in layout().balance:
+        pairs = [(_of(desk, run, measured), _of(desk, run, expected)) for run in runs]
+        found = next((entry for pair in pairs for entry in pair if entry is not None), None)
+        if found is None or not any(second is not None for _, second in pairs):
+            continue
+        cells: list[AnyCell] = [formulas(label), unit_and_basis(found)]
+        cells += [desk.missing if entry is None else desk.shown(entry) for pair in pairs for entry in pair]
+        rows.append(Row(tuple(cells)))
+    tables = (aligned(Table(tuple(columns), tuple(rows))),) if rows else ()
+    return Block(title="Measured against expected", tables=tables)
+
+
+def _of(desk: Desk, run: RunResult, tail: str) -> Entry | None:
+    return desk.outcome.ledger.get(f"run.{run.key}.{tail}")
+
+
+def _diagram(desk: Desk) -> Block:
+    """The diagram, where a run has dry O2 and CO2."""
+    points = [point for run in desk.outcome.runs if (point := _point(desk, run)) is not None]
+    if not points:
+        return Block()
+    fuels = ", ".join(dict.fromkeys(fuel.fuel.value for fuel in desk.outcome.record.fuels)) or "fuel"
+    bars = desk.words("lead.diagram_bars") if any(point.oxygen_half for point in points) else ""
+    diagram = OxygenDiagram(_line(desk, fuels, points), tuple(points), _band(desk), bars)
+    title = f"Dry oxygen and carbon dioxide of {len(points)} runs beside the line of {fuels}."
+    return Block(text=(desk.words("lead.diagram"),), pictures=(Picture(oxygen_diagram(diagram, title=title)),))
+
+
+def _point(desk: Desk, run: RunResult) -> DiagramPoint | None:
+    oxygen, dioxide = _of(desk, run, "o2.dry"), _of(desk, run, "co2.dry")
+    if oxygen is None or dioxide is None:
+        return None
+    expected = _of(desk, run, "combustion.co2_expected")
+    halves = [_of(desk, run, f"{gas}.uncertainty") for gas in ("o2", "co2")]
+    half = [0.0 if entry is None else 2 * float(entry.value) for entry in halves]
+    return DiagramPoint(
+        label=f"run {run.run.run.value}",
+        oxygen=float(oxygen.value),
+        carbon_dioxide=float(dioxide.value),
+        oxygen_half=half[0],
+        carbon_dioxide_half=half[1],
+        expected=None if expected is None else float(expected.value),
+    )
+
+
+def _line(desk: Desk, fuels: str, points: Sequence[DiagramPoint]) -> FuelLine | None:
+    """The line of complete combustion through the CO2 expected at a run's oxygen."""
+    for point in points:
+        if point.expected is not None and point.oxygen < _OXYGEN_OF_AIR:
+            most = point.expected * _OXYGEN_OF_AIR / (_OXYGEN_OF_AIR - point.oxygen)
+            return FuelLine(fuels, most, _OXYGEN_OF_AIR)
+    return None
+
+
+def _band(desk: Desk) -> FactorBand | None:
+    """The range of the fuel factor as the checks of this test used it."""
+    ends: dict[str, float] = {}
+    for check in desk.outcome.checks:
+        if check.value.endswith("combustion.fuel_factor"):
+            ends.setdefault(check.relation, float(desk.outcome.ledger[check.bound].value))
+    if "at least" not in ends or "at most" not in ends:
+        return None
+    return FactorBand("range of the fuel factor", ends["at least"], ends["at most"], _OXYGEN_PRINTED)

@@ -1,0 +1,150 @@
+"""The complete sample calculation: from the readings of one run to each gas and each limit's unit."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+from html import escape
+
+from reporter.ledger import Entry, FromCells, FromEquation, FromTable, Stated
+from reporter.output.numbers import formulas, shortest, unit_text
+from reporter.output.view.desk import Desk, cell_words, gas_name
+from reporter.output.view.limits import limit_words
+from reporter.output.view.model import Chapter, Shown, Source, Step
+from reporter.outcome import Comparison, RunResult
+from reporter.trace import Name
+from reporter.typeset import html_formula, symbol_html, text_formula
+
+#: Significant digits of numbers put into equations.
+DIGITS = 6
+
+
+@dataclass
+class _Writer:
+    """Steps as they are written: each entry once, numbered from the first."""
+
+    desk: Desk
+    numbers: dict[str, int] = field(default_factory=dict)
+
+    def chapter(self, title: str, keys: Sequence[str]) -> Chapter | None:
+        """The steps that lead to some entries and were not written before."""
+        ledger = self.desk.outcome.ledger
+        needed = self.desk.needed(keys)
+        steps = [self._step(entry) for entry in ledger if entry.key in needed and self._is_new(entry)]
+        return Chapter(title, tuple(steps)) if steps else None
+
+    def _is_new(self, entry: Entry) -> bool:
+        return isinstance(entry.origin, FromEquation) and entry.key not in self.numbers and not entry.is_indicator
+
+    def _step(self, entry: Entry) -> Step:
+        desk = self.desk
+        origin = entry.origin
+        assert isinstance(origin, FromEquation)
+        self.numbers[entry.key] = len(self.numbers) + 1
+        desk.anchors.add(entry.key)
+        desk.printed[entry.key] = None
+        equation = origin.equation.in_system(desk.outcome.ledger.system)
+        return Step(
+            key=entry.key,
+            number=self.numbers[entry.key],
+            title=desk.label(entry.key),
+            symbol=symbol_html(equation.symbol),
+            formula=html_formula(equation.symbols()),
+            numbers=html_formula(desk.outcome.ledger.trace(entry), _number_html),
+            result=Shown(entry.key, shortest(float(entry.value), DIGITS), unit_text(entry.unit)),
+            basis=formulas(entry.basis.text()),
+            line=f"{equation.symbol} = {text_formula(equation.symbols())}",
+            citation=equation.citation.text(),
+            sources=sources(desk, entry, self.numbers),
+        )
+
+
+def sources(desk: Desk, entry: Entry, steps: dict[str, int] | None = None) -> tuple[Source, ...]:
+    """The inputs of an entry: symbol, number, and the place it comes from (a step where it has one)."""
+    origin = entry.origin
+    assert isinstance(origin, FromEquation)
+    found = []
+    for name, keys in origin.inputs:
+        symbol = origin.equation.parameters[name].symbol
+        if isinstance(keys, str):
+            found.append(_source(desk, symbol, keys, steps or {}))
+        else:
+            found += [_source(desk, f"{symbol}{at}", key, steps or {}) for at, key in enumerate(keys, 1)]
+    return tuple(found)
+
+
+def _source(desk: Desk, symbol: str, key: str, steps: dict[str, int]) -> Source:
+    entry = desk.outcome.ledger[key]
+    if entry.is_indicator:
+        return Source(formulas(symbol.replace("_", " ")), value_text(entry), "", "", "section-criteria")
+    desk.printed[key] = None
+    where = f"step {steps[key]}" if key in steps else _where(entry)
+    return Source(formulas(symbol.replace("_", " ")), value_text(entry), unit_text(entry.unit), formulas(where), key)
+
+
+def _where(entry: Entry) -> str:
+    """A short place for a leaf; a computed entry is led to by its key alone."""
+    match entry.origin:
+        case FromCells() as origin:
+            return cell_words(origin)
+        case FromTable(citation=citation):
+            return citation.text()
+        case Stated(reason=reason):
+            return reason
+    return ""
+
+
+def value_text(entry: Entry) -> str:
+    """The value of an entry with six significant digits; a series by its count."""
+    if entry.is_series:
+        return f"{len(entry.value)} readings"
+    if entry.is_indicator:
+        return "yes" if float(entry.value) == 1.0 else "no"
+    return shortest(float(entry.value), DIGITS)
+
+
+def _number_html(name: Name) -> str:
+    if name.series:
+        return escape(f"{len(name.value)} readings")
+    return powers(shortest(float(name.value), DIGITS))
+
+
+def powers(text: str) -> str:
+    """Markup of a number with its power of ten raised."""
+    mantissa, times, power = escape(text).partition("×10^")
+    return f"{mantissa}\u00a0×\u00a010<sup>{power}</sup>" if times else mantissa
+
+
+def sample_run(desk: Desk) -> RunResult | None:
+    """The run whose results count in most comparisons, the first of equals; None where no run has results."""
+    counts = {run.key: 0 for run in desk.outcome.runs}
+    for comparison in desk.outcome.comparisons:
+        for segment, _, indicator in comparison.runs:
+            flag = desk.outcome.ledger.get(indicator)
+            counts[segment] += flag is not None and float(flag.value) == 1.0
+    for run in desk.outcome.runs:
+        counts[run.key] += 0 if counts[run.key] else -1 + sum(gas.is_valid for gas in run.gases) / 100
+    return max(desk.outcome.runs, key=lambda run: counts[run.key], default=None)
+
+
+def sample(desk: Desk, run: RunResult | None) -> tuple[Chapter, ...]:
+    """A chapter per gas, then one per limit, then the average and the comparison of each."""
+    if run is None:
+        return ()
+    writer = _Writer(desk)
+    chapters = []
+    for gas in run.gases:
+        stem = f"run.{run.key}.{gas.segment}"
+        chapters.append(writer.chapter(gas_name(gas.gas), [f"{stem}.corrected", f"{stem}.dry"]))
+    for comparison in desk.outcome.comparisons:
+        chapters.append(writer.chapter(_title(desk, comparison), _of_run(comparison, run)))
+    return tuple(chapter for chapter in chapters if chapter is not None)
+
+
+def _of_run(comparison: Comparison, run: RunResult) -> list[str]:
+    return [key for segment, key, _ in comparison.runs if segment == run.key]
+
+
+def _title(desk: Desk, comparison: Comparison) -> str:
+    limit = comparison.limit
+    return f"{gas_name(limit.pollutant.value)}, for limit {limit.limit_id.value}: {limit_words(desk, limit)}"

@@ -1,0 +1,161 @@
+"""The readings: raw text and number side by side, and each run's readings as a named range of the numbers."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
+from datetime import datetime
+
+from xlsxwriter.utility import xl_range_abs
+
+from reporter.ledger import Entry, Ledger
+from reporter.outcome import Outcome, RunResult, Series
+from reporter.output.numbers import unit_text
+from reporter.output.workbook_book import Book, Column, Sheet
+from reporter.output.workbook_words import words
+from reporter.record import ReadingKind
+
+#: A number of a row, or None where the cell stays blank.
+Numbers = dict[int, float | None]
+
+
+@dataclass
+class Lane:
+    """The columns of one channel: raw text, then one column of numbers, and a further one only where two runs
+    share rows and leave out different ones."""
+
+    name: str
+    unit: str
+    index: int
+    layers: list[Numbers] = field(default_factory=list)
+    ranges: dict[str, tuple[int, int, int]] = field(default_factory=dict)
+
+    def place(self, key: str, rows: Numbers) -> None:
+        """Put a run's readings into the first column they agree with."""
+        fits = [all(layer.get(row, value) == value for row, value in rows.items()) for layer in self.layers]
+        number = fits.index(True) if True in fits else len(self.layers)
+        if number == len(self.layers):
+            self.layers.append({})
+        self.layers[number].update(rows)
+        used = [row for row, value in rows.items() if value is not None]
+        self.ranges[key] = (number, min(used), max(used))
+
+
+def write_readings(book: Book, sheet: Sheet, outcome: Outcome) -> None:
+    """Write every logged row; the numbers of a run's named range are exactly those of its entry."""
+    readings = outcome.record.readings
+    said = words("readings")
+    lanes = [_lane(outcome, name) for name in readings.channels]
+    columns = _columns(lanes)
+    sheet.title(said["title"], said["note"])
+    sheet.head(columns, freeze=1)
+    first = sheet.row
+    reasons = _reasons(outcome)
+    for number, row in enumerate(readings.rows):
+        sheet.moment(0, row.time, "text")
+        sheet.text(1, _run_at(outcome.runs, row.time))
+        column = 2
+        for lane in lanes:
+            reading = row.readings[lane.index]
+            sheet.text(column, reading.text, "grey")
+            column += 1
+            plain = reading.value if reading.kind is ReadingKind.NUMBER else None
+            for layer in lane.layers:
+                _number(sheet, column, layer.get(number, plain))
+                column += 1
+        sheet.text(column, "; ".join(reasons.get(row.time, ())), "wrap")
+        sheet.row += 1
+    _define(book, sheet, lanes, first)
+
+
+def _columns(lanes: Sequence[Lane]) -> list[Column]:
+    said = words("readings")
+    made = [Column(**said["time"]), Column(**said["run"])]
+    for lane in lanes:
+        raw, used = said["raw"], said["used"]
+        made.append(Column(raw["name"].format(channel=lane.name), raw["width"]))
+        for _ in lane.layers:
+            unit = unit_text(lane.unit)
+            made.append(Column(used["name"].format(channel=lane.name, unit=unit), used["width"]))
+    return [*made, Column(**said["reason"])]
+
+
+def _number(sheet: Sheet, column: int, value: float | None) -> None:
+    if value is None:
+        sheet.text(column, "", "input")
+    else:
+        sheet.number(column, value, "General", "input")
+
+
+def _lane(outcome: Outcome, name: str) -> Lane:
+    channel = outcome.record.channel(name)
+    readings = outcome.record.readings
+    lane = Lane(name, channel.unit.value.unit, readings.index(name))
+    rows = {row.time: number for number, row in enumerate(readings.rows)}
+    for series in _series(outcome):
+        if series.channel == name and series.used and series.key in outcome.ledger:
+            lane.place(series.key, _window(outcome.ledger[series.key], series, rows))
+    if not lane.layers:
+        lane.layers.append({})
+    return lane
+
+
+def _series(outcome: Outcome) -> list[Series]:
+    return [gas.series for run in outcome.runs for gas in run.gases if gas.series is not None]
+
+
+def _window(entry: Entry, series: Series, rows: Mapping[datetime, int]) -> Numbers:
+    """The rows a run's readings stand in, each with the number of the entry, or blank where it is left out."""
+    used = dict(zip((rows[time] for time, _ in series.used), entry.value, strict=True))
+    left_out = [rows[time] for time, _, _ in series.left_out]
+    return {row: used.get(row) for row in (*range(min(used), max(used) + 1), *left_out)}
+
+
+def _define(book: Book, sheet: Sheet, lanes: Sequence[Lane], first: int) -> None:
+    column = 2
+    for lane in lanes:
+        for key, (layer, top, bottom) in lane.ranges.items():
+            at = column + 1 + layer
+            book.define(key, f"{sheet.name}!{xl_range_abs(first + top, at, first + bottom, at)}")
+        column += 1 + len(lane.layers)
+
+
+def _run_at(runs: Sequence[RunResult], time: datetime) -> str:
+    return ", ".join(run.run.run.value for run in runs if run.run.start.value <= time <= run.run.end.value)
+
+
+def _reasons(outcome: Outcome) -> dict[datetime, tuple[str, ...]]:
+    """By time: what was left out of a mean and why, and what was counted as another number than logged."""
+    said = words("readings")
+    rows = {row.time: row for row in outcome.record.readings.rows}
+    found: dict[datetime, dict[str, None]] = {}
+    for series in _series(outcome):
+        index = outcome.record.readings.index(series.channel)
+        for time, _, reason in series.left_out:
+            text = said["left_out"].format(channel=series.channel, reason=reason)
+            found.setdefault(time, {})[text] = None
+        for time, value in series.used:
+            reading = rows[time].readings[index]
+            if reading.kind is not ReadingKind.NUMBER:
+                text = said["counted"].format(channel=series.channel, text=reading.text, value=value)
+                found.setdefault(time, {})[text] = None
+    return {time: tuple(texts) for time, texts in found.items()}
+
+
+def other_series(ledger: Ledger, book: Book) -> list[Entry]:
+    """The series that are no range of the readings as they stand."""
+    return [entry for entry in ledger if entry.is_series and not book.has(entry.key)]
+
+
+def write_other_series(book: Book, sheet: Sheet, entries: Sequence[Entry]) -> None:
+    """One column for each further series, named by its key."""
+    said = words("series")
+    sheet.title(said["title"], said["note"])
+    sheet.head([Column(f"{entry.key} [{unit_text(entry.unit) or '1'}]", 24) for entry in entries], freeze=0)
+    first = sheet.row
+    for column, entry in enumerate(entries):
+        for offset, value in enumerate(entry.value):
+            sheet.row = first + offset
+            sheet.number(column, value, "General", "input")
+        cells = xl_range_abs(first, column, first + len(entry.value) - 1, column)
+        book.define(entry.key, f"{sheet.name}!{cells}")

@@ -1,0 +1,92 @@
+"""Plain text for a terminal: wrapped paragraphs, tables, sections, and what a poor encoding can show."""
+
+from __future__ import annotations
+
+import textwrap
+from collections.abc import Collection, Sequence
+
+#: Characters of a line.
+WIDTH = 100
+_PLAIN = str.maketrans(
+    {
+        "−": "-", "–": "-", "—": "-", "·": "*", "×": "x", "≤": "<=", "≥": ">=", "°": " deg ", "µ": "u",
+        "§": "section", "²": "2", "³": "3", "⁻": "-", "\u00a0": " ", "\u202f": " ", "…": "...",
+        "‘": "'", "’": "'", "“": '"', "”": '"',
+        **{lowered: str(digit) for digit, lowered in enumerate("₀₁₂₃₄₅₆₇₈₉")},
+    }
+)  # fmt: skip
+
+
+def encodable(text: str, encoding: str) -> str:
+    """The text with what an encoding cannot show put in plainer characters.
+
+    Parameters
+    ----------
+    text
+        Any text.
+    encoding
+        Of the stream it goes to.
+    """
+    try:
+        text.encode(encoding)
+    except UnicodeEncodeError:
+        return text.translate(_PLAIN).encode(encoding, "replace").decode(encoding)
+    return text
+
+
+def paragraph(text: str, *, indent: int = 2, hang: int = 4) -> str:
+    """Text wrapped to the width, its later lines further in; spaces inside the first word's label are kept."""
+    return textwrap.fill(
+        text,
+        WIDTH,
+        initial_indent=" " * indent,
+        subsequent_indent=" " * hang,
+        break_long_words=False,
+        break_on_hyphens=False,
+    )
+
+
+def section(title: str, parts: Sequence[str]) -> str:
+    """A heading and what stands below it; nothing where there is nothing."""
+    return "\n".join([title, *parts]) if parts else ""
+
+
+def table(
+    head: Sequence[str],
+    rows: Sequence[Sequence[str]],
+    *,
+    numbers: Collection[int] = (),
+    wrapped: int | None = None,
+) -> str:
+    """Columns two spaces apart, two spaces in.
+
+    Parameters
+    ----------
+    head, rows
+        Cells as text; a short row is filled up.
+    numbers
+        Columns set to the right.
+    wrapped
+        The column that is wrapped where a line would be too long.
+    """
+    lines = [list(head), *([*row, *[""] * (len(head) - len(row))] for row in rows)]
+    widths = [max(len(line[column]) for line in lines) for column in range(len(head))]
+    if wrapped is not None:
+        others = 2 + sum(width + 2 for column, width in enumerate(widths) if column != wrapped)
+        widths[wrapped] = min(widths[wrapped], max(WIDTH - others, 20))
+    return "\n".join(_line(line, widths, numbers, wrapped) for line in lines)
+
+
+def _line(cells: Sequence[str], widths: Sequence[int], numbers: Collection[int], wrapped: int | None) -> str:
+    """One row of a table, several lines high where its wrapped cell is."""
+    columns = [
+        textwrap.wrap(cell, widths[column], break_long_words=False) or [""] if column == wrapped else [cell]
+        for column, cell in enumerate(cells)
+    ]
+    height = max(len(column) for column in columns)
+    lines = []
+    for row in range(height):
+        texts = [column[row] if row < len(column) else "" for column in columns]
+        set_out = [text.rjust(widths[i]) if i in numbers else text.ljust(widths[i]) for i, text in enumerate(texts)]
+        lines.append(("  " + "  ".join(set_out)).rstrip())
+    return "\n".join(lines)
