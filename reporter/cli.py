@@ -157,12 +157,13 @@ def _blank(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
 
 
 def _fuel(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
+    from reporter.combustion.describe import describe_fuel
     from reporter.equation import System
     from reporter.errors import FluebookError
-    from reporter.terminal_fuel import fuel_text
 
     try:
-        print(_encodable(fuel_text(" ".join(given.fuel), System(given.units)), out), file=out)
+        figures = describe_fuel(" ".join(given.fuel), System(given.units))
+        print(_encodable(str(figures), out), file=out)
     except FluebookError as error:
         print(f"fluebook: {error}", file=err)
         return USAGE

@@ -7,6 +7,7 @@ of the report; numbers are rounded for print only.
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
+from dataclasses import replace
 from datetime import datetime
 
 from reporter.errors import LedgerError
@@ -57,11 +58,18 @@ def summary(outcome: Outcome) -> str:
 
 
 def problems_text(problems: Sequence[Problem]) -> str:
-    """Problems by grade, the gravest first, each with place, found, expected and what to do."""
+    """Problems by grade, the gravest first, each with place, found, expected and what to do.
+
+    Problems that differ only in what was found are printed as one; the number counts each.
+    """
     groups = []
     for grade, title in _GRADES.items():
         group = [problem for problem in problems if problem.grade is grade]
-        groups.append(section(f"{title} ({len(group)})", [_problem(problem) for problem in group]))
+        alike: dict[Problem, list[str]] = {}
+        for problem in group:
+            alike.setdefault(replace(problem, found="", concerns=()), []).append(problem.found)
+        blocks = [_problem(problem, found) for problem, found in alike.items()]
+        groups.append(section(f"{title} ({len(group)})", blocks))
     return "\n\n".join(group for group in groups if group)
 
 
@@ -72,12 +80,14 @@ def overview(rows: Sequence[tuple[str, str, tuple[int, int]]]) -> str:
     return section(f"{len(rows)} inputs", [table(head, cells, numbers={2, 3}, wrapped=1)])
 
 
-def _problem(problem: Problem) -> str:
+def _problem(problem: Problem, found: Sequence[str]) -> str:
+    """A problem, or several that differ in what was found alone."""
     where = problem.place.text()
     lines = [paragraph(f"{where}: {problem.title}" if where else problem.title)]
-    for name, words in (("Found", problem.found), ("Expected", problem.expected), ("To do", problem.remedy)):
+    facts = [("Found:", words) for words in found]
+    for name, words in (*facts, ("Expected:", problem.expected), ("To do:", problem.remedy)):
         if words:
-            lines.append(paragraph(f"{name + ':':<10}{words}", indent=4, hang=14))
+            lines.append(paragraph(f"{name:<10}{words}", indent=4, hang=14))
     return "\n".join(lines)
 
 
@@ -215,10 +225,17 @@ def _limit(outcome: Outcome, comparison: Comparison, words: Phrases) -> str:
         said = words(f"limit.{relation}_{'met' if comparison.is_met else 'not_met'}")
     lines.append(paragraph(said, indent=4, hang=4))
     if value is not None and rounded is not None:
-        numbers = f"{shown(rounded)} ({comparison.rounding_words}), unrounded {shown(value)}"
+        numbers = f"{_compared(rounded)} ({comparison.rounding_words})"
+        if rounded.value != value.value:
+            numbers += f", unrounded {shown(value)}"
         lines.append(paragraph(f"{numbers}; {_run_values(outcome, comparison)}", indent=4, hang=4))
     lines += [paragraph(note, indent=4, hang=4) for note in comparison.notes]
     return "\n".join(lines)
+
+
+def _compared(rounded: Entry) -> str:
+    """A compared number with the digits its rounding left."""
+    return shown(rounded) if rounded.decimals is not None else shortest(rounded.value, 12)
 
 
 def _run_values(outcome: Outcome, comparison: Comparison) -> str:
@@ -227,9 +244,9 @@ def _run_values(outcome: Outcome, comparison: Comparison) -> str:
     for run, key, indicator in comparison.runs:
         entry, counts = ledger.get(key), ledger.get(indicator)
         if entry is not None:
-            text = f"{outcome.run(run).run.run.value}: {shown(entry)}"
+            text = f"run\u00a0{outcome.run(run).run.run.value}\u00a0{shown(entry)}"
             parts.append(text if counts is not None and counts.value == 1.0 else f"({text})")
-    return f"runs {', '.join(parts)}" if parts else "no run has this result"
+    return ", ".join(parts) or "no run has this result"
 
 
 # ---- criteria and findings ------------------------------------------------------------------------------

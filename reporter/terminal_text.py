@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+import re
 import textwrap
 from collections.abc import Collection, Sequence
 
 #: Characters of a line.
 WIDTH = 100
+# What could steer a terminal or turn the direction of the text; it comes from names and cells of others.
+_STEERING = re.compile("[\x00-\x1f\x7f-\x9f\u200e\u200f\u202a-\u202e\u2066-\u2069]+")
 _PLAIN = str.maketrans(
     {
         "−": "-", "–": "-", "—": "-", "·": "*", "×": "x", "≤": "<=", "≥": ">=", "°": " deg ", "µ": "u",
@@ -35,15 +38,20 @@ def encodable(text: str, encoding: str) -> str:
 
 
 def paragraph(text: str, *, indent: int = 2, hang: int = 4) -> str:
-    """Text wrapped to the width, its later lines further in; spaces inside the first word's label are kept."""
-    return textwrap.fill(
-        text,
+    """Text wrapped to the width, its later lines further in; words joined by a no-break space stay so."""
+    lines = textwrap.fill(
+        _still(text),
         WIDTH,
         initial_indent=" " * indent,
         subsequent_indent=" " * hang,
         break_long_words=False,
         break_on_hyphens=False,
     )
+    return lines.replace("\u00a0", " ")
+
+
+def _still(text: str) -> str:
+    return _STEERING.sub(" ", text)
 
 
 def section(title: str, parts: Sequence[str]) -> str:
@@ -69,7 +77,8 @@ def table(
     wrapped
         The column that is wrapped where a line would be too long.
     """
-    lines = [list(head), *([*row, *[""] * (len(head) - len(row))] for row in rows)]
+    filled = ([*map(_still, row), *[""] * (len(head) - len(row))] for row in rows)
+    lines = [list(head), *filled]
     widths = [max(len(line[column]) for line in lines) for column in range(len(head))]
     if wrapped is not None:
         others = 2 + sum(width + 2 for column, width in enumerate(widths) if column != wrapped)

@@ -7,7 +7,7 @@ from dataclasses import dataclass, replace
 from typing import Any
 
 from reporter.assess.averages import Average, order_of_averaging
-from reporter.assess.rounding import Rule, rounding_rule
+from reporter.assess.rounding import Rule, rounding_rule, significant_places
 from reporter.basis import NO_BASIS, NO_VOLUME, Basis, Moisture, Oxygen, OxygenKind
 from reporter.conversions import convert_entry
 from reporter.equation import Equation
@@ -216,7 +216,9 @@ def _rounded(book: Book, limit: Limit, key: str, value: Entry, rule: Rule) -> En
         return book.apply(carried, f"{key}.rounded", {"value": value})
     name = "digits" if rule.significant else "decimals"
     digits = book.state(f"{key}.rounding_{name}", float(rule.digits), "1", rule.words, basis=NO_BASIS)
-    return book.apply(rule.equation, f"{key}.rounded", {"value": value, name: digits})
+    places = rule.digits if not rule.significant else significant_places(value.value, rule.digits)
+    inputs = {"value": value, name: digits}
+    return book.apply(rule.equation, f"{key}.rounded", inputs, decimals=places)
 
 
 def _too_few(

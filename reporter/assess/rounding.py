@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from dataclasses import dataclass
 from decimal import Decimal, InvalidOperation
+from math import floor, log10
 from typing import Any
 
 from reporter.equation import Equation
@@ -84,3 +85,14 @@ def decimals_of(text: str) -> int:
     except InvalidOperation:
         return 0
     return max(0, -exponent) if isinstance(exponent, int) else 0
+
+
+def significant_places(value: float, digits: int) -> int:
+    """Decimals that show a number with that many significant digits.
+
+    Examples
+    --------
+    >>> significant_places(0.9778, 2), significant_places(24.06, 3), significant_places(1234.0, 2)
+    (2, 1, 0)
+    """
+    return max(0, digits - 1 - floor(log10(abs(value)))) if value else 0

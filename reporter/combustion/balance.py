@@ -72,7 +72,14 @@ def determinant(*, per_air: Value, per_product: Value, sum_per_air: Value, sum_p
         "denominator": "Δ",
     },
 )
-def dry_air(*, fixed: Value, sum_per_product: Value, per_product: Value, sum_fixed: Value, denominator: Value) -> Value:
+def dry_air(
+    *,
+    fixed: Value,
+    sum_fixed: Value,
+    per_product: Value,
+    sum_per_product: Value,
+    denominator: Value,
+) -> Value:
     """Dry air burned, from the two balances.
 
     Parameters
@@ -106,7 +113,14 @@ def dry_air(*, fixed: Value, sum_per_product: Value, per_product: Value, sum_fix
     },
     gives=DRY_PRODUCTS,
 )
-def dry_products(*, per_air: Value, sum_fixed: Value, sum_per_air: Value, fixed: Value, denominator: Value) -> Value:
+def dry_products(
+    *,
+    per_air: Value,
+    sum_per_air: Value,
+    fixed: Value,
+    sum_fixed: Value,
+    denominator: Value,
+) -> Value:
     """Dry products, from the two balances.
 
     Parameters

@@ -186,7 +186,7 @@ def amount_by_mass(
     "H_g",
     HEAT,
     {"molar_heat": "kJ/mol", "molar_mass": "g/mol"},
-    _UNIT,
+    Citation("iso6976", "", "by mass, from the molar values of the components"),
     symbols={"molar_heat": "H_m", "molar_mass": "M_fuel"},
 )
 def heat_by_mass(

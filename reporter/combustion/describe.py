@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from textwrap import fill
 
 from reporter.combustion.fuel import Fuel
 from reporter.combustion.fuel_entries import enter_fuel
@@ -18,6 +19,7 @@ from reporter.methods.tables import FuelFactor, FuelFactors, fuel_factors
 
 __all__ = ["FuelFigure", "FuelFigures", "describe_fuel", "fuel_from_text", "parse_composition"]
 _STEM = "fuel.it"
+_WIDTH = 110
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,7 +63,7 @@ class FuelFigures:
         for label, value, unit, source, note in cells:
             line = f"{label:<{widths[0]}}  {value:>{widths[1]}} {unit:<{widths[2]}}  {source:<{widths[3]}}  {note}"
             lines.append(line.rstrip())
-        return "\n".join([*lines, "", *self.remarks]).rstrip()
+        return "\n".join([*lines, "", *(fill(remark, _WIDTH) for remark in self.remarks)]).rstrip()
 
 
 def describe_fuel(fuel: Fuel | str, system: System = System.US) -> FuelFigures:
@@ -105,8 +107,8 @@ def describe_fuel(fuel: Fuel | str, system: System = System.US) -> FuelFigures:
 
 
 def _title(fuel: Fuel) -> str:
-    per = "per mole of fuel" if fuel.is_gas else "per kg of fuel as fired"
-    return f"{fuel.name} ({fuel.kind.value}; amounts {per})"
+    given = "gas; amounts per mole of fuel" if fuel.is_gas else "by weight; amounts per kg of fuel as fired"
+    return f"{fuel.name} ({given})"
 
 
 def _remarks(ledger: Ledger, fuel: Fuel) -> Iterator[str]:
@@ -140,12 +142,12 @@ def source_of(entry: Entry) -> str:
     return origin.reason if isinstance(origin, Stated) else origin.place.text()
 
 
-def _figure(ledger: Ledger, name: str, label: str, note: str = "") -> FuelFigure | None:
+def _figure(ledger: Ledger, name: str, label: str, note: str = "", *, unit: str = "") -> FuelFigure | None:
     entry = ledger.get(f"{_STEM}.{name}")
     if entry is None:
         return None
-    unit = {"1": ""}.get(entry.unit, entry.unit)
-    return FuelFigure(label, float(entry.value), unit, source_of(entry), note or entry.note)
+    shown = unit or {"1": ""}.get(entry.unit, entry.unit)
+    return FuelFigure(label, float(entry.value), shown, source_of(entry), note or entry.note)
 
 
 def _made(*figures: FuelFigure | None) -> list[FuelFigure]:
@@ -153,12 +155,11 @@ def _made(*figures: FuelFigure | None) -> list[FuelFigure]:
 
 
 def _composition(ledger: Ledger, fuel: Fuel) -> list[FuelFigure]:
-    kind = "mole" if fuel.is_gas else "weight"
     made = []
     for share in fuel.shares:
         name = f"component.{share.name}.mole_percent" if fuel.is_gas else f"{share.name}_percent"
         label = ledger[f"{_STEM}.{name}"].label.removeprefix(f"{fuel.name}: ")
-        made.append(_figure(ledger, name, f"{label.split(' by weight')[0]}, by {kind}"))
+        made.append(_figure(ledger, name, label if " by " in label else f"{label} by mole"))
     return _made(*made, _figure(ledger, "molar_mass", "molar mass"))
 
 
@@ -188,9 +189,10 @@ def _factors(ledger: Ledger, fuel: Fuel, published: FuelFactors | None) -> list[
 
 def _printed(symbol: str, printed: FuelFactor, table: FuelFactors, system: System) -> FuelFigure:
     unit = "ft3/MMBtu" if system is System.US else "m3/J"
-    note = ""
+    note = "" if printed.status_us == "found" else "remembered, not read in a copy of the table"
     if system is System.SI and printed.si is not None and printed.difference is not None:
-        note = f"converted from ft3/MMBtu; printed {printed.si:.3g}, {_percent(printed.difference)}"
+        converted = f"converted from ft3/MMBtu; printed {printed.si:.3g}, {_percent(printed.difference)}"
+        note = "; ".join(part for part in (converted, note) if part)
     return FuelFigure(f"F_{symbol} published", printed.value(system), unit, table.citation.text(), note)
 
 
@@ -229,7 +231,7 @@ def _combustion(ledger: Ledger) -> list[FuelFigure]:
     return _made(
         _figure(ledger, "stoichiometric_oxygen", "stoichiometric oxygen by mole"),
         _figure(ledger, "stoichiometric_air", "stoichiometric dry air by mole"),
-        _figure(ledger, "stoichiometric_air.by_mass", "stoichiometric dry air by mass", "kg per kg of fuel"),
+        _figure(ledger, "stoichiometric_air.by_mass", "stoichiometric dry air by mass", unit="kg/kg"),
         _figure(ledger, "combustion_water", "combustion water by mole"),
         _figure(ledger, "co2_max", "highest CO2, dry"),
     )

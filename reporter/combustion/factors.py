@@ -32,8 +32,8 @@ def fd_of_composition(
     dry_products: Value,
     heat: Value,
     per_heat: Value = constant(1e6, _HEAT_SCALE, "K", si=1e-3, cite=_UNIT),
-    molar_volume: Value = constant(385.33, _VOLUME, "V_m", si=24.055, cite=_V_CITE),
     per_amount: Value = constant(1000.0, _AMOUNT_SCALE, "k", cite=_UNIT),
+    molar_volume: Value = constant(385.33, _VOLUME, "V_m", si=24.055, cite=_V_CITE),
 ) -> Value:
     """Dry F factor from the composition: dry products without excess air per gross heat.
 
@@ -70,8 +70,8 @@ def fw_of_composition(
     water: Value,
     heat: Value,
     per_heat: Value = constant(1e6, _HEAT_SCALE, "K", si=1e-3, cite=_UNIT),
-    molar_volume: Value = constant(385.33, _VOLUME, "V_m", si=24.055, cite=_V_CITE),
     per_amount: Value = constant(1000.0, _AMOUNT_SCALE, "k", cite=_UNIT),
+    molar_volume: Value = constant(385.33, _VOLUME, "V_m", si=24.055, cite=_V_CITE),
 ) -> Value:
     """Wet F factor from the composition: products with the combustion water, dry air, per gross heat.
 
@@ -109,8 +109,8 @@ def fc_of_composition(
     carbon: Value,
     heat: Value,
     per_heat: Value = constant(1e6, _HEAT_SCALE, "K", si=1e-3, cite=_UNIT),
-    molar_volume: Value = constant(385.33, _VOLUME, "V_m", si=24.055, cite=_V_CITE),
     per_amount: Value = constant(1000.0, _AMOUNT_SCALE, "k", cite=_UNIT),
+    molar_volume: Value = constant(385.33, _VOLUME, "V_m", si=24.055, cite=_V_CITE),
 ) -> Value:
     """Carbon dioxide F factor from the composition: carbon dioxide per gross heat.
 

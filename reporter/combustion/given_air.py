@@ -98,7 +98,14 @@ def dry_products_beside_oxygen(*, from_fuel: Value, air_nitrogen: Value, air: Va
     needs={"net": _DRY},
     difference=True,
 )
-def carbon_monoxide_left(*, needed: Value, net: Value, products: Value, air_oxygen: Value, air: Value) -> Value:
+def carbon_monoxide_left(
+    *,
+    needed: Value,
+    net: Value,
+    products: Value,
+    air: Value,
+    air_oxygen: Value,
+) -> Value:
     """CO from the oxygen balance, where air and O2 are known.
 
     Parameters

@@ -137,9 +137,9 @@ def water_per_product(
     *,
     humidity: Value,
     air_per_product: Value,
+    hydrogen_per_product: Value,
     hydrocarbon: Value,
     hydrogen_atoms: Value,
-    hydrogen_per_product: Value,
 ) -> Value:
     """Water per mole of dry products beyond a fixed part, from the hydrogen balance.
 
@@ -196,7 +196,12 @@ def water_fixed(*, combustion: Value, humidity: Value, air_fixed: Value, hydroge
     needs={"co": _DRY, "measured": _DRY},
 )
 def water_gas_square(
-    *, co: Value, water_per_product: Value, ratio: Value, measured: Value, hydrogen_per_product: Value
+    *,
+    co: Value,
+    water_per_product: Value,
+    hydrogen_per_product: Value,
+    ratio: Value,
+    measured: Value,
 ) -> Value:
     """Coefficient of D squared in the water-gas relation.
 
@@ -236,11 +241,11 @@ def water_gas_linear(
     *,
     co: Value,
     water_fixed: Value,
+    hydrogen_fixed: Value,
     ratio: Value,
     carbon: Value,
     hydrogen_per_product: Value,
     measured: Value,
-    hydrogen_fixed: Value,
 ) -> Value:
     """Coefficient of D in the water-gas relation.
 

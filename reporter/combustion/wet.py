@@ -173,7 +173,11 @@ def dry_products_from_wet_carbon(
     symbols=_CARBON | {"products": "D"},
 )
 def dry_air_from_wet_products(
-    *, products: Value, sum_per_product: Value, sum_fixed: Value, sum_per_air: Value
+    *,
+    products: Value,
+    sum_per_product: Value,
+    sum_per_air: Value,
+    sum_fixed: Value,
 ) -> Value:
     """Dry air from the dry products, where CO2 is measured and a reading is on wet gas.
 
@@ -208,7 +212,14 @@ def dry_air_from_wet_products(
     },
     gives=WET_PRODUCTS,
 )
-def wet_products_of(*, wet_per_dry: Value, products: Value, wet_per_air: Value, air: Value, fixed: Value) -> Value:
+def wet_products_of(
+    *,
+    wet_per_dry: Value,
+    wet_per_air: Value,
+    products: Value,
+    air: Value,
+    fixed: Value,
+) -> Value:
     """Wet products from the dry products and the air.
 
     Parameters

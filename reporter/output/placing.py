@@ -25,9 +25,12 @@ class Box:
 
     def shared(self, other: Box) -> float:
         """The area two boxes have in common."""
+        if self.right <= other.left or other.right <= self.left:
+            return 0.0
+        if self.bottom <= other.top or other.bottom <= self.top:
+            return 0.0
         width = min(self.right, other.right) - max(self.left, other.left)
-        height = min(self.bottom, other.bottom) - max(self.top, other.top)
-        return max(0.0, width) * max(0.0, height)
+        return width * (min(self.bottom, other.bottom) - max(self.top, other.top))
 
     def distance(self, point: Point) -> float:
         """From a point to the nearest point of the box."""

@@ -6,6 +6,7 @@ when it was computed, so that a viewer that does not calculate shows it too.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import date, datetime
@@ -20,27 +21,35 @@ from reporter.errors import OutputError
 #: What a cell, and a formula, may hold at most in a workbook.
 MOST_TEXT, MOST_FORMULA = 32_000, 8_000
 _MOST_HEADER = 200
+_LINE_HEIGHT, _MOST_HEIGHT = 12.5, 400.0
 
-_FONT = {"font_name": "Calibri", "font_size": 10, "valign": "top"}
-_LINE = {"bottom": 1, "bottom_color": "#D0D5DA"}
+_FONT = {"font_name": "Arial", "font_size": 9, "valign": "top"}
+_INK, _RULE = "#1F3A4D", "#D0D5DA"
+_YELLOW = {"bg_color": "#FFF6D6", "border": 1, "border_color": "#E3CF8F"}
+_GREEN = {"bg_color": "#EEF3EA", "border": 1, "border_color": "#C9D8BE"}
 _STYLES: dict[str, dict[str, Any]] = {
-    "title": {"bold": True, "font_size": 15, "font_color": "#1F3A4D"},
+    "title": {"bold": True, "font_size": 15, "font_color": _INK},
     "note": {"font_color": "#5A6570", "italic": True},
-    "section": {"bold": True, "font_size": 11, "font_color": "#1F3A4D", "bottom": 2, "bottom_color": "#1F3A4D"},
+    "section": {"bold": True, "font_size": 11, "font_color": _INK, "bottom": 2, "bottom_color": _INK},
+    "group": {"bold": True, "font_color": _INK, "bg_color": "#F3F6F8"},
     "head": {
-        "bold": True, "text_wrap": True, "valign": "vcenter", "bg_color": "#E4EAEE", "font_color": "#1F3A4D",
+        "bold": True, "text_wrap": True, "valign": "vcenter", "bg_color": "#E4EAEE", "font_color": _INK,
         "top": 1, "bottom": 1, "border_color": "#8A98A5",
     },
-    "text": {**_LINE},
-    "wrap": {**_LINE, "text_wrap": True},
-    "strong": {**_LINE, "bold": True, "text_wrap": True},
-    "key": {**_LINE, "font_name": "Consolas", "font_size": 9},
-    "number": {**_LINE, "align": "right"},
-    "input": {"bg_color": "#FFF6D6", "align": "right", "border": 1, "border_color": "#E3CF8F"},
-    "given": {"bg_color": "#EEF3EA", "align": "right", "border": 1, "border_color": "#C9D8BE"},
-    "input_text": {"bg_color": "#FFF6D6", "border": 1, "border_color": "#E3CF8F", "text_wrap": True},
-    "grey": {**_LINE, "font_color": "#7A8590"},
+    "text": {},
+    "wrap": {"text_wrap": True},
+    "strong": {"bold": True, "text_wrap": True},
+    "center": {"align": "center"},
+    "key": {"font_name": "Consolas", "font_size": 8, "text_wrap": True},
+    "number": {"align": "right", "indent": 1},
+    "uncounted": {"align": "right", "indent": 1, "font_color": "#8A949E", "font_strikeout": True},
+    "raw": {"align": "right", "indent": 1, "font_color": "#7A8590"},
+    "input": {**_YELLOW, "align": "right", "indent": 1},
+    "given": {**_GREEN, "align": "right", "indent": 1},
+    "input_text": {**_YELLOW, "text_wrap": True},
 }  # fmt: skip
+_WRAPPED = frozenset(name for name, style in _STYLES.items() if style.get("text_wrap"))
+_RIGHT = {"align": "right", "indent": 1}
 DATE, TIME = "yyyy-mm-dd", "yyyy-mm-dd hh:mm:ss"
 
 
@@ -75,13 +84,15 @@ class Book:
         self._file = xlsxwriter.Workbook(self._buffer, options)
         created = self.issued.replace(tzinfo=None)
         self._file.set_properties({"title": self.report, "comments": "Results workbook", "created": created})
+        self.rule = self._file.add_format({"bottom": 1, "bottom_color": _RULE})
 
-    def sheet(self, name: str) -> Sheet:
-        """A new sheet with the print set-up all sheets share."""
+    def sheet(self, name: str, *, wide: bool = False) -> Sheet:
+        """A new sheet with the print set-up all sheets share; a wide one is printed on A3 or tabloid."""
         made = self._file.add_worksheet(name)
         made.hide_gridlines(2)
         made.set_landscape()
-        made.set_paper(9 if self.metric_paper else 1)
+        papers = (8, 9) if self.metric_paper else (3, 1)
+        made.set_paper(papers[0 if wide else 1])
         made.fit_to_pages(1, 0)
         made.set_margins(left=0.5, right=0.5, top=0.6, bottom=0.7)
         report = self.report.replace("&", "&&")[:_MOST_HEADER]
@@ -93,7 +104,10 @@ class Book:
         known = (style, numbers)
         if known not in self._formats:
             more = {"num_format": numbers} if numbers else {}
-            self._formats[known] = self._file.add_format(_FONT | _STYLES[style] | more)
+            base, _, right = style.partition(" ")
+            self._formats[known] = self._file.add_format(
+                _FONT | _STYLES[base] | (_RIGHT if right else {}) | more
+            )
         return self._formats[known]
 
     def define(self, name: str, cells: str) -> None:
@@ -130,6 +144,8 @@ class Sheet:
     name: str
     made: Any
     row: int = 0
+    _widths: dict[int, float] = field(default_factory=dict)
+    _lines: int = 1
 
     def title(self, title: str, note: str = "") -> None:
         """The sheet's title and what it shows."""
@@ -139,39 +155,64 @@ class Sheet:
             self.made.write_string(1, 0, note, self.book.format("note"))
         self.row = 3
 
-    def section(self, title: str, columns: int) -> None:
-        """A heading over a part of the sheet."""
-        self.row += 1
-        for column in range(columns):
-            self.made.write_blank(self.row, column, None, self.book.format("section"))
-        self.made.write_string(self.row, 0, title, self.book.format("section"))
+    def section(self, title: str, columns: int, style: str = "section") -> None:
+        """A heading over a part of the sheet, after an empty row; one of style ``group`` stands close."""
+        if style == "section":
+            self.row += 1
+        for column in range(1, columns):
+            self.made.write_blank(self.row, column, None, self.book.format(style))
+        self.made.write_string(self.row, 0, title, self.book.format(style))
         self.row += 1
 
-    def head(self, columns: Sequence[Column], *, freeze: int = -1, widths: bool = True) -> None:
+    def widths(self, columns: Sequence[Column]) -> None:
+        """Set the widths of the columns."""
+        for index, column in enumerate(columns):
+            self.made.set_column(index, index, column.width)
+            self._widths[index] = column.width
+
+    def head(self, columns: Sequence[Column], *, freeze: int = -1) -> None:
         """The heading row of a table; `freeze` is the number of columns that stay in view (-1: no freezing)."""
         for index, column in enumerate(columns):
-            self.made.write_string(self.row, index, column.name, self.book.format("head"))
-            if widths:
-                self.made.set_column(index, index, column.width)
+            right = " right" if column.style in {"number", "input", "raw"} else ""
+            self.made.write_string(self.row, index, column.name, self.book.format(f"head{right}"))
         self.made.set_row(self.row, 30)
         if freeze >= 0:
+            self.widths(columns)
             self.made.freeze_panes(self.row + 1, freeze)
             self.made.repeat_rows(self.row)
         self.row += 1
 
+    def next(self) -> None:
+        """Go to the next row; the row left is as high as its longest wrapped text needs."""
+        if self._lines > 1:
+            self.made.set_row(self.row, min(_LINE_HEIGHT * self._lines + 1.0, _MOST_HEIGHT))
+        self._lines = 1
+        self.row += 1
+
+    def rules(self, first: int, columns: int) -> None:
+        """A thin line under each row from `first` to the one before the present row."""
+        if self.row > first:
+            rule = {"type": "formula", "criteria": "=TRUE", "format": self.book.rule}
+            self.made.conditional_format(first, 0, self.row - 1, columns - 1, rule)
+
     def text(self, column: int, text: str, style: str = "text") -> None:
-        """Text as text, cut where a cell cannot hold it."""
+        """Text as text, cut where a cell cannot hold it; an empty text leaves the cell empty."""
+        if not text:
+            return
         shown = text if len(text) <= MOST_TEXT else text[: MOST_TEXT - 1] + "…"
-        if shown:
-            self.made.write_string(self.row, column, shown, self.book.format(style))
-        else:
-            self.made.write_blank(self.row, column, None, self.book.format(style))
+        if style in _WRAPPED and column in self._widths:
+            self._lines = max(self._lines, math.ceil(len(shown) * 1.05 / self._widths[column]))
+        self.made.write_string(self.row, column, shown, self.book.format(style))
 
     def texts(self, texts: Mapping[int, str] | Sequence[str], columns: Sequence[Column]) -> None:
         """Several texts in the styles of their columns."""
         cells = texts.items() if isinstance(texts, Mapping) else enumerate(texts)
         for column, text in cells:
             self.text(column, text, columns[column].style)
+
+    def blank(self, column: int, style: str) -> None:
+        """An empty cell that shows its style."""
+        self.made.write_blank(self.row, column, None, self.book.format(style))
 
     def number(self, column: int, value: float, numbers: str = "", style: str = "number") -> None:
         """A number as it is."""
@@ -182,7 +223,9 @@ class Sheet:
         numbers = TIME if isinstance(moment, datetime) else DATE
         self.made.write_datetime(self.row, column, moment, self.book.format(style, numbers))
 
-    def live(self, column: int, formula: str, value: float | str, numbers: str = "", style: str = "number") -> None:
+    def live(
+        self, column: int, formula: str, value: float | str, numbers: str = "", style: str = "number"
+    ) -> None:
         """A formula with the value it has now.
 
         Raises

@@ -1,0 +1,82 @@
+"""The report as one HTML text: the view placed into the templates, shipped or overlaid by a firm's own."""
+
+from __future__ import annotations
+
+import re
+from datetime import datetime
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from reporter.errors import OutputError
+from reporter.output.phrases import Phrases
+from reporter.resources import templates_folder
+
+if TYPE_CHECKING:
+    from jinja2 import Environment
+    from markupsafe import Markup
+
+    from reporter.output.view.model import View
+
+#: The one stylesheet, and the one a firm may add.
+STYLE, OWN_STYLE = "style.css", "style_extra.css"
+_POWER = re.compile(r"×10\^(−?[0-9]+)")
+
+
+def page_text(view: View, phrases: Phrases, issued: datetime, overlay: Path | None) -> str:
+    """The HTML of the report.
+
+    Raises
+    ------
+    OutputError
+        A template is missing, malformed, or names something the view does not have.
+    """
+    from jinja2 import TemplateError
+
+    try:
+        template = _environment(overlay).get_template("report.html")
+        return template.render(view=view, words=phrases, issued_at=issued.isoformat(timespec="seconds"))
+    except TemplateError as error:
+        where = f"{getattr(error, 'name', '') or 'template'}, line {getattr(error, 'lineno', '?')}"
+        raise OutputError(f"the templates cannot be filled in: {error}", where) from None
+
+
+def style_text(overlay: Path | None) -> str:
+    """The style sheet, with the firm's additions behind it."""
+    parts = [_chosen(STYLE, overlay).read_text(encoding="utf-8")]
+    if overlay is not None and (overlay / OWN_STYLE).is_file():
+        parts.append((overlay / OWN_STYLE).read_text(encoding="utf-8"))
+    return "\n".join(parts)
+
+
+def _chosen(name: str, overlay: Path | None) -> Path:
+    if overlay is not None and (overlay / name).is_file():
+        return overlay / name
+    return templates_folder() / name
+
+
+def _environment(overlay: Path | None) -> Environment:
+    """Templates of the two folders alone; text is escaped; an unknown name is an error."""
+    from jinja2 import Environment, FileSystemLoader, StrictUndefined
+    from markupsafe import Markup
+
+    folders = [templates_folder()] if overlay is None else [overlay, templates_folder()]
+    made = Environment(
+        loader=FileSystemLoader(folders),
+        autoescape=True,
+        undefined=StrictUndefined,
+        trim_blocks=True,
+        lstrip_blocks=True,
+    )
+    made.filters["rich"] = rich
+    made.filters["markup"] = Markup
+    return made
+
+
+def rich(text: str) -> str | Markup:
+    """A text with the letter of NOx lowered and powers of ten raised; everything else stays text."""
+    if "NOx" not in text and "^" not in text:
+        return text
+    from markupsafe import Markup, escape
+
+    safe = str(escape(text)).replace("NOx", "NO<sub>x</sub>")
+    return Markup(_POWER.sub("×10<sup>\\1</sup>", safe))
