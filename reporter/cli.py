@@ -134,8 +134,9 @@ def _each(
 
 def _encodable(text: str, stream: TextIO) -> str:
     """The text with what the terminal cannot show replaced."""
-    encoding = getattr(stream, "encoding", None) or "utf-8"
-    return text.encode(encoding, "replace").decode(encoding)
+    from reporter.terminal_text import encodable
+
+    return encodable(text, getattr(stream, "encoding", None) or "utf-8")
 
 
 def _blank(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:

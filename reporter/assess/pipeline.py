@@ -24,6 +24,7 @@ from reporter.reduction.fuels import heat_input, heat_inputs, run_factors, share
 from reporter.reduction.moisture import moisture
 from reporter.reduction.plans import Plan, plans
 from reporter.reduction.process import reduce_load
+from reporter.reduction.process_log import reduce_process_log
 from reporter.reduction.readings import reduce_readings, window
 from reporter.reduction.results import Means, Missing, result
 from reporter.reduction.uncertainty import reading_uncertainty
@@ -99,6 +100,7 @@ def _reduce_run(
     factors = run_factors(book, about, share)
     means = Means(share, heat, dry_standard_flow(book, about))
     reduce_load(book, about)
+    reduce_process_log(book, about)
     reduce_diluents(book, about, tuple(share), factors)
     for diluent in ("o2", "co2"):
         reading_uncertainty(book, about, diluent)

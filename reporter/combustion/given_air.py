@@ -31,6 +31,23 @@ def _units(*amounts: str, pure: tuple[str, ...] = ()) -> dict[str, str]:
     return dict.fromkeys(amounts, AMOUNT) | dict.fromkeys(pure, "1")
 
 
+@equation("a", AMOUNT, _units("air"), BALANCE, symbols={"air": "a_given"})
+def dry_air_given(*, air: Value) -> Value:
+    """Dry air burned, as it was given.
+
+    Parameters
+    ----------
+    air
+        Dry air [mol per kg or mol of fuel].
+
+    Returns
+    -------
+    float
+        a [mol per kg or mol of fuel].
+    """
+    return +air
+
+
 @equation(
     "D",
     AMOUNT,

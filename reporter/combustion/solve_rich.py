@@ -65,9 +65,10 @@ def by_rich_carbon_monoxide(book: RunBook) -> Solution:
     return Solution("rich", air, e["dry_products"], amounts={"h2": h2})
 
 
-def by_given_air(book: RunBook, air: Entry) -> Solution:
+def by_given_air(book: RunBook, burned: Entry) -> Solution:
     """The air is known; measured O2 leaves CO open, else O2 is open, or CO and hydrogen where air is short."""
     book.need_dry()
+    air = book.apply(given_air.dry_air_given, "air_dry", {"air": burned}, AIR_LABEL)
     if book.gas.o2 is not None:
         return _open_carbon_monoxide(book, air)
     short = float(air.value) * float(book.air.oxygen.value) < float(book.oxygen_needed().value)

@@ -249,11 +249,10 @@ class _Panel:
         line = self.diagram.line
         if line is None:
             return []
-        width = self.across.end - self.across.start
-        steps = [self.across.low + (self.across.high - self.across.low) * i * 4 / width for i in range(int(width / 4))]
-        slope = line.carbon_dioxide_max / line.oxygen_in_air
-        places = [self.at(oxygen, line.carbon_dioxide_max - slope * oxygen) for oxygen in steps]
-        return [Box(x - 2, y - 2, x + 2, y + 2) for x, y in places]
+        (x1, y1), (x2, y2) = self.at(0.0, line.carbon_dioxide_max), self.at(line.oxygen_in_air, 0.0)
+        first, last = int(self.across.start), int(self.across.end)
+        places = [(x, y1 + (x - x1) / (x2 - x1) * (y2 - y1)) for x in range(first, last, 6)]
+        return [Box(x - 3, y - 3, x + 3, y + 3) for x, y in places]
 
     def outline(self, near: _Panel) -> str:
         """Where the other view lies in this one."""

@@ -22,7 +22,8 @@ from reporter.output.workbook_record import (
     write_limits,
     write_problems,
 )
-from reporter.output.workbook_summary import write_runs, write_summary
+from reporter.output.workbook_runs import write_runs
+from reporter.output.workbook_summary import write_summary
 from reporter.output.workbook_words import words
 from reporter.record import text_of
 
@@ -54,20 +55,20 @@ def write_workbook(outcome: Outcome, *, issued: datetime, version: str, phrases:
     spoken = phrases or load_phrases()
     record = outcome.record
     book = Book(issued, _report_name(outcome, spoken), record.system is System.SI)
-    pages = {name: book.sheet(words(name)["title"]) for name in _SHEETS}
+    pages = {name: book.sheet(words(name)["title"], wide=name == "derivations") for name in _SHEETS}
     write_readings(book, pages["readings"], outcome)
     further = other_series(outcome.ledger, book)
     if further:
         write_other_series(book, book.sheet(words("series")["title"]), further)
     write_inputs(book, pages["inputs"], outcome.ledger)
     write_derivations(book, pages["derivations"], outcome.ledger)
-    write_summary(book, pages["summary"], outcome, spoken)
-    write_runs(book, pages["runs"], outcome)
-    write_calibrations(book, pages["calibrations"], outcome)
-    write_criteria(book, pages["criteria"], outcome, spoken)
-    write_limits(book, pages["limits"], record.limits)
-    write_problems(book, pages["problems"], outcome, spoken)
-    write_about(book, pages["about"], outcome, version, spoken)
+    write_summary(pages["summary"], outcome, spoken)
+    write_runs(pages["runs"], outcome)
+    write_calibrations(pages["calibrations"], outcome)
+    write_criteria(pages["criteria"], outcome, spoken)
+    write_limits(pages["limits"], record.limits)
+    write_problems(pages["problems"], outcome, spoken)
+    write_about(pages["about"], outcome, version, spoken)
     return book.close()
 
 

@@ -105,9 +105,7 @@ class Book:
         if known not in self._formats:
             more = {"num_format": numbers} if numbers else {}
             base, _, right = style.partition(" ")
-            self._formats[known] = self._file.add_format(
-                _FONT | _STYLES[base] | (_RIGHT if right else {}) | more
-            )
+            self._formats[known] = self._file.add_format(_FONT | _STYLES[base] | (_RIGHT if right else {}) | more)
         return self._formats[known]
 
     def define(self, name: str, cells: str) -> None:
@@ -223,9 +221,7 @@ class Sheet:
         numbers = TIME if isinstance(moment, datetime) else DATE
         self.made.write_datetime(self.row, column, moment, self.book.format(style, numbers))
 
-    def live(
-        self, column: int, formula: str, value: float | str, numbers: str = "", style: str = "number"
-    ) -> None:
+    def live(self, column: int, formula: str, value: float | str, numbers: str = "", style: str = "number") -> None:
         """A formula with the value it has now.
 
         Raises

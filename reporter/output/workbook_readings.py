@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import datetime
@@ -15,6 +16,7 @@ from reporter.output.workbook_book import Book, Column, Sheet
 from reporter.output.workbook_words import words
 from reporter.record import ReadingKind
 
+_NUMBER = re.compile(r"[-+]?\d+(\.\d+)?")
 #: A number of a row, or None where the cell stays blank.
 Numbers = dict[int, float | None]
 
@@ -51,21 +53,30 @@ def write_readings(book: Book, sheet: Sheet, outcome: Outcome) -> None:
     sheet.head(columns, freeze=1)
     first = sheet.row
     reasons = _reasons(outcome)
+    shapes = {lane.name: _shape(outcome, lane) for lane in lanes}
     for number, row in enumerate(readings.rows):
-        sheet.moment(0, row.time, "text")
-        sheet.text(1, _run_at(outcome.runs, row.time))
+        sheet.moment(0, row.time)
+        sheet.text(1, _run_at(outcome.runs, row.time), "center")
         column = 2
         for lane in lanes:
             reading = row.readings[lane.index]
-            sheet.text(column, reading.text, "grey")
+            sheet.text(column, reading.text, "raw")
             column += 1
             plain = reading.value if reading.kind is ReadingKind.NUMBER else None
             for layer in lane.layers:
-                _number(sheet, column, layer.get(number, plain))
+                _number(sheet, column, layer.get(number, plain), shapes[lane.name])
                 column += 1
         sheet.text(column, "; ".join(reasons.get(row.time, ())), "wrap")
-        sheet.row += 1
+        sheet.next()
+    sheet.rules(first, len(columns))
     _define(book, sheet, lanes, first)
+
+
+def _shape(outcome: Outcome, lane: Lane) -> str:
+    """A number format with as many decimals as the logger wrote, at most six."""
+    texts = (row.readings[lane.index].text for row in outcome.record.readings.rows)
+    decimals = max((len(text.partition(".")[2]) for text in texts if _NUMBER.fullmatch(text)), default=0)
+    return "0." + "0" * min(decimals, 6) if decimals else "0"
 
 
 def _columns(lanes: Sequence[Lane]) -> list[Column]:
@@ -73,18 +84,18 @@ def _columns(lanes: Sequence[Lane]) -> list[Column]:
     made = [Column(**said["time"]), Column(**said["run"])]
     for lane in lanes:
         raw, used = said["raw"], said["used"]
-        made.append(Column(raw["name"].format(channel=lane.name), raw["width"]))
-        for _ in lane.layers:
-            unit = unit_text(lane.unit)
-            made.append(Column(used["name"].format(channel=lane.name, unit=unit), used["width"]))
+        unit = unit_text(lane.unit)
+        made.append(Column(**{**raw, "name": raw["name"].format(channel=lane.name)}))
+        heading = used["name"].format(channel=lane.name, unit=unit)
+        made.extend([Column(**{**used, "name": heading})] * len(lane.layers))
     return [*made, Column(**said["reason"])]
 
 
-def _number(sheet: Sheet, column: int, value: float | None) -> None:
+def _number(sheet: Sheet, column: int, value: float | None, shape: str) -> None:
     if value is None:
-        sheet.text(column, "", "input")
+        sheet.blank(column, "input")
     else:
-        sheet.number(column, value, "General", "input")
+        sheet.number(column, value, shape, "input")
 
 
 def _lane(outcome: Outcome, name: str) -> Lane:

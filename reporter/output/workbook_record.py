@@ -13,7 +13,7 @@ from reporter.ledger import Ledger
 from reporter.outcome import Check, Outcome
 from reporter.output.numbers import shortest, unit_text
 from reporter.output.phrases import Phrases
-from reporter.output.workbook_book import Book, Column, Sheet
+from reporter.output.workbook_book import Column, Sheet
 from reporter.output.workbook_home import number_format
 from reporter.output.workbook_summary import quoted
 from reporter.output.workbook_words import columns, words
@@ -26,11 +26,12 @@ _GRADES = {Grade.UNREADABLE: "unreadable", Grade.BLOCKS: "blocks", Grade.NOTE: "
 _PACKAGES = ("numpy", "openpyxl", "xlsxwriter")
 
 
-def write_calibrations(book: Book, sheet: Sheet, outcome: Outcome) -> None:
+def write_calibrations(sheet: Sheet, outcome: Outcome) -> None:
     """Every calibration reading as it was used."""
     table = columns("calibrations")
     sheet.title(words("calibrations")["title"], words("calibrations")["note"])
     sheet.head(table, freeze=2)
+    first = sheet.row
     for point in sorted(outcome.calibration_points, key=lambda point: (point.time, point.channel)):
         sheet.moment(0, point.time)
         sheet.texts({1: point.channel, 2: point.route, 3: point.level}, table)
@@ -38,17 +39,16 @@ def write_calibrations(book: Book, sheet: Sheet, outcome: Outcome) -> None:
         _live(sheet, outcome.ledger, 5, point.certified)
         unit = unit_text(outcome.ledger[point.reading].unit)
         sheet.texts({6: unit, 7: point.cylinder, 8: point.used_as, 9: point.reading}, table)
-        sheet.row += 1
+        sheet.next()
+    sheet.rules(first, len(table))
 
 
 def _live(sheet: Sheet, ledger: Ledger, column: int, key: str) -> None:
     if key:
         sheet.live(column, key, ledger[key].value, number_format(ledger[key]))
-    else:
-        sheet.text(column, "")
 
 
-def write_criteria(book: Book, sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
+def write_criteria(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
     """Every criterion with the numbers it compares and its live answer."""
     table = columns("criteria")
     sheet.title(words("criteria")["title"], words("criteria")["note"])
@@ -56,7 +56,8 @@ def write_criteria(book: Book, sheet: Sheet, outcome: Outcome, phrases: Phrases)
     first = sheet.row
     for check in outcome.checks:
         _criterion(sheet, outcome, check, phrases, table)
-        sheet.row += 1
+        sheet.next()
+    sheet.rules(first, len(table))
     if sheet.row > first:
         sheet.made.autofilter(first - 1, 0, sheet.row - 1, len(table) - 1)
 
@@ -73,24 +74,25 @@ def _criterion(sheet: Sheet, outcome: Outcome, check: Check, phrases: Phrases, t
     sheet.texts({5: check.relation, 11: check.citation.text()}, table)
     sheet.live(10, f"IF({check.key}=1,{quoted(met)},{quoted(not_met)})", met if check.met else not_met, "", "strong")
     if check.consequence:
+        sheet.text(12, check.consequence, "wrap")
         formula = f'IF({check.key}=1,"",{quoted(check.consequence)})'
         sheet.live(12, formula, "" if check.met else check.consequence, "", "wrap")
-    else:
-        sheet.text(12, "")
 
 
-def write_limits(book: Book, sheet: Sheet, limits: Sequence[Limit]) -> None:
+def write_limits(sheet: Sheet, limits: Sequence[Limit]) -> None:
     """Each limit as entered: one column for each, one row for each field that any of them has."""
     said = words("limits")
     sheet.title(said["title"], said["note"])
     heads = [Column("", said["field_width"], "strong")]
     heads += [Column(limit.limit_id.value, said["value_width"], "input_text") for limit in limits]
     sheet.head(heads, freeze=1)
+    first = sheet.row
     for name in (field.name for field in fields(Limit) if field.name not in {"place", "limit_id"}):
         texts = [as_entered(getattr(limit, name)) for limit in limits]
         if any(texts):
             sheet.texts([name.replace("_", " ").capitalize(), *texts], heads)
-            sheet.row += 1
+            sheet.next()
+    sheet.rules(first, len(heads))
 
 
 def as_entered(given: Given[object] | None) -> str:
@@ -109,19 +111,21 @@ def as_entered(given: Given[object] | None) -> str:
     return f"{text} {unit}".strip()
 
 
-def write_problems(book: Book, sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
+def write_problems(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
     """Everything found, gravest first; then what was assumed, and what the balance says."""
     said, table = words("problems"), columns("problems")
     sheet.title(said["title"], said["note"])
     sheet.head(table, freeze=1)
+    first = sheet.row
     if not outcome.problems:
         sheet.text(0, said["none"])
-        sheet.row += 1
+        sheet.next()
     for grade in _ORDER:
         for found in (problem for problem in outcome.problems if problem.grade is grade):
             texts = [phrases(f"grade.{_GRADES[grade]}"), found.title, found.place.text(), found.found]
             sheet.texts([*texts, found.expected, found.remedy, found.code], table)
-            sheet.row += 1
+            sheet.next()
+    sheet.rules(first, len(table))
     _lines(sheet, said["stated"], outcome.stated, len(table))
     _lines(sheet, said["findings"], [finding.words for finding in outcome.findings], len(table))
 
@@ -131,17 +135,16 @@ def _lines(sheet: Sheet, title: str, lines: Sequence[str], width: int) -> None:
         return
     sheet.section(title, width)
     for line in lines:
-        sheet.made.merge_range(sheet.row, 0, sheet.row, width - 1, "", sheet.book.format("wrap"))
-        sheet.text(0, line, "wrap")
-        sheet.row += 1
+        sheet.text(0, line)
+        sheet.next()
 
 
-def write_about(book: Book, sheet: Sheet, outcome: Outcome, version: str, phrases: Phrases) -> None:
+def write_about(sheet: Sheet, outcome: Outcome, version: str, phrases: Phrases) -> None:
     """How to read the workbook, what it was made from and by, and the statements."""
     said = words("about")
     source = outcome.record.source
     sheet.title(said["title"])
-    sheet.made.set_column(0, 0, said["width"])
+    sheet.widths([Column("", said["width"])])
     line = said["input_line"].format(name=source.name, size=source.size, sha256=source.sha256)
     packages = ", ".join(f"{name} {installed(name)}" for name in _PACKAGES)
     versions = f"fluebook {version}, Python {platform.python_version()}, {packages}"
@@ -150,10 +153,10 @@ def write_about(book: Book, sheet: Sheet, outcome: Outcome, version: str, phrase
         (said["reading"], said["how"]),
         (said["input"], [line]),
         (said["versions"], [versions]),
-        (said["issued"], [book.issued.isoformat(timespec="seconds")]),
+        (said["issued"], [sheet.book.issued.isoformat(timespec="seconds")]),
         (said["statements"], [phrases(f"statements.{name}") for name in statements]),
     ):
         sheet.section(title, 1)
         for text in lines:
             sheet.text(0, text, "wrap")
-            sheet.row += 1
+            sheet.next()

@@ -1,17 +1,17 @@
-"""Summary and Runs: each limit beside the runs' values, and the results of each run, all live by name."""
+"""Summary: each limit beside the runs' values, its wording live, and the state of each run."""
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable
 from datetime import date
 
-from reporter.ledger import Entry, Ledger
+from reporter.ledger import Ledger
 from reporter.outcome import Comparison, Outcome, RunResult, RunState
 from reporter.output.numbers import unit_text
 from reporter.output.phrases import Phrases
-from reporter.output.workbook_book import Book, Column, Sheet
-from reporter.output.workbook_home import known_quantity, label, number_format
-from reporter.output.workbook_words import columns, words
+from reporter.output.workbook_book import Column, Sheet
+from reporter.output.workbook_home import fixed_format, number_format, significant_format
+from reporter.output.workbook_words import words
 from reporter.record import Given, text_of
 
 _RELATIONS = {"at most": "at_most", "less than": "less_than", "at least": "at_least"}
@@ -22,124 +22,151 @@ def quoted(text: str) -> str:
     return '"' + text.replace('"', '""') + '"'
 
 
-def write_summary(book: Book, sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
+def write_summary(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
     """Identity, the limits with what was measured, the state of each run."""
     said = words("summary")
-    runs = outcome.runs
-    middle = [Column(f"Run {run.run.run.value}", 12) for run in runs]
-    table = [*columns("summary", "left"), *middle, *columns("summary", "right")]
-    for index, column in enumerate(table):
-        sheet.made.set_column(index, index, column.width)
+    limits = outcome.comparisons
+    width = 1 + max(len(limits), said["least_columns"])
+    sheet.widths([Column("", said["label_width"])] + [Column("", said["value_width"])] * (width - 1))
     sheet.title(said["title"], said["note"])
     _identity(sheet, outcome)
-    sheet.section(said["limits"], len(table))
-    sheet.head(table, widths=False)
-    if not outcome.comparisons:
+    sheet.section(said["limits"], width)
+    if limits:
+        heads = [Column(made.limit.limit_id.value, style="number") for made in limits]
+        sheet.head([Column("Limit"), *heads])
+        _limits(sheet, outcome, phrases)
+    else:
         sheet.text(0, phrases("lead.no_limits"))
-        sheet.row += 1
-    for comparison in outcome.comparisons:
-        _limit(sheet, outcome, comparison, phrases, table)
-    sheet.section(said["runs"], len(table))
-    sheet.head([Column(name) for name in said["run_columns"]], widths=False)
-    for run in runs:
-        _run(sheet, outcome.ledger, run, phrases)
+        sheet.next()
+    sheet.section(said["runs"], width)
+    sheet.head([Column(name, style="number" if name == "Load" else "text") for name in said["run_columns"]])
+    first = sheet.row
+    for run in outcome.runs:
+        _run(sheet, outcome, run, phrases)
+    sheet.rules(first, len(said["run_columns"]))
 
 
 def _identity(sheet: Sheet, outcome: Outcome) -> None:
+    first = sheet.row
     for name in words("summary")["identity"]:
         given: Given[object] | None = getattr(outcome.record.test, name)
-        if given is None:
-            continue
-        sheet.text(0, name.replace("_", " ").capitalize(), "strong")
-        value = given.value
-        sheet.made.merge_range(sheet.row, 1, sheet.row, 5, "", sheet.book.format("text"))
-        if isinstance(value, date):
-            sheet.text(1, value.isoformat())
-        else:
-            sheet.text(1, str(value))
-        sheet.row += 1
+        if given is not None:
+            sheet.text(0, name.replace("_", " ").capitalize(), "strong")
+            sheet.text(1, given.value.isoformat() if isinstance(given.value, date) else str(given.value))
+            sheet.next()
+    sheet.rules(first, 3)
 
 
-def _limit(sheet: Sheet, outcome: Outcome, comparison: Comparison, phrases: Phrases, table: Sequence[Column]) -> None:
-    ledger, limit = outcome.ledger, comparison.limit
-    of_run = {run: (key, flag) for run, key, flag in comparison.runs}
-    entry = ledger.get(comparison.value)
-    basis = entry.basis.text() if entry is not None else ""
-    unit = unit_text(limit.unit.value.unit)
-    sheet.texts([limit.limit_id.value, limit.pollutant.value, basis, unit], table)
-    column = 4
+def _limits(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
+    """One column for each limit, one row for each thing that is said of it."""
+    said = words("summary")["rows"]
+    ledger, made = outcome.ledger, outcome.comparisons
+    first = sheet.row
+
+    def row(title: str, write: Callable[[int, Comparison], None], style: str = "text") -> None:
+        sheet.text(0, title, "strong")
+        for column, comparison in enumerate(made, 1):
+            write(column, comparison)
+        sheet.next()
+
+    def texts(title: str, text: Callable[[Comparison], str]) -> None:
+        row(title, lambda column, comparison: sheet.text(column, text(comparison), "wrap right"))
+
+    def numbers(title: str, key: Callable[[Comparison], str], rests_on_average: bool) -> None:
+        row(title, lambda column, each: _number(sheet, ledger, column, each, key(each), rests_on_average))
+
+    texts(said["pollutant"], lambda each: each.limit.pollutant.value)
+    texts(said["basis"], lambda each: ledger[each.value].basis.text() if each.value else "")
+    texts(said["unit"], lambda each: unit_text(each.limit.unit.value.unit))
     for run in outcome.runs:
-        _run_value(sheet, ledger, column, of_run.get(run.key), phrases)
-        column += 1
-    relation = text_of(limit.relation, "at most")
-    for key, counted in (
-        (comparison.value, True),
-        (comparison.rounded, True),
-        ("", False),
-        (comparison.limit_key, False),
-        (comparison.margin, True),
-        (comparison.count, False),
-        (comparison.required, False),
-    ):
-        _live_or_missing(sheet, ledger, column, key, comparison.count if counted else "", phrases)
-        column += 1
-    sheet.text(column - 5, phrases(f"limit.symbol_{_RELATIONS[relation]}"))
-    formula, value = result_words(outcome, comparison, phrases)
-    if formula:
-        sheet.live(column, formula, value, style="strong")
-    else:
-        sheet.text(column, value, "strong")
-    source = "; ".join(part for part in (text_of(limit.authority), text_of(limit.citation)) if part)
-    rounding = comparison.rounding_words or text_of(limit.rounding)
-    sheet.texts({column + 1: rounding, column + 2: source}, table)
-    sheet.row += 1
+        title = said["run"].format(run=run.run.run.value)
+        row(title, lambda column, each, key=run.key: _run_value(sheet, ledger, column, each, key))  # type: ignore[misc]
+    numbers(said["value"], lambda each: each.value, True)
+    numbers(said["rounded"], lambda each: each.rounded, True)
+    row(said["limit"], lambda column, each: _limit(sheet, ledger, column, each, phrases))
+    numbers(said["margin"], lambda each: each.margin, True)
+    numbers(said["count"], lambda each: each.count, False)
+    numbers(said["required"], lambda each: each.required, False)
+    row(said["result"], lambda column, each: _result(sheet, outcome, column, each, phrases))
+    texts(said["rounding"], lambda each: each.rounding_words or text_of(each.limit.rounding))
+    texts(said["authority"], lambda each: text_of(each.limit.authority))
+    texts(said["citation"], lambda each: text_of(each.limit.citation))
+    sheet.rules(first, 1 + len(made))
 
 
-def _run_value(sheet: Sheet, ledger: Ledger, column: int, found: tuple[str, str] | None, phrases: Phrases) -> None:
+def _run_value(sheet: Sheet, ledger: Ledger, column: int, comparison: Comparison, run: str) -> None:
     """A run's value, or that it is not counted, as its indicator says."""
+    found = next(((key, flag) for name, key, flag in comparison.runs if name == run), None)
+    said = words("summary")
     if found is None:
-        sheet.text(column, words("summary")["none"], "number")
+        sheet.text(column, said["none"], "number")
         return
     key, flag = found
-    entry, not_counted = ledger[key], words("summary")["not_counted"]
-    value = entry.value if ledger[flag].value == 1.0 else not_counted
-    sheet.live(column, f"IF({flag}=1,{key},{quoted(not_counted)})", value, number_format(entry))
+    value = ledger[key].value if ledger[flag].value == 1.0 else said["not_counted"]
+    formula = f"IF({flag}=1,{key},{quoted(said['not_counted'])})"
+    sheet.live(column, formula, value, number_format(ledger[key]))
 
 
-def _live_or_missing(sheet: Sheet, ledger: Ledger, column: int, key: str, count: str, phrases: Phrases) -> None:
-    """A reference to an entry; one that rests on an average is blanked where no run counts."""
+def _number(
+    sheet: Sheet, ledger: Ledger, column: int, comparison: Comparison, key: str, rests_on_average: bool
+) -> None:
+    """A reference to an entry; one that rests on an average is a dash where no run counts."""
+    none = words("summary")["none"]
     if not key:
-        sheet.text(column, words("summary")["none"], "number")
+        sheet.text(column, none, "number")
         return
-    entry, none = ledger[key], quoted(words("summary")["none"])
-    formula = f"IF({count}=0,{none},{key})" if count else key
-    sheet.live(column, formula, entry.value, number_format(entry))
+    shape = _rounded_format(ledger, comparison) if key == comparison.rounded else number_format(ledger[key])
+    formula = f"IF({comparison.count}=0,{quoted(none)},{key})" if rests_on_average else key
+    sheet.live(column, formula, ledger[key].value, shape)
+
+
+def _rounded_format(ledger: Ledger, comparison: Comparison) -> str:
+    """As many decimals as the rounding rule leaves."""
+    value = ledger[comparison.rounded].value
+    decimals = ledger.get(f"{comparison.key}.rounding_decimals")
+    digits = ledger.get(f"{comparison.key}.rounding_digits")
+    if decimals is not None:
+        return fixed_format(int(decimals.value))
+    return significant_format(value, int(digits.value)) if digits is not None else "General"
+
+
+def _limit(sheet: Sheet, ledger: Ledger, column: int, comparison: Comparison, phrases: Phrases) -> None:
+    """The limit as a number with its relation before it."""
+    key, none = comparison.limit_key, words("summary")["none"]
+    if not key:
+        sheet.text(column, none, "number")
+        return
+    relation = phrases(f"limit.symbol_{_relation(comparison)}")
+    sheet.live(column, key, ledger[key].value, f'"{relation} "General')
+
+
+def _relation(comparison: Comparison) -> str:
+    return _RELATIONS[text_of(comparison.limit.relation, "at most")]
+
+
+def _result(sheet: Sheet, outcome: Outcome, column: int, comparison: Comparison, phrases: Phrases) -> None:
+    formula, value = result_words(outcome, comparison, phrases)
+    sheet.text(column, value, "strong right")
+    if formula:
+        sheet.live(column, formula, value, style="strong right")
 
 
 def result_words(outcome: Outcome, comparison: Comparison, phrases: Phrases) -> tuple[str, str]:
     """The wording of a comparison as a live formula (empty where it is fixed) and as it is now."""
-    relation = _RELATIONS[text_of(comparison.limit.relation, "at most")]
-    met, not_met = (phrases(f"limit.{relation}_{end}") for end in ("met", "not_met"))
-    count, required = comparison.count, comparison.required
+    met, not_met = (phrases(f"limit.{_relation(comparison)}_{end}") for end in ("met", "not_met"))
     now = phrases("limit.not_compared", reason=comparison.reason)
     if comparison.is_met is not None:
         now = met if comparison.is_met else not_met
     if not comparison.met or not (comparison.compared or _too_few(outcome.ledger, comparison)):
         return "", now
-    formula = f"IF({comparison.met}=1,{quoted(met)},{quoted(not_met)})"
-    if not any(text_of(run.run.approval_reference) for run in outcome.runs):
-        head, tail = _few_words(phrases)
-        few = f'{quoted(head)}&{count}&" valid run(s) of "&{required}&{quoted(" required" + tail)}'
-        formula = f"IF({count}<{required},{few},{formula})"
-    else:
-        none = phrases("limit.not_compared", reason="no valid run has this result")
-        formula = f"IF({count}=0,{quoted(none)},{formula})"
-    return formula, now
-
-
-def _few_words(phrases: Phrases) -> tuple[str, str]:
+    count, required = comparison.count, comparison.required
+    answer = f"IF({comparison.met}=1,{quoted(met)},{quoted(not_met)})"
+    none = phrases("limit.not_compared", reason="no valid run has this result")
+    if any(text_of(run.run.approval_reference) for run in outcome.runs):
+        return f"IF({count}=0,{quoted(none)},{answer})", now
     head, _, tail = phrases("limit.not_compared", reason="\0").partition("\0")
-    return head, tail
+    few = f'{quoted(head)}&{count}&" valid run(s) of "&{required}&{quoted(" required" + tail)}'
+    return f"IF({count}=0,{quoted(none)},IF({count}<{required},{few},{answer}))", now
 
 
 def _too_few(ledger: Ledger, comparison: Comparison) -> bool:
@@ -148,17 +175,26 @@ def _too_few(ledger: Ledger, comparison: Comparison) -> bool:
     return bool(count < required) and comparison.reason.startswith(f"{count:.0f} valid run")
 
 
-def _run(sheet: Sheet, ledger: Ledger, run: RunResult, phrases: Phrases) -> None:
+def _run(sheet: Sheet, outcome: Outcome, run: RunResult, phrases: Phrases) -> None:
     sheet.text(0, run.run.run.value, "strong")
     sheet.moment(1, run.run.start.value)
     sheet.moment(2, run.run.end.value)
     formula, value = state_words(run, phrases)
+    sheet.text(3, value, "wrap")
     if formula:
-        sheet.live(3, formula, value, style="text")
-    else:
-        sheet.text(3, value)
-    sheet.text(4, "; ".join(run.reasons))
-    sheet.row += 1
+        sheet.live(3, formula, value, style="wrap")
+    load = outcome.ledger.get(f"run.{run.key}.load")
+    if load is not None:
+        sheet.live(4, load.key, load.value, f'{number_format(load)}" {_load_unit(run, load.unit)}"')
+    used = [use.fuel.value for use in outcome.record.fuel_use if use.run.value == run.run.run.value]
+    fuels = used or [fuel.fuel.value for fuel in outcome.record.fuels]
+    sheet.text(5, ", ".join(dict.fromkeys(fuels)), "wrap")
+    sheet.text(6, "; ".join(run.reasons), "wrap")
+    sheet.next()
+
+
+def _load_unit(run: RunResult, unit: str) -> str:
+    return (unit_text(unit) or text_of(run.run.load_unit)).replace('"', "")
 
 
 def state_words(run: RunResult, phrases: Phrases) -> tuple[str, str]:
@@ -169,53 +205,3 @@ def state_words(run: RunResult, phrases: Phrases) -> tuple[str, str]:
     flags = ",".join(f"{gas.valid}=1" for gas in run.gases)
     now = valid if run.state is RunState.VALID else invalid
     return (f"IF(AND({flags}),{quoted(valid)},{quoted(invalid)})", now) if flags else ("", now)
-
-
-def write_runs(book: Book, sheet: Sheet, outcome: Outcome) -> None:
-    """A matrix of quantities by runs; a value that does not count is greyed by its indicator."""
-    said = words("runs")
-    runs = outcome.runs
-    table = [*columns("runs", "left"), *(Column(f"Run {r.run.run.value}", said["run_width"]) for r in runs)]
-    table.append(Column(**said["average"]))
-    sheet.title(said["title"], said["note"])
-    sheet.head(table, freeze=1)
-    group = ""
-    for name, entries in _matrix(outcome.ledger, runs).items():
-        subject = name.partition(".")[0]
-        if subject != group:
-            group = subject
-        first = next(iter(entries.values()))
-        sheet.texts([_row_label(first), unit_text(first.unit), first.basis.text()], table)
-        for column, run in enumerate(runs, 3):
-            entry = entries.get(run.key)
-            gas = run.gas(subject)
-            counts = gas is None or gas.is_valid
-            if entry is None:
-                sheet.text(column, "", "text")
-            else:
-                style = "number" if counts else "grey"
-                sheet.live(column, entry.key, entry.value, number_format(entry), style)
-        average = outcome.ledger.get(f"average.{name}")
-        if average is None:
-            sheet.text(3 + len(runs), "", "text")
-        else:
-            sheet.live(3 + len(runs), average.key, average.value, number_format(average))
-        sheet.row += 1
-
-
-def _row_label(entry: Entry) -> str:
-    return ", ".join(part for part in label(entry).split(", ") if not part.startswith("run "))
-
-
-def _matrix(ledger: Ledger, runs: Sequence[RunResult]) -> Mapping[str, dict[str, Entry]]:
-    """Entries by the key after ``run.<run>.`` and by run, in the order of the first run that has them."""
-    shown = set(words("runs")["quantities"])
-    found: dict[str, dict[str, Entry]] = {}
-    for run in runs:
-        prefix = f"run.{run.key}."
-        for entry in ledger.under(prefix.rstrip(".")):
-            quantity = known_quantity(entry.key)
-            if not entry.is_series and quantity is not None and quantity.segment in shown:
-                found.setdefault(entry.key.removeprefix(prefix), {})[run.key] = entry
-    subjects = list(dict.fromkeys(name.partition(".")[0] for name in found))
-    return {name: found[name] for subject in subjects for name in found if name.partition(".")[0] == subject}

@@ -83,6 +83,13 @@ class Desk:
         cell = self.show(key, unit=True)
         return cell.text if isinstance(cell, Shown) else str(cell)
 
+    def anchor(self, key: str) -> str:
+        """The key as the anchor of its derivation row; nothing where it has one already."""
+        if key in self.anchors:
+            return ""
+        self.anchors.add(key)
+        return key
+
     def label(self, key: str) -> str:
         """The words for a key: its entry's label, else the words of the quantity table, else the key."""
         entry = self.outcome.ledger.get(key)

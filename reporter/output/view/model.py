@@ -185,7 +185,7 @@ class Source:
 
 @dataclass(frozen=True, slots=True)
 class Step:
-    """One step of the sample calculation; `formula` and `numbers` are markup made by the typesetter."""
+    """One step of the sample calculation (`key` empty where its derivation row stands before); `formula` and `numbers` are markup made by the typesetter."""
 
     key: str
     number: int

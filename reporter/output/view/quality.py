@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 
 from reporter.ledger import Entry, FromEquation
 from reporter.output.numbers import formulas
@@ -36,11 +37,17 @@ def quality(desk: Desk) -> QualityView:
 
 
 def _groups(checks: Sequence[Check]) -> dict[str, list[Check]]:
-    """Checks of one criterion together, by the part of the title before its particulars."""
-    groups: dict[str, list[Check]] = {}
+    """Checks of one criterion together, by the part of the title before its particulars.
+
+    A check that bears on two runs (closing one, opening the next) is listed once, with both.
+    """
+    groups: dict[str, dict[tuple[str, str], Check]] = {}
     for check in checks:
-        groups.setdefault(check.title.partition(",")[0], []).append(check)
-    return groups
+        mine = groups.setdefault(check.title.partition(",")[0], {})
+        same = mine.get((check.value, check.bound))
+        runs = check.runs if same is None else tuple(dict.fromkeys((*same.runs, *check.runs)))
+        mine[check.value, check.bound] = replace(check if same is None else same, runs=runs)
+    return {title: list(mine.values()) for title, mine in groups.items()}
 
 
 def _overview(desk: Desk) -> Table:
@@ -142,8 +149,7 @@ def _block(desk: Desk, title: str, checks: Sequence[Check]) -> Block:
         if has_difference:
             cells.append(desk.show(check.difference, unit=True) if check.alternative else "")
         cells.append(Cell(desk.words("criterion.met" if check.met else "criterion.not_met"), strong=not check.met))
-        rows.append(Row(tuple(cells), anchor=entry.key))
-        desk.anchors.add(entry.key)
+        rows.append(Row(tuple(cells), anchor=desk.anchor(entry.key)))
     return Block(title=title, text=(_bound_words(desk, checks, values[0]),), tables=(aligned(Table(tuple(columns), tuple(rows))),))
 
 

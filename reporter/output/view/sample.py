@@ -41,11 +41,10 @@ class _Writer:
         origin = entry.origin
         assert isinstance(origin, FromEquation)
         self.numbers[entry.key] = len(self.numbers) + 1
-        desk.anchors.add(entry.key)
         desk.printed[entry.key] = None
         equation = origin.equation.in_system(desk.outcome.ledger.system)
         return Step(
-            key=entry.key,
+            key=desk.anchor(entry.key),
             number=self.numbers[entry.key],
             title=desk.label(entry.key),
             symbol=symbol_html(equation.symbol),

@@ -1,0 +1,1 @@
+"""What is written: JSON, workbook, PDF; each from the same outcome."""

@@ -1,0 +1,79 @@
+"""Runs: a matrix of quantities by runs with the averages, all live by name."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+
+from reporter.gases import find_gas
+from reporter.ledger import Entry, Ledger
+from reporter.outcome import Outcome, RunResult
+from reporter.output.numbers import unit_text
+from reporter.output.workbook_book import Column, Sheet
+from reporter.output.workbook_home import known_quantity, label, number_format
+from reporter.output.workbook_words import columns, words
+
+_FIRST_RUN = 3
+
+
+def write_runs(sheet: Sheet, outcome: Outcome) -> None:
+    """One row for each quantity, gas by gas; a number of a channel that is not valid in a run is struck out."""
+    said, runs = words("runs"), outcome.runs
+    table = list(columns("runs", "left"))
+    table += [Column(f"Run {run.run.run.value}", said["run_width"], "number") for run in runs]
+    table.append(Column(**said["average"]))
+    sheet.title(said["title"], said["note"])
+    sheet.head(table, freeze=1)
+    rows = _matrix(outcome.ledger, runs)
+    for subject in dict.fromkeys(_subject(name) for name in rows):
+        sheet.section(subject or said["others"], len(table), "group")
+        first = sheet.row
+        for name, entries in rows.items():
+            if _subject(name) == subject:
+                _row(sheet, outcome, name, entries, table)
+        sheet.rules(first, len(table))
+
+
+def _subject(name: str) -> str:
+    """The gas or other subject of a row, as it is printed; empty for the run itself."""
+    segment, _, rest = name.partition(".")
+    if not rest or known_quantity(f"x.{segment}") is not None:
+        return ""
+    found = find_gas(segment)
+    return found.label if found is not None else segment.replace("_", " ").capitalize()
+
+
+def _row(sheet: Sheet, outcome: Outcome, name: str, entries: Mapping[str, Entry], table: Sequence[Column]) -> None:
+    shown = next(iter(entries.values()))
+    sheet.texts([_row_label(shown, name), unit_text(shown.unit), shown.basis.text()], table)
+    for column, run in enumerate(outcome.runs, _FIRST_RUN):
+        entry = entries.get(run.key)
+        gas = run.gas(name.partition(".")[0])
+        if entry is not None:
+            style = "number" if gas is None or gas.is_valid else "uncounted"
+            sheet.live(column, entry.key, entry.value, number_format(entry), style)
+    average = outcome.ledger.get(f"average.{name}")
+    if average is not None:
+        sheet.live(_FIRST_RUN + len(outcome.runs), average.key, average.value, number_format(average))
+    sheet.next()
+
+
+def _row_label(entry: Entry, name: str) -> str:
+    """The label without the gas, which stands above, and without the run, which is the column."""
+    parts = [part for part in label(entry).split(", ") if not part.startswith("run ")]
+    if len(parts) > 1 and parts[0] == _subject(name):
+        parts = parts[1:]
+    text = ", ".join(parts) or name
+    return text[:1].upper() + text[1:]
+
+
+def _matrix(ledger: Ledger, runs: Sequence[RunResult]) -> Mapping[str, dict[str, Entry]]:
+    """Entries by the key after ``run.<run>.`` and by run, in the order of the ledger."""
+    shown = set(words("runs")["quantities"])
+    found: dict[str, dict[str, Entry]] = {}
+    for run in runs:
+        prefix = f"run.{run.key}."
+        for entry in ledger.under(prefix.rstrip(".")):
+            quantity = known_quantity(entry.key)
+            if not entry.is_series and quantity is not None and quantity.segment in shown:
+                found.setdefault(entry.key.removeprefix(prefix), {})[run.key] = entry
+    return found

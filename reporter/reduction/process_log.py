@@ -1,0 +1,66 @@
+"""The process log averaged over each run."""
+
+from __future__ import annotations
+
+from datetime import datetime
+
+from reporter.equation import Citation, Value, equation
+from reporter.functions import mean
+from reporter.ledger import FromCells, slug
+from reporter.problems import Place
+from reporter.reduction.bases import RunBook
+from reporter.reduction.book import Book
+
+
+@equation(
+    "mean",
+    "*p",
+    {"readings": "*p"},
+    Citation("practice", "", "mean of the process readings of a run"),
+    symbols={"readings": "x_i"},
+    series=("readings",),
+)
+def process_mean(*, readings: Value) -> Value:
+    """Arithmetic mean of the process readings of a run.
+
+    Parameters
+    ----------
+    readings
+        Readings [the column's unit], a series.
+
+    Returns
+    -------
+    float
+        Mean [same unit].
+    """
+    return mean(readings)
+
+
+def reduce_process_log(book: Book, about: RunBook) -> None:
+    """Enter the mean of each numeric process column over a run, keys ``run.<run>.process.<column>``."""
+    log = book.record.process
+    inside = [i for i, time in enumerate(log.times) if _within(about, time)]
+    taken: set[str] = set()
+    for position, column in enumerate(log.columns):
+        values = [value for i in inside if isinstance(value := log.values[i][position], float)]
+        name = slug(column)
+        if not values or name in taken:
+            continue
+        taken.add(name)
+        unit = log.units[position]
+        place = Place(book.record.source.name, log.place.sheet or "Process", "", column)
+        words = f"{len(values)} readings from {log.times[inside[0]]:%H:%M} to {log.times[inside[-1]]:%H:%M}"
+        key = about.key(f"process.{name}")
+        series = book.ledger.enter(
+            f"{key}.readings",
+            values,
+            unit.unit if unit is not None else "1",
+            FromCells(place, words),
+            label=f"{column}, readings of run {about.run.run.value}",
+        )
+        label = f"{column}, mean of run {about.run.run.value}"
+        book.ledger.apply(process_mean, key, {"readings": series}, label=label)
+
+
+def _within(about: RunBook, time: datetime) -> bool:
+    return about.run.start.value <= time <= about.run.end.value
