@@ -147,6 +147,9 @@ def report(
     from reporter.output.files import write_whole
 
     source, target = Path(path), Path(out)
+    places = {suffix: target / f"{source.stem}{suffix}" for suffix in (".json", ".xlsx", ".pdf")}
+    if any(place.exists() and source.exists() and place.samefile(source) for place in places.values()):
+        raise OutputError("the results would overwrite the input; choose another folder", source.name)
     outcome = opened(source)
     files = report_files(
         outcome,
@@ -155,14 +158,15 @@ def report(
         templates=None if templates is None else Path(templates),
         minute_data=minute_data,
     )
-    target.mkdir(parents=True, exist_ok=True)
     written: list[Path] = []
-    for suffix, content in files.items():
-        place = target / f"{source.stem}{suffix}"
-        if place.exists() and source.exists() and place.samefile(source):
-            raise OutputError("the results would overwrite the input; choose another folder", place.name)
-        write_whole(place, content)
-        written.append(place)
+    try:
+        for suffix, content in files.items():
+            write_whole(places[suffix], content)
+            written.append(places[suffix])
+    except OutputError:
+        for place in written:
+            place.unlink(missing_ok=True)
+        raise
     return Report(source.stem, tuple(written), outcome)
 
 

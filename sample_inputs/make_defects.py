@@ -97,13 +97,10 @@ def _chosen(sheets: Sheets, rule: Mapping[str, Any]) -> list[Row]:
         within = [row for row in rows if run["Start"] < row["Time"] <= run["End"]]
         return [within[m] for m in rule["minutes"]] if "minutes" in rule else within
     where = rule.get("where", {})
-    begin, until = rule.get("from", datetime.min), rule.get("until", datetime.max)
-    return [
-        row
-        for row in rows
-        if all(row.get(key) == value for key, value in where.items())
-        and ("Time" not in row or begin <= row["Time"] <= until)
-    ]
+    chosen = [row for row in rows if all(row.get(key) == value for key, value in where.items())]
+    if "from" not in rule:
+        return chosen
+    return [row for row in chosen if rule["from"] <= row["Time"] <= rule.get("until", datetime.max)]
 
 
 def rezipped(content: bytes, change: Callable[[str, bytes], bytes], more: Mapping[str, bytes] | None = None) -> bytes:
@@ -164,10 +161,10 @@ FILE_CHANGES: dict[str, Callable[[bytes], bytes]] = {
 
 def main() -> None:
     """Write every defect file."""
+    made = dict(build(code) for code in changes())
     for old in (*DEFECTS.glob("*.xlsx"), *DEFECTS.glob("*.json")):
         old.unlink()
-    for code in changes():
-        name, content = build(code)
+    for name, content in made.items():
         (DEFECTS / name).write_bytes(content)
 
 

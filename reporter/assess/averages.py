@@ -25,9 +25,7 @@ class Average:
     with_excluded: Entry | None
 
 
-def average(
-    book: Book, runs: Sequence[RunBook], name: str, limit: Limit | None = None, *, suffix: str = ""
-) -> Average:
+def average(book: Book, runs: Sequence[RunBook], name: str, limit: Limit | None = None, *, suffix: str = "") -> Average:
     """Average ``run.<run>.<name>`` over the runs that count, key ``average.<name>``."""
     parts: list[tuple[RunBook, Entry, Entry]] = []
     for about in runs:
@@ -81,7 +79,5 @@ def order_of_averaging(book: Book, runs: Sequence[RunBook], name: str, made: Ave
     except FluebookError:
         return
     if abs(difference.value) > _ORDER_PERCENT:
-        said = (
-            f"{name}: mean inputs would give {difference.value:+.2f} % against the mean of the runs' results"
-        )
+        said = f"{name}: mean inputs would give {difference.value:+.2f} % against the mean of the runs' results"
         book.trouble("order-of-averaging", book.file_place(), said)

@@ -7,7 +7,7 @@ from dataclasses import dataclass, replace
 from typing import Any
 
 from reporter.assess.averages import Average, order_of_averaging
-from reporter.assess.rounding import Rule, rounding_rule, significant_places
+from reporter.assess.rounding import Rule, decimals_of, rounding_rule, significant_places
 from reporter.basis import NO_BASIS, NO_VOLUME, Basis, Moisture, Oxygen, OxygenKind
 from reporter.conversions import convert_entry
 from reporter.equation import Equation
@@ -85,9 +85,7 @@ def _runs(made: Made) -> tuple[tuple[str, str, str], ...]:
 def _refusal(book: Book, limit: Limit, key: str) -> str:
     """Why a limit is not compared whatever was measured: no citation, or not in force."""
     lacking = [
-        name
-        for name, value in (("authority", limit.authority), ("citation", limit.citation))
-        if not text_of(value)
+        name for name, value in (("authority", limit.authority), ("citation", limit.citation)) if not text_of(value)
     ]
     if lacking:
         said = f"limit {limit.limit_id.value}: no {' and no '.join(lacking)} entered"
@@ -138,7 +136,8 @@ def _in_limit_unit(book: Book, entry: Entry, unit: str) -> Entry:
 def _compared(book: Book, runs: Sequence[RunBook], made: Made, blank: Comparison, reason: str) -> Comparison:
     limit, key = blank.limit, blank.key
     unit = limit.unit.value.unit
-    bound = book.given(f"{key}.limit", limit.limit, unit, basis=limit_basis(made.plan))
+    places = decimals_of(limit.limit.text)
+    bound = book.given(f"{key}.limit", limit.limit, unit, basis=limit_basis(made.plan), decimals=places)
     relation = text_of(limit.relation, "at most")
     if limit.relation is None:
         book.say(f"Limit {limit.limit_id.value}: no relation was entered; 'at most' is taken.")
@@ -194,9 +193,7 @@ def _notes(made: Made, each: bool, limit: Limit) -> tuple[str, ...]:
     if limit.in_force_from is None:
         notes.append("no date from which the limit is in force was entered")
     if text_of(limit.decision_rule):
-        notes.append(
-            f"decision rule as entered: {text_of(limit.decision_rule)}; the plain comparison is shown"
-        )
+        notes.append(f"decision rule as entered: {text_of(limit.decision_rule)}; the plain comparison is shown")
     if made.plan.lane.gas.by_analogy and made.plan.quantity == kinds.EMISSION_RATE:
         notes.append("by analogy with Method 19")
     return tuple(notes)
@@ -225,9 +222,7 @@ def _too_few(
     book: Book, limit: Limit, key: str, count: Entry, required: Entry, runs: Sequence[RunBook]
 ) -> tuple[str, tuple[str, ...]]:
     """The reason for too few valid runs, or the approval that lets fewer stand."""
-    approvals = [
-        text_of(about.run.approval_reference) for about in runs if text_of(about.run.approval_reference)
-    ]
+    approvals = [text_of(about.run.approval_reference) for about in runs if text_of(about.run.approval_reference)]
     said = f"{count.value:.0f} valid run(s) of {required.value:.0f} required"
     if approvals:
         return "", (f"{said}; fewer runs as approved: {', '.join(dict.fromkeys(approvals))}",)

@@ -62,11 +62,7 @@ def _spans(book: Book, abouts: Sequence[RunBook]) -> None:
     for about in abouts:
         for corrected in about.corrected.values():
             entered, span = corrected.lane.channel.calibration_span, corrected.span
-            if (
-                entered is not None
-                and span is not None
-                and abs(entered.value - span.value) > 1e-6 * span.value
-            ):
+            if entered is not None and span is not None and abs(entered.value - span.value) > 1e-6 * span.value:
                 said = f"{corrected.lane.name}: entered {entered.value:g}, high-level gas {span.value:g} {span.unit}"
                 book.trouble("span-differs", entered.place, said)
 

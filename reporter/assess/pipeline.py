@@ -12,7 +12,8 @@ from reporter.ledger import Ledger
 from reporter.methods.averages import mean_of_valid
 from reporter.outcome import Comparison, Outcome
 from reporter.record import Record, Run
-from reporter.reduction.bases import RunBook, put_on_bases
+from reporter.reduction.ambient import ambient_air
+from reporter.reduction.bases import RunBook, calculate_moisture, put_on_bases
 from reporter.reduction.book import Book, Lane, lanes, runs_in_order
 from reporter.reduction.calibration import calibrations
 from reporter.reduction.combust import balance
@@ -20,7 +21,8 @@ from reporter.reduction.converter import check_converter
 from reporter.reduction.correction import correct
 from reporter.reduction.diluents import reduce_diluents
 from reporter.reduction.flow import dry_standard_flow
-from reporter.reduction.fuels import heat_input, heat_inputs, run_factors, shares
+from reporter.reduction.fuels import run_factors, shares
+from reporter.reduction.heat import heat_input, heat_inputs
 from reporter.reduction.moisture import moisture
 from reporter.reduction.plans import Plan, plans
 from reporter.reduction.process import reduce_load
@@ -50,11 +52,7 @@ def assess(record: Record) -> Outcome:
     tracks = lanes(record)
     runs = runs_in_order(record)
     windows = {run.key: window(book, run) for run in runs}
-    series = {
-        (lane.segment, run.key): reduce_readings(book, lane, windows[run.key])
-        for lane in tracks
-        for run in runs
-    }
+    series = {(lane.segment, run.key): reduce_readings(book, lane, windows[run.key]) for lane in tracks for run in runs}
     abouts = [RunBook(run) for run in runs]
     _correct(book, tracks, runs, abouts)
     wanted = plans(book, tracks)
@@ -83,6 +81,7 @@ def _correct(book: Book, tracks: Sequence[Lane], runs: Sequence[Run], abouts: Se
     """Moisture of each run, then every channel's calibrations, corrected means and bases."""
     for about in abouts:
         about.moisture = moisture(book, about.run)
+        ambient_air(book, about.run)
     for lane in tracks:
         found = calibrations(book, lane)
         check_converter(book, lane)
@@ -90,21 +89,20 @@ def _correct(book: Book, tracks: Sequence[Lane], runs: Sequence[Run], abouts: Se
             put_on_bases(book, about, corrected)
 
 
-def _reduce_run(
-    book: Book, about: RunBook, wanted: Sequence[Plan], missing: dict[str, list[Missing]]
-) -> None:
+def _reduce_run(book: Book, about: RunBook, wanted: Sequence[Plan], missing: dict[str, list[Missing]]) -> None:
     """Everything of one run from its corrected means: diluents, heat input, flow, balance, results."""
     parts = heat_inputs(book, about)
     heat = heat_input(book, about, parts)
     share = shares(book, about, parts)
     factors = run_factors(book, about, share)
+    for diluent in ("o2", "co2"):
+        reading_uncertainty(book, about, diluent)
+    balance(book, about, share)
+    calculate_moisture(book, about)
     means = Means(share, heat, dry_standard_flow(book, about))
     reduce_load(book, about)
     reduce_process_log(book, about)
     reduce_diluents(book, about, tuple(share), factors)
-    for diluent in ("o2", "co2"):
-        reading_uncertainty(book, about, diluent)
-    balance(book, about, share)
     for plan in wanted:
         made = result(book, about, means, plan)
         if isinstance(made, Missing):

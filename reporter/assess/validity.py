@@ -29,9 +29,7 @@ def channels_behind(book: Book, about: RunBook, entry: Entry) -> list[str]:
     ]
 
 
-def counts(
-    book: Book, about: RunBook, entry: Entry, limit: Limit | None, *, whatever_excluded: bool = False
-) -> Entry:
+def counts(book: Book, about: RunBook, entry: Entry, limit: Limit | None, *, whatever_excluded: bool = False) -> Entry:
     """The indicator that a result counts, made of the validity of its channels and the run's own state."""
     segments = channels_behind(book, about, entry)
     flags = [about.corrected[segment].valid for segment in segments]

@@ -7,12 +7,17 @@ from dataclasses import dataclass
 from typing import TypeVar
 
 from reporter.combustion.components import find_component
-from reporter.combustion.fuel import Fuel
+from reporter.combustion.fuel import Fuel, Share
 from reporter.ledger import Entry, FromTable, Ledger, Origin, Stated
 
 T = TypeVar("T")
 #: Elements counted, with their symbols.
 SYMBOLS = {"carbon": "C", "hydrogen": "H", "oxygen": "O", "nitrogen": "N", "sulfur": "S"}
+
+
+def amount_symbol(name: str) -> str:
+    """Symbol of the amount of an element, of water or of inert gas."""
+    return f"n_{(SYMBOLS | {'water': 'W', 'inert': 'I'})[name]}"
 
 
 @dataclass(frozen=True, slots=True)
@@ -50,12 +55,13 @@ class FuelBook:
             return FromTable(self.fuel.citation, self.fuel.name)
         return Stated("as given", self.fuel.citation)
 
-    def given(self, name: str, key: str, value: float, unit: str, spread: float, label: str) -> Entry:
-        """The entry of a share as given."""
-        if name in self.entries:
-            return self.entries[name]
-        note = f"assumed, ± {spread:g} {unit}" if self.fuel.assumed else ""
-        return self.ledger.enter(f"{self.prefix}.{key}", value, unit, self.origin_of(name), label=label, note=note)
+    def given(self, share: Share, key: str, *, label: str, unit: str = "%") -> Entry:
+        """The entry of a share, or of the heat, as given."""
+        if share.name in self.entries:
+            return self.entries[share.name]
+        note = f"assumed, ± {share.spread:g} {unit}" if self.fuel.assumed else ""
+        origin = self.origin_of(share.name)
+        return self.ledger.enter(f"{self.prefix}.{key}", share.percent, unit, origin, label=label, note=note)
 
     def zero(self, name: str, reason: str) -> Entry:
         """An amount that is zero, and why."""
@@ -65,7 +71,7 @@ class FuelBook:
             self.fuel.amount_unit,
             Stated(reason),
             label=f"{self.fuel.name}: {name}",
-            symbol=f"n_{SYMBOLS.get(name, name)}",
+            symbol=amount_symbol(name),
         )
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from reporter.basis import Moisture, Need
 from reporter.combustion.air import AMOUNT, BALANCE
 from reporter.combustion.balance import DRY_PRODUCTS
-from reporter.combustion.rich import WATER_GAS
+from reporter.combustion.water_gas import WATER_GAS
 from reporter.equation import Value, equation
 
 _DRY = Need(moisture=Moisture.DRY)

@@ -169,7 +169,7 @@ def _water(book: RunBook, solution: Solution, n: dict[str, Entry], q: Entry) -> 
         inputs = {"water": water, "h2": n["h2"]}
         n["h2o"] = book.apply(rich.water_beside_hydrogen, "h2o", inputs, "water")
     else:
-        n["h2"] = book.stated("h2", 0.0, n["co"].unit, "hydrogen taken as burned")
+        n["h2"] = book.no_amount("h2", "hydrogen taken as burned", "hydrogen left")
         vapour = {
             "from_fuel": book.of_fuel("combustion_water"),
             "air": solution.air,
@@ -211,7 +211,7 @@ def _expected(book: RunBook, solution: Solution, n: dict[str, Entry]) -> None:
 
     if solution.by != "co2":
         dry_percent("co2", "dry CO2 expected from the balance")
-    if book.gas.o2 is None or solution.wet is not None:
+    if book.gas.o2 is None or book.gas.o2 in book.gas.wet:
         dry_percent("o2", "dry O2 expected from the balance")
     inputs = {"water": n["h2o"], "products": n["wet"]}
     book.apply(mixture.expected_moisture, "moisture_expected", inputs, "moisture expected from combustion")

@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from typing import Any
 
-from reporter.basis import AS_MEASURED, Basis, Moisture
+from reporter.basis import AS_MEASURED, NO_BASIS, Basis, Moisture
 from reporter.combustion import shares
 from reporter.combustion.air import AirEntries, humidity_from_moisture
 from reporter.combustion.components import atoms_of
@@ -86,14 +86,21 @@ class RunBook:
         """Compute and record under this balance's prefix."""
         return self.ledger.apply(eq, f"{self.prefix}.{name}", inputs, label=label, symbol=symbol)
 
-    def stated(self, name: str, value: float, unit: str, reason: str, basis: Basis | None = None) -> Entry:
-        """A number that is stated, once."""
+    def stated(
+        self, name: str, value: float, reason: str, *, label: str, symbol: str = "", basis: Basis = NO_BASIS
+    ) -> Entry:
+        """A pure number that is stated, once."""
         key = f"{self.prefix}.{name}"
         found = self.ledger.get(key)
         if found is not None:
             return found
-        label = name.replace("_", " ")
-        return self.ledger.enter(key, value, unit, Stated(reason), basis=basis or Basis(), label=label)
+        return self.ledger.enter(key, value, "1", Stated(reason), basis=basis, label=label, symbol=symbol)
+
+    def no_amount(self, name: str, reason: str, label: str) -> Entry:
+        """An amount that is taken as zero, and why."""
+        unit = self.of_fuel("carbon").unit
+        symbol = f"n_{_SYMBOLS.get(name, name.upper())}"
+        return self.ledger.enter(f"{self.prefix}.{name}", 0.0, unit, Stated(reason), label=label, symbol=symbol)
 
     # ---- readings -------------------------------------------------------------------------------------
 
@@ -107,7 +114,9 @@ class RunBook:
         reading = self.gas.reading(name)
         if reading is None:
             reason = f"{GASES[name]} not measured: taken as zero"
-            return self.stated(f"{name}_fraction", 0.0, "1", reason, _as_measured(Moisture.DRY))
+            words = f"{GASES[name]}, fraction of the flue gas"
+            dry = _as_measured(Moisture.DRY)
+            return self.stated(f"{name}_fraction", 0.0, reason, label=words, symbol=f"y_{_SYMBOLS[name]}", basis=dry)
         if reading.basis.moisture not in (Moisture.DRY, Moisture.WET):
             raise BasisError(f"{reading.key} must be dry or wet, but is {reading.basis.moisture.value or 'neither'}")
         by_unit: dict[str, Equation[Any]] = {
@@ -137,7 +146,9 @@ class RunBook:
     def absent(self, moisture: Moisture) -> Entry:
         """Zero for a gas that is not read on a moisture basis, or is the unknown."""
         reason = f"no reading on {moisture.value} gas"
-        return self.stated(f"no_reading_{moisture.value}", 0.0, "1", reason, _as_measured(moisture))
+        return self.stated(
+            f"no_reading_{moisture.value}", 0.0, reason, label=reason, symbol="y", basis=_as_measured(moisture)
+        )
 
     def atoms(self, argument: str) -> Entry:
         """Atoms of carbon or hydrogen in the hydrocarbon as it is reported."""
@@ -171,7 +182,8 @@ class RunBook:
         if found is not None:
             return found
         if self.gas.air_moisture is None:
-            return self.stated("air_humidity", 0.0, "1", "no moisture of the air entered: taken as dry")
+            reason = "no moisture of the air entered: taken as dry"
+            return self.stated("air_humidity", 0.0, reason, label="water per mole of dry air", symbol="w")
         inputs = {"moisture": self.gas.air_moisture}
         return self.apply(humidity_from_moisture, "air_humidity", inputs, "water per mole of dry air")
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
-from reporter.combustion import given_air, rich, shares
+from reporter.combustion import given_air, rich, shares, water_gas
 from reporter.combustion.products import water_vapour
 from reporter.combustion.run_book import RunBook
 from reporter.combustion.solve import (
@@ -25,9 +25,9 @@ def water_gas_constant(book: RunBook) -> Entry:
     key = "water_gas.constant"
     return book.ledger.get(key) or book.ledger.enter(
         key,
-        rich.WATER_GAS_CONSTANT,
+        water_gas.WATER_GAS_CONSTANT,
         "1",
-        FromTable(rich.WATER_GAS),
+        FromTable(water_gas.WATER_GAS),
         label="water-gas constant n_CO n_H2O / (n_CO2 n_H2)",
         symbol="K",
     )
@@ -52,9 +52,9 @@ def by_rich_carbon_monoxide(book: RunBook) -> Solution:
         ("hydrogen_fixed", rich.hydrogen_fixed, "fixed part of the hydrogen"),
         ("water_per_product", rich.water_per_product, "water per mole of dry products"),
         ("water_fixed", rich.water_fixed, "fixed part of the water"),
-        ("square", rich.water_gas_square, "water-gas relation, square term"),
-        ("linear", rich.water_gas_linear, "water-gas relation, linear term"),
-        ("dry_products", rich.rich_dry_products, DRY_LABEL),
+        ("square", water_gas.water_gas_square, "water-gas relation, square term"),
+        ("linear", water_gas.water_gas_linear, "water-gas relation, linear term"),
+        ("dry_products", water_gas.rich_dry_products, DRY_LABEL),
     )
     for name, eq, label in steps:
         key = name if name == "dry_products" else f"rich.{name}"
@@ -114,8 +114,8 @@ def _open_shift(book: RunBook, air: Entry) -> Solution:
         {"needed": book.oxygen_needed(), "air_oxygen": book.air.oxygen, "air": air},
         "CO and H2 that the lack of air leaves",
     )
-    none = book.stated("hydrocarbon", 0.0, air.unit, "unburned hydrocarbon not measured: taken as zero")
-    oxygen = book.stated("o2", 0.0, air.unit, "oxygen not measured and air short: taken as used up")
+    none = book.no_amount("hydrocarbon", "unburned hydrocarbon not measured: taken as zero", "unburned hydrocarbon")
+    oxygen = book.no_amount("o2", "oxygen not measured and air short: taken as used up", "oxygen")
     water = water_of_all(book, air, none)
     linear = book.apply(
         given_air.shift_linear,

@@ -52,8 +52,9 @@ def _pair(book: RunBook, eq: Equation[Any], name: str, label: str) -> tuple[Entr
     return dry, on_wet
 
 
-def _coefficient(book: RunBook, eq: Equation[Any], symbol: str, on_dry: Entry, on_wet: Entry, terms: Entry) -> Entry:
-    inputs = {"on_dry": on_dry, "on_wet": on_wet, "wet_products": terms}
+def _coefficient(book: RunBook, eq: Equation[Any], symbol: str, parts: tuple[Entry, Entry, Entry]) -> Entry:
+    """A coefficient from its value for dry readings, the sum of wet readings, and the term of T it meets."""
+    inputs = dict(zip(("on_dry", "on_wet", "wet_products"), parts, strict=True))
     name = "balance." + symbol.lower()
     return book.apply(eq, name, inputs, f"coefficient {symbol} of the balances", symbol)
 
@@ -79,12 +80,12 @@ def by_wet_oxygen(book: RunBook) -> Solution:
     found = cramer(
         book,
         {
-            "per_air": _coefficient(book, lowered, "p_a", book.air.oxygen, net_wet, t.per_air),
-            "per_product": _coefficient(book, raised, "p_D", net, net_wet, t.per_dry),
-            "fixed": _coefficient(book, raised, "p_0", book.oxygen_needed(), net_wet, t.fixed),
-            "sum_per_air": _coefficient(book, raised, "q_a", book.air.nitrogen, added_wet, t.per_air),
-            "sum_per_product": _coefficient(book, lowered, "q_D", rest, added_wet, t.per_dry),
-            "sum_fixed": _coefficient(book, raised, "q_0", book.from_fuel(), added_wet, t.fixed),
+            "per_air": _coefficient(book, lowered, "p_a", (book.air.oxygen, net_wet, t.per_air)),
+            "per_product": _coefficient(book, raised, "p_D", (net, net_wet, t.per_dry)),
+            "fixed": _coefficient(book, raised, "p_0", (book.oxygen_needed(), net_wet, t.fixed)),
+            "sum_per_air": _coefficient(book, raised, "q_a", (book.air.nitrogen, added_wet, t.per_air)),
+            "sum_per_product": _coefficient(book, lowered, "q_D", (rest, added_wet, t.per_dry)),
+            "sum_fixed": _coefficient(book, raised, "q_0", (book.from_fuel(), added_wet, t.fixed)),
         },
     )
     return Solution("o2", found.air, found.dry, _wet_products(book, t, found.air, found.dry))
@@ -97,16 +98,22 @@ def by_wet_carbon_dioxide(book: RunBook) -> Solution:
     carbon, carbon_wet = _pair(book, shares.measured_carbon, "measured_carbon", "measured carbon")
     unburned, unburned_wet = _pair(book, shares.unburned_moles, "unburned_moles", "unburned moles")
     rest = book.apply(balance.rest_of_products, "rest_of_products", {"added": unburned}, "rest of the dry products")
-    none = book.stated("air_carbon", 0.0, "1", "dry air is taken to hold no carbon")
-    whole = book.stated("air_whole", 1.0, "1", "a mole of air adds a mole, less what q_0 takes")
+    none = book.stated("air_carbon", 0.0, "dry air is taken to hold no carbon", label="carbon in dry air", symbol="c")
+    whole = book.stated(
+        "air_whole",
+        1.0,
+        "a mole of air adds a mole, less what q_0 takes",
+        label="dry products per mole of air",
+        symbol="c",
+    )
     raised, lowered = wet.raised_by_wet, wet.lowered_by_wet
     c = {
-        "per_air": _coefficient(book, raised, "c_a", none, carbon_wet, t.per_air),
-        "per_product": _coefficient(book, raised, "c_D", carbon, carbon_wet, t.per_dry),
-        "fixed": _coefficient(book, lowered, "c_0", book.carbon(), carbon_wet, t.fixed),
-        "sum_per_air": _coefficient(book, raised, "q_a", whole, unburned_wet, t.per_air),
-        "sum_per_product": _coefficient(book, lowered, "q_D", rest, unburned_wet, t.per_dry),
-        "sum_fixed": _coefficient(book, raised, "q_0", less, unburned_wet, t.fixed),
+        "per_air": _coefficient(book, raised, "c_a", (none, carbon_wet, t.per_air)),
+        "per_product": _coefficient(book, raised, "c_D", (carbon, carbon_wet, t.per_dry)),
+        "fixed": _coefficient(book, lowered, "c_0", (book.carbon(), carbon_wet, t.fixed)),
+        "sum_per_air": _coefficient(book, raised, "q_a", (whole, unburned_wet, t.per_air)),
+        "sum_per_product": _coefficient(book, lowered, "q_D", (rest, unburned_wet, t.per_dry)),
+        "sum_fixed": _coefficient(book, raised, "q_0", (less, unburned_wet, t.fixed)),
     }
     dry = book.apply(wet.dry_products_from_wet_carbon, "dry_products", dict(c), DRY_LABEL)
     inputs = {name: c[name] for name in ("sum_per_product", "sum_fixed", "sum_per_air")} | {"products": dry}

@@ -5,8 +5,8 @@ from __future__ import annotations
 from collections.abc import Mapping
 
 from reporter.combustion import composition as eq
-from reporter.combustion.fuel import ANALYSIS, AnalysisBasis, Fuel
-from reporter.combustion.fuel_book import SYMBOLS, FuelBook
+from reporter.combustion.fuel import ANALYSIS, AnalysisBasis, Fuel, Share
+from reporter.combustion.fuel_book import SYMBOLS, FuelBook, amount_symbol
 from reporter.equation import Citation, System
 from reporter.gases import atomic_weights, molar_mass
 from reporter.ledger import Entry, FromTable, Ledger
@@ -34,7 +34,7 @@ def enter_analysis(book: FuelBook) -> None:
     percents: dict[str, Entry] = {}
     for share in sorted(fuel.shares, key=lambda share: ANALYSIS.index(share.name)):
         label = f"{fuel.name}: {share.name} by weight, {_basis_words(fuel, share.name)}"
-        percents[share.name] = book.given(share.name, f"{share.name}_percent", share.percent, "%", share.spread, label)
+        percents[share.name] = book.given(share, f"{share.name}_percent", label=label)
     for name in (*SYMBOLS, "water"):
         if name not in percents:
             book.zero(name, f"the analysis names no {name}: taken as zero")
@@ -44,7 +44,7 @@ def enter_analysis(book: FuelBook) -> None:
             f"{prefix}.{name}",
             {"percent": _as_fired(book, percents, name), "molar_mass": _element(ledger, name)},
             label=f"{fuel.name}: {name}",
-            symbol=f"n_{SYMBOLS.get(name, 'W')}",
+            symbol=amount_symbol(name),
         )
     if "ash" in percents:
         _as_fired(book, percents, "ash")
@@ -97,14 +97,8 @@ def _enter_weight_heat(book: FuelBook, percents: Mapping[str, Entry]) -> None:
     on_dry = fuel.basis is AnalysisBasis.DRY and "water" in percents
     key = "gross_heating_value.dry" if on_dry else "gross_heating_value"
     words = fuel.basis.value if on_dry else "as fired"
-    heat = book.given(
-        "heat",
-        key,
-        convert(fuel.heat or 0.0, "kJ/kg", unit),
-        unit,
-        convert(fuel.heat_spread, "kJ/kg", unit),
-        f"{fuel.name}: gross heating value, {words}",
-    )
+    share = Share("heat", convert(fuel.heat or 0.0, "kJ/kg", unit), convert(fuel.heat_spread, "kJ/kg", unit))
+    heat = book.given(share, key, label=f"{fuel.name}: gross heating value, {words}", unit=unit)
     if on_dry:
         ledger.apply(
             eq.as_fired,

@@ -123,4 +123,4 @@ def perhaps_fraction(value: float, unit: ReadUnit | None, column: Column) -> Fau
     below = column.fraction_below
     if below is None or unit is None or unit.unit != "%" or not 0.0 < value < below:
         return None
-    return Fault("ambiguous-moisture", f"{value:g}: {value:g} percent, or {value * 100:g} percent?")
+    return Fault("ambiguous-moisture", f"{value:g}, which may mean {value:g} or {value * 100:g} percent")

@@ -6,6 +6,7 @@ is written.  The same pass finds formulas that have no stored value, so that the
 
 from __future__ import annotations
 
+import codecs
 import io
 import re
 import zipfile
@@ -27,16 +28,14 @@ MAX_CELLS = 2_500_000
 MAX_AREA = 200_000
 MAX_ROW_BYTES = 8 * MEGABYTE
 
+_WIDE_MARKS = (b"\xff\xfe", b"\xfe\xff")
 _OLE = b"\xd0\xcf\x11\xe0\xa1\xb1\x1a\xe1"
 _OLE_ENCRYPTED = "EncryptedPackage".encode("utf-16-le")
 _DTD = re.compile(rb"<!(?:DOCTYPE|ENTITY)")
 _ENCODING = re.compile(rb"^\s*<\?xml[^>]*?encoding\s*=\s*[\"']([^\"']*)[\"']")
 _PREFIX = rb"(?:[^\s<>/:!?]+:)?"
 _ATTRIBUTES = rb"((?:[^\"'<>]|\"[^\"]*\"|'[^']*')*+)"
-_FAR = re.compile(
-    rb"<" + _PREFIX + rb"c\s[^<>]*?\br\s*=\s*[\"']"
-    rb"((?:[A-Z]{3,}|S[S-Z]|[T-Z][A-Z])\d+|[A-Z]+(?:\d{8,}|[2-9]\d{6}|1[1-9]\d{5}|10[5-9]\d{4}))[\"']"
-)
+_FAR = re.compile(rb"<" + _PREFIX + rb"c\s[^<>]*?\br\s*=\s*[\"']((?:[A-Z]{3,}|S[S-Z]|[T-Z][A-Z])\d+|[A-Z]+\d{7,})[\"']")
 _CELL = re.compile(rb"<" + _PREFIX + rb"c[\s>/]")
 _AREA = re.compile(rb"<" + _PREFIX + rb"(?:mergeCell|hyperlink)\s" + _ATTRIBUTES + rb">")
 _REF = re.compile(rb"\bref\s*=\s*[\"']([^\"']*)[\"']")
@@ -132,8 +131,8 @@ def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look) -> None:
         area += sum(_areas(piece))
         if _DTD.search(piece):
             look.findings.append(Finding("dtd", f"in the part {name}"))
-        elif far := _FAR.search(piece):
-            look.findings.append(Finding("far-cell", "", name, far[1].decode("ascii", "replace")))
+        elif far := _far_cell(piece):
+            look.findings.append(Finding("far-cell", "", name, far))
         elif len(piece) > MAX_ROW_BYTES:
             look.findings.append(Finding("zip-bomb", f"a row of more than {MAX_ROW_BYTES // MEGABYTE} MB", name))
         elif cells > MAX_CELLS:
@@ -150,12 +149,15 @@ def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look) -> None:
 def _pieces(archive: zipfile.ZipFile, info: zipfile.ZipInfo) -> Iterator[bytes]:
     """The part in pieces of about a megabyte that end where a row, or another element, ends.
 
-    A literal ``<`` cannot stand inside an attribute, so that no element is cut in two.
+    A literal ``<`` cannot stand inside an attribute, so that no element is cut in two.  UTF-16 (which some
+    programs write into parts of their own) is given as UTF-8.
     """
     with archive.open(info) as stream:
-        rest = b""
+        rest, wide = b"", None
         while chunk := stream.read(MEGABYTE):
-            rest += chunk
+            if wide is None and not rest and chunk.startswith(_WIDE_MARKS):
+                wide = codecs.getincrementaldecoder("utf-16")("replace")
+            rest += chunk if wide is None else wide.decode(chunk).encode("utf-8", "replace")
             cut = rest.rfind(b"</row>")
             cut = cut if cut >= 0 else _last_end_of_row(rest)
             if cut > 0 or len(rest) > MAX_ROW_BYTES:
@@ -172,14 +174,24 @@ def _last_end_of_row(data: bytes) -> int:
 
 def _kind(piece: bytes) -> str:
     """What a part is, by its first bytes: empty for UTF-8 text with a tag first."""
-    if piece.startswith((b"\xff\xfe", b"\xfe\xff", b"<\x00", b"\x00<")):
-        return "UTF-16"
+    if piece.startswith((b"<\x00", b"\x00<")):
+        return "UTF-16 without its mark"
     start = piece.removeprefix(b"\xef\xbb\xbf").lstrip()
     if start and not start.startswith(b"<"):
         return "binary"
     match = _ENCODING.match(start)
-    if match and match[1].lower() not in (b"utf-8", b"us-ascii"):
+    if match and match[1].lower() not in (b"utf-8", b"us-ascii", b"utf-16"):
         return match[1].decode("ascii", "replace")
+    return ""
+
+
+def _far_cell(piece: bytes) -> str:
+    """The address of a cell outside the allowed corner; empty if there is none."""
+    for match in _FAR.finditer(piece):
+        address = match[1].decode("ascii")
+        letters = address.rstrip("0123456789")
+        if column_number(letters) > MAX_COLUMN or int(address[len(letters) :]) > MAX_ROW:
+            return address
     return ""
 
 

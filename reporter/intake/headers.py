@@ -81,6 +81,7 @@ def unit_row(header: Sequence[HeaderCell], cells: Sequence[Cell]) -> tuple[Heade
 def match_columns(table: SheetTable, gathered: Gathered) -> tuple[Matched, ...]:
     """The columns of a table sheet, with problems for missing, repeated and unknown ones."""
     found: dict[str, Matched] = {}
+    unread: set[str] = set()
     for position, header in enumerate(table.header):
         place = gathered.place(table.sheet, header.cell, header.text)
         named = match_name(table.spec, header.text)
@@ -94,17 +95,21 @@ def match_columns(table: SheetTable, gathered: Gathered) -> tuple[Matched, ...]:
             gathered.add("repeated-column", place, f"{other.text!r} ({other.cell}) and {header.text!r}")
             continue
         unit = header_unit(column, header.unit or unit_text, place_of=(gathered, table, header))
-        found[column.attr] = Matched(column, position, header, unit)
+        found[column.attr] = Matched(column, position, header, None if isinstance(unit, Fault) else unit)
+        if isinstance(unit, Fault):
+            unread.add(column.attr)
     for column in table.spec.columns:
         if column.required and column.attr not in found:
             names = ", ".join(h.text for h in table.header if h.text)
             place = gathered.place(table.sheet, table.header[0].cell if table.header else "", column.name)
             gathered.add("missing-column", place, f"the columns {names}", expected=f"a column {column.name!r}")
-    return tuple(found.values())
+    return tuple(m for attr, m in found.items() if attr not in unread)
 
 
-def header_unit(column: Column, text: str, *, place_of: tuple[Gathered, SheetTable, HeaderCell]) -> ReadUnit | None:
-    """The unit of a header as read; None where it names none, or where it cannot be read (then a problem)."""
+def header_unit(
+    column: Column, text: str, *, place_of: tuple[Gathered, SheetTable, HeaderCell]
+) -> ReadUnit | Fault | None:
+    """The unit of a header; None where it names none; a fault, which is gathered, where it cannot be read."""
     if not text or column.type is not Type.NUMBER:
         return None
     read = unit_of(text, column)
@@ -114,7 +119,7 @@ def header_unit(column: Column, text: str, *, place_of: tuple[Gathered, SheetTab
         return None
     gathered, table, header = place_of
     gathered.add(read.code, gathered.place(table.sheet, header.cell, column.name), read.found, expected=read.expected)
-    return None
+    return read
 
 
 def _has_values(table: SheetTable, position: int) -> bool:

@@ -49,7 +49,9 @@ def read(path: str | Path) -> ReadResult:
             return ReadResult(None, gathered.all())
         content = file.read_bytes()
     except OSError as error:
-        gathered.add("not-a-workbook", gathered.place(), error.strerror or "a file that cannot be opened")
+        found = error.strerror or "a file that cannot be opened"
+        remedy = "look at the name and the folder, and whether the file may be read"
+        gathered.add("not-a-workbook", gathered.place(), found, expected="a file that can be opened", remedy=remedy)
         return ReadResult(None, gathered.all())
     return _read(file.name, content, gathered, folder=file.parent)
 

@@ -48,7 +48,7 @@ def read_readings(
         readings = []
         for index, lane in enumerate(lanes):
             cell = row.cells[lane.position]
-            reading = _BLANK if cell.value is None and not cell.uncalculated else reading_of(cell, lane.unit)
+            reading = reading_of(cell, lane.unit)
             if isinstance(reading, Fault):
                 place = reader.gathered.place(table.sheet, cell.cell, lane.channel)
                 reader.gathered.add(reading.code, place, reading.found, expected=reading.expected)
@@ -207,6 +207,8 @@ def reading_of(cell: Cell, unit: str) -> Reading | Fault:
         return Fault("wrong-dimension", cell.text, f"a number in {unit}")
     if cell.uncalculated:
         return Fault("formula-without-value", "a formula that was never calculated")
+    if value is None:
+        return _BLANK
     if not isinstance(value, str):
         return Fault("text-for-number", cell.text)
     return _word(clean(value), unit)

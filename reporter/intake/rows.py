@@ -204,6 +204,9 @@ class RowReader:
     def _item(self, made: Filled, table: SheetTable, column: Column, *, unit_text: str, entry: Cell) -> None:
         header = HeaderCell(entry.cell, "", column.name, column.name, unit_text)
         unit = header_unit(column, unit_text, place_of=(self.gathered, table, header))
+        if isinstance(unit, Fault):
+            made.bare.add(column.attr)
+            return
         before = made.values.get(column.attr)
         self.take(made, column, entry, unit=unit, sheet=table.sheet)
         after = made.values.get(column.attr)
@@ -249,10 +252,14 @@ def _fits(column: Column, own: ReadUnit, used: ReadUnit) -> bool:
     return dimension(own.unit) in column.dimensions or ANY in column.dimensions
 
 
+_MEASURED = (Type.NUMBER, Type.DATE, Type.DATETIME)
+
+
 def _printed_only(spec: Sheet, named: Mapping[str, Matched], row: Row) -> bool:
-    """Whether a row holds only what a blank form prints."""
-    deciding = [named[name].position for name in spec.counts_when if name in named]
-    return bool(deciding) and all(row.cells[position].blank for position in deciding)
+    """Whether a row holds only what a blank form prints: names and choices, nothing that was read or dated."""
+    deciding = [m for m in named.values() if m.column.name in spec.counts_when or m.column.type in _MEASURED]
+    asked = any(m.column.name in spec.counts_when for m in deciding)
+    return asked and all(row.cells[m.position].blank for m in deciding)
 
 
 def with_value(given: Given[Any], value: Any) -> Given[Any]:

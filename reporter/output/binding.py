@@ -75,9 +75,10 @@ def _place(pdf: Any, own: Any, copier: Copier, page: Any, name: str) -> None:
     a, b, c, d, e, f = _turned(turn, left, bottom, width, height)
     numbers = (scale * a, scale * b, scale * c, scale * d, scale * e + x, scale * f + y)
     matrix = " ".join(f"{value:.5f}" for value in numbers)
-    drawn = pydyf.Stream([f"/Artifact BMC q {matrix} cm /{name} Do Q EMC".encode()])
-    pdf.add_object(drawn)
-    own["Contents"] = pydyf.Array([own["Contents"], drawn.reference])
+    before, after = pydyf.Stream([b"q"]), pydyf.Stream([f"Q /Artifact BMC q {matrix} cm /{name} Do Q EMC".encode()])
+    pdf.add_object(before)
+    pdf.add_object(after)
+    own["Contents"] = pydyf.Array([before.reference, own["Contents"], after.reference])
 
 
 def _turned(

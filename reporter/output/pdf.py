@@ -14,6 +14,8 @@ from pathlib import Path
 from typing import Any
 
 from reporter.errors import OutputError
+from reporter.output.linking import add_aliases, add_links, named_cells, take_cells
+from reporter.output.packing import pack
 from reporter.output.pages import page_text, style_text
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.output.view import Document, View, build_view
@@ -177,25 +179,29 @@ def _rendered(text: str, style: str, read: Callable[[str], bytes], extras: _Extr
     ]
     try:
         sheet = CSS(string=style, base_url=_BASE, url_fetcher=fetcher, font_config=fonts)
-        page = HTML(string=text, base_url=_BASE, url_fetcher=fetcher)
+        page = HTML(string=named_cells(text), base_url=_BASE, url_fetcher=fetcher)
         document = page.render(stylesheets=[sheet], font_config=fonts, pdf_variant=_VARIANT, pdf_tags=True)
+        cells = take_cells(document)
+        add_aliases(document, extras.view.places)
+
+        def finish(document: Any, pdf: Any) -> None:
+            add_links(document, pdf, cells)
+            _bind(document, pdf, extras)
+            pack(pdf)
+
         return bytes(
-            document.write_pdf(
-                finisher=_binder(extras), pdf_variant=_VARIANT, pdf_tags=True, attachments=attachments
-            )
+            document.write_pdf(finisher=finish, pdf_variant=_VARIANT, pdf_tags=True, attachments=attachments)
         )
     except FatalURLFetchingError as error:
         cause = error.__cause__
         raise OutputError(str(cause or error), getattr(cause, "place", "")) from None
 
 
-def _binder(extras: _Extras) -> Callable[[Any, Any], None] | None:
-    """What places the pages of bound-in PDF documents, where there are any."""
+def _bind(document: Any, pdf: Any, extras: _Extras) -> None:
+    """Place the pages of the PDF documents that are bound in."""
     bound = [one for one in extras.view.documents if one.pages and not one.picture]
-    if not bound:
-        return None
-    from reporter.output.binding import bind
+    if bound:
+        from reporter.output.binding import bind
 
-    contents = {one.anchor: (extras.documents[one.file].content, one.pages) for one in bound}
-    return lambda document, pdf: bind(document, pdf, contents)
-
+        contents = {one.anchor: (extras.documents[one.file].content, one.pages) for one in bound}
+        bind(document, pdf, contents)

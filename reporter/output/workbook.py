@@ -55,11 +55,12 @@ def write_workbook(outcome: Outcome, *, issued: datetime, version: str, phrases:
     spoken = phrases or load_phrases()
     record = outcome.record
     book = Book(issued, _report_name(outcome, spoken), record.system is System.SI)
-    pages = {name: book.sheet(words(name)["title"], wide=name == "derivations") for name in _SHEETS}
+    further = other_series(outcome)
+    names = [name for name in _SHEETS if further or name != "series"]
+    pages = {name: book.sheet(words(name)["title"], wide=name in _WIDE) for name in names}
     write_readings(book, pages["readings"], outcome)
-    further = other_series(outcome.ledger, book)
     if further:
-        write_other_series(book, book.sheet(words("series")["title"]), further)
+        write_other_series(book, pages["series"], further)
     write_inputs(book, pages["inputs"], outcome.ledger)
     write_derivations(book, pages["derivations"], outcome.ledger)
     write_summary(pages["summary"], outcome, spoken)
@@ -73,8 +74,11 @@ def write_workbook(outcome: Outcome, *, issued: datetime, version: str, phrases:
 
 
 _SHEETS = (
-    "summary", "runs", "readings", "calibrations", "criteria", "limits", "derivations", "inputs", "problems", "about",
+    "summary", "runs", "readings", "series", "calibrations", "criteria", "limits", "derivations", "inputs",
+    "problems", "about",
 )  # fmt: skip
+#: Sheets printed on the larger paper.
+_WIDE = frozenset({"series", "derivations"})
 
 
 def _report_name(outcome: Outcome, phrases: Phrases) -> str:

@@ -10,18 +10,23 @@ import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import date, datetime
+from functools import reduce
 from io import BytesIO
+from operator import or_
 from typing import Any
 
 import xlsxwriter
 from xlsxwriter.utility import xl_col_to_name
+from xlsxwriter.worksheet import Worksheet
 
 from reporter.errors import OutputError
 
 #: What a cell, and a formula, may hold at most in a workbook.
 MOST_TEXT, MOST_FORMULA = 32_000, 8_000
 _MOST_HEADER = 200
-_LINE_HEIGHT, _MOST_HEIGHT = 12.5, 400.0
+_LINE_HEIGHT, _MOST_HEIGHT = 12.0, 400.0
+#: Width of a character of wrapped text in the unit of column widths, words that do not fill a line included.
+_CHARACTER = 0.93
 
 _FONT = {"font_name": "Arial", "font_size": 9, "valign": "top"}
 _INK, _RULE = "#1F3A4D", "#D0D5DA"
@@ -36,20 +41,23 @@ _STYLES: dict[str, dict[str, Any]] = {
         "bold": True, "text_wrap": True, "valign": "vcenter", "bg_color": "#E4EAEE", "font_color": _INK,
         "top": 1, "bottom": 1, "border_color": "#8A98A5",
     },
-    "text": {},
+    "text": {"align": "left"},
+    "right": {"align": "right"},
+    "after": {"align": "left", "indent": 1},
     "wrap": {"text_wrap": True},
     "strong": {"bold": True, "text_wrap": True},
     "center": {"align": "center"},
     "key": {"font_name": "Consolas", "font_size": 8, "text_wrap": True},
-    "number": {"align": "right", "indent": 1},
-    "uncounted": {"align": "right", "indent": 1, "font_color": "#8A949E", "font_strikeout": True},
-    "raw": {"align": "right", "indent": 1, "font_color": "#7A8590"},
-    "input": {**_YELLOW, "align": "right", "indent": 1},
-    "given": {**_GREEN, "align": "right", "indent": 1},
+    "number": {"align": "right"},
+    "uncounted": {"align": "right", "font_color": "#8A949E", "font_strikeout": True},
+    "raw": {"align": "right", "font_color": "#7A8590"},
+    "input": {**_YELLOW, "align": "right"},
+    "given": {**_GREEN, "align": "right"},
     "input_text": {**_YELLOW, "text_wrap": True},
 }  # fmt: skip
 _WRAPPED = frozenset(name for name, style in _STYLES.items() if style.get("text_wrap"))
-_RIGHT = {"align": "right", "indent": 1}
+#: How the heading of a column stands over cells of a style.
+_HEADS = {"number": "head right", "input": "head right", "raw": "head right", "after": "head after"}
 DATE, TIME = "yyyy-mm-dd", "yyyy-mm-dd hh:mm:ss"
 
 
@@ -60,6 +68,14 @@ class Column:
     name: str
     width: float = 12.0
     style: str = "text"
+
+
+class _Worksheet(Worksheet):  # type: ignore[misc]
+    """A sheet whose formulas are written as they are: none of ours has a function of the kind that is looked for
+    and renamed, and a text inside a formula must not be taken for one."""
+
+    def _prepare_formula(self, formula: str, expand_future_functions: bool = False) -> str:
+        return formula.removeprefix("=")
 
 
 @dataclass
@@ -88,7 +104,7 @@ class Book:
 
     def sheet(self, name: str, *, wide: bool = False) -> Sheet:
         """A new sheet with the print set-up all sheets share; a wide one is printed on A3 or tabloid."""
-        made = self._file.add_worksheet(name)
+        made = self._file.add_worksheet(name, _Worksheet)
         made.hide_gridlines(2)
         made.set_landscape()
         papers = (8, 9) if self.metric_paper else (3, 1)
@@ -96,16 +112,16 @@ class Book:
         made.fit_to_pages(1, 0)
         made.set_margins(left=0.5, right=0.5, top=0.6, bottom=0.7)
         report = self.report.replace("&", "&&")[:_MOST_HEADER]
-        made.set_footer(f"&L&8{report}&C&8{name}&R&8&P / &N")
+        made.set_footer(f"&L&8{report}, {name}&R&8&P / &N")
         return Sheet(self, name, made)
 
     def format(self, style: str, numbers: str = "") -> Any:
-        """The format of a style and a number format, made once."""
+        """The format of one or several styles and a number format, made once."""
         known = (style, numbers)
         if known not in self._formats:
             more = {"num_format": numbers} if numbers else {}
-            base, _, right = style.partition(" ")
-            self._formats[known] = self._file.add_format(_FONT | _STYLES[base] | (_RIGHT if right else {}) | more)
+            parts = [_STYLES[name] for name in style.split()]
+            self._formats[known] = self._file.add_format(reduce(or_, parts, _FONT) | more)
         return self._formats[known]
 
     def define(self, name: str, cells: str) -> None:
@@ -168,12 +184,12 @@ class Sheet:
             self.made.set_column(index, index, column.width)
             self._widths[index] = column.width
 
-    def head(self, columns: Sequence[Column], *, freeze: int = -1) -> None:
+    def head(self, columns: Sequence[Column], *, freeze: int = -1, height: float = 30.0) -> None:
         """The heading row of a table; `freeze` is the number of columns that stay in view (-1: no freezing)."""
         for index, column in enumerate(columns):
-            right = " right" if column.style in {"number", "input", "raw"} else ""
-            self.made.write_string(self.row, index, column.name, self.book.format(f"head{right}"))
-        self.made.set_row(self.row, 30)
+            head = self.book.format(_HEADS.get(column.style, "head"))
+            self.made.write_string(self.row, index, column.name, head)
+        self.made.set_row(self.row, height)
         if freeze >= 0:
             self.widths(columns)
             self.made.freeze_panes(self.row + 1, freeze)
@@ -198,8 +214,8 @@ class Sheet:
         if not text:
             return
         shown = text if len(text) <= MOST_TEXT else text[: MOST_TEXT - 1] + "…"
-        if style in _WRAPPED and column in self._widths:
-            self._lines = max(self._lines, math.ceil(len(shown) * 1.05 / self._widths[column]))
+        if style.split()[0] in _WRAPPED and column in self._widths:
+            self._lines = max(self._lines, math.ceil(len(shown) * _CHARACTER / self._widths[column]))
         self.made.write_string(self.row, column, shown, self.book.format(style))
 
     def texts(self, texts: Mapping[int, str] | Sequence[str], columns: Sequence[Column]) -> None:

@@ -9,8 +9,8 @@ from datetime import datetime
 
 from xlsxwriter.utility import xl_range_abs
 
-from reporter.ledger import Entry, Ledger
-from reporter.outcome import Outcome, RunResult, Series
+from reporter.ledger import Entry
+from reporter.outcome import Outcome, Series
 from reporter.output.numbers import unit_text
 from reporter.output.workbook_book import Book, Column, Sheet
 from reporter.output.workbook_words import words
@@ -53,10 +53,11 @@ def write_readings(book: Book, sheet: Sheet, outcome: Outcome) -> None:
     sheet.head(columns, freeze=1)
     first = sheet.row
     reasons = _reasons(outcome)
+    runs = _runs(outcome)
     shapes = {lane.name: _shape(outcome, lane) for lane in lanes}
     for number, row in enumerate(readings.rows):
         sheet.moment(0, row.time)
-        sheet.text(1, _run_at(outcome.runs, row.time), "center")
+        sheet.text(1, ", ".join(runs.get(row.time, ())))
         column = 2
         for lane in lanes:
             reading = row.readings[lane.index]
@@ -66,7 +67,7 @@ def write_readings(book: Book, sheet: Sheet, outcome: Outcome) -> None:
             for layer in lane.layers:
                 _number(sheet, column, layer.get(number, plain), shapes[lane.name])
                 column += 1
-        sheet.text(column, "; ".join(reasons.get(row.time, ())), "wrap")
+        sheet.text(column, "; ".join(reasons.get(row.time, ())), "after")
         sheet.next()
     sheet.rules(first, len(columns))
     _define(book, sheet, lanes, first)
@@ -131,8 +132,15 @@ def _define(book: Book, sheet: Sheet, lanes: Sequence[Lane], first: int) -> None
         column += 1 + len(lane.layers)
 
 
-def _run_at(runs: Sequence[RunResult], time: datetime) -> str:
-    return ", ".join(run.run.run.value for run in runs if run.run.start.value <= time <= run.run.end.value)
+def _runs(outcome: Outcome) -> dict[datetime, dict[str, None]]:
+    """By time: the runs whose readings stand in that row, left out or not."""
+    found: dict[datetime, dict[str, None]] = {}
+    for run in outcome.runs:
+        for series in (gas.series for gas in run.gases if gas.series is not None):
+            times = [time for time, _ in series.used] + [time for time, _, _ in series.left_out]
+            for time in times:
+                found.setdefault(time, {})[run.run.run.value] = None
+    return found
 
 
 def _reasons(outcome: Outcome) -> dict[datetime, tuple[str, ...]]:
@@ -153,20 +161,22 @@ def _reasons(outcome: Outcome) -> dict[datetime, tuple[str, ...]]:
     return {time: tuple(texts) for time, texts in found.items()}
 
 
-def other_series(ledger: Ledger, book: Book) -> list[Entry]:
-    """The series that are no range of the readings as they stand."""
-    return [entry for entry in ledger if entry.is_series and not book.has(entry.key)]
+def other_series(outcome: Outcome) -> list[Entry]:
+    """The series that are no range of the readings as they stand, e.g. of the process log."""
+    placed = {series.key for series in _series(outcome) if series.used}
+    return [entry for entry in outcome.ledger if entry.is_series and entry.key not in placed]
 
 
 def write_other_series(book: Book, sheet: Sheet, entries: Sequence[Entry]) -> None:
     """One column for each further series, named by its key."""
     said = words("series")
     sheet.title(said["title"], said["note"])
-    sheet.head([Column(f"{entry.key} [{unit_text(entry.unit) or '1'}]", 24) for entry in entries], freeze=0)
+    heads = [f"{entry.key} [{unit_text(entry.unit)}]" if unit_text(entry.unit) else entry.key for entry in entries]
+    sheet.head([Column(head, said["width"], "input") for head in heads], freeze=0, height=said["head_height"])
     first = sheet.row
     for column, entry in enumerate(entries):
         for offset, value in enumerate(entry.value):
             sheet.row = first + offset
             sheet.number(column, value, "General", "input")
         cells = xl_range_abs(first, column, first + len(entry.value) - 1, column)
-        book.define(entry.key, f"{sheet.name}!{cells}")
+        book.define(entry.key, f"'{sheet.name}'!{cells}")

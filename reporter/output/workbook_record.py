@@ -38,7 +38,7 @@ def write_calibrations(sheet: Sheet, outcome: Outcome) -> None:
         _live(sheet, outcome.ledger, 4, point.reading)
         _live(sheet, outcome.ledger, 5, point.certified)
         unit = unit_text(outcome.ledger[point.reading].unit)
-        sheet.texts({6: unit, 7: point.cylinder, 8: point.used_as, 9: point.reading}, table)
+        sheet.texts({6: unit, 7: point.cylinder, 8: point.used_as.replace("_", " "), 9: point.reading}, table)
         sheet.next()
     sheet.rules(first, len(table))
 
@@ -127,7 +127,9 @@ def write_problems(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
             sheet.next()
     sheet.rules(first, len(table))
     _lines(sheet, said["stated"], outcome.stated, len(table))
-    _lines(sheet, said["findings"], [finding.words for finding in outcome.findings], len(table))
+    names = {run.key: said["finding_run"].format(run=run.run.run.value) for run in outcome.runs}
+    findings = [f"{names.get(finding.run, '')}{finding.words}" for finding in outcome.findings]
+    _lines(sheet, said["findings"], findings, len(table))
 
 
 def _lines(sheet: Sheet, title: str, lines: Sequence[str], width: int) -> None:

@@ -11,6 +11,7 @@ from reporter.output.numbers import unit_text
 from reporter.output.workbook_book import Column, Sheet
 from reporter.output.workbook_home import known_quantity, label, number_format
 from reporter.output.workbook_words import columns, words
+from reporter.quantities import quantity_of
 
 _FIRST_RUN = 3
 
@@ -24,7 +25,7 @@ def write_runs(sheet: Sheet, outcome: Outcome) -> None:
     sheet.title(said["title"], said["note"])
     sheet.head(table, freeze=1)
     rows = _matrix(outcome.ledger, runs)
-    for subject in dict.fromkeys(_subject(name) for name in rows):
+    for subject in sorted(dict.fromkeys(_subject(name) for name in rows), key=lambda subject: subject == ""):
         sheet.section(subject or said["others"], len(table), "group")
         first = sheet.row
         for name, entries in rows.items():
@@ -68,12 +69,20 @@ def _row_label(entry: Entry, name: str) -> str:
 
 def _matrix(ledger: Ledger, runs: Sequence[RunResult]) -> Mapping[str, dict[str, Entry]]:
     """Entries by the key after ``run.<run>.`` and by run, in the order of the ledger."""
-    shown = set(words("runs")["quantities"])
     found: dict[str, dict[str, Entry]] = {}
     for run in runs:
         prefix = f"run.{run.key}."
         for entry in ledger.under(prefix.rstrip(".")):
-            quantity = known_quantity(entry.key)
-            if not entry.is_series and quantity is not None and quantity.segment in shown:
+            if not entry.is_series and _is_shown(entry.key):
                 found.setdefault(entry.key.removeprefix(prefix), {})[run.key] = entry
     return found
+
+
+def _is_shown(key: str) -> bool:
+    """Whether the quantity is one of the table of runs, as it is or in one of the variants shown."""
+    said = words("runs")
+    if known_quantity(key) is None:
+        return False
+    quantity, variants = quantity_of(key)
+    shown = all(name in said["variants"] or name.startswith("limit_") for name in variants)
+    return shown and quantity.segment in said["quantities"]

@@ -4,7 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from datetime import date
+from functools import partial
 
+from reporter.gases import find_gas
 from reporter.ledger import Ledger
 from reporter.outcome import Comparison, Outcome, RunResult, RunState
 from reporter.output.numbers import unit_text
@@ -39,7 +41,12 @@ def write_summary(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
         sheet.text(0, phrases("lead.no_limits"))
         sheet.next()
     sheet.section(said["runs"], width)
-    sheet.head([Column(name, style="number" if name == "Load" else "text") for name in said["run_columns"]])
+    sheet.head(
+        [
+            Column(name, style="number" if name == "Load" else "after" if name == "Fuel" else "text")
+            for name in said["run_columns"]
+        ]
+    )
     first = sheet.row
     for run in outcome.runs:
         _run(sheet, outcome, run, phrases)
@@ -63,7 +70,7 @@ def _limits(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
     ledger, made = outcome.ledger, outcome.comparisons
     first = sheet.row
 
-    def row(title: str, write: Callable[[int, Comparison], None], style: str = "text") -> None:
+    def row(title: str, write: Callable[[int, Comparison], None]) -> None:
         sheet.text(0, title, "strong")
         for column, comparison in enumerate(made, 1):
             write(column, comparison)
@@ -75,12 +82,12 @@ def _limits(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
     def numbers(title: str, key: Callable[[Comparison], str], rests_on_average: bool) -> None:
         row(title, lambda column, each: _number(sheet, ledger, column, each, key(each), rests_on_average))
 
-    texts(said["pollutant"], lambda each: each.limit.pollutant.value)
+    texts(said["pollutant"], lambda each: _gas(each.limit.pollutant.value))
     texts(said["basis"], lambda each: ledger[each.value].basis.text() if each.value else "")
     texts(said["unit"], lambda each: unit_text(each.limit.unit.value.unit))
     for run in outcome.runs:
         title = said["run"].format(run=run.run.run.value)
-        row(title, lambda column, each, key=run.key: _run_value(sheet, ledger, column, each, key))  # type: ignore[misc]
+        row(title, partial(_run_value, sheet, ledger, run.key))
     numbers(said["value"], lambda each: each.value, True)
     numbers(said["rounded"], lambda each: each.rounded, True)
     row(said["limit"], lambda column, each: _limit(sheet, ledger, column, each, phrases))
@@ -94,7 +101,12 @@ def _limits(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
     sheet.rules(first, 1 + len(made))
 
 
-def _run_value(sheet: Sheet, ledger: Ledger, column: int, comparison: Comparison, run: str) -> None:
+def _gas(name: str) -> str:
+    found = find_gas(name)
+    return found.label if found is not None else name
+
+
+def _run_value(sheet: Sheet, ledger: Ledger, run: str, column: int, comparison: Comparison) -> None:
     """A run's value, or that it is not counted, as its indicator says."""
     found = next(((key, flag) for name, key, flag in comparison.runs if name == run), None)
     said = words("summary")
@@ -188,7 +200,7 @@ def _run(sheet: Sheet, outcome: Outcome, run: RunResult, phrases: Phrases) -> No
         sheet.live(4, load.key, load.value, f'{number_format(load)}" {_load_unit(run, load.unit)}"')
     used = [use.fuel.value for use in outcome.record.fuel_use if use.run.value == run.run.run.value]
     fuels = used or [fuel.fuel.value for fuel in outcome.record.fuels]
-    sheet.text(5, ", ".join(dict.fromkeys(fuels)), "wrap")
+    sheet.text(5, ", ".join(dict.fromkeys(fuels)), "after")
     sheet.text(6, "; ".join(run.reasons), "wrap")
     sheet.next()
 

@@ -10,7 +10,7 @@ from reporter.basis import NO_BASIS, Basis
 from reporter.conversions import convert_entry
 from reporter.equation import Citation, Equation, System
 from reporter.errors import EquationError
-from reporter.gases import Gas, gas
+from reporter.gases import Gas, find_gas, gas
 from reporter.ledger import Entry, FromCells, FromTable, Given, Ledger, Stated
 from reporter.outcome import CalibrationPoint, Check, Finding
 from reporter.problems import Place, Problem, problem
@@ -38,7 +38,16 @@ class Book:
         """The one of two units that belongs to the test's unit system."""
         return us if self.system is System.US else si
 
-    def given(self, key: str, value: Real, unit: str, *, basis: Basis = NO_BASIS, note: str = "") -> Entry:
+    def given(
+        self,
+        key: str,
+        value: Real,
+        unit: str,
+        *,
+        basis: Basis = NO_BASIS,
+        note: str = "",
+        decimals: int | None = None,
+    ) -> Entry:
         """Enter a number from the input in `unit`; where it was entered in another unit, the number as
         entered and the conversion are two entries."""
         found = self.ledger.get(key)
@@ -47,7 +56,7 @@ class Book:
         origin = FromCells(value.place, value.text)
         entered = value.unit.unit if value.unit is not None else unit
         if entered == unit:
-            return self.ledger.enter(key, value.value, unit, origin, basis=basis, note=note)
+            return self.ledger.enter(key, value.value, unit, origin, basis=basis, note=note, decimals=decimals)
         raw = self.ledger.enter(f"{key}.as_entered", value.value, entered, origin, basis=basis)
         return convert_entry(self.ledger, key, raw, unit)
 
@@ -141,7 +150,9 @@ def lanes(record: Record) -> tuple[Lane, ...]:
     made: list[Lane] = []
     for channel in record.channels:
         measured = gas(channel.gas.value)
-        segment = measured.key if measured.key not in taken else channel.key
+        segment = measured.key
+        if segment in taken:
+            segment = channel.key if find_gas(channel.channel.value) is None else f"{measured.key}_{channel.key}"
         while segment in taken:
             segment += "_2"
         taken.add(segment)

@@ -8,29 +8,29 @@ pairs them with runs.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import datetime
 
-from reporter.ledger import Entry, slug
+from reporter.ledger import Entry
 from reporter.methods.criteria import (
     Criterion,
     all_met,
     criteria,
-    criterion_met,
     dilution_difference,
     not_held_reason,
     reading_difference,
 )
 from reporter.methods.method_7e import calibration_error, dilution_error, system_bias
-from reporter.outcome import CalibrationPoint, Check
-from reporter.problems import Place
-from reporter.record import Calibration, Cylinder, Level, Route, SamplingSystem
+from reporter.outcome import CalibrationPoint
+from reporter.record import Calibration, Level, Route, SamplingSystem
 from reporter.reduction.book import Book, Lane
+from reporter.reduction.certificates import Papers, certified_value
+from reporter.reduction.judging import judge, note_check
 
 #: Level names that stand at the low end of the calibration.
 LOW_LEVELS = (Level.ZERO, Level.LOW)
 UPSCALE_LEVELS = (Level.MID, Level.HIGH)
-_DEFAULT_METHODS = {"nox": "7E", "no": "7E", "no2": "7E", "o2": "3A", "co2": "3A", "co": "10", "so2": "6C"}
 
 
 @dataclass(frozen=True, slots=True)
@@ -59,6 +59,7 @@ class DirectSet:
     """Consecutive direct (dilution: system) readings; whole where low, mid and high level are all there."""
 
     number: int
+    begin: datetime
     injections: tuple[Injection, ...]
     whole: bool
     accepted: Entry | None
@@ -69,27 +70,22 @@ class DirectSet:
         """When its last gas was read."""
         return max(injection.time for injection in self.injections)
 
-    @property
-    def is_accepted(self) -> bool:
-        """Whether it is a whole set whose every level meets the criterion."""
-        return self.accepted is not None and self.accepted.value == 1.0
-
 
 @dataclass(frozen=True, slots=True)
 class Calibrations:
-    """All calibrations of a channel; `papers` lists why its certificates do not bear the results."""
+    """All calibrations of a channel; `papers` holds why certificates do not bear the results."""
 
     lane: Lane
     held: dict[str, Criterion] | None
     sets: tuple[DirectSet, ...]
     system: tuple[Injection, ...]
-    papers: tuple[str, ...]
+    papers: Papers
 
 
 def method_of(lane: Lane) -> str:
     """The method of a channel: as entered, else the one its gas is usually measured by."""
     entered = lane.channel.method
-    return entered.value if entered is not None else _DEFAULT_METHODS.get(lane.gas.key, "")
+    return entered.value if entered is not None else lane.gas.method
 
 
 def is_dilution(lane: Lane) -> bool:
@@ -103,13 +99,13 @@ def calibrations(book: Book, lane: Lane) -> Calibrations:
     held = criteria(method)
     if held is None:
         book.trouble("no-criteria-held", lane.channel.place, f"{lane.name}: {not_held_reason(method)}")
-    if lane.channel.method is None:
-        book.say(f"No method was entered for {lane.name}; Method {method} is taken." if method else "")
+    if lane.channel.method is None and method:
+        book.say(f"No method was entered for {lane.name}; Method {method} is taken.")
     rows = sorted(
         (row for row in book.record.calibrations if row.channel.value == lane.name),
         key=lambda r: r.time.value,
     )
-    papers: list[str] = []
+    papers = Papers()
     sets: list[DirectSet] = []
     system: list[Injection] = []
     group: list[Injection] = []
@@ -117,12 +113,12 @@ def calibrations(book: Book, lane: Lane) -> Calibrations:
     for row in rows:
         if row.level.value is Level.NO2:
             continue
-        certified = _certified(book, lane, row, papers)
+        certified = certified_value(book, lane, row, papers)
         if certified is None:
             continue
-        in_set = _opens_set(lane, row, rows)
-        if not in_set and group:
-            sets.append(_close(book, lane, held, group, len(sets) + 1))
+        in_set = _opens_set(book, lane, row, rows)
+        if group and (not in_set or _runs_begun(book, row) != _runs_begun(book, group[-1].row)):
+            sets.append(_close(book, lane, held, group, sets))
             group = []
         if in_set:
             direct_count += 1
@@ -131,20 +127,23 @@ def calibrations(book: Book, lane: Lane) -> Calibrations:
             injection = _system(book, lane, held, row, certified, sets, len(system) + 1)
             system.append(injection)
     if group:
-        sets.append(_close(book, lane, held, group, len(sets) + 1))
+        sets.append(_close(book, lane, held, group, sets))
     if is_dilution(lane):
         system = [_dilution_share(book, lane, held, injection, sets) for injection in system]
-    return Calibrations(
-        lane, dict(held) if held is not None else None, tuple(sets), tuple(system), tuple(papers)
-    )
+    return Calibrations(lane, dict(held) if held is not None else None, tuple(sets), tuple(system), papers)
 
 
-def _opens_set(lane: Lane, row: Calibration, rows: list[Calibration]) -> bool:
-    """Direct readings form sets; a dilution system's three-level readings through the system do."""
+def _opens_set(book: Book, lane: Lane, row: Calibration, rows: list[Calibration]) -> bool:
+    """Direct readings form sets; so do a dilution system's readings between two runs, where mid and high are there."""
     if not is_dilution(lane):
         return row.route.value is Route.DIRECT
-    near = [r for r in rows if abs((r.time.value - row.time.value).total_seconds()) <= 3600.0]
-    return {Level.MID, Level.HIGH} <= {r.level.value for r in near}
+    near = {r.level.value for r in rows if _runs_begun(book, r) == _runs_begun(book, row)}
+    return set(UPSCALE_LEVELS) <= near
+
+
+def _runs_begun(book: Book, row: Calibration) -> int:
+    """How many runs had begun when a reading was taken."""
+    return sum(run.start.value < row.time.value for run in book.record.runs)
 
 
 def _read(book: Book, lane: Lane, row: Calibration, certified: Entry, name: str) -> Injection:
@@ -164,117 +163,28 @@ def _read(book: Book, lane: Lane, row: Calibration, certified: Entry, name: str)
     return Injection(row, reading, certified, None, None)
 
 
-def _certified(book: Book, lane: Lane, row: Calibration, papers: list[str]) -> Entry | None:
-    """The certified value of a calibration gas: the certificate's, else the one typed beside the reading."""
-    cylinder = _certificate(book, lane, row)
-    if cylinder is not None:
-        _examine(book, lane, row, cylinder, papers)
-        key = f"cylinder.{slug(cylinder.cylinder.value)}.{lane.segment}.certified"
-        value = cylinder.certified_value
-        if value.unit is None and cylinder.unit is not None:
-            value = type(value)(value.value, value.place, value.text, cylinder.unit.value)
-        return book.given(key, value, lane.unit)
-    name = row.cylinder.value if row.cylinder is not None else ""
-    key = f"cylinder.{slug(name or row.level.value.value)}.{lane.segment}.certified"
-    if row.level.value is Level.ZERO and row.certified_value is None:
-        return book.state(key, 0.0, lane.unit, "zero gas: the certified value is taken as zero")
-    if row.level.value is not Level.ZERO:
-        said = f"no certificate in Cylinders for {name or row.level.value.value + ' gas'} ({lane.gas.label})"
-        _paper(book, "certificate-missing", lane, row.place, said, papers)
-    if row.certified_value is None:
-        return None
-    return book.given(key, row.certified_value, lane.unit)
+def _close(
+    book: Book, lane: Lane, held: object, group: list[Injection], earlier: Sequence[DirectSet]
+) -> DirectSet:
+    """Close a direct set: its span, the calibration error of each gas, and whether it is accepted.
 
-
-def _certificate(book: Book, lane: Lane, row: Calibration) -> Cylinder | None:
-    if row.cylinder is None:
-        return None
-    found = book.record.cylinder(row.cylinder.value, lane.channel.gas.value)
-    if found is None and row.level.value is Level.ZERO:
-        return None
-    return found
-
-
-def _examine(book: Book, lane: Lane, row: Calibration, cylinder: Cylinder, papers: list[str]) -> None:
-    """Expiry of a certificate, and its agreement with the value typed beside the reading."""
-    day = row.time.value.date()
-    kind = cylinder.kind.value if cylinder.kind is not None else "protocol"
-    if cylinder.expires is not None and cylinder.expires.value < day:
-        said = f"cylinder {cylinder.cylinder.value} expired on {cylinder.expires.value}, used on {day}"
-        _paper(book, "cylinder-expired", lane, cylinder.expires.place, said, papers)
-    elif cylinder.expires is None and kind == "protocol" and row.level.value is not Level.ZERO:
-        said = f"cylinder {cylinder.cylinder.value} has no expiry date"
-        _paper(book, "certificate-missing", lane, cylinder.place, said, papers)
-    typed = row.certified_value
-    if typed is not None and abs(typed.value - cylinder.certified_value.value) > 1e-9 * abs(typed.value):
-        said = f"typed {typed.text or typed.value}, certificate {cylinder.certified_value.value:g}"
-        _paper(book, "certificate-differs", lane, typed.place, said, papers)
-
-
-def _paper(book: Book, code: str, lane: Lane, place: Place, said: str, papers: list[str]) -> None:
-    book.trouble(code, place, said, concerns=(f"channel.{lane.segment}",))
-    if said not in papers:
-        papers.append(said)
-
-
-def _bounds(book: Book, lane: Lane, criterion: Criterion) -> tuple[Entry, Entry]:
-    """Bound and alternative of a criterion as entries from the method's text."""
-    stem = f"criterion.{lane.segment}.{criterion.name}"
-    bound = book.table(f"{stem}.bound", criterion.bound, criterion.unit, criterion.citation)
-    other = criterion.alternative if criterion.alternative is not None else -1.0
-    return bound, book.table(f"{stem}.alternative", other, lane.unit, criterion.citation)
-
-
-def judge(book: Book, lane: Lane, criterion: Criterion, stem: str, share: Entry, difference: Entry) -> Entry:
-    """Whether a share of span meets its criterion, as an indicator entry ``<stem>.met``."""
-    bound, alternative = _bounds(book, lane, criterion)
-    inputs = {"share": share, "bound": bound, "difference": difference, "alternative": alternative}
-    return book.apply(criterion_met, f"{stem}.met", inputs)
-
-
-def note_check(
-    book: Book, lane: Lane, criterion: Criterion, title: str, met: Entry, runs: tuple[str, ...]
-) -> None:
-    """List a criterion as it was applied; the entries it compared stand beside its indicator."""
-    from reporter.ledger import FromEquation
-
-    assert isinstance(met.origin, FromEquation)
-    inputs = dict(met.origin.inputs)
-    book.checks.append(
-        Check(
-            key=met.key,
-            title=title,
-            gas=lane.gas.label,
-            runs=runs,
-            value=str(inputs["share"]),
-            bound=str(inputs["bound"]),
-            citation=criterion.citation,
-            met=met.value == 1.0,
-            consequence="" if met.value == 1.0 else criterion.consequence,
-            difference=str(inputs["difference"]),
-            alternative=str(inputs["alternative"]) if criterion.alternative is not None else "",
-            relation=criterion.relation,
-            decides_validity=criterion.name != "drift",
-        )
-    )
-
-
-def _close(book: Book, lane: Lane, held: object, group: list[Injection], number: int) -> DirectSet:
-    """Close a direct set: its span, the calibration error of each gas, and whether it is accepted."""
+    Readings that are no whole set are held to the span of the set before.
+    """
     latest: dict[Level, Injection] = {}
     for injection in group:
         latest[injection.row.level.value] = injection
-    low = latest.get(Level.ZERO) or latest.get(Level.LOW)
-    whole = low is not None and Level.MID in latest and Level.HIGH in latest
-    span = latest[Level.HIGH].certified if Level.HIGH in latest else None
+    low, high = latest.get(Level.ZERO) or latest.get(Level.LOW), latest.get(Level.HIGH)
+    whole = low is not None and Level.MID in latest and high is not None and high.certified.value > 0.0
+    number = len(earlier) + 1
+    span = high.certified if whole and high is not None else latest_span(earlier, group[0].time)
     if span is None or not isinstance(held, dict):
-        return DirectSet(number, tuple(latest.values()), whole, None, span)
+        return DirectSet(number, group[0].time, tuple(latest.values()), whole, None, span)
     judged = [_error(book, lane, held["calibration_error"], injection, span) for injection in latest.values()]
     accepted = None
     if whole:
         flags = [injection.met for injection in judged if injection.met is not None]
         accepted = book.apply(all_met, f"calibration.{lane.segment}.set_{number}.accepted", {"flags": flags})
-    return DirectSet(number, tuple(judged), whole, accepted, span)
+    return DirectSet(number, group[0].time, tuple(judged), whole, accepted, span)
 
 
 def _error(book: Book, lane: Lane, criterion: Criterion, injection: Injection, span: Entry) -> Injection:
@@ -292,17 +202,20 @@ def _error(book: Book, lane: Lane, criterion: Criterion, injection: Injection, s
     return Injection(injection.row, injection.reading, injection.certified, share, met)
 
 
-def _dilution_entries(
-    book: Book, lane: Lane, injection: Injection, stem: str, span: Entry
-) -> tuple[Entry, Entry]:
-    factor = lane.channel.dilution_factor
-    key = f"channel.{lane.segment}.dilution_factor"
-    ratio = (
-        book.given(key, factor, "1")
-        if factor is not None
-        else book.state(key, 1.0, "1", "readings are undiluted")
-    )
-    inputs = {"system": injection.reading, "dilution_factor": ratio, "certified": injection.certified}
+def dilution_factor(book: Book, lane: Lane) -> Entry:
+    """The dilution factor of a channel; one where none was entered: its readings are undiluted already."""
+    factor, key = lane.channel.dilution_factor, f"channel.{lane.segment}.dilution_factor"
+    if factor is not None:
+        return book.given(key, factor, "1")
+    return book.state(key, 1.0, "1", "no dilution factor entered: readings are taken as undiluted")
+
+
+def _dilution_entries(book: Book, lane: Lane, injection: Injection, stem: str, span: Entry) -> tuple[Entry, Entry]:
+    inputs = {
+        "system": injection.reading,
+        "dilution_factor": dilution_factor(book, lane),
+        "certified": injection.certified,
+    }
     share = book.apply(dilution_error, f"{stem}.error", {**inputs, "span": span})
     return share, book.apply(dilution_difference, f"{stem}.error_difference", inputs)
 
@@ -313,7 +226,7 @@ def _system(
     held: object,
     row: Calibration,
     certified: Entry,
-    sets: list[DirectSet],
+    sets: Sequence[DirectSet],
     number: int,
 ) -> Injection:
     """One system reading with its bias against the latest accepted direct reading of the same gas."""
@@ -325,9 +238,7 @@ def _system(
     if span is None or direct is None:
         return made
     stem = made.reading.key.removesuffix(".reading")
-    share = book.apply(
-        system_bias, f"{stem}.bias", {"system": made.reading, "direct": direct.reading, "span": span}
-    )
+    share = book.apply(system_bias, f"{stem}.bias", {"system": made.reading, "direct": direct.reading, "span": span})
     both = {"reading": made.reading, "other": direct.reading}
     difference = book.apply(reading_difference, f"{stem}.bias_difference", both)
     return Injection(
@@ -335,10 +246,8 @@ def _system(
     )
 
 
-def _dilution_share(
-    book: Book, lane: Lane, held: object, injection: Injection, sets: list[DirectSet]
-) -> Injection:
-    span = latest_span(sets, injection.time)
+def _dilution_share(book: Book, lane: Lane, held: object, injection: Injection, sets: Sequence[DirectSet]) -> Injection:
+    span = next((s.span for s in reversed(sets) if s.whole and s.begin <= injection.time), None)
     if span is None or not isinstance(held, dict):
         return injection
     stem = injection.reading.key.removesuffix(".reading")
@@ -347,32 +256,28 @@ def _dilution_share(
     return Injection(injection.row, injection.reading, injection.certified, share, met)
 
 
-def latest_set(sets: list[DirectSet] | tuple[DirectSet, ...], before: datetime) -> DirectSet | None:
-    """The latest accepted whole direct set that ended before a time; the latest whole one if none is accepted."""
-    earlier = [s for s in sets if s.whole and s.end <= before]
-    accepted = [s for s in earlier if s.is_accepted]
-    usable = accepted or earlier
-    return usable[-1] if usable else None
+def latest_set(sets: Sequence[DirectSet], before: datetime) -> DirectSet | None:
+    """The latest whole direct set that ended before a time, accepted or not: a failed one is not passed over."""
+    return next((s for s in reversed(sets) if s.whole and s.end <= before), None)
 
 
-def latest_span(sets: list[DirectSet] | tuple[DirectSet, ...], before: datetime) -> Entry | None:
+def latest_span(sets: Sequence[DirectSet], before: datetime) -> Entry | None:
     """The calibration span in force at a time."""
     found = latest_set(sets, before)
     return None if found is None else found.span
 
 
-def _direct_for(sets: list[DirectSet], row: Calibration) -> Injection | None:
+def _direct_for(sets: Sequence[DirectSet], row: Calibration) -> Injection | None:
     """The latest accepted direct reading of the same cylinder (the same level where no cylinder is named)."""
     best: Injection | None = None
-    for made in sets:
-        for injection in made.injections:
-            other = injection.row
-            same = (
-                row.cylinder.value == other.cylinder.value
-                if row.cylinder is not None and other.cylinder is not None
-                else row.level.value is other.level.value
-            )
-            usable = injection.met is None or injection.met.value == 1.0
-            if same and other.level.value is row.level.value and usable and injection.time <= row.time.value:
-                best = injection
+    for injection in (injection for made in sets for injection in made.injections):
+        is_accepted = injection.met is not None and injection.met.value == 1.0
+        if is_accepted and injection.time <= row.time.value and _same_gas(injection.row, row):
+            best = injection
     return best
+
+
+def _same_gas(one: Calibration, other: Calibration) -> bool:
+    if one.cylinder is not None and other.cylinder is not None:
+        return one.cylinder.value == other.cylinder.value
+    return one.level.value is other.level.value

@@ -82,10 +82,10 @@ def _differences(book: Book, about: RunBook) -> None:
 
 def _say(book: Book, about: RunBook, state: State, burned: list[FuelRow]) -> None:
     ratio = book.ledger[about.key("combustion.equivalence_ratio")]
-    words = "Readings imply fuel-lean combustion."
-    if ratio.value > 1.0:
-        words = "Readings imply fuel-rich combustion: tell the operator."
-    book.findings.append(Finding(about.run.run.value, words, (ratio.key,)))
+    if state.mixture:
+        tell = ": tell the operator" if "rich" in state.mixture else ""
+        words = f"Readings imply {state.mixture} combustion{tell}."
+        book.findings.append(Finding(about.run.run.value, words, (ratio.key,)))
     doubts: dict[str, float] = {}
     for segment in ("o2", "co2"):
         u = reading_uncertainty(book, about, segment)

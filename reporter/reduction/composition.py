@@ -77,9 +77,7 @@ def _entries(book: Book, row: FuelRow) -> dict[str, Entry]:
         return {}
     stem = f"fuel.{slug(row.fuel.value)}"
     made = {
-        name: book.given(f"{stem}.{name}", value, "%")
-        for name in _SHARES
-        if (value := _share(row, name)) is not None
+        name: book.given(f"{stem}.{name}", value, "%") for name in _SHARES if (value := _share(row, name)) is not None
     }
     heat = book.ledger.get(f"{stem}.gross_heating_value")
     if heat is not None:
@@ -92,11 +90,7 @@ def _origins(book: Book, row: FuelRow) -> dict[str, Origin] | None:
     components = [c for c in book.record.fuel_gas if c.fuel.value == row.fuel.value]
     if components:
         return {c.component.value: FromCells(c.mole_fraction.place, c.mole_fraction.text) for c in components}
-    found = {
-        name: FromCells(value.place, value.text)
-        for name in _SHARES
-        if (value := _share(row, name)) is not None
-    }
+    found = {name: FromCells(value.place, value.text) for name in _SHARES if (value := _share(row, name)) is not None}
     if row.gross_heating_value is not None:
         found["heat"] = FromCells(row.gross_heating_value.place, row.gross_heating_value.text)
     return dict(found) or None
@@ -119,8 +113,6 @@ def factors_from_composition(book: Book, row: FuelRow, stem: str) -> Factors:
     """F factors computed from the composition of a gas fuel."""
     made = enter_composition(book, row)
     if made is None:
-        book.trouble(
-            "factor-missing", row.place, f"{row.fuel.value}: no composition in Fuel gas", concerns=(stem,)
-        )
+        book.trouble("factor-missing", row.place, f"{row.fuel.value}: no composition in Fuel gas", concerns=(stem,))
         return Factors(None, None, None)
     return Factors(*(book.ledger.get(f"{made}.{name}.composition") for name in ("fd", "fw", "fc")))

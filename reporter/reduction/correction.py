@@ -8,38 +8,28 @@ chain of indicator entries, so that a changed reading changes it in the workbook
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 
+from reporter.equation import Citation
 from reporter.ledger import Entry
 from reporter.methods.criteria import all_met, any_met, at_or_below, reading_difference
 from reporter.methods.method_7e import corrected_low, corrected_zero, drift, mean_of_two
 from reporter.outcome import Check
-from reporter.record import Level, Run, When
+from reporter.record import Level, Run
 from reporter.reduction.book import Book, Lane
-from reporter.reduction.calibration import Calibrations, Injection, judge, latest_set, note_check
+from reporter.reduction.calibration import (
+    Calibrations,
+    DirectSet,
+    Injection,
+    dilution_factor,
+    is_dilution,
+    latest_set,
+)
+from reporter.reduction.equations import undiluted
+from reporter.reduction.judging import judge, note_check
+from reporter.reduction.pairing import Pairing, pair
 
-_ADJUST = ("adjust",)
-
-
-@dataclass
-class Pairing:
-    """The system checks of one run: last before it, first after it, low and upscale."""
-
-    run: Run
-    before_low: Injection | None = None
-    before_up: Injection | None = None
-    after_low: Injection | None = None
-    after_up: Injection | None = None
-    missing: list[str] = field(default_factory=list)
-
-    def all(self) -> list[Injection]:
-        """The checks that are there."""
-        return [i for i in (self.before_low, self.before_up, self.after_low, self.after_up) if i is not None]
-
-    @property
-    def whole(self) -> bool:
-        """Whether all four readings are there."""
-        return len(self.all()) == 4
+_SPAN = Citation("m7e", "3.4")
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,125 +45,6 @@ class Corrected:
     span: Entry | None
 
 
-def pair(book: Book, found: Calibrations, runs: Sequence[Run]) -> list[Pairing]:
-    """Pair the system checks with the runs, by time unless Run and When say otherwise."""
-    paired: list[Pairing] = []
-    for position, run in enumerate(runs):
-        earlier = runs[position - 1].end.value if position else None
-        later = runs[position + 1].start.value if position + 1 < len(runs) else None
-        mine = [i for i in found.system if _named(i, run, When.BEFORE)]
-        before = mine or [
-            i
-            for i in found.system
-            if i.time <= run.start.value
-            and (earlier is None or i.time >= earlier)
-            and not _elsewhere(i, run, When.BEFORE)
-        ]
-        mine = [i for i in found.system if _named(i, run, When.AFTER)]
-        after = mine or [
-            i
-            for i in found.system
-            if i.time >= run.end.value
-            and (later is None or i.time <= later)
-            and not _elsewhere(i, run, When.AFTER)
-        ]
-        made = Pairing(run)
-        made.after_low = next((i for i in after if i.low), None)
-        made.before_low = next((i for i in reversed(before) if i.low), None)
-        made.after_up, made.before_up = _upscale(book, found.lane, run, before, after)
-        _void_after_adjustment(book, found.lane, made)
-        _missing(book, found, made, later is not None)
-        paired.append(made)
-    return paired
-
-
-def _named(injection: Injection, run: Run, when: When) -> bool:
-    row = injection.row
-    return (
-        row.run is not None
-        and row.run.value == run.run.value
-        and row.when is not None
-        and row.when.value is when
-    )
-
-
-def _elsewhere(injection: Injection, run: Run, when: When) -> bool:
-    """Whether a check was given by hand to another run, or to the other side of this one."""
-    row = injection.row
-    if row.run is None or row.when is None or row.when.value is When.INITIAL:
-        return False
-    return not _named(injection, run, when) and row.run.value == run.run.value
-
-
-def _upscale(
-    book: Book, lane: Lane, run: Run, before: list[Injection], after: list[Injection]
-) -> tuple[Injection | None, Injection | None]:
-    """The upscale checks after and before a run, of one gas; of two, the one closer to the run mean."""
-    mean = book.ledger.get(lane.key(run, "mean"))
-    pairs: list[tuple[float, Injection, Injection]] = []
-    for post in (i for i in after if not i.low):
-        pre = next((i for i in reversed(before) if i.certified.key == post.certified.key), None)
-        if pre is not None:
-            distance = abs(post.certified.value - mean.value) if mean is not None else 0.0
-            pairs.append((distance, post, pre))
-    if pairs:
-        _, post, pre = min(pairs, key=lambda p: p[0])
-        return post, pre
-    return next((i for i in after if not i.low), None), next((i for i in reversed(before) if not i.low), None)
-
-
-def _void_after_adjustment(book: Book, lane: Lane, made: Pairing) -> None:
-    """An adjustment between the end of a run and its check after it voids that check."""
-    for event in book.record.events:
-        words = event.what.value.lower()
-        if not any(word in words for word in _ADJUST):
-            continue
-        about = [other for other in book.record.channels if other.channel.value.lower() in words]
-        if about and lane.channel not in about:
-            continue
-        for name in ("after_low", "after_up"):
-            check = getattr(made, name)
-            if check is not None and made.run.end.value <= event.time.value <= check.time:
-                setattr(made, name, None)
-                said = (
-                    f"{event.what.value} at {event.time.value:%H:%M}, before the check at {check.time:%H:%M}"
-                )
-                if said not in made.missing:
-                    made.missing.append(said)
-                    book.trouble(
-                        "adjustment-before-check",
-                        event.place,
-                        said,
-                        concerns=(lane.key(made.run, "corrected"),),
-                    )
-
-
-def _missing(book: Book, found: Calibrations, made: Pairing, more_runs: bool) -> None:
-    lane, run = found.lane, made.run
-    sides = (("before", made.before_low, made.before_up), ("after", made.after_low, made.after_up))
-    for side, low, up in sides:
-        if low is not None and up is not None:
-            continue
-        if side == "after" and made.missing:
-            continue
-        what = (
-            "system check"
-            if low is None and up is None
-            else "zero or low-level gas"
-            if low is None
-            else "upscale gas"
-        )
-        said = f"{lane.name}, run {run.run.value}: no {what} {side} the run"
-        late = side == "after" and more_runs and any(i.time >= run.end.value for i in found.system)
-        book.trouble(
-            "calibration-late" if late else "calibration-missing",
-            run.end.place if side == "after" else run.start.place,
-            said,
-            concerns=(lane.key(run, "corrected"),),
-        )
-        made.missing.append(said)
-
-
 def correct(book: Book, found: Calibrations, runs: Sequence[Run]) -> list[Corrected]:
     """Corrected mean and validity of every run of a channel."""
     pairings = pair(book, found, runs) if found.held is not None else []
@@ -186,7 +57,7 @@ def correct(book: Book, found: Calibrations, runs: Sequence[Run]) -> list[Correc
         made = pairings[position]
         value = _corrected(book, found, made)
         drifts = _drifts(book, found, made)
-        standing, why = _standing(book, found, run, made, clean)
+        standing, why = _standing(book, found, made, clean, pairings[:position])
         results.append(_validity(book, found, made, value, standing, why))
         after = [i.met for i in (made.after_low, made.after_up) if i is not None and i.met is not None]
         flags = [standing, *after, *drifts]
@@ -209,14 +80,12 @@ def _corrected(book: Book, found: Calibrations, made: Pairing) -> Entry | None:
     low_pre, low_post, up_pre, up_post = made.before_low, made.after_low, made.before_up, made.after_up
     if mean is None or low_pre is None or low_post is None or up_pre is None or up_post is None:
         return None
-    low = book.apply(
-        mean_of_two, lane.key(run, "zero"), {"before": low_pre.reading, "after": low_post.reading}
-    )
-    upscale = book.apply(
-        mean_of_two, lane.key(run, "upscale"), {"before": up_pre.reading, "after": up_post.reading}
-    )
+    if made.mixed:
+        return None
+    low = book.apply(mean_of_two, lane.key(run, "zero"), {"before": low_pre.reading, "after": low_post.reading})
+    upscale = book.apply(mean_of_two, lane.key(run, "upscale"), {"before": up_pre.reading, "after": up_post.reading})
     common = {"average": mean, "upscale": upscale, "certified": up_post.certified}
-    if low_post.row.level.value is Level.ZERO:
+    if low_post.row.level.value is Level.ZERO and low_post.certified.value == 0.0:
         return book.attempt(corrected_zero, lane.key(run, "corrected"), {**common, "zero": low})
     inputs = {**common, "low": low, "low_certified": low_post.certified}
     return book.attempt(corrected_low, lane.key(run, "corrected"), inputs)
@@ -229,7 +98,7 @@ def _drifts(book: Book, found: Calibrations, made: Pairing) -> list[Entry]:
     flags: list[Entry] = []
     pairs = (("zero", made.before_low, made.after_low), ("upscale", made.before_up, made.after_up))
     for name, pre, post in pairs:
-        if pre is None or post is None or pre.share is None or post.share is None:
+        if pre is None or post is None or pre.share is None or post.share is None or made.mixed:
             continue
         stem = lane.key(run, f"drift.{name}")
         share = book.apply(drift, stem, {"after": post.share, "before": pre.share})
@@ -247,26 +116,41 @@ def _drifts(book: Book, found: Calibrations, made: Pairing) -> list[Entry]:
 
 
 def _standing(
-    book: Book, found: Calibrations, run: Run, made: Pairing, clean: Entry | None
+    book: Book, found: Calibrations, made: Pairing, clean: Entry | None, before: Sequence[Pairing]
 ) -> tuple[Entry, str]:
     """Whether the measuring system may be used for a run: an accepted set, and no open failure since."""
-    key = found.lane.key(run, "standing")
+    run, key = made.run, found.lane.key(made.run, "standing")
     last = latest_set(found.sets, run.start.value)
     if last is None or last.accepted is None:
-        why = f"no whole direct set (zero or low, mid, high) of {found.lane.name} before run {run.run.value}"
-        book.trouble("span-missing", run.start.place, why, concerns=(found.lane.key(run, "corrected"),))
-        return book.state(key, 0.0, "1", why), why
-    checks = [i.met for i in (made.before_low, made.before_up) if i is not None and i.met is not None]
+        return _without_set(book, found, run)
+    why = "the latest calibration error test is not met"
     if clean is None:
-        return book.apply(all_met, key, {"flags": [last.accepted]}), "the calibration error test is not met"
-    runs = [r for r in book.record.runs if r.end.value <= run.start.value]
-    since = max(r.end.value for r in runs)
-    renewed = last.end >= since and all(i.time >= last.end for i in (made.before_low, made.before_up) if i)
-    why = "an earlier bias or drift was not met and no three-point set with a bias check followed"
-    if not renewed or len(checks) < 2:
+        return book.apply(all_met, key, {"flags": [last.accepted]}), why
+    if last.accepted.value == 1.0:
+        why = "an earlier bias or drift was not met and no three-point set with a bias check followed"
+    checks = [i.met for i in (made.before_low, made.before_up) if i is not None and i.met is not None]
+    if len(checks) < 2 or not _renewed(last, made, before):
         return book.apply(all_met, key, {"flags": [clean, last.accepted]}), why
     again = book.apply(all_met, f"{key}.renewed", {"flags": [last.accepted, *checks]})
-    return book.apply(any_met, key, {"flags": [clean, again]}), why
+    met = book.apply(any_met, f"{key}.any", {"flags": [clean, again]})
+    return book.apply(all_met, key, {"flags": [met, last.accepted]}), why
+
+
+def _without_set(book: Book, found: Calibrations, run: Run) -> tuple[Entry, str]:
+    """No whole set before a run: it was made too late, or not at all."""
+    late = any(made.whole for made in found.sets)
+    why = f"no whole direct set (zero or low, mid, high) of {found.lane.name} before run {run.run.value}"
+    code = "calibration-late" if late else "span-missing"
+    book.trouble(code, run.start.place, why, concerns=(found.lane.key(run, "corrected"),))
+    return book.state(found.lane.key(run, "standing"), 0.0, "1", why), why
+
+
+def _renewed(last: DirectSet, made: Pairing, before: Sequence[Pairing]) -> bool:
+    """Whether a set followed the last run's closing checks, and the checks before this run followed the set."""
+    closing = [i.time for earlier in before for i in (earlier.after_low, earlier.after_up) if i is not None]
+    closing += [earlier.run.end.value for earlier in before]
+    checks = [i for i in (made.before_low, made.before_up) if i is not None]
+    return last.end >= max(closing) and all(check.time >= last.end for check in checks)
 
 
 def _validity(
@@ -278,12 +162,16 @@ def _validity(
     flags: list[Entry] = [standing]
     reasons: list[str] = [why] if standing.value != 1.0 else []
     names = {"before": (made.before_low, made.before_up), "after": (made.after_low, made.after_up)}
+    blocks = list(made.missing)
     for side, checks in names.items():
         for injection in checks:
-            if injection is None or injection.met is None:
+            if injection is None:
+                continue
+            gas = "zero or low-level" if injection.low else "upscale"
+            if injection.met is None:
+                blocks.append(_without_bias(book, lane, made, injection, f"{gas} gas {side} the run"))
                 continue
             flags.append(injection.met)
-            gas = "zero or low-level" if injection.low else "upscale"
             title = f"System bias, {gas} gas, {side} run {run.run.value}"
             note_check(book, lane, found.held["system_bias"], title, injection.met, (run.key,))
             if injection.met.value != 1.0:
@@ -293,7 +181,7 @@ def _validity(
     mean = book.ledger.get(lane.key(run, "mean"))
     if span is not None and mean is not None:
         flags.append(_within_span(book, lane, run, mean, span, reasons))
-    blocks = [*made.missing, *found.papers]
+    blocks += _papers(found, made, span_set)
     if mean is None:
         blocks.append("there is no mean of valid readings")
     elif value is None and not blocks:
@@ -305,9 +193,24 @@ def _validity(
     return Corrected(run, lane, made, value, valid, tuple(dict.fromkeys(reasons)), span)
 
 
-def _within_span(book: Book, lane: Lane, run: Run, mean: Entry, span: Entry, reasons: list[str]) -> Entry:
-    from reporter.equation import Citation
+def _without_bias(book: Book, lane: Lane, made: Pairing, injection: Injection, words: str) -> str:
+    """A system reading whose bias cannot be stated, for want of an accepted direct reading of the same gas."""
+    said = f"no accepted direct reading of the {words} to state its bias against"
+    about = f"{lane.name}, run {made.run.run.value}: {said}"
+    book.trouble("calibration-missing", injection.row.place, about, concerns=(lane.key(made.run, "corrected"),))
+    return said
 
+
+def _papers(found: Calibrations, made: Pairing, span_set: DirectSet | None) -> list[str]:
+    """What is wrong with the certificates of the gases a run rests on."""
+    used = [*made.all(), *(span_set.injections if span_set is not None else ())]
+    return list(dict.fromkeys(said for injection in used for said in found.papers.of(injection.certified)))
+
+
+def _within_span(book: Book, lane: Lane, run: Run, mean: Entry, span: Entry, reasons: list[str]) -> Entry:
+    if is_dilution(lane):
+        inputs = {"reading": mean, "factor": dilution_factor(book, lane)}
+        mean = book.apply(undiluted, lane.key(run, "mean.undiluted"), inputs)
     met = book.apply(at_or_below, lane.key(run, "within_span"), {"value": mean, "bound": span})
     book.checks.append(
         Check(
@@ -317,7 +220,7 @@ def _within_span(book: Book, lane: Lane, run: Run, mean: Entry, span: Entry, rea
             runs=(run.key,),
             value=mean.key,
             bound=span.key,
-            citation=Citation("m7e", "3.4"),
+            citation=_SPAN,
             met=met.value == 1.0,
             consequence="" if met.value == 1.0 else "the run is invalid",
             decides_validity=True,

@@ -5,7 +5,7 @@ from __future__ import annotations
 from reporter.basis import DRY
 from reporter.conversions import convert_entry
 from reporter.equation import Citation
-from reporter.ledger import Entry
+from reporter.ledger import Entry, slug
 from reporter.methods.criteria import all_met, at_or_above, at_or_below
 from reporter.methods.method_3 import dry_molecular_weight, nitrogen_by_difference, wet_molecular_weight
 from reporter.methods.method_3b import (
@@ -38,9 +38,7 @@ def reduce_diluents(book: Book, about: RunBook, fuels: tuple[str, ...], factors:
     monoxide = _monoxide(book, about)
     gases = {"o2": oxygen, "co2": dioxide, "co": monoxide}
     nitrogen = book.apply(nitrogen_by_difference, about.key("combustion.nitrogen"), gases)
-    weight = book.apply(
-        dry_molecular_weight, about.key("combustion.molecular_weight_dry"), {**gases, "n2": nitrogen}
-    )
+    weight = book.apply(dry_molecular_weight, about.key("combustion.molecular_weight_dry"), {**gases, "n2": nitrogen})
     if about.moisture is not None:
         inputs = {"md": weight, "bws": about.moisture}
         book.apply(wet_molecular_weight, about.key("combustion.molecular_weight_wet"), inputs)
@@ -74,7 +72,7 @@ def _check_range(book: Book, about: RunBook, factor: Entry, fuels: tuple[str, ..
     """The fuel factor against the range expected of the fuel; 12 % about the prorated one for a mixture."""
     known = fo_range(fuels[0]) if len(fuels) == 1 else None
     if known is not None:
-        stem = f"fuel.{fuels[0].replace(' ', '_')}.fuel_factor"
+        stem = f"fuel.{slug(fuels[0])}.fuel_factor"
         low = book.table(f"{stem}.lowest", known.low, "1", known.citation, row=known.fuel)
         high = book.table(f"{stem}.highest", known.high, "1", known.citation, row=known.fuel)
         citation = _RANGE
@@ -84,12 +82,8 @@ def _check_range(book: Book, about: RunBook, factor: Entry, fuels: tuple[str, ..
         share = book.table("criterion.fuel_factor.tolerance", mixed_fuel_tolerance(), "%", _MIXED)
         opposite = book.state("criterion.fuel_factor.tolerance_below", -share.value, "%", "the same, below")
         bounds = {"expected": expected}
-        low = book.apply(
-            fuel_factor_bound, about.key("combustion.fuel_factor.lowest"), {**bounds, "share": opposite}
-        )
-        high = book.apply(
-            fuel_factor_bound, about.key("combustion.fuel_factor.highest"), {**bounds, "share": share}
-        )
+        low = book.apply(fuel_factor_bound, about.key("combustion.fuel_factor.lowest"), {**bounds, "share": opposite})
+        high = book.apply(fuel_factor_bound, about.key("combustion.fuel_factor.highest"), {**bounds, "share": share})
         citation = _MIXED
     else:
         return

@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
-from reporter.basis import NEED_DRY
+from collections.abc import Mapping
+from typing import Any
+
+from reporter.basis import NEED_DRY, NO_VOLUME, Basis
 from reporter.equation import Citation, Value, constant, equation
 from reporter.functions import at_least, choose, higher, lower, total
 
@@ -377,3 +380,74 @@ def load_share(*, load: Value, permitted: Value, hundred: Value = constant(100.0
         Share [%].
     """
     return hundred * load / permitted
+
+
+@equation(
+    "C_undil",
+    "*c",
+    {"reading": "*c", "factor": "1"},
+    Citation("m7e", "12.4"),
+    symbols={"reading": "C_Avg", "factor": "DF"},
+    gives="reading",
+)
+def undiluted(*, reading: Value, factor: Value) -> Value:
+    """A reading of a dilution system brought to the undiluted gas.
+
+    Parameters
+    ----------
+    reading
+        Reading, or mean of readings [ppm or %], before the dilution factor.
+    factor
+        Dilution factor [1].
+
+    Returns
+    -------
+    float
+        Concentration [same unit and basis].
+    """
+    return reading * factor
+
+
+def _volume_basis(bases: Mapping[str, Basis], values: Mapping[str, Any]) -> Basis:
+    return bases["c"].but(standard=NO_VOLUME, expressed_as="")
+
+
+@equation(
+    "C_ppm",
+    "ppm",
+    {"c": "mg/m3", "molar_mass": "g/mol", "temperature": "K", "pressure": "kPa"},
+    Citation("ideal"),
+    symbols={"c": "C_m", "molar_mass": "M", "temperature": "T_std", "pressure": "P_std"},
+    gives=_volume_basis,
+)
+def volume_from_mass(
+    *,
+    c: Value,
+    molar_mass: Value,
+    temperature: Value,
+    pressure: Value,
+    gas_constant: Value = constant(
+        8.314462618, "J/mol/K", "R", cite=Citation("ideal", "", "molar gas constant")
+    ),
+) -> Value:
+    """Parts per million by volume from a mass concentration at stated conditions.
+
+    Parameters
+    ----------
+    c
+        Mass concentration [mg/m3].
+    molar_mass
+        Molar mass of the gas, or of what it is expressed as [g/mol].
+    temperature
+        Temperature the volume is stated at [K].
+    pressure
+        Pressure the volume is stated at [kPa].
+    gas_constant
+        Molar gas constant [J/(mol K)].
+
+    Returns
+    -------
+    float
+        Concentration [ppm], on the moisture and oxygen basis of `c`.
+    """
+    return c * gas_constant * temperature / (molar_mass * pressure)

@@ -2,31 +2,18 @@
 
 from __future__ import annotations
 
-from reporter.basis import ACTUAL, EPA_STANDARD, EPA_STANDARD_SI, Basis, Moisture, Standard
-from reporter.equation import System
+from reporter.basis import ACTUAL, Basis, Moisture
 from reporter.ledger import Entry
 from reporter.methods.method_2 import dry_flow, flow_to_standard, restated_flow
 from reporter.record import Real, text_of
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
 from reporter.reduction.equations import carried
-from reporter.reduction.moisture import stack_pressure, stack_temperature
+from reporter.reduction.moisture import say_static, stack_pressure, stack_temperature
+from reporter.reduction.standards import conditions, method_standard
 from reporter.units import convert
 
-
-def method_standard(book: Book) -> Standard:
-    """Method 19's standard conditions as the unit system words them."""
-    return EPA_STANDARD if book.system is System.US else EPA_STANDARD_SI
-
-
-def entered_standard(temperature: Real | None, pressure: Real | None) -> Standard | None:
-    """Standard conditions from an entered temperature and pressure; None unless both are there."""
-    if temperature is None or pressure is None:
-        return None
-    t_unit = temperature.unit.unit if temperature.unit is not None else "K"
-    p_unit = pressure.unit.unit if pressure.unit is not None else "kPa"
-    words = f"{temperature.value:g} {t_unit}, {pressure.value:g} {p_unit}"
-    return Standard(convert(temperature.value, t_unit, "K"), convert(pressure.value, p_unit, "kPa"), words)
+_MOISTURES = {"dry standard": Moisture.DRY, "wet standard": Moisture.WET, "actual": Moisture.WET}
 
 
 def dry_standard_flow(book: Book, about: RunBook) -> Entry | None:
@@ -34,29 +21,33 @@ def dry_standard_flow(book: Book, about: RunBook) -> Entry | None:
     run = about.run
     if run.stack_flow is None:
         return None
-    unit = book.unit("ft3/h", "m3/h")
-    hint = run.stack_flow.unit
-    words = text_of(run.flow_basis)
-    standard = entered_standard(run.flow_standard_temperature, run.flow_standard_pressure)
-    if words == "actual":
-        basis = Basis(moisture=Moisture.WET, standard=ACTUAL)
-    else:
-        moisture = {"dry standard": Moisture.DRY, "wet standard": Moisture.WET}.get(words)
-        if moisture is None and hint is not None:
-            moisture = hint.moisture
-        if moisture is None:
-            said = (
-                f"run {run.run.value}: the flow's basis (dry standard, wet standard, actual) is not entered"
-            )
-            book.trouble("basis-missing", run.stack_flow.place, said, concerns=(about.key("flow"),))
-            return None
-        if standard is None:
-            standard = method_standard(book)
-            said = f"run {run.run.value}: standard flow without temperature and pressure; {standard.text()} taken"
-            book.trouble("standard-conditions-assumed", run.stack_flow.place, said)
-        basis = Basis(moisture=moisture, standard=standard)
-    entered = book.given(about.key("flow.entered"), run.stack_flow, unit, basis=basis)
+    basis = _basis(book, about, run.stack_flow)
+    if basis is None:
+        return None
+    entered = book.given(about.key("flow.entered"), run.stack_flow, book.unit("ft3/h", "m3/h"), basis=basis)
     return _to_dry_standard(book, about, entered)
+
+
+def _basis(book: Book, about: RunBook, flow: Real) -> Basis | None:
+    """What the flow is stated on: by its basis column, else by the spelling of its unit; None where neither says."""
+    run, unit, words = about.run, flow.unit, text_of(about.run.flow_basis)
+    is_actual = unit is not None and unit.standard == ACTUAL
+    if is_actual and words not in ("", "actual"):
+        said = f"run {run.run.value}: the flow's unit says actual conditions, its basis {words}"
+        book.trouble("basis-missing", flow.place, said, concerns=(about.key("flow"),))
+        return None
+    if is_actual or words == "actual":
+        return Basis(moisture=Moisture.WET, standard=ACTUAL)
+    moisture = _MOISTURES.get(words) or (unit.moisture if unit is not None else None)
+    if moisture is None:
+        said = f"run {run.run.value}: the flow's basis (dry standard, wet standard, actual) is not entered"
+        book.trouble("basis-missing", flow.place, said, concerns=(about.key("flow"),))
+        return None
+    found = conditions(book, run.flow_standard_temperature, run.flow_standard_pressure, unit)
+    if found.assumed:
+        said = f"run {run.run.value}: standard flow without temperature and pressure; {found.assumed} taken"
+        book.trouble("standard-conditions-assumed", flow.place, said)
+    return Basis(moisture=moisture, standard=found.standard)
 
 
 def _to_dry_standard(book: Book, about: RunBook, entered: Entry) -> Entry | None:
@@ -68,6 +59,7 @@ def _to_dry_standard(book: Book, about: RunBook, entered: Entry) -> Entry | None
             said = f"run {about.run.run.value}: an actual flow needs stack temperature and pressures"
             book.trouble("flow-missing", about.run.place, said, concerns=(about.key("flow.dry_standard"),))
             return None
+        say_static(book, about.run)
         inputs = {"flow": flow, "temperature": temperature, "pressure": pressure}
         flow = book.apply(flow_to_standard, about.key("flow.wet_standard"), inputs)
     elif not flow.basis.standard.same(target):
@@ -82,14 +74,26 @@ def _to_dry_standard(book: Book, about: RunBook, entered: Entry) -> Entry | None
 
 
 def _restated(book: Book, about: RunBook, flow: Entry) -> Entry:
+    """A standard flow at the conditions of Method 19."""
     run = about.run
-    assert run.flow_standard_temperature is not None
-    assert run.flow_standard_pressure is not None
-    temperature = book.given(
-        about.key("flow.standard_temperature"), run.flow_standard_temperature, book.unit("°F", "°C")
-    )
-    pressure = book.given(
-        about.key("flow.standard_pressure"), run.flow_standard_pressure, book.unit("inHg", "kPa")
-    )
-    inputs = {"flow": flow, "temperature": temperature, "pressure": pressure}
+    inputs = {
+        "flow": flow,
+        "temperature": _condition(
+            book, about.key("flow.standard_temperature"), run.flow_standard_temperature, flow, book.unit("°F", "°C")
+        ),
+        "pressure": _condition(
+            book, about.key("flow.standard_pressure"), run.flow_standard_pressure, flow, book.unit("inHg", "kPa")
+        ),
+    }
     return book.apply(restated_flow, about.key("flow.restated"), inputs)
+
+
+def _condition(book: Book, key: str, entered: Real | None, flow: Entry, unit: str) -> Entry:
+    """A temperature or pressure the flow is stated at: as entered, else what its unit's spelling says."""
+    if entered is not None:
+        return book.given(key, entered, unit)
+    standard = flow.basis.standard
+    is_pressure = unit in ("inHg", "kPa")
+    value, of = (standard.pressure_kpa, "kPa") if is_pressure else (standard.temperature_k, "K")
+    assert value is not None
+    return book.state(key, convert(value, of, unit), unit, f"the flow is stated at {standard.text()}")

@@ -11,21 +11,14 @@ from reporter.ledger import Entry, slug
 from reporter.methods.f_factors import eq_19_13, eq_19_14, eq_19_15, eq_19_16, eq_19_17, eq_19_18
 from reporter.methods.method_19 import FC_BASIS, FD_BASIS, FW_BASIS
 from reporter.methods.tables import DEFAULT_TABLE, FuelFactor, fuel_factors
-from reporter.record import FuelRow, FuelUse, Real, text_of
+from reporter.record import FuelRow, Real, text_of
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
-from reporter.reduction.equations import (
-    carried,
-    heat_from_liquid,
-    heat_from_mass,
-    heat_from_volume,
-    heat_share,
-    heat_total,
-    metered_volume_rate,
-)
-from reporter.units import dimension
+from reporter.reduction.equations import heat_share
 
 _ELEMENTS = ("hydrogen", "carbon", "sulfur", "nitrogen", "oxygen")
+#: How far shares of heat input as entered may be from 100 % [%].
+_WHOLE = 0.1
 
 
 @dataclass(frozen=True, slots=True)
@@ -59,10 +52,10 @@ def factors_of(book: Book, row: FuelRow, table: str = DEFAULT_TABLE) -> Factors:
         if source == "published":
             return _published(book, row, stem, table)
         if source == "analysis":
-            return _from_analysis(book, row, stem)
+            return _from_analysis(book, row, fuel_key(row.fuel.value))
         from reporter.reduction.composition import factors_from_composition
 
-        return factors_from_composition(book, row, stem)
+        return factors_from_composition(book, row, fuel_key(row.fuel.value))
     except FluebookError as error:
         book.trouble("factor-missing", row.place, str(error), concerns=(stem,))
         return NO_FACTORS
@@ -104,10 +97,11 @@ def _with_basis(book: Book, entry: Entry, basis: object) -> Entry:
 
 def _from_analysis(book: Book, row: FuelRow, stem: str) -> Factors:
     """Eqs. 19-13 to 19-15 on the basis the analysis was reported on."""
-    if row.gross_heating_value is None:
-        book.trouble(
-            "factor-missing", row.place, f"{row.fuel.value}: no gross heating value", concerns=(stem,)
-        )
+    needed = {"carbon": row.carbon, "hydrogen": row.hydrogen, "gross heating value": row.gross_heating_value}
+    lacking = [name for name, value in needed.items() if value is None]
+    if lacking or row.gross_heating_value is None:
+        said = f"{row.fuel.value}: the analysis has no {' and no '.join(lacking)}"
+        book.trouble("factor-missing", row.place, said, concerns=(stem,))
         return NO_FACTORS
     parts: dict[str, Entry] = {}
     for name in _ELEMENTS:
@@ -129,99 +123,43 @@ def _from_analysis(book: Book, row: FuelRow, stem: str) -> Factors:
     return Factors(fd, fw, fc)
 
 
-def heat_inputs(book: Book, about: RunBook) -> dict[str, Entry]:
-    """Heat input of each fuel of a run from Fuel use, by fuel name."""
-    found: dict[str, Entry] = {}
-    for use in book.record.fuel_use:
-        if use.run.value == about.run.run.value:
-            entry = _heat_of(book, about, use)
-            if entry is not None:
-                found[use.fuel.value] = entry
-    return found
-
-
-def _heat_of(book: Book, about: RunBook, use: FuelUse) -> Entry | None:
-    stem = about.key(f"fuel_use.{slug(use.fuel.value)}")
-    if use.heating_value is None:
-        return None
-    if text_of(use.heating_value_kind, "gross") == "net":
-        said = f"{use.fuel.value}, run {use.run.value}: the heating value is net; F factors go with gross"
-        book.trouble("heat-input-missing", use.place, said, concerns=(about.key("heat_input"),))
-        return None
-    heating_unit = use.heating_value.unit.unit if use.heating_value.unit is not None else ""
-    by_mass = heating_unit != "" and dimension(heating_unit) == "heat_by_mass"
-    liquid = heating_unit in {"MJ/L", "Btu/gal", "MMBtu/gal"}
-    if by_mass:
-        eq, rate_unit, heat_unit = heat_from_mass, book.unit("lb/h", "kg/h"), book.unit("Btu/lb", "kJ/kg")
-    elif liquid:
-        eq, rate_unit, heat_unit = heat_from_liquid, book.unit("gal/h", "L/h"), book.unit("Btu/gal", "MJ/L")
-    else:
-        eq, rate_unit, heat_unit = heat_from_volume, book.unit("ft3/h", "m3/h"), book.unit("Btu/ft3", "MJ/m3")
-    rate = _rate(book, about, use, stem, rate_unit)
-    if rate is None:
-        said = f"{use.fuel.value}, run {use.run.value}: neither a rate nor two meter readings"
-        book.trouble("heat-input-missing", use.place, said, concerns=(about.key("heat_input"),))
-        return None
-    heating = book.given(f"{stem}.heating_value", use.heating_value, heat_unit)
-    return book.apply(eq, f"{stem}.heat_input", {"rate": rate, "heating_value": heating})
-
-
-def _rate(book: Book, about: RunBook, use: FuelUse, stem: str, unit: str) -> Entry | None:
-    if use.rate is not None:
-        return book.given(f"{stem}.rate", use.rate, unit)
-    if use.meter_end is None or use.meter_start is None or unit not in {"ft3/h", "m3/h"}:
-        return None
-    volume = book.unit("ft3", "m3")
-    factor = (
-        book.given(f"{stem}.meter_factor", use.meter_factor, "1")
-        if use.meter_factor is not None
-        else book.state(f"{stem}.meter_factor", 1.0, "1", "fuel meter factor not entered: 1 is taken")
-    )
-    minutes = book.given_duration(about.run)
-    key = about.key("duration.hours")
-    hours = book.ledger.get(key) or convert_entry(book.ledger, key, minutes, "h")
-    inputs = {
-        "end": book.given(f"{stem}.meter_end", use.meter_end, volume),
-        "start": book.given(f"{stem}.meter_start", use.meter_start, volume),
-        "factor": factor,
-        "duration": hours,
-    }
-    return book.apply(metered_volume_rate, f"{stem}.rate", inputs)
-
-
-def heat_input(book: Book, about: RunBook, parts: dict[str, Entry]) -> Entry | None:
-    """Heat input of a run [MMBtu/h or GJ/h]: as entered, else the sum of the fuels metered."""
-    total = (
-        book.apply(heat_total, about.key("heat_input.metered"), {"parts": list(parts.values())})
-        if parts
-        else None
-    )
-    if about.run.heat_input is not None:
-        return book.given(about.key("heat_input"), about.run.heat_input, book.unit("MMBtu/h", "GJ/h"))
-    return None if total is None else book.apply(carried, about.key("heat_input"), {"value": total})
-
-
 def shares(book: Book, about: RunBook, parts: dict[str, Entry]) -> dict[str, Entry]:
-    """Share of heat input of each fuel in a run: from Fuel use, else as entered, else one fuel alone."""
-    rows = book.record.fuels
-    if parts and len(parts) > 1:
-        whole = book.ledger[about.key("heat_input.metered")]
+    """Share of heat input of each fuel in a run: from Fuel use, else as entered, else one fuel alone.
+
+    Empty where it cannot be stated; the reason is a problem of its own only where a result needs the share.
+    """
+    rows, run = book.record.fuels, about.run.run.value
+    metered = {use.fuel.value for use in book.record.fuel_use if use.run.value == run}
+    whole = book.ledger.get(about.key("heat_input.metered"))
+    if len(parts) > 1 and whole is not None and whole.value > 0.0:
         return {
             name: book.apply(heat_share, about.key(f"share.{slug(name)}"), {"part": part, "whole": whole})
             for name, part in parts.items()
         }
-    if len(parts) == 1 or len(rows) == 1:
+    all_entered = all(row.share_of_heat_input is not None for row in rows)
+    if len(rows) == 1 or (len(parts) == len(metered) == 1 and not all_entered):
         name = next(iter(parts), rows[0].fuel.value if rows else "")
+        if len(rows) > 1:
+            book.say(f"Run {run}: {name} is the only fuel in Fuel use; it is taken as the only one burned.")
         return {name: book.state(about.key(f"share.{slug(name)}"), 1.0, "1", "one fuel")}
-    entered = {row.fuel.value: row.share_of_heat_input for row in rows}
-    if any(value is None for value in entered.values()):
+    return _entered_shares(book, about, rows)
+
+
+def _entered_shares(book: Book, about: RunBook, rows: Sequence[FuelRow]) -> dict[str, Entry]:
+    """The shares entered on the sheet Fuel, where each fuel has one and they make up the whole."""
+    entered = {row.fuel.value: row.share_of_heat_input for row in rows if row.share_of_heat_input is not None}
+    if not rows or len(entered) < len(rows):
         return {}
     made: dict[str, Entry] = {}
     for name, value in entered.items():
-        assert value is not None
         percent = book.given(f"fuel.{slug(name)}.share_entered", value, "%")
         key = about.key(f"share.{slug(name)}")
         made[name] = book.ledger.get(key) or convert_entry(book.ledger, key, percent, "1")
+    total = 100.0 * sum(entry.value for entry in made.values())
+    if abs(total - 100.0) > _WHOLE:
+        said = f"the shares of heat input add up to {total:.4g} %"
+        book.trouble("fuel-missing", rows[0].place, said, expected="shares that add up to 100 %")
+        return {}
     return made
 
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from reporter.conversions import convert_entry
+from reporter.conversions import convert_entry, converted
 from reporter.ledger import Entry
 from reporter.methods.method_2 import absolute_pressure
 from reporter.methods.method_4 import (
@@ -20,6 +20,9 @@ from reporter.reduction.book import Book
 from reporter.reduction.equations import carried
 from reporter.units import dimension
 
+#: Moistures entered and measured that differ by more than this fraction are said to differ.
+_APART = 0.005
+
 
 def stack_temperature(book: Book, run: Run) -> Entry | None:
     """Stack temperature of a run [°F or °C], where entered."""
@@ -32,9 +35,7 @@ def stack_pressure(book: Book, run: Run) -> Entry | None:
     """Absolute pressure in the stack [inHg or kPa], from barometer and static pressure."""
     if run.barometric_pressure is None:
         return None
-    barometer = book.given(
-        f"run.{run.key}.barometric_pressure", run.barometric_pressure, book.unit("inHg", "kPa")
-    )
+    barometer = book.given(f"run.{run.key}.barometric_pressure", run.barometric_pressure, book.unit("inHg", "kPa"))
     if run.static_pressure is None:
         return barometer
     static = book.given(f"run.{run.key}.static_pressure", run.static_pressure, book.unit("inH2O", "kPa"))
@@ -42,31 +43,82 @@ def stack_pressure(book: Book, run: Run) -> Entry | None:
     return book.apply(absolute_pressure, f"run.{run.key}.stack_pressure", inputs)
 
 
+def say_static(book: Book, run: Run) -> None:
+    """Say that a stack pressure rests on the barometer alone, where it does."""
+    if run.static_pressure is None:
+        book.say(f"Run {run.run.value}: no static pressure was entered; the stack is taken at barometric pressure.")
+
+
 def moisture(book: Book, run: Run) -> Entry | None:
-    """The moisture fraction a run is computed with, key ``run.<run>.moisture``; None where none is known."""
-    train = next((t for t in book.record.moisture if t.run.value == run.run.value), None)
-    measured = _from_train(book, run, train) if train is not None else None
+    """The moisture fraction a run is computed with, key ``run.<run>.moisture``; None where none is known (yet).
+
+    A train wins over a value entered; `settle_calculated` follows where the fuel calculation is to give it.
+    """
+    measured = _measured(book, run)
     if run.moisture is not None:
-        key = f"run.{run.key}.moisture.entered"
-        entered = book.given(key, run.moisture, "%")
+        entered = book.given(f"run.{run.key}.moisture.entered", run.moisture, "%")
         if measured is None:
             measured = convert_entry(book.ledger, f"run.{run.key}.moisture.measured", entered, "1")
-        _say_source(book, run)
-    saturated = _at_saturation(book, run)
-    if measured is None:
-        if saturated is not None and text_of(run.moisture_source) == "saturation":
-            return book.apply(carried, f"run.{run.key}.moisture", {"value": saturated})
+            _say_source(book, run)
+        elif abs(measured.value - converted(entered.value, "%", "1")) > _APART:
+            book.say(
+                f"Run {run.run.value}: the moisture entered, {entered.value:g} %, differs from that of the train, "
+                f"{100 * measured.value:.2f} %; that of the train is used."
+            )
+    return _settled(book, run, measured)
+
+
+def is_calculated(run: Run) -> bool:
+    """Whether the moisture of a run is to come from the combustion balance."""
+    return run.moisture is None and text_of(run.moisture_source) == "fuel calculation"
+
+
+def settle_calculated(book: Book, run: Run) -> Entry | None:
+    """The moisture of a run from its combustion balance, where the record says so and the balance has it."""
+    expected = book.ledger.get(f"run.{run.key}.combustion.moisture_expected")
+    if expected is None or not is_calculated(run):
         return None
-    if saturated is None:
-        return book.apply(carried, f"run.{run.key}.moisture", {"value": measured})
-    inputs = {"measured": measured, "saturation": saturated}
-    lowest = book.apply(lower_moisture, f"run.{run.key}.moisture", inputs)
+    book.say(f"Run {run.run.value}: the moisture is calculated from the fuel and the readings, not measured.")
+    return _settled(book, run, expected)
+
+
+def _measured(book: Book, run: Run) -> Entry | None:
+    trains = [train for train in book.record.moisture if train.run.value == run.run.value]
+    if len(trains) > 1:
+        book.say(f"Run {run.run.value}: {len(trains)} condenser trains are entered; the first complete one is used.")
+    for train in trains:
+        if _is_complete(train):
+            return _from_train(book, run, train)
+    if trains:
+        said = f"run {run.run.value}: the train's row is not complete"
+        if run.moisture is None:
+            book.trouble("moisture-missing", trains[0].place, said, concerns=(f"run.{run.key}.moisture",))
+        else:
+            book.say(f"R{said[1:]}; the moisture entered is used.")
+    return None
+
+
+def _settled(book: Book, run: Run, measured: Entry | None) -> Entry | None:
+    """The lower of measured and saturation where both are known; nothing that is no share of a gas."""
+    saturated = _at_saturation(book, run)
+    if measured is None and text_of(run.moisture_source) != "saturation":
+        return None
+    candidates = [entry for entry in (measured, saturated) if entry is not None]
+    if not candidates:
+        return None
+    if not 0.0 <= min(entry.value for entry in candidates) < 1.0:
+        said = f"run {run.run.value}: a moisture of {100 * candidates[0].value:.4g} % is not possible"
+        book.trouble("moisture-missing", run.place, said, concerns=(f"run.{run.key}.moisture",))
+        return None
+    if measured is None or saturated is None:
+        return book.apply(carried, f"run.{run.key}.moisture", {"value": candidates[0]})
     if saturated.value < measured.value:
         book.say(
             f"Run {run.run.value}: the measured moisture is above saturation at stack temperature; "
             "the lower of the two is used."
         )
-    return lowest
+    inputs = {"measured": measured, "saturation": saturated}
+    return book.apply(lower_moisture, f"run.{run.key}.moisture", inputs)
 
 
 def _say_source(book: Book, run: Run) -> None:
@@ -85,6 +137,7 @@ def _at_saturation(book: Book, run: Run) -> Entry | None:
     kelvin = convert_entry(book.ledger, f"{stem}.stack_temperature.kelvin", temperature, "K")
     if not 273.15 <= kelvin.value <= 373.15:
         return None
+    say_static(book, run)
     vapour = book.apply(saturation_pressure, f"{stem}.moisture.saturation_pressure", {"temperature": kelvin})
     absolute = (
         pressure
@@ -95,13 +148,14 @@ def _at_saturation(book: Book, run: Run) -> Entry | None:
     return book.attempt(saturation_moisture, f"{stem}.moisture.saturation", inputs)
 
 
+def _is_complete(train: MoistureTrain) -> bool:
+    needed = (train.meter_volume_end, train.meter_temperature, train.meter_pressure, train.water_collected)
+    return all(value is not None for value in needed)
+
+
 def _from_train(book: Book, run: Run, train: MoistureTrain) -> Entry | None:
     """Method 4: dry gas metered, water condensed and held by silica gel, all at standard conditions."""
     stem = f"run.{run.key}.moisture"
-    needed = (train.meter_volume_end, train.meter_temperature, train.meter_pressure, train.water_collected)
-    if any(value is None for value in needed):
-        book.trouble("moisture-missing", train.place, "the train's row is not complete", concerns=(stem,))
-        return None
     assert train.meter_volume_end is not None
     assert train.meter_temperature is not None
     assert train.meter_pressure is not None
@@ -110,9 +164,7 @@ def _from_train(book: Book, run: Run, train: MoistureTrain) -> Entry | None:
     start = (
         book.given(f"{stem}.meter_start", train.meter_volume_start, volume_unit)
         if train.meter_volume_start is not None
-        else book.state(
-            f"{stem}.meter_start", 0.0, volume_unit, "meter start not entered: the end is a volume"
-        )
+        else book.state(f"{stem}.meter_start", 0.0, volume_unit, "meter start not entered: the end is a volume")
     )
     factor = (
         book.given(f"{stem}.meter_factor", train.meter_factor, "1")
@@ -123,9 +175,7 @@ def _from_train(book: Book, run: Run, train: MoistureTrain) -> Entry | None:
         "end": end,
         "start": start,
         "factor": factor,
-        "temperature": book.given(
-            f"{stem}.meter_temperature", train.meter_temperature, book.unit("°F", "°C")
-        ),
+        "temperature": book.given(f"{stem}.meter_temperature", train.meter_temperature, book.unit("°F", "°C")),
         "pressure": book.given(f"{stem}.meter_pressure", train.meter_pressure, book.unit("inHg", "kPa")),
     }
     gas = book.attempt(metered_volume, f"{stem}.meter_volume_standard", inputs)

@@ -14,7 +14,7 @@ from reporter.gases import find_gas
 from reporter.methods.tables import DEFAULT_TABLE, factor_tables
 from reporter.record import Limit, MoistureBasis, text_of
 from reporter.reduction.book import Book, Lane
-from reporter.reduction.flow import entered_standard, method_standard
+from reporter.reduction.standards import conditions
 from reporter.units import dimension
 
 CONCENTRATION, MASS_CONCENTRATION = "concentration", "mass_concentration"
@@ -79,13 +79,12 @@ def plans(book: Book, lanes: Sequence[Lane]) -> list[Plan]:
     seen: dict[tuple[object, ...], str] = {}
     taken: set[str] = set()
     for limit in book.record.limits:
-        pollutant = find_gas(limit.pollutant.value)
-        lane = next((x for x in lanes if pollutant is not None and x.gas.key == pollutant.key), None)
+        lane = _lane_of(book, lanes, limit)
         if lane is None:
             said = f"limit {limit.limit_id.value}: no channel measures {limit.pollutant.value}"
             book.trouble("pollutant-missing", limit.place, said, concerns=(f"comparison.{limit.key}",))
             continue
-        plan = _of_limit(book, lane, limit)
+        plan = _of_limit(book, lane, limit, _usual_diluent(lanes))
         ending = seen.get(plan.parameters)
         if ending is None:
             ending = _ending(plan)
@@ -96,6 +95,22 @@ def plans(book: Book, lanes: Sequence[Lane]) -> list[Plan]:
         made.append(_with(plan, ending))
     everything = made + _plain(book, lanes, taken)
     return [_with_rate(plan, everything) for plan in everything]
+
+
+def _lane_of(book: Book, lanes: Sequence[Lane], limit: Limit) -> Lane | None:
+    """The channel of a limit's pollutant: the first, and said so, where several measure it."""
+    pollutant = find_gas(limit.pollutant.value)
+    found = [lane for lane in lanes if pollutant is not None and lane.gas.key == pollutant.key]
+    if len(found) > 1:
+        names = ", ".join(lane.name for lane in found)
+        book.say(f"Limit {limit.limit_id.value}: {names} measure {found[0].gas.label}; {found[0].name} is compared.")
+    return found[0] if found else None
+
+
+def _usual_diluent(lanes: Sequence[Lane]) -> str:
+    """The diluent of emission rates where a limit names none: O2, or CO2 where that alone is measured."""
+    measured = {lane.gas.key for lane in lanes}
+    return "CO2" if "co2" in measured and "o2" not in measured else "O2"
 
 
 def _with_rate(plan: Plan, all_plans: Sequence[Plan]) -> Plan:
@@ -121,7 +136,7 @@ def _ending(plan: Plan) -> str:
     return plan.quantity
 
 
-def _of_limit(book: Book, lane: Lane, limit: Limit) -> Plan:
+def _of_limit(book: Book, lane: Lane, limit: Limit, usual: str) -> Plan:
     unit = limit.unit.value.unit
     kind = dimension(unit)
     quantity = OUTPUT_RATE if unit in _PER_OUTPUT else _QUANTITIES.get(kind, CONCENTRATION)
@@ -141,20 +156,38 @@ def _of_limit(book: Book, lane: Lane, limit: Limit) -> Plan:
             "basis-missing",
             f"limit {limit.limit_id.value}: a reference diluent goes with a dry basis",
         )
-    diluent = text_of(limit.diluent, "CO2" if limit.reference_carbon_dioxide is not None else "O2")
+    referenced = referenced and concentration
+    by_rate = not concentration
+    diluent = text_of(limit.diluent).upper()
+    if not diluent:
+        diluent = "CO2" if referenced and limit.reference_oxygen is None else usual if by_rate else "O2"
+    uses_factors = by_rate or (referenced and diluent == "CO2")
     return Plan(
         lane=lane,
         quantity=quantity,
         ending="",
         limit=limit,
         moisture=(moisture or MoistureBasis.DRY) if concentration else MoistureBasis.DRY,
-        diluent=diluent.upper(),
-        referenced=referenced and concentration,
+        diluent=diluent if by_rate or referenced else "O2",
+        referenced=referenced,
         standard=_standard(book, limit) if quantity == MASS_CONCENTRATION else NO_VOLUME,
-        table=_table(text_of(limit.factor_table)),
+        table=_table(text_of(limit.factor_table)) if uses_factors else DEFAULT_TABLE,
         route=text_of(limit.mass_rate_route) if quantity in {MASS_RATE, OUTPUT_RATE} else "",
-        problem=problem,
+        problem=problem or (_contradiction(limit, diluent) if referenced else None),
     )
+
+
+def _contradiction(limit: Limit, diluent: str) -> tuple[str, str] | None:
+    """What of a reference contradicts itself: its diluent has no reference, or it lies at or above air."""
+    name = f"limit {limit.limit_id.value}"
+    if diluent == "O2" and limit.reference_oxygen is None:
+        return "basis-missing", f"{name}: the diluent is O2, but the reference is a carbon dioxide"
+    if limit.reference_carbon_dioxide is not None and limit.reference_oxygen is not None:
+        return "basis-missing", f"{name}: both a reference oxygen and a reference carbon dioxide are entered"
+    k = limit.oxygen_constant.value if limit.oxygen_constant is not None else 20.9
+    if limit.reference_oxygen is not None and limit.reference_oxygen.value >= k:
+        return "basis-missing", f"{name}: the reference oxygen is not below the {k:g} % of dry air"
+    return None
 
 
 def _table(text: str) -> str:
@@ -166,26 +199,17 @@ def _table(text: str) -> str:
 
 def _standard(book: Book, limit: Limit) -> Standard:
     """Standard conditions of a mass concentration: entered, by the unit's spelling, else the unit system's."""
-    from reporter.methods.mass_concentration import standard_of
-
-    entered = entered_standard(limit.standard_temperature, limit.standard_pressure)
-    if entered is not None:
-        assert entered.temperature_k is not None
-        assert entered.pressure_kpa is not None
-        return standard_of(round(entered.temperature_k, 6), round(entered.pressure_kpa, 6))
-    if limit.unit.value.standard.temperature_k is not None:
-        return limit.unit.value.standard
-    standard = method_standard(book)
-    said = f"limit {limit.limit_id.value}: no standard temperature and pressure; {standard.text()} taken"
-    book.trouble("standard-conditions-assumed", limit.place, said)
-    return standard
+    found = conditions(book, limit.standard_temperature, limit.standard_pressure, limit.unit.value)
+    if found.assumed:
+        said = f"limit {limit.limit_id.value}: no standard temperature and pressure; {found.assumed} taken"
+        book.trouble("standard-conditions-assumed", limit.place, said)
+    return found.standard
 
 
 def _plain(book: Book, lanes: Sequence[Lane], taken: set[str]) -> list[Plan]:
     """Emission rate and mass rate of each pollutant that no limit asks for."""
     made: list[Plan] = []
-    diluents = {lane.gas.key for lane in lanes if lane.gas.is_diluent}
-    diluent = "O2" if "o2" in diluents or "co2" not in diluents else "CO2"
+    diluent = _usual_diluent(lanes)
     for lane in lanes:
         if lane.gas.is_diluent or lane.gas.unit != "ppm":
             continue

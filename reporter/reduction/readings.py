@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, field, replace
 from datetime import datetime, timedelta
 from itertools import pairwise
 from statistics import median
 
-from reporter.basis import AS_MEASURED, Basis, Moisture
+from reporter.basis import AS_MEASURED, NO_VOLUME, Basis, Moisture
+from reporter.conversions import converted
 from reporter.equation import Citation, Value, constant, equation
 from reporter.functions import count
 from reporter.ledger import Entry, FromCells
@@ -17,15 +18,17 @@ from reporter.outcome import Exclusion, Series
 from reporter.problems import Place
 from reporter.record import Event, MoistureBasis, Reading, ReadingKind, Readings, Run, text_of
 from reporter.reduction.book import Book, Lane
+from reporter.reduction.channel_units import channel_standard, is_mass
+from reporter.units import dimension
 
 _MINUTE = timedelta(minutes=1)
 #: Share a value below detection is counted at, by the policy entered in the Test sheet.
 POLICIES = {"zero": 0.0, "half": 0.5, "full": 1.0}
+#: Oxygen [%] that no gas with air as its only source of oxygen exceeds, with the last digit of an analyzer.
+_AIR_AT_MOST = 21.0
 
 
-@equation(
-    "n", "1", {"readings": "*c"}, Citation("m7e", "12.6"), symbols={"readings": "C_i"}, series=("readings",)
-)
+@equation("n", "1", {"readings": "*c"}, Citation("m7e", "12.6"), symbols={"readings": "C_i"}, series=("readings",))
 def reading_count(*, readings: Value) -> Value:
     """Number of valid readings of a run.
 
@@ -49,9 +52,7 @@ def reading_count(*, readings: Value) -> Value:
     Citation("m7e", "8.5"),
     symbols={"number": "n", "interval": "Δt", "duration": "t_run"},
 )
-def coverage(
-    *, number: Value, interval: Value, duration: Value, hundred: Value = constant(100.0, "%")
-) -> Value:
+def coverage(*, number: Value, interval: Value, duration: Value, hundred: Value = constant(100.0, "%")) -> Value:
     """Share of a run's length that its valid readings cover.
 
     Parameters
@@ -73,10 +74,15 @@ def coverage(
     return hundred * number * interval / duration
 
 
-def channel_basis(lane: Lane) -> Basis:
-    """The basis of a channel's readings."""
+def channel_basis(book: Book, lane: Lane) -> Basis:
+    """The basis of a channel's readings; a mass concentration carries its conditions too."""
     wet = lane.channel.moisture_basis.value is MoistureBasis.WET
-    return Basis(moisture=Moisture.WET if wet else Moisture.DRY, oxygen=AS_MEASURED)
+    return Basis(
+        moisture=Moisture.WET if wet else Moisture.DRY,
+        oxygen=AS_MEASURED,
+        standard=channel_standard(book, lane) if is_mass(lane.unit) else NO_VOLUME,
+        expressed_as=lane.gas.expressed_as if is_mass(lane.unit) else "",
+    )
 
 
 def logging_interval(book: Book) -> timedelta:
@@ -96,9 +102,7 @@ def stamps_interval_start(book: Book) -> bool:
     """Whether a time stamp names the start of its interval; the end where it was not entered (then said)."""
     entered = book.record.test.reading_stamp
     if entered is None:
-        book.say(
-            "Whether a time stamp names the start or the end of its interval was not entered; the end is taken."
-        )
+        book.say("Whether a time stamp names the start or the end of its interval was not entered; the end is taken.")
     return text_of(entered).endswith("start")
 
 
@@ -126,8 +130,7 @@ def window(book: Book, run: Run) -> Window:
             continue
         reason = ""
         for event in excluding:
-            until = event.until.value if event.until is not None else event.time.value + interval
-            if begin < until and end > event.time.value:
+            if begin < _until(event, interval) and end > event.time.value:
                 reason = text_of(event.reason) or event.what.value
                 tally[id(event)] += 1
                 break
@@ -136,14 +139,23 @@ def window(book: Book, run: Run) -> Window:
         Exclusion(
             run=run.key,
             start=event.time.value,
-            end=event.until.value if event.until is not None else event.time.value + interval,
+            end=_until(event, interval),
             reason=text_of(event.reason) or event.what.value,
             count=tally[id(event)],
         )
         for event in excluding
         if tally[id(event)]
     )
+    for event in excluding:
+        if event.until is None and tally[id(event)]:
+            moment = f"{event.time.value:%H:%M}"
+            book.say(f"The event at {moment} ({event.what.value}) has no end; one logging interval is left out.")
     return Window(run, tuple(rows), exclusions, interval)
+
+
+def _until(event: Event, interval: timedelta) -> datetime:
+    """When an event ended; one logging interval after it began where no end was entered."""
+    return event.until.value if event.until is not None else event.time.value + interval
 
 
 def _excludes(event: Event, run: Run) -> bool:
@@ -154,111 +166,157 @@ def _excludes(event: Event, run: Run) -> bool:
     return inside and (event.run is None or event.run.value == run.run.value)
 
 
-def reduce_readings(book: Book, lane: Lane, span: Window) -> Series | None:
-    """Enter the readings of a channel in a run and its mean; None where no mean can be made.
+@dataclass
+class _Sorted:
+    """The readings of a window by what they are.
+
+    `below` holds position and bound of each reading below detection (None: no bound is known), `over` the bound
+    of each reading over range (None: none was logged).
+    """
+
+    used: list[tuple[datetime, float]] = field(default_factory=list)
+    left: list[tuple[datetime, Reading, str]] = field(default_factory=list)
+    below: list[tuple[int, float | None]] = field(default_factory=list)
+    over: list[float | None] = field(default_factory=list)
+
+
+def reduce_readings(book: Book, lane: Lane, span: Window) -> Series:
+    """Enter the readings of a channel in a run and its mean; no mean where none can be made.
 
     A reading over range makes the mean a lower bound, which is entered as such and never corrected; a
     reading below detection needs an entered policy, else the mean at zero, half and full value is shown.
     """
+    found = _sort(book, lane, span)
     readings = book.record.readings
-    column = readings.index(lane.name)
-    used: list[tuple[datetime, float]] = []
-    left: list[tuple[datetime, Reading, str]] = []
-    below: list[tuple[int, float]] = []
-    over: list[float | None] = []
-    for index, _begin, _end, reason in span.rows:
-        row = readings.rows[index]
-        reading = row.readings[column]
-        if reason:
-            left.append((row.time, reading, reason))
-        elif reading.kind is ReadingKind.NUMBER and reading.value is not None:
-            used.append((row.time, reading.value))
-        elif reading.kind in {ReadingKind.NOT_DETECTED, ReadingKind.BELOW}:
-            bound = reading.value if reading.value is not None else _detection_limit(lane)
-            below.append((len(used), bound))
-            used.append((row.time, bound))
-        else:
-            if reading.kind is ReadingKind.OVER:
-                over.append(reading.value)
-            left.append((row.time, reading, reading.kind.value))
     rows = [readings.rows[index].row for index, *_ in span.rows]
     series = Series(
         key=lane.key(span.run, "readings"),
         channel=lane.name,
-        used=tuple(used),
-        left_out=tuple(left),
-        missing_minutes=_missing_minutes(span, {time for time, _ in used}, readings),
+        used=tuple(found.used),
+        left_out=tuple(found.left),
+        missing_minutes=_missing_minutes(span, {time for time, _ in found.used}, readings),
         interval=span.interval,
         first_row=min(rows, default=0),
         last_row=max(rows, default=0),
     )
-    if not used:
-        return series
-    return _with_mean(book, lane, span, series, below, over)
+    place = _place(book, lane, series)
+    _implausible(book, lane, span, place, found)
+    if found.used:
+        return _with_mean(book, lane, span, series, found)
+    if found.over:
+        words = f"run {span.run.run.value}: all readings are over range"
+        book.trouble("over-range-in-run", place, words, concerns=(lane.key(span.run, "mean"),))
+    return series
 
 
-def _detection_limit(lane: Lane) -> float:
+def _sort(book: Book, lane: Lane, span: Window) -> _Sorted:
+    readings = book.record.readings
+    column = readings.index(lane.name)
+    found = _Sorted()
+    for index, _begin, _end, reason in span.rows:
+        row = readings.rows[index]
+        reading = row.readings[column]
+        if reason:
+            found.left.append((row.time, reading, reason))
+        elif reading.kind is ReadingKind.NUMBER and reading.value is not None:
+            found.used.append((row.time, reading.value))
+        elif reading.kind in {ReadingKind.NOT_DETECTED, ReadingKind.BELOW}:
+            bound = reading.value if reading.value is not None else _detection_limit(lane)
+            found.below.append((len(found.used), bound))
+            found.used.append((row.time, bound or 0.0))
+        else:
+            if reading.kind is ReadingKind.OVER:
+                found.over.append(reading.value)
+            found.left.append((row.time, reading, reading.kind.value))
+    return found
+
+
+def _detection_limit(lane: Lane) -> float | None:
     limit = lane.channel.detection_limit
-    return 0.0 if limit is None else limit.value
+    return None if limit is None else limit.value
 
 
 def _place(book: Book, lane: Lane, series: Series) -> Place:
     readings = book.record.readings
     letter = readings.columns[readings.index(lane.name)]
-    cells = f"{letter}{series.first_row}:{letter}{series.last_row}"
+    cells = f"{letter}{series.first_row}:{letter}{series.last_row}" if series.last_row else letter
     return Place(book.record.source.name, readings.place.sheet or "Readings", cells, lane.name)
 
 
-def _with_mean(
-    book: Book,
-    lane: Lane,
-    span: Window,
-    series: Series,
-    below: Sequence[tuple[int, float]],
-    over: Sequence[float | None],
-) -> Series:
+def _implausible(book: Book, lane: Lane, span: Window, place: Place, found: _Sorted) -> None:
+    """Oxygen above that of air, whatever the unit of the channel."""
+    if lane.gas.key != "o2" or not found.used or dimension(lane.unit) != "fraction":
+        return
+    highest = converted(max(value for _, value in found.used), lane.unit, "%")
+    if highest > _AIR_AT_MOST:
+        book.trouble("oxygen-reading-implausible", place, f"{highest:g} % oxygen in run {span.run.run.value}")
+
+
+def _with_mean(book: Book, lane: Lane, span: Window, series: Series, found: _Sorted) -> Series:
     run, place = span.run, _place(book, lane, series)
     values = [value for _, value in series.used]
-    policy = text_of(book.record.test.not_detected_counted_as)
-    if below and policy:
-        values = _counted(values, below, POLICIES[policy])
+    undecided = _undecided(book, found)
+    if found.below and not undecided:
+        policy = text_of(book.record.test.not_detected_counted_as)
+        values = _counted(values, found.below, POLICIES[policy])
         series = replace(series, used=tuple(zip((t for t, _ in series.used), values, strict=True)))
         book.say(f"Readings below detection are counted at {policy} value, as entered.")
     entry = _enter(book, lane, series.key, values, place)
     _counts(book, lane, span, entry)
-    if over:
-        key = lane.key(run, "mean.lower_bound")
-        known = [bound if bound is not None else max(values) for bound in over]
-        whole = _enter(book, lane, lane.key(run, "readings.with_over_range"), values + known, place)
-        book.apply(run_mean, key, {"readings": whole})
-        words = f"{len(over)} reading(s) over range; the mean is a lower bound"
-        book.trouble("over-range-in-run", place, words, concerns=(lane.key(run, "mean"),))
-        return series
-    if below and not policy:
-        for name, share in POLICIES.items():
-            some = _enter(
-                book, lane, lane.key(run, f"readings.counted_{name}"), _counted(values, below, share), place
-            )
-            book.apply(run_mean, lane.key(run, f"mean.counted_{name}"), {"readings": some})
-        words = f"{len(below)} reading(s) below detection and no policy entered"
+    if undecided:
+        _show_policies(book, lane, span, values, found)
+        words = f"run {run.run.value}: {len(found.below)} reading(s) below detection and {undecided}"
         book.trouble("undecided-not-detected", place, words, concerns=(lane.key(run, "mean"),))
-        return series
-    book.apply(run_mean, lane.key(run, "mean"), {"readings": entry})
-    if lane.gas.key == "o2" and max(values) > 21.0:
-        book.trouble("oxygen-reading-implausible", place, f"{max(values):g} % oxygen in run {run.run.value}")
+    if found.over:
+        _lower_bound(book, lane, span, _counted(values, found.below, 0.0) if undecided else values, found.over)
+        words = f"run {run.run.value}: {len(found.over)} reading(s) over range; the mean is a lower bound"
+        book.trouble("over-range-in-run", place, words, concerns=(lane.key(run, "mean"),))
+    elif not undecided:
+        book.apply(run_mean, lane.key(run, "mean"), {"readings": entry})
     return series
 
 
-def _counted(values: Sequence[float], below: Sequence[tuple[int, float]], share: float) -> list[float]:
+def _undecided(book: Book, found: _Sorted) -> str:
+    """Why readings below detection cannot be counted; empty where there are none, or they can."""
+    policy = text_of(book.record.test.not_detected_counted_as)
+    if found.below and not policy:
+        return "no policy entered"
+    if policy in ("half", "full") and any(bound is None for _, bound in found.below):
+        return "no detection limit entered"
+    return ""
+
+
+def _show_policies(book: Book, lane: Lane, span: Window, values: Sequence[float], found: _Sorted) -> None:
+    """The mean with readings below detection at zero, half and full value, as far as their bounds are known."""
+    place = Place(book.record.source.name, book.record.readings.place.sheet or "Readings", "", lane.name)
+    known = all(bound is not None for _, bound in found.below)
+    for name, share in POLICIES.items():
+        if share == 0.0 or known:
+            key = lane.key(span.run, f"readings.counted_{name}")
+            some = _enter(book, lane, key, _counted(values, found.below, share), place)
+            book.apply(run_mean, lane.key(span.run, f"mean.counted_{name}"), {"readings": some})
+
+
+def _lower_bound(
+    book: Book, lane: Lane, span: Window, values: Sequence[float], over: Sequence[float | None]
+) -> None:
+    """The mean with each reading over range at its bound, or at the highest reading where none was logged."""
+    place = Place(book.record.source.name, book.record.readings.place.sheet or "Readings", "", lane.name)
+    known = [bound if bound is not None else max(values) for bound in over]
+    whole = _enter(book, lane, lane.key(span.run, "readings.with_over_range"), [*values, *known], place)
+    book.apply(run_mean, lane.key(span.run, "mean.lower_bound"), {"readings": whole})
+
+
+def _counted(values: Sequence[float], below: Sequence[tuple[int, float | None]], share: float) -> list[float]:
     counted = list(values)
     for position, bound in below:
-        counted[position] = share * bound
+        counted[position] = share * (bound or 0.0)
     return counted
 
 
 def _enter(book: Book, lane: Lane, key: str, values: Sequence[float], place: Place) -> Entry:
     return book.ledger.enter(
-        key, values, lane.unit, FromCells(place, f"{len(values)} readings"), basis=channel_basis(lane)
+        key, values, lane.unit, FromCells(place, f"{len(values)} readings"), basis=channel_basis(book, lane)
     )
 
 
@@ -271,18 +329,31 @@ def _counts(book: Book, lane: Lane, span: Window, entry: Entry) -> None:
 
 
 def _missing_minutes(span: Window, used: set[datetime], readings: Readings) -> tuple[datetime, ...]:
-    """Each clock minute of the run that no valid reading covers, excluded periods counted too."""
-    covered: set[datetime] = set()
-    for index, begin, end, _reason in span.rows:
-        if readings.rows[index].time in used:
-            minute = begin.replace(second=0, microsecond=0)
-            while minute < end:
-                covered.add(minute)
-                minute += _MINUTE
-    missing: list[datetime] = []
-    minute = span.run.start.value.replace(second=0, microsecond=0)
-    while minute < span.run.end.value:
-        if minute not in covered:
-            missing.append(minute)
+    """Each clock minute of the run without a valid reading, excluded periods counted too.
+
+    A reading of up to a minute belongs to the minute its middle lies in, a longer one to every minute whose
+    middle it covers; a minute only partly in the run is content with any reading that touches it.
+    """
+    start, stop = span.run.start.value, span.run.end.value
+    valid = [(begin, end) for index, begin, end, _ in span.rows if readings.rows[index].time in used]
+    owned = {minute for begin, end in valid for minute in _minutes_of(begin, end)}
+    touched = {minute for begin, end in valid for minute in _minutes(begin, end)}
+    return tuple(
+        minute
+        for minute in _minutes(start, stop)
+        if minute not in (owned if start <= minute and minute + _MINUTE <= stop else touched)
+    )
+
+
+def _minutes(begin: datetime, end: datetime) -> Iterator[datetime]:
+    minute = begin.replace(second=0, microsecond=0)
+    while minute < end:
+        yield minute
         minute += _MINUTE
-    return tuple(missing)
+
+
+def _minutes_of(begin: datetime, end: datetime) -> Iterator[datetime]:
+    if end - begin <= _MINUTE:
+        yield (begin + (end - begin) / 2).replace(second=0, microsecond=0)
+        return
+    yield from (minute for minute in _minutes(begin, end) if begin <= minute + _MINUTE / 2 < end)

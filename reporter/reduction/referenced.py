@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from reporter.ledger import Entry
+from reporter.ledger import Entry, slug
 from reporter.methods.method_3b import fuel_factor_from_f
 from reporter.methods.reference import (
     carbon_dioxide_reference,
@@ -12,6 +12,7 @@ from reporter.methods.reference import (
     oxygen_reference_by_co2,
     reference_refusal,
 )
+from reporter.methods.tables import DEFAULT_TABLE
 from reporter.record import Limit
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
@@ -30,7 +31,7 @@ def at_reference(
     limit = plan.limit
     assert limit is not None
     if plan.diluent == "CO2":
-        return _by_carbon_dioxide(book, about, limit, value, key, factors)
+        return _by_carbon_dioxide(book, about, plan, value, key, factors)
     run = about.run.run.value
     oxygen = about.dry.get("o2")
     if oxygen is None:
@@ -58,24 +59,25 @@ def oxygen_constant(book: Book, limit: Limit) -> Entry:
 
 
 def _by_carbon_dioxide(
-    book: Book, about: RunBook, limit: Limit, value: Entry, key: str, factors: Factors | None
+    book: Book, about: RunBook, plan: Plan, value: Entry, key: str, factors: Factors | None
 ) -> Entry | tuple[str, str]:
-    run = about.run.run.value
+    run, limit = about.run.run.value, plan.limit
+    assert limit is not None
     diluent = about.dry.get("co2")
     if diluent is None:
         return "diluent-missing", f"run {run}: no dry carbon dioxide"
+    if diluent.value <= 0.0:
+        return "diluent-missing", f"run {run}: carbon dioxide {diluent.value:.4g} % is not above zero"
     if limit.reference_carbon_dioxide is not None:
         name = f"limit.{limit.key}.reference_carbon_dioxide"
         reference = book.given(name, limit.reference_carbon_dioxide, "%")
-        return book.ledger.apply(
-            carbon_dioxide_reference, key, {"c": value, "co2": diluent, "reference": reference}
-        )
+        return book.ledger.apply(carbon_dioxide_reference, key, {"c": value, "co2": diluent, "reference": reference})
     if factors is None or factors.fd is None or factors.fc is None:
         return "factor-missing", f"run {run}: the CO2 route needs the fuel's F factors"
     assert limit.reference_oxygen is not None
-    fo = book.apply(
-        fuel_factor_from_f, about.key("fuel_factor.expected"), {"fd": factors.fd, "fc": factors.fc}
-    )
+    other = "" if plan.table == DEFAULT_TABLE else f".table_{slug(plan.table)}"
+    named = about.key(f"fuel_factor.expected{other}")
+    fo = book.apply(fuel_factor_from_f, named, {"fd": factors.fd, "fc": factors.fc})
     inputs = {
         "c": value,
         "co2": diluent,

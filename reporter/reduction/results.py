@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from typing import Any
 
@@ -13,10 +14,11 @@ from reporter.ledger import Entry
 from reporter.methods.averages import percent_difference
 from reporter.methods.mass_concentration import mass_concentration
 from reporter.methods.mass_rate import mass_factor, mass_rate_by_flow, mass_rate_by_heat_input, ppm_to_mass
-from reporter.methods.method_19 import Diluent, MoistureOf, select
-from reporter.methods.tables import conversion
+from reporter.methods.method_19 import Diluent, Form, MoistureOf, select
+from reporter.methods.tables import DEFAULT_TABLE, conversion
 from reporter.record import MoistureBasis
 from reporter.reduction import plans as kinds
+from reporter.reduction.ambient import ambient_air
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
 from reporter.reduction.fuels import Factors, run_factors
@@ -24,6 +26,8 @@ from reporter.reduction.output_rate import mass_per_output
 from reporter.reduction.plans import Plan
 from reporter.reduction.referenced import at_reference
 
+#: Oxygen of dry air [%] in Method 19, always.
+_AIR = 20.9
 _ROUTES = {"heat input": "by_heat_input", "flow": "by_flow"}
 
 
@@ -79,9 +83,7 @@ def _concentration(book: Book, about: RunBook, means: Means, plan: Plan, key: st
     return _referenced(book, about, means, plan, value, key)
 
 
-def _referenced(
-    book: Book, about: RunBook, means: Means, plan: Plan, value: Entry, key: str
-) -> Entry | Missing:
+def _referenced(book: Book, about: RunBook, means: Means, plan: Plan, value: Entry, key: str) -> Entry | Missing:
     factors = run_factors(book, about, means.shares, plan.table) if plan.diluent == "CO2" else None
     made = at_reference(book, about, plan, value, key, factors)
     return made if isinstance(made, Entry) else Missing(*made)
@@ -91,27 +93,36 @@ def _mass_concentration(book: Book, about: RunBook, means: Means, plan: Plan, ke
     value = _on_moisture(about, plan)
     if isinstance(value, Missing):
         return value
-    if value.unit != "ppm":
-        value = convert_entry(book.ledger, f"{value.key}.in_ppm", value, "ppm")
+    value = _in_ppm(book, value)
     gas, standard = plan.lane.gas, plan.standard
-    plain = key.replace("mass_concentration.at_reference", "mass_concentration")
     name = f"gas.{gas.key}.molar_mass"
     assert standard.temperature_k is not None
     assert standard.pressure_kpa is not None
     label = f"limit.{plan.limit.key}" if plan.limit is not None else "standard"
     inputs = {
         "c": value,
-        "molar_mass": book.table(
-            name, gas.mass, "g/mol", gas.mass_citation, row=gas.expressed_as or gas.label
-        ),
+        "molar_mass": book.table(name, gas.mass, "g/mol", gas.mass_citation, row=gas.expressed_as or gas.label),
         "temperature": _condition(book, plan, f"{label}.standard_temperature", standard.temperature_k, "K"),
         "pressure": _condition(book, plan, f"{label}.standard_pressure", standard.pressure_kpa, "kPa"),
     }
+    basis = value.basis.but(standard=standard, expressed_as=gas.expressed_as)
+    if not plan.referenced:
+        return book.ledger.apply(mass_concentration, key, inputs, basis=basis)
+    plain = about.key(f"{plan.lane.segment}.mass_concentration")
     made = book.ledger.get(plain)
+    if made is not None and made.basis != basis and plan.limit is not None:
+        plain = f"{plain}.for_limit_{plan.limit.key}"
+        made = book.ledger.get(plain)
     if made is None:
-        basis = value.basis.but(standard=standard, expressed_as=gas.expressed_as)
         made = book.ledger.apply(mass_concentration, plain, inputs, basis=basis)
-    return _referenced(book, about, means, plan, made, key) if plan.referenced else made
+    return _referenced(book, about, means, plan, made, key)
+
+
+def _in_ppm(book: Book, value: Entry) -> Entry:
+    if value.unit == "ppm":
+        return value
+    key = f"{value.key}.in_ppm"
+    return book.ledger.get(key) or convert_entry(book.ledger, key, value, "ppm")
 
 
 def _condition(book: Book, plan: Plan, key: str, value: float, unit: str) -> Entry:
@@ -132,9 +143,7 @@ def gas_per_volume(book: Book, about: RunBook, plan: Plan, dry: bool = False) ->
     name = f"{segment}.mass_per_volume"
     if dry and value.basis.moisture is not Moisture.DRY:
         value, name = about.dry[segment], f"{name}.dry"
-    if value.unit != "ppm":
-        value = convert_entry(book.ledger, f"{value.key}.in_ppm", value, "ppm")
-    return book.apply(ppm_to_mass, about.key(name), {"c": value, "k": _mass_factor(book, plan)})
+    return book.apply(ppm_to_mass, about.key(name), {"c": _in_ppm(book, value), "k": _mass_factor(book, plan)})
 
 
 def _mass_factor(book: Book, plan: Plan) -> Entry:
@@ -160,12 +169,11 @@ def _emission_rate(book: Book, about: RunBook, means: Means, plan: Plan, key: st
     if measured is None:
         return Missing("diluent-missing", f"run {run}: no corrected {diluent.value}")
     factors = run_factors(book, about, means.shares, plan.table)
-    if plan.table != "19-2":
-        book.say(
-            f"F factors of table {plan.table} are used for limit {plan.limit.limit_id.value if plan.limit else ''}."
-        )
     c = gas_per_volume(book, about, plan)
     form, extra = _form(book, about, c, diluent, measured, factors)
+    if form is None:
+        words = f"{plan.lane.gas.label} and {diluent.value} are on different bases, or wet without an F factor for it"
+        return Missing("moisture-missing", f"run {run}: {words}: the moisture of the stack gas is needed")
     available: dict[str, Entry | None] = {
         "cd": c, "cw": c, "fd": factors.fd, "fw": factors.fw, "fc": factors.fc,
         "o2": measured, "co2": measured, **extra,
@@ -173,37 +181,58 @@ def _emission_rate(book: Book, about: RunBook, means: Means, plan: Plan, key: st
     inputs = {name: available.get(name) for name in form.inputs}
     lacking = [name for name, entry in inputs.items() if entry is None]
     if lacking:
-        code = "fuel-missing" if not book.record.fuels else "factor-missing"
+        code = "factor-missing" if means.shares else "fuel-missing"
         return Missing(code, f"run {run}: {form.equation.citation.number} needs {', '.join(lacking)}")
-    if diluent is Diluent.O2 and measured.value >= 20.9:
-        return Missing("oxygen-at-or-above-air", f"run {run}: oxygen {measured.value:.4g} %")
+    given = {name: entry for name, entry in inputs.items() if entry is not None}
+    nothing_left = _nothing_left(run, diluent, given)
+    if nothing_left is not None:
+        return nothing_left
     if plan.lane.gas.by_analogy:
         book.say(f"{plan.lane.gas.label} by Method 19 is by analogy: the method names PM, SO2 and NOx only.")
-    return book.ledger.apply(form.equation, key, {n: e for n, e in inputs.items() if e is not None})
+    if plan.table != DEFAULT_TABLE and plan.limit is not None:
+        book.say(f"F factors of table {plan.table} are used for limit {plan.limit.limit_id.value}.")
+    return book.ledger.apply(form.equation, key, given)
+
+
+def _nothing_left(run: str, diluent: Diluent, given: Mapping[str, Entry]) -> Missing | None:
+    """Why a diluent leaves nothing to divide by: oxygen of air or more, carbon dioxide of zero or less."""
+    if diluent is Diluent.CO2:
+        dioxide = given["co2"].value
+        words = f"run {run}: carbon dioxide {dioxide:.4g} % is not above zero"
+        return Missing("diluent-missing", words) if dioxide <= 0.0 else None
+    oxygen, air = given["o2"].value, _AIR
+    if "bwa" in given:
+        air *= 1.0 - given["bwa"].value
+    elif "bws" in given and given["o2"].basis.moisture is Moisture.WET:
+        oxygen /= 1.0 - given["bws"].value
+    return Missing("oxygen-at-or-above-air", f"run {run}: oxygen {oxygen:.4g} %") if oxygen >= air else None
 
 
 def _form(
     book: Book, about: RunBook, c: Entry, diluent: Diluent, measured: Entry, factors: Factors
-) -> tuple[Any, dict[str, Entry | None]]:
-    """The form of Method 19 for the bases at hand, and the moisture entries it may need."""
+) -> tuple[Form | None, dict[str, Entry | None]]:
+    """The form of Method 19 for the bases at hand (None without the moisture it needs), and the moisture entries."""
     ambient: Entry | None = None
     moisture = MoistureOf.STACK if about.moisture is not None else MoistureOf.NONE
-    wet_pair = c.basis.moisture is Moisture.WET and measured.basis.moisture is Moisture.WET
-    if moisture is MoistureOf.NONE and wet_pair and factors.fw is not None:
+    is_wet_pair = c.basis.moisture is Moisture.WET and measured.basis.moisture is Moisture.WET
+    if moisture is MoistureOf.NONE and is_wet_pair and diluent is Diluent.O2 and factors.fw is not None:
         ambient, moisture = _ambient(book, about), MoistureOf.AMBIENT
-    form = select(c.basis, diluent, measured.basis, moisture)
+    try:
+        form = select(c.basis, diluent, measured.basis, moisture)
+    except BasisError:
+        if moisture is not MoistureOf.NONE:
+            raise
+        return None, {}
     return form, {"bws": about.moisture, "bwa": ambient}
 
 
 def _ambient(book: Book, about: RunBook) -> Entry:
-    run = about.run
-    key = about.key("moisture.ambient")
-    if run.ambient_moisture is not None:
-        entered = book.given(f"{key}_entered", run.ambient_moisture, "%")
-        return book.ledger.get(key) or convert_entry(book.ledger, key, entered, "1")
+    known = ambient_air(book, about.run)
+    if known is not None:
+        return known
     words = "ambient moisture not entered: 0.027, which Method 19 (12.2.2.1) allows anywhere at any time"
-    book.say(f"Run {run.run.value}: {words}.")
-    return book.state(key, 0.027, "1", words)
+    book.say(f"Run {about.run.run.value}: {words}.")
+    return book.state(about.key("moisture.ambient"), 0.027, "1", words)
 
 
 def _mass_rate(book: Book, about: RunBook, means: Means, plan: Plan, key: str) -> Entry | Missing:
@@ -212,10 +241,9 @@ def _mass_rate(book: Book, about: RunBook, means: Means, plan: Plan, key: str) -
     if plan.route:
         order.sort(key=lambda name: name != plan.route)
     tried = {name: _route(book, about, means, plan, name) for name in order}
-    first = tried[order[0]]
-    if isinstance(first, Missing) and not plan.route:
+    if isinstance(tried[order[0]], Missing) and not plan.route and not isinstance(tried[order[1]], Missing):
         order.reverse()
-        first = tried[order[0]]
+    first = tried[order[0]]
     if isinstance(first, Missing):
         return first
     primary = book.ledger.apply(first[0], key, first[1])
@@ -225,9 +253,7 @@ def _mass_rate(book: Book, about: RunBook, means: Means, plan: Plan, key: str) -
     return primary
 
 
-def _cross_check(
-    book: Book, about: RunBook, plan: Plan, key: str, primary: Entry, second: Any, name: str
-) -> None:
+def _cross_check(book: Book, about: RunBook, plan: Plan, key: str, primary: Entry, second: Any, name: str) -> None:
     cross = book.ledger.apply(second[0], f"{key}.{_ROUTES[name]}", second[1])
     inputs = {"value": cross, "reference": primary}
     difference = book.attempt(percent_difference, f"{key}.route_difference", inputs)
@@ -251,11 +277,7 @@ def _route(book: Book, about: RunBook, means: Means, plan: Plan, name: str) -> A
     if means.heat_input is None:
         return Missing("heat-input-missing", f"run {run}: no heat input")
     rate = _rate_for_route(book, about, means, plan)
-    return (
-        rate
-        if isinstance(rate, Missing)
-        else (mass_rate_by_heat_input, {"e": rate, "heat_input": means.heat_input})
-    )
+    return rate if isinstance(rate, Missing) else (mass_rate_by_heat_input, {"e": rate, "heat_input": means.heat_input})
 
 
 def _rate_for_route(book: Book, about: RunBook, means: Means, plan: Plan) -> Entry | Missing:
@@ -266,9 +288,9 @@ def _rate_for_route(book: Book, about: RunBook, means: Means, plan: Plan) -> Ent
 
 def _output_rate(book: Book, about: RunBook, means: Means, plan: Plan, key: str) -> Entry | Missing:
     if about.run.output is None:
-        return Missing(
-            "basis-missing", f"run {about.run.run.value}: a limit per output needs the run's output"
-        )
+        return Missing("basis-missing", f"run {about.run.run.value}: a limit per output needs the run's output")
+    if about.run.output.value <= 0.0:
+        return Missing("basis-missing", f"run {about.run.run.value}: the output is not above zero")
     base = f"mass_rate.for_{plan.ending.replace('.', '_')}"
     rate = result(book, about, means, replace(plan, quantity=kinds.MASS_RATE, ending=base))
     if isinstance(rate, Missing):

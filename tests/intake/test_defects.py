@@ -42,7 +42,9 @@ def test_every_code_has_a_defect_file_and_no_file_is_without_a_code() -> None:
 
 @pytest.mark.parametrize("code", sorted(FILES))
 def test_a_defect_file_shows_its_code(code: str) -> None:
-    problems = problems_of(FILES[code])
+    problems = read(FILES[code]).problems
+    if code not in {p.code for p in problems}:
+        problems = problems_of(FILES[code])
     shown = [p for p in problems if p.code == code]
     assert shown, [p.text() for p in problems]
     for problem in shown:
@@ -103,5 +105,5 @@ def test_the_words_of_the_catalogue_fit_a_sentence() -> None:
             assert words.strip() == words
             assert not words.endswith(".")
         assert code.title[0].isupper()
-        for word in ("pass", "fail", "compliant", "violation", "verdict"):
-            assert not re.search(rf"\b{word}", f"{code.title} {code.expected} {code.remedy}", re.IGNORECASE)
+        never = r"\b(pass(ed|es)?|fail(ed|s)?|compliant|compliance|violations?|verdict)\b"
+        assert not re.search(never, f"{code.title} {code.expected} {code.remedy}", re.IGNORECASE)

@@ -63,6 +63,7 @@ def build_view(
     sections = _sections(desk, minute_data=minute_data)
     run = sample_run(desk)
     calculation = sample(desk, run)
+    rows = register(desk)
     test = outcome.record.test
     return View(
         title=f"{desk.words('title.report')}, {test.unit_tested.value}, {test.facility.value}",
@@ -81,12 +82,13 @@ def build_view(
         sections=sections,
         sample_run="" if run is None else run.run.run.value,
         sample=calculation,
-        register=register(desk),
+        register=rows,
         documents=bound,
         checklist=checklist(desk, bound),
         signatures=signatures(desk),
         cautions=cautions(desk),
         statements=statements(desk, attached),
+        places=dict(desk.places),
         printed=frozenset(desk.printed),
     )
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from reporter.output.numbers import day, moment, period, unit_text
+from reporter.output.numbers import day, formulas, moment, period, shortest, unit_text
 from reporter.output.view.desk import Desk, aligned, entered, gas_name, group_row, said
 from reporter.output.view.model import AnyCell, Block, Column, Row, Table
 from reporter.outcome import CalibrationPoint
@@ -42,6 +42,7 @@ def _readings(desk: Desk) -> Table:
     levels = [level for level in _LEVELS if any(point.level == level for point in points)]
     columns = [Column("Time", width=1.4), Column("Route", width=1.2)]
     columns += [Column(level if level == "NO2" else level.capitalize(), number=True) for level in levels]
+    columns.append(Column("Cells", width=2.4))
     rows: list[Row] = []
     for channel in dict.fromkeys(point.channel for point in points):
         mine = sorted((p for p in points if p.channel == channel), key=lambda p: p.time)
@@ -50,7 +51,9 @@ def _readings(desk: Desk) -> Table:
             by_level = {point.level: point for point in one}
             cells: list[AnyCell] = [period(one[0].time, one[-1].time), one[0].route]
             cells += [desk.show(by_level[level].reading) if level in by_level else "" for level in levels]
-            rows.append(Row(tuple(cells)))
+            read = [point.reading for point in one if desk.is_read(point.reading)]
+            cells.append(desk.cells(read))
+            rows.append(Row(tuple(cells), anchor=desk.place(read)))
     return aligned(Table(tuple(columns), tuple(rows)))
 
 
@@ -62,7 +65,7 @@ def _gases(desk: Desk, channel: str, points: Sequence[CalibrationPoint]) -> str:
         " ".join(part for part in (level, cylinder, _number(desk, certified)) if part)
         for level, cylinder, certified in ordered
     ]
-    return f"{channel} [{unit}]: {', '.join(texts)}"
+    return f"{formulas(channel)} [{unit}]: {', '.join(texts)}"
 
 
 def _number(desk: Desk, key: str) -> str:
@@ -71,41 +74,47 @@ def _number(desk: Desk, key: str) -> str:
 
 
 def _cylinders(desk: Desk) -> Table:
+    """A row per gas under the row of its cylinder."""
     certified = {
         (point.cylinder, gas_name(desk.outcome.record.channel(point.channel).gas.value)): point.certified
         for point in desk.outcome.calibration_points
     }
     columns = (
-        Column("Cylinder", width=1.2), Column("Gas", width=0.8), Column("Certified", width=1, number=True),
-        Column("Unit", width=0.7), Column("Uncertainty", "%", 1.1, number=True), Column("Expires", width=1.2),
-        Column("Kind, producer, certificate", width=5),
+        Column("Gas", width=1.4), Column("Certified", width=1, number=True), Column("Unit", width=0.8),
+        Column("Uncertainty", "%", 1, number=True), Column("Cell", width=4),
     )  # fmt: skip
-    rows = []
+    by_name: dict[str, list[Cylinder]] = {}
     for cylinder in desk.outcome.record.cylinders:
-        gas = gas_name(cylinder.gas.value)
-        key = certified.get((cylinder.cylinder.value, gas), "")
-        value: AnyCell = desk.show(key) if key else entered(cylinder.certified_value, "")
-        unit = cylinder.unit.value if cylinder.unit is not None else cylinder.certified_value.unit
-        cells: tuple[AnyCell, ...] = (
-            cylinder.cylinder.value,
-            gas,
-            value,
-            unit_text(unit.unit) if unit is not None else "",
-            entered(cylinder.uncertainty, desk.missing).removesuffix(" %"),
-            day(cylinder.expires.value) if cylinder.expires is not None else desk.missing,
-            _papers(cylinder),
-        )
-        rows.append(Row(cells))
+        by_name.setdefault(cylinder.cylinder.value, []).append(cylinder)
+    rows: list[Row] = []
+    for name, gases in by_name.items():
+        rows.append(group_row(f"{name}: {_papers(desk, gases[0])}", len(columns)))
+        rows += [_gas(desk, one, certified.get((name, gas_name(one.gas.value)), "")) for one in gases]
     return aligned(Table(columns, tuple(rows)))
 
 
-def _papers(cylinder: Cylinder) -> str:
+def _gas(desk: Desk, cylinder: Cylinder, key: str) -> Row:
+    value = cylinder.certified_value
+    unit = cylinder.unit.value if cylinder.unit is not None else value.unit
+    read = [key] if key and desk.is_read(key) else []
+    cells: tuple[AnyCell, ...] = (
+        gas_name(cylinder.gas.value),
+        desk.show(key) if key else shortest(value.value, 8),
+        unit_text(unit.unit) if unit is not None else "",
+        desk.missing if cylinder.uncertainty is None else shortest(cylinder.uncertainty.value, 4),
+        desk.cells(read),
+    )
+    return Row(cells, anchor=desk.place(read))
+
+
+def _papers(desk: Desk, cylinder: Cylinder) -> str:
+    """Kind, balance gas, producer, certificate, dates and pressure of a cylinder."""
     assay = f"assayed {day(cylinder.assay_date.value)}" if cylinder.assay_date is not None else ""
+    expires = f"expires {day(cylinder.expires.value)}" if cylinder.expires is not None else ""
     number = f"certificate {cylinder.certificate_number.value}" if cylinder.certificate_number is not None else ""
     balance = f"in {cylinder.balance_gas.value}" if cylinder.balance_gas is not None else ""
-    pressure = entered(cylinder.pressure, "")
-    parts = (said(cylinder.kind), balance, said(cylinder.producer), number, assay, pressure)
-    return ", ".join(part for part in parts if part)
+    parts = (said(cylinder.kind), balance, said(cylinder.producer), number, assay, expires, entered(cylinder.pressure, ""))
+    return ", ".join(part for part in parts if part) or desk.words("missing.text")
 
 
 def _events(desk: Desk) -> Block:

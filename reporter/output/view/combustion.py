@@ -24,25 +24,35 @@ def combustion(desk: Desk) -> tuple[Block, ...]:
     if tables:
         blocks.append(Block(title="Air, fuel and products", tables=tables))
     blocks.append(_balance(desk, runs))
-    words = tuple(f"Run {one.run}: {formulas(one.words)}" if one.run else formulas(one.words) for one in desk.outcome.findings)
-    blocks.append(Block(title="Findings", notes=words or (desk.words("lead.no_findings"),)))
+    blocks.append(Block(title="Findings", notes=_findings(desk) or (desk.words("lead.no_findings"),)))
     return tuple(block for block in blocks if block.tables or block.pictures or block.notes)
 
 
+def _findings(desk: Desk) -> tuple[str, ...]:
+    """Findings in words, those of several runs once."""
+    runs: dict[str, list[str]] = {}
+    for finding in desk.outcome.findings:
+        runs.setdefault(finding.words, []).append(finding.run)
+    return tuple(
+        f"Run {', '.join(some)}: {formulas(words)}" if any(some) else formulas(words)
+        for words, some in runs.items()
+    )
+
+
 def _balance(desk: Desk, runs: Sequence[RunResult]) -> Block:
-    """Measured and expected side by side for each run."""
-    columns = [Column("Measured, expected", width=2.2), Column("Unit and basis", width=1.6)]
-    for run in runs:
-        columns += [Column(f"Run {run.run.run.value}", "measured", number=True), Column("", "expected", number=True)]
+    """Measured, expected and their difference below each other, a column per run."""
+    columns = [Column("", width=1.6), Column("", width=1.4), Column("Unit and basis", width=1.8)]
+    columns += [Column(f"Run {run.run.run.value}", number=True) for run in runs]
     rows = []
-    for label, measured, expected in layout().balance:
-        pairs = [(_of(desk, run, measured), _of(desk, run, expected)) for run in runs]
-        found = next((entry for pair in pairs for entry in pair if entry is not None), None)
-        if found is None or not any(second is not None for _, second in pairs):
-            continue
-        cells: list[AnyCell] = [formulas(label), unit_and_basis(found)]
-        cells += [desk.missing if entry is None else desk.shown(entry) for pair in pairs for entry in pair]
-        rows.append(Row(tuple(cells)))
+    for label, tails in layout().balance:
+        for tail, word in zip(tails, ("measured", "expected", "difference"), strict=False):
+            entries = [_of(desk, run, tail) for run in runs]
+            found = next((entry for entry in entries if entry is not None), None)
+            if found is not None:
+                name = formulas(label) if word == "measured" else ""
+                cells: list[AnyCell] = [name, word, unit_and_basis(found)]
+                cells += [desk.missing if entry is None else desk.shown(entry) for entry in entries]
+                rows.append(Row(tuple(cells)))
     tables = (aligned(Table(tuple(columns), tuple(rows))),) if rows else ()
     return Block(title="Measured against expected", tables=tables)
 

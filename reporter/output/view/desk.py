@@ -20,9 +20,11 @@ from reporter.output.phrases import Phrases
 from reporter.output.view.model import AnyCell, Cell, Column, Heading, Row, Shown, Table
 from reporter.outcome import Outcome
 from reporter.quantities import label_of, quantity_of
-from reporter.record import Real, Text
+from reporter.record import Channel, Real, Text
 from reporter.typeset import text_formula
 
+#: The equation that only gives an entry a second name.
+CARRIED = "carried"
 #: The sections in the order of the report; each has a heading ``title.<name>``.
 SECTIONS = (
     "summary", "quality_summary", "process", "location", "runs", "combustion", "traces", "criteria",
@@ -33,14 +35,14 @@ SECTIONS = (
 
 @dataclass
 class Desk:
-    """What the parts of the view share; `anchors` holds the keys whose derivation stands in the report."""
+    """What the parts of the view share; `places` holds the anchor of the derivation row of each key that has one."""
 
     outcome: Outcome
     issued: datetime
     version: str
     phrases: Phrases
     printed: dict[str, None] = field(default_factory=dict)
-    anchors: set[str] = field(default_factory=set)
+    places: dict[str, str] = field(default_factory=dict)
     _lines: dict[str, str] = field(default_factory=dict)
     _below: dict[str, list[str]] = field(default_factory=dict)
 
@@ -83,12 +85,16 @@ class Desk:
         cell = self.show(key, unit=True)
         return cell.text if isinstance(cell, Shown) else str(cell)
 
-    def anchor(self, key: str) -> str:
-        """The key as the anchor of its derivation row; nothing where it has one already."""
-        if key in self.anchors:
-            return ""
-        self.anchors.add(key)
-        return key
+    def place(self, keys: Iterable[str]) -> str:
+        """The anchor of a row that derives some keys: the first that has none yet; nothing where all have one."""
+        new = [key for key in keys if key not in self.places]
+        for key in new:
+            self.places[key] = new[0]
+        return new[0] if new else ""
+
+    def is_read(self, key: str) -> bool:
+        """Whether an entry was read from a cell or taken from a table, as it stands."""
+        return isinstance(self.outcome.ledger[key].origin, (FromCells, FromTable))
 
     def label(self, key: str) -> str:
         """The words for a key: its entry's label, else the words of the quantity table, else the key."""
@@ -153,14 +159,29 @@ class Desk:
                 stack.extend(entry.origin.keys())
         return found
 
-    def roots(self, key: str) -> str:
-        """The root cells of an entry, gathered by sheet."""
+    def origin_kind(self, entry: Entry) -> str:
+        """Sheet and column of a value read, or the words of its origin: what like entries have in common."""
+        origin = entry.origin
+        if isinstance(origin, FromCells):
+            return f"{origin.place.sheet} {origin.place.field}"
+        return self.origin_words(entry)
+
+    def cells(self, keys: Iterable[str]) -> str:
+        """The cells some entries were read from, the sheet once: ``Runs!L4 L5 L6``; nothing for other origins."""
         by_sheet: dict[str, dict[str, None]] = {}
-        for root in sorted(self.outcome.ledger.roots([key])):
-            origin = self.outcome.ledger[root].origin
-            if isinstance(origin, FromCells) and origin.place.cell:
+        for key in keys:
+            origin = self.outcome.ledger[key].origin
+            if isinstance(origin, FromCells):
                 by_sheet.setdefault(origin.place.sheet, {})[origin.place.cell] = None
-        return "; ".join(f"{sheet} {' '.join(cells)}" for sheet, cells in sorted(by_sheet.items()))
+        return ", ".join(f"{sheet}!{' '.join(cells)}" for sheet, cells in by_sheet.items())
+
+    def source_of(self, key: str) -> str:
+        """The key an entry was carried over from under a second name; else the key itself."""
+        origin = self.outcome.ledger[key].origin
+        while isinstance(origin, FromEquation) and origin.equation.name == CARRIED:
+            key = origin.keys()[0]
+            origin = self.outcome.ledger[key].origin
+        return key
 
 
 def cell_words(origin: FromCells) -> str:
@@ -173,6 +194,12 @@ def gas_name(text: str) -> str:
     """A gas as it is printed."""
     found = find_gas(text)
     return formulas(found.label if found is not None else text)
+
+
+def channel_name(channel: Channel) -> str:
+    """The gas of a channel, with the channel's name where that says more."""
+    gas, name = gas_name(channel.gas.value), channel.channel.value
+    return gas if gas_name(name) == gas else f"{gas}, {name}"
 
 
 def entered(value: Real | None, missing: str) -> str:
@@ -216,6 +243,13 @@ def simple_table(titles: Sequence[str], rows: Sequence[Sequence[str]], widths: S
     """A table of texts."""
     columns = tuple(Column(title, width=width) for title, width in zip(titles, widths, strict=True))
     return Table(columns, tuple(Row(tuple(row)) for row in rows))
+
+
+def filled(table: Table) -> Table:
+    """A table of texts without the columns in which nothing stands."""
+    kept = [at for at in range(len(table.columns)) if any(row.cells[at] for row in table.rows)]
+    rows = tuple(replace(row, cells=tuple(row.cells[at] for at in kept)) for row in table.rows)
+    return replace(table, columns=tuple(table.columns[at] for at in kept), rows=rows)
 
 
 def group_row(text: str, span: int) -> Row:

@@ -1,4 +1,4 @@
-"""The sheets as they were read: narrow tables as they stand, wide ones turned so that rows become columns."""
+"""The sheets as they were read: short tables as lines with tabs, wide ones a paragraph for each row."""
 
 from __future__ import annotations
 
@@ -6,15 +6,14 @@ from collections.abc import Sequence
 
 from reporter.output.numbers import moment
 from reporter.output.view.desk import Desk
-from reporter.output.view.model import Block, Column, Row, Table
+from reporter.output.view.model import Block
 from reporter.record import SheetCopy
 
 #: Sheets that stand in full in another section, and the series.
 _ELSEWHERE = frozenset({"Calibrations", "Cylinders", "Events", "Attachments", "Readings"})
-#: A sheet with more filled columns than this is turned; so many of its rows stand beside each other.
-_WIDE, _ACROSS = 7, 6
-#: Minute rows beside each other.
-_MINUTES_ACROSS = 2
+#: Lines with tabs: so wide is the text [mm], so wide a letter of it; a sheet of fewer rows has none.
+_WIDTH, _LETTER, _LONG = 175, 1.35, 6
+_ITEMS = ("Item", "Entry")
 
 
 def inputs(desk: Desk, *, minute_data: bool) -> tuple[Block, ...]:
@@ -37,51 +36,33 @@ def _sheet(sheet: SheetCopy) -> Block:
     ]
     header = [sheet.header[index] for index in filled]
     rows = [[row[index] if index < len(row) else "" for index in filled] for row in sheet.rows]
-    if not filled:
-        return Block()
-    if len(filled) > _WIDE:
-        return Block(title=title, tables=tuple(_turned(header, rows)))
-    return Block(title=title, tables=(_upright(header, rows),))
+    if tuple(header[:2]) == _ITEMS:
+        return Block(title=title, lines=tuple(": ".join(part for part in row if part) for row in rows))
+    longest = max((len(cell) for row in rows for cell in row), default=0)
+    if len(rows) >= _LONG and len(header) * _tab(longest) <= _WIDTH:
+        names = "; ".join(f"({number}) {name}" for number, name in enumerate(header, 1))
+        marks = [f"({number})" for number in range(1, len(header) + 1)]
+        return Block(title=title, text=(names,), lines=tuple("\t".join(row) for row in (marks, *rows)), tab=_tab(longest))
+    return Block(title=title, lines=tuple(_paragraph(header, row) for row in rows))
 
 
-def _upright(header: Sequence[str], rows: Sequence[Sequence[str]]) -> Table:
-    widths = [_width([name, *(row[index] for row in rows)]) for index, name in enumerate(header)]
-    columns = tuple(Column(name, width=width) for name, width in zip(header, widths, strict=True))
-    return Table(columns, tuple(Row(tuple(row)) for row in rows), small=True)
+def _tab(longest: int) -> int:
+    """The width of a column of lines with tabs [mm]."""
+    return int(longest * _LETTER) + 3
 
 
-def _turned(header: Sequence[str], rows: Sequence[Sequence[str]]) -> list[Table]:
-    """Column names down, rows across; the first column names each row."""
-    tables = []
-    for start in range(0, len(rows), _ACROSS):
-        some = rows[start : start + _ACROSS]
-        columns = (Column(header[0], width=1.6), *(Column(row[0], width=1.5) for row in some))
-        lines = tuple(
-            Row((name, *(row[index] for row in some)))
-            for index, name in enumerate(header)
-            if index and any(row[index] for row in some)
-        )
-        tables.append(Table(columns, lines, small=True))
-    return tables
-
-
-def _width(texts: Sequence[str]) -> float:
-    """A width by the longest text, within bounds that keep short columns readable."""
-    return min(max(max(len(text) for text in texts), 8), 60) ** 0.8
+def _paragraph(header: Sequence[str], row: Sequence[str]) -> str:
+    """A row as the names of its columns with what stood there; the first names the row."""
+    rest = "; ".join(f"{name}: {cell}" for name, cell in zip(header[1:], row[1:], strict=True) if cell)
+    return f"{header[0]} {row[0]}. {rest}"
 
 
 def _minutes(desk: Desk) -> Block:
-    """Every logged row as it was read, two rows of the log beside each other."""
+    """Every logged row as it was read."""
     readings = desk.outcome.record.readings
     names = ("Time", *readings.channels)
-    columns = tuple(Column(name) for _ in range(_MINUTES_ACROSS) for name in names)
-    half = -(-len(readings.rows) // _MINUTES_ACROSS)
-    rows = []
-    for at in range(half):
-        cells: list[str] = []
-        for place in range(at, len(readings.rows), half):
-            row = readings.rows[place]
-            cells += [moment(row.time), *(reading.text for reading in row.readings)]
-        cells += [""] * (len(columns) - len(cells))
-        rows.append(Row(tuple(cells)))
-    return Block(title="Readings", tables=(Table(columns, tuple(rows), small=True),))
+    lines = ["\t".join(names)]
+    lines += [
+        "\t".join((moment(row.time), *(reading.text for reading in row.readings))) for row in readings.rows
+    ]
+    return Block(title="Readings", lines=tuple(lines), tab=max(18, _WIDTH // max(len(names), 8)))

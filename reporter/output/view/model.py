@@ -7,7 +7,11 @@ else.  A cell of a table is a `Shown` or a text.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass
+
+
+#: A table of at most so many rows is not broken over pages.
+KEPT = 14
 
 
 @dataclass(frozen=True, slots=True)
@@ -59,13 +63,22 @@ class Row:
 
 @dataclass(frozen=True, slots=True)
 class Table:
-    """A table with fixed column widths in percent; `small` sets it in the size of the appendix."""
+    """A table with fixed column widths in percent."""
 
     columns: tuple[Column, ...]
     rows: tuple[Row, ...]
     caption: str = ""
     note: str = ""
-    small: bool = False
+
+    @property
+    def has_heading(self) -> bool:
+        """Whether any column has a title."""
+        return any(column.title or column.unit for column in self.columns)
+
+    @property
+    def is_short(self) -> bool:
+        """Whether the table is kept on one page."""
+        return len(self.rows) <= KEPT
 
     @property
     def widths(self) -> tuple[str, ...]:
@@ -138,14 +151,12 @@ class LimitsView:
 
 @dataclass(frozen=True, slots=True)
 class ProblemView:
-    """One problem in words."""
+    """Problems of one kind in words: grade, what is wrong, what was found, and the cells."""
 
     grade: str
     title: str
     found: str
     where: str
-    remedy: str
-    code: str
 
 
 @dataclass(frozen=True, slots=True)
@@ -162,13 +173,20 @@ class QualityView:
 
 @dataclass(frozen=True, slots=True)
 class Block:
-    """A titled part of a section: text, facts, tables, pictures, notes, in this order."""
+    """A titled part of a section: text, facts, pictures, tables, lines, notes, in this order.
+
+    `anchor` is the key whose derivation row the text is; `lines` are rows of a sheet set with tabs, so wide
+    as `tab` says [mm].
+    """
 
     title: str = ""
+    anchor: str = ""
     text: tuple[str, ...] = ()
     facts: tuple[Item, ...] = ()
     tables: tuple[Table, ...] = ()
     pictures: tuple[Picture, ...] = ()
+    lines: tuple[str, ...] = ()
+    tab: int = 0
     notes: tuple[str, ...] = ()
 
 
@@ -185,9 +203,11 @@ class Source:
 
 @dataclass(frozen=True, slots=True)
 class Step:
-    """One step of the sample calculation (`key` empty where its derivation row stands before); `formula` and `numbers` are markup made by the typesetter."""
+    """One step of the sample calculation; `formula` and `numbers` are markup made by the typesetter.
 
-    key: str
+    `formula` and its one-line form `line` are empty where the equation stood in an earlier step.
+    """
+
     number: int
     title: str
     symbol: str
@@ -210,17 +230,22 @@ class Chapter:
 
 @dataclass(frozen=True, slots=True)
 class Derivation:
-    """One row of the register: an entry, what it was computed from, and its root cells."""
+    """One row of the register: entries that differ by run or check alone.
 
-    key: str
-    value: Shown
+    `name` is their key with a star for the run, `value` their values, `where` the cells or the table of what is
+    not computed.
+    """
+
+    anchor: str
+    name: str
+    value: str
     inputs: tuple[Source, ...]
-    roots: str
+    where: str
 
 
 @dataclass(frozen=True, slots=True)
 class DerivationGroup:
-    """The rows of one equation."""
+    """The rows of one equation; the rows of what is not computed have none."""
 
     equation: str
     citation: str
@@ -228,20 +253,11 @@ class DerivationGroup:
 
 
 @dataclass(frozen=True, slots=True)
-class Leaf:
-    """An entry that is not computed: key, value with its unit and basis, and where it stands."""
-
-    key: str
-    value: str
-    where: str
-
-
-@dataclass(frozen=True, slots=True)
 class Register:
     """Derivation rows of the printed numbers that are derived nowhere else in the report."""
 
     groups: tuple[DerivationGroup, ...]
-    leaves: tuple[Leaf, ...]
+    leaves: tuple[Derivation, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -311,4 +327,5 @@ class View:
     signatures: tuple[Signature, ...]
     cautions: tuple[str, ...]
     statements: tuple[str, ...]
-    printed: frozenset[str] = field(default=frozenset())
+    places: Mapping[str, str]
+    printed: frozenset[str]

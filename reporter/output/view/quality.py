@@ -6,15 +6,14 @@ from collections.abc import Sequence
 from dataclasses import replace
 
 from reporter.ledger import Entry, FromEquation
-from reporter.output.numbers import formulas
+from reporter.output.numbers import formulas, unit_text
 from reporter.output.view.desk import Desk, aligned, gas_name
 from reporter.output.view.model import AnyCell, Block, Cell, Column, ProblemView, QualityView, Row, Table
 from reporter.outcome import Check, RunState
-from reporter.problems import Grade
+from reporter.problems import Grade, Problem
 
-_MOST_INPUTS = 3
-#: An input that is the same for all rows of a gas stands beside the gas's name.
-_SHARED = ("span",)
+#: A criterion with more bounds than this has each beside its value.
+_MOST_BOUNDS = 2
 
 
 def quality(desk: Desk) -> QualityView:
@@ -104,21 +103,26 @@ def _paragraph(desk: Desk, run: str, gas: str) -> str:
 
 
 def _problems(desk: Desk) -> list[ProblemView]:
-    """Problems, the gravest first; equal ones in the order of the input."""
+    """Problems, the gravest first; those of one code together, in the order of the input."""
     order = (Grade.UNREADABLE, Grade.BLOCKS, Grade.NOTE)
     names = {Grade.UNREADABLE: "unreadable", Grade.BLOCKS: "blocks", Grade.NOTE: "note"}
-    ranked = sorted(desk.outcome.problems, key=lambda problem: order.index(problem.grade))
+    by_code: dict[str, list[Problem]] = {}
+    for problem in sorted(desk.outcome.problems, key=lambda problem: order.index(problem.grade)):
+        by_code.setdefault(problem.code, []).append(problem)
     return [
         ProblemView(
-            grade=desk.words(f"grade.{names[problem.grade]}"),
-            title=formulas(problem.title),
-            found=formulas(problem.found),
-            where=problem.place.text().partition(", ")[2] or problem.place.text(),
-            remedy=formulas(problem.remedy),
-            code=problem.code,
+            grade=desk.words(f"grade.{names[some[0].grade]}"),
+            title=formulas(some[0].title),
+            found=formulas("; ".join(dict.fromkeys(problem.found for problem in some if problem.found))),
+            where=", ".join(dict.fromkeys(_where(problem) for problem in some)),
         )
-        for problem in ranked
+        for some in by_code.values()
     ]
+
+
+def _where(problem: Problem) -> str:
+    place = problem.place
+    return f"{place.sheet}!{place.cell}" if place.sheet and place.cell else place.sheet or place.file
 
 
 def criteria(desk: Desk) -> tuple[Block, ...]:
@@ -128,29 +132,31 @@ def criteria(desk: Desk) -> tuple[Block, ...]:
 
 
 def _block(desk: Desk, title: str, checks: Sequence[Check]) -> Block:
-    ledger = desk.outcome.ledger
-    names = _inputs(desk, checks)
-    values = [ledger[check.value] for check in checks]
-    equation = values[0].origin.equation if isinstance(values[0].origin, FromEquation) else None
-    columns = [Column("", width=3.4)]
-    symbols = [equation.parameters[name].symbol for name in names] if equation is not None else []
-    columns += [Column(formulas(symbol.replace("_", " ")), number=True) for symbol in symbols]
-    columns.append(Column("Value", _common_unit(values), number=True))
-    has_difference = any(_needs_alternative(desk, check) for check in checks)
-    if has_difference:
-        columns.append(Column("Difference", number=True))
-    columns.append(Column("", width=0.9))
-    rows: list[Row] = []
-    for check, entry in zip(checks, values, strict=True):
-        cells: list[AnyCell] = [_row_name(desk, check, entry)]
-        given = dict(entry.origin.inputs) if isinstance(entry.origin, FromEquation) else {}
-        cells += [desk.show(key) if isinstance(key := given.get(name, ""), str) else desk.missing for name in names]
-        cells.append(desk.shown(entry))
-        if has_difference:
-            cells.append(desk.show(check.difference, unit=True) if check.alternative else "")
-        cells.append(Cell(desk.words("criterion.met" if check.met else "criterion.not_met"), strong=not check.met))
-        rows.append(Row(tuple(cells), anchor=desk.anchor(entry.key)))
-    return Block(title=title, text=(_bound_words(desk, checks, values[0]),), tables=(aligned(Table(tuple(columns), tuple(rows))),))
+    """Value and answer of each application, two beside each other; bound and equation stand above."""
+    values = [desk.outcome.ledger[check.value] for check in checks]
+    common, shared = _common_bounds(desk, checks), _share_bounds(desk, checks)
+    bounds = [key for check in checks for key in (check.bound, check.alternative) if key and desk.is_read(key)]
+    columns = (Column("", width=4.6), Column("", width=1, number=True), Column("", width=1.3)) * 2
+    half = -(-len(checks) // 2)
+    rows = []
+    for at in range(half):
+        cells = _cells(desk, checks[at], bound=not shared)
+        cells += _cells(desk, checks[at + half], bound=not shared) if at + half < len(checks) else ["", "", ""]
+        rows.append(Row(tuple(cells)))
+    words = f"{common}{_value_words(desk, values)}"
+    table = aligned(Table(columns, tuple(rows)))
+    return Block(title=formulas(title), anchor=desk.place(bounds), text=(words,), tables=(table,))
+
+
+def _cells(desk: Desk, check: Check, *, bound: bool) -> list[AnyCell]:
+    """What was checked, its value (and the difference where that decides), whether it is met."""
+    answer = Cell(desk.words("criterion.met" if check.met else "criterion.not_met"), strong=not check.met)
+    name = _row_name(check)
+    if bound:
+        name += f", {_relation(desk, check)} {desk.number_text(check.bound)}"
+    if _needs_alternative(desk, check):
+        name += f", {desk.words('criterion.difference')} {desk.number_text(check.difference)}"
+    return [name, desk.show(check.value), answer]
 
 
 def _needs_alternative(desk: Desk, check: Check) -> bool:
@@ -159,45 +165,37 @@ def _needs_alternative(desk: Desk, check: Check) -> bool:
     return bool(check.alternative) and abs(float(ledger[check.value].value)) > float(ledger[check.bound].value)
 
 
-def _inputs(desk: Desk, checks: Sequence[Check]) -> list[str]:
-    """The arguments of the value's equation that have a column: alike in all rows, at most three."""
-    shapes = set()
-    for check in checks:
-        origin = desk.outcome.ledger[check.value].origin
-        if not isinstance(origin, FromEquation):
-            return []
-        single = (n for n, key in origin.inputs if isinstance(key, str) and not desk.outcome.ledger[key].is_series)
-        shapes.add((origin.equation.name, tuple(single)))
-    if len(shapes) != 1:
-        return []
-    _, names = shapes.pop()
-    return [name for name in names if name not in _SHARED][:_MOST_INPUTS]
-
-
-def _common_unit(entries: Sequence[Entry]) -> str:
-    units = {entry.unit for entry in entries}
-    return units.pop() if len(units) == 1 else ""
-
-
-def _row_name(desk: Desk, check: Check, entry: Entry) -> str:
+def _row_name(check: Check) -> str:
     particulars = check.title.partition(",")[2].strip()
-    run = f"run {', '.join(check.runs)}" if check.runs and "run" not in particulars else ""
-    span = ""
-    if isinstance(entry.origin, FromEquation):
-        key = dict(entry.origin.inputs).get("span", "")
-        span = f"span {desk.number_text(key)}" if isinstance(key, str) and key else ""
-    return ", ".join(part for part in (gas_name(check.gas), particulars, run, span) if part)
+    if len(check.runs) > 1:
+        particulars = f"{particulars.rpartition(', ')[0]}, between runs {' and '.join(check.runs)}"
+    return formulas(", ".join(part for part in (gas_name(check.gas), particulars) if part))
 
 
-def _bound_words(desk: Desk, checks: Sequence[Check], entry: Entry) -> str:
-    """The criterion in a sentence: bound, alternatives by unit, paragraph, equation of the value."""
-    bounds = list(dict.fromkeys(desk.number_text(check.bound) for check in checks))
-    words = f"{_relation(desk, checks[0])} {' / '.join(bounds)}" if len(bounds) <= 2 else _relation(desk, checks[0])
+def _common_bounds(desk: Desk, checks: Sequence[Check]) -> str:
+    """The criterion in a sentence; its paragraph alone where the bounds stand beside the values."""
+    bounds = dict.fromkeys(f"{_relation(desk, check)} {desk.number_text(check.bound)}" for check in checks)
+    if not _share_bounds(desk, checks):
+        return f"{checks[0].citation.text()}. "
+    words = f" {desk.words('criterion.and')} ".join(bounds)
     others = dict.fromkeys(desk.number_text(check.alternative) for check in checks if check.alternative)
     if others:
         words += f", {desk.words('criterion.alternative')} {' / '.join(others)}"
-    words += f" ({checks[0].citation.text()})."
-    origin = entry.origin
-    if isinstance(origin, FromEquation):
-        words += f" {desk.words('criterion.value_by')} {desk.equation_line(origin.equation)} ({origin.equation.citation.text()})."
-    return formulas(words[0].upper() + words[1:])
+    return f"{words[:1].upper()}{words[1:]} ({checks[0].citation.text()}). "
+
+
+def _share_bounds(desk: Desk, checks: Sequence[Check]) -> bool:
+    """Whether the applications of a criterion have so few bounds that they stand above the table."""
+    bounds = {(check.relation, float(desk.outcome.ledger[check.bound].value)) for check in checks}
+    return len(bounds) <= _MOST_BOUNDS
+
+
+def _value_words(desk: Desk, values: Sequence[Entry]) -> str:
+    """The equation of the values, with their unit."""
+    origin = values[0].origin
+    if not isinstance(origin, FromEquation):
+        return ""
+    units = {unit_text(value.unit) for value in values}
+    unit = f" [{units.pop()}]" if len(units) == 1 and units != {""} else ""
+    equation = origin.equation
+    return f"{desk.words('criterion.value_by')}{unit} {desk.equation_line(equation)} ({equation.citation.text()})."

@@ -1,47 +1,109 @@
-"""The register: a derivation row for each printed number, and all it needs, that is derived nowhere else."""
+"""The register: a derivation row for each printed number, and all it needs, that is derived nowhere else.
+
+Entries that differ by run, or by calibration reading, alone share a row, so that a row reads like the
+equation it stands under: every run beside the next.
+"""
 
 from __future__ import annotations
 
-from reporter.ledger import Entry, FromEquation
-from reporter.output.numbers import formulas, shortest, unit_text
+import re
+
+from reporter.ledger import Entry, FromCells, FromEquation
+from reporter.output.numbers import formulas, unit_text
 from reporter.output.view.desk import Desk
-from reporter.output.view.model import Derivation, DerivationGroup, Leaf, Register, Shown
-from reporter.output.view.sample import DIGITS, sources, value_text
+from reporter.output.view.model import Derivation, DerivationGroup, Register, Source
+from reporter.output.view.sample import value_text
+
+_VARYING = re.compile(r"^(run)\.[a-z0-9_]+|(?<=\.)(direct|system)_[0-9]+")
+_Inputs = tuple[tuple[str, tuple[str, ...]], ...]
 
 
 def register(desk: Desk) -> Register:
-    """Rows of all keys that are printed, or needed by one that is, without an anchor yet."""
+    """Rows of all keys that are printed, or needed by one that is, and have no row yet."""
     ledger = desk.outcome.ledger
-    needed = desk.needed(desk.printed)
-    groups: dict[str, list[Entry]] = {}
-    leaves: list[Leaf] = []
+    shown = set(desk.printed)
+    needed = desk.needed(shown)
+    computed: dict[tuple[str, str], dict[tuple[str, _Inputs], list[Entry]]] = {}
+    leaves: dict[tuple[str, str], list[Entry]] = {}
+    carried: list[str] = []
     for entry in ledger:
-        if entry.key not in needed or entry.key in desk.anchors:
+        if entry.key not in needed or entry.key in desk.places:
             continue
-        desk.anchors.add(entry.key)
+        if desk.source_of(entry.key) != entry.key:
+            carried.append(entry.key)
+            continue
         if isinstance(entry.origin, FromEquation):
             equation = entry.origin.equation
-            groups.setdefault(f"{equation.name} {equation.citation.text()}", []).append(entry)
-        else:
-            leaves.append(_leaf(desk, entry))
-    return Register(tuple(_group(desk, entries) for entries in groups.values()), tuple(leaves))
+            rule = (desk.equation_line(equation), equation.citation.text())
+            row = (pattern(entry.key), _patterns(entry.origin))
+            computed.setdefault(rule, {}).setdefault(row, []).append(entry)
+        elif entry.key in shown or not isinstance(entry.origin, FromCells):
+            leaves.setdefault((pattern(entry.key), desk.origin_kind(entry)), []).append(entry)
+    groups = tuple(
+        DerivationGroup(*rule, tuple(_computed(desk, entries) for entries in rows.values()))
+        for rule, rows in computed.items()
+    )
+    rows = tuple(_leaf(desk, entries) for entries in leaves.values())
+    for key in carried:
+        desk.places[key] = desk.places[desk.source_of(key)]
+    return Register(groups, rows)
 
 
-def _group(desk: Desk, entries: list[Entry]) -> DerivationGroup:
-    origin = entries[0].origin
-    assert isinstance(origin, FromEquation)
-    rows = tuple(_row(desk, entry) for entry in entries)
-    return DerivationGroup(desk.equation_line(origin.equation), origin.equation.citation.text(), rows)
 
 
-def _row(desk: Desk, entry: Entry) -> Derivation:
-    value = Shown(entry.key, value_text(entry), unit_text(entry.unit))
-    return Derivation(entry.key, value, sources(desk, entry), desk.roots(entry.key))
+def pattern(key: str) -> str:
+    """A key with a star for the run and for the number of a calibration reading."""
+    return _VARYING.sub(lambda match: "run.*" if match.group(1) else f"{match.group(2)}_*", key)
 
 
-def _leaf(desk: Desk, entry: Entry) -> Leaf:
-    number = value_text(entry) if entry.is_series else shortest(float(entry.value), DIGITS)
-    unit = "" if entry.is_series else unit_text(entry.unit)
-    basis = formulas(entry.basis.text())
-    value = ", ".join(part for part in (f"{number} {unit}".strip(), basis) if part)
-    return Leaf(entry.key, value, formulas(desk.origin_words(entry)))
+def _patterns(origin: FromEquation) -> _Inputs:
+    return tuple(
+        (name, tuple(dict.fromkeys(map(pattern, (keys,) if isinstance(keys, str) else keys))))
+        for name, keys in origin.inputs
+    )
+
+
+def _computed(desk: Desk, entries: list[Entry]) -> Derivation:
+    origins = [entry.origin for entry in entries]
+    first = origins[0]
+    assert isinstance(first, FromEquation)
+    inputs = []
+    for at, (name, _) in enumerate(first.inputs):
+        keys: dict[str, None] = {}
+        for origin in origins:
+            assert isinstance(origin, FromEquation)
+            given = origin.inputs[at][1]
+            keys.update(dict.fromkeys((given,) if isinstance(given, str) else given))
+        inputs.append(_input(desk, first.equation.parameters[name].symbol, list(keys)))
+    return Derivation(_placed(desk, entries), pattern(entries[0].key), _values(entries), tuple(inputs), "")
+
+
+def _input(desk: Desk, symbol: str, keys: list[str]) -> Source:
+    entries = [desk.outcome.ledger[key] for key in keys]
+    name = formulas(symbol.replace("_", " "))
+    if entries[0].is_indicator:
+        return Source(name, ", ".join(dict.fromkeys(map(value_text, entries))), "", "", "section-criteria")
+    return Source(name, ", ".join(_texts(entries)), "", desk.cells(keys), keys[0])
+
+
+def _leaf(desk: Desk, entries: list[Entry]) -> Derivation:
+    words = dict.fromkeys(desk.origin_words(entry) for entry in entries)
+    name = pattern(entries[0].key)
+    return Derivation(_placed(desk, entries), name, _values(entries), (), formulas("; ".join(words)))
+
+
+def _placed(desk: Desk, entries: list[Entry]) -> str:
+    return desk.place(entry.key for entry in entries)
+
+
+def _values(entries: list[Entry]) -> str:
+    """The values with their unit and basis, once each where all entries have the same."""
+    unit = "" if entries[0].is_series else unit_text(entries[0].unit)
+    basis = formulas(entries[0].basis.text())
+    return ", ".join(part for part in (f"{', '.join(_texts(entries))} {unit}".strip(), basis) if part)
+
+
+def _texts(entries: list[Entry]) -> list[str]:
+    """The values as text; one text where they are all the same."""
+    texts = list(map(value_text, entries))
+    return texts[:1] if len(set(texts)) == 1 else texts

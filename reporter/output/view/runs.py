@@ -9,7 +9,7 @@ from functools import cache
 
 from reporter.ledger import Entry
 from reporter.output.numbers import day, formulas, moment, period, unit_text
-from reporter.output.view.desk import Desk, aligned, gas_name
+from reporter.output.view.desk import Desk, aligned, channel_name, gas_name, group_row
 from reporter.output.view.model import AnyCell, Block, Cell, Column, Row, Table
 from reporter.outcome import RunResult, RunState
 from reporter.resources import templates_folder
@@ -25,7 +25,7 @@ class Layout:
     gas: tuple[str, ...]
     run: tuple[str, ...]
     combustion: tuple[str, ...]
-    balance: tuple[tuple[str, str, str], ...]
+    balance: tuple[tuple[str, tuple[str, ...]], ...]
 
 
 @cache
@@ -36,21 +36,33 @@ def layout() -> Layout:
         gas=tuple(tables["runs"]["gas"]),
         run=tuple(tables["runs"]["run"]),
         combustion=tuple(tables["combustion"]["rows"]),
-        balance=tuple((row["label"], row["measured"], row["expected"]) for row in tables["combustion"]["balance"]),
+        balance=tuple((row["label"], tuple(row["keys"])) for row in tables["combustion"]["balance"]),
     )
 
 
 def runs(desk: Desk) -> tuple[Block, ...]:
-    """Times and states, then conditions and each gas; at most six runs beside each other."""
-    blocks = [_times(desk)]
+    """Times and states, then every gas and the run as a whole; at most six runs beside each other."""
     results = desk.outcome.runs
+    blocks = [_times(desk)]
     for start in range(0, len(results), ACROSS):
         some = results[start : start + ACROSS]
-        last = start + ACROSS >= len(results)
-        for gas in dict.fromkeys((gas.segment, gas.gas) for run in some for gas in run.gases):
-            blocks.append(_gas(desk, some, *gas, averages=last))
-        blocks.append(_conditions(desk, some, averages=last))
-    return tuple(block for block in blocks if block.tables)
+        blocks.append(Block(tables=_results(desk, some, averages=start + ACROSS >= len(results))))
+    return tuple(blocks)
+
+
+def _results(desk: Desk, some: Sequence[RunResult], *, averages: bool) -> tuple[Table, ...]:
+    """One table: the rows of each gas under its name, then those of the run as a whole."""
+    rows: list[Row] = []
+    columns = len(some) + 2 + averages
+    for segment in dict.fromkeys(gas.segment for run in some for gas in run.gases):
+        mine = _gas_rows(desk, some, segment, averages)
+        if mine:
+            rows += [group_row(_gas_words(desk, some, segment), columns), *mine]
+    tails = _tails(desk, [f"run.{run.key}" for run in some], layout().run)
+    if tails:
+        rows.append(group_row("Stack gas, flow, heat input", columns))
+        rows += [_row(desk, some, tail, averages) for tail in tails]
+    return _tables(some, rows, averages)
 
 
 def _times(desk: Desk) -> Block:
@@ -76,24 +88,25 @@ def _state(desk: Desk, result: RunResult) -> AnyCell:
     return Cell(text, strong=result.state is not RunState.VALID)
 
 
-def _gas(desk: Desk, some: Sequence[RunResult], segment: str, gas: str, *, averages: bool) -> Block:
-    """One gas: a row per quantity, a column per run."""
+def _gas_rows(desk: Desk, some: Sequence[RunResult], segment: str, averages: bool) -> list[Row]:
+    """A row per quantity of one gas; what repeats the row before it (a dry channel's dry value) is left out."""
     tails = _tails(desk, [f"run.{run.key}.{segment}" for run in some], layout().gas)
-    rows = [_row(desk, some, f"{segment}.{tail}", averages) for tail in tails]
-    valid = [run.gas(segment) for run in some]
-    states = [desk.missing if one is None else desk.words("run.valid" if one.is_valid else "run.not_valid") for one in valid]
-    if rows:
-        rows.append(Row(("State", "", *states, *([""] if averages else [])), style="foot"))
-    first = next(one for one in valid if one is not None)
-    name = gas_name(gas) if first.channel.channel.value == gas else f"{gas_name(gas)}, channel {first.channel.channel.value}"
-    return Block(title=name, tables=_tables(some, rows, averages))
+    keys = [f"{segment}.{tail}" for tail in tails]
+    return [_row(desk, some, tail, averages) for tail in keys if not _is_carried(desk, some, tail)]
 
 
-def _conditions(desk: Desk, some: Sequence[RunResult], *, averages: bool) -> Block:
-    """Quantities of the run as a whole: moisture, flow, molecular weight, heat input."""
-    tails = _tails(desk, [f"run.{run.key}" for run in some], layout().run)
-    rows = [_row(desk, some, tail, averages) for tail in tails]
-    return Block(title="Stack gas, flow and heat input", tables=_tables(some, rows, averages))
+def _is_carried(desk: Desk, some: Sequence[RunResult], tail: str) -> bool:
+    """Whether a quantity is another one of the same run under a second name."""
+    keys = [key for run in some if (key := f"run.{run.key}.{tail}") in desk.outcome.ledger]
+    return all(desk.source_of(key) != key for key in keys)
+
+
+def _gas_words(desk: Desk, some: Sequence[RunResult], segment: str) -> str:
+    """The gas, its channel where that has another name, and the runs in which it is not valid."""
+    results = [(run, one) for run in some if (one := run.gas(segment)) is not None]
+    words = channel_name(results[0][1].channel)
+    bad = [run.run.run.value for run, one in results if not one.is_valid]
+    return f"{words}: {desk.words('run.not_valid_in', runs=', '.join(bad))}" if bad else words
 
 
 def rows_table(desk: Desk, some: Sequence[RunResult], order: Sequence[str]) -> tuple[Table, ...]:
@@ -105,7 +118,7 @@ def rows_table(desk: Desk, some: Sequence[RunResult], order: Sequence[str]) -> t
 def _tables(some: Sequence[RunResult], rows: Sequence[Row], averages: bool) -> tuple[Table, ...]:
     if not rows:
         return ()
-    columns = [Column("", width=3.3), Column("Unit and basis", width=2.4)]
+    columns = [Column("", width=4.6), Column("Unit and basis", width=2.4)]
     columns += [Column(f"Run {run.run.run.value}", number=True) for run in some]
     if averages:
         columns.append(Column("Average", number=True))

@@ -13,7 +13,7 @@ from reporter.output.view.limits import limit_words
 from reporter.output.view.model import Chapter, Shown, Source, Step
 from reporter.outcome import Comparison, RunResult
 from reporter.trace import Name
-from reporter.typeset import html_formula, symbol_html, text_formula
+from reporter.typeset import html_formula, symbol_html
 
 #: Significant digits of numbers put into equations.
 DIGITS = 6
@@ -21,10 +21,11 @@ DIGITS = 6
 
 @dataclass
 class _Writer:
-    """Steps as they are written: each entry once, numbered from the first."""
+    """Steps as they are written: each entry once, numbered from the first; each equation set out once."""
 
     desk: Desk
     numbers: dict[str, int] = field(default_factory=dict)
+    equations: set[str] = field(default_factory=set)
 
     def chapter(self, title: str, keys: Sequence[str]) -> Chapter | None:
         """The steps that lead to some entries and were not written before."""
@@ -34,7 +35,8 @@ class _Writer:
         return Chapter(title, tuple(steps)) if steps else None
 
     def _is_new(self, entry: Entry) -> bool:
-        return isinstance(entry.origin, FromEquation) and entry.key not in self.numbers and not entry.is_indicator
+        computed = isinstance(entry.origin, FromEquation) and not entry.is_indicator
+        return computed and entry.key not in self.numbers and self.desk.source_of(entry.key) == entry.key
 
     def _step(self, entry: Entry) -> Step:
         desk = self.desk
@@ -43,42 +45,44 @@ class _Writer:
         self.numbers[entry.key] = len(self.numbers) + 1
         desk.printed[entry.key] = None
         equation = origin.equation.in_system(desk.outcome.ledger.system)
+        is_new = equation.name not in self.equations
+        self.equations.add(equation.name)
         return Step(
-            key=desk.anchor(entry.key),
             number=self.numbers[entry.key],
             title=desk.label(entry.key),
             symbol=symbol_html(equation.symbol),
-            formula=html_formula(equation.symbols()),
+            formula=html_formula(equation.symbols()) if is_new else "",
             numbers=html_formula(desk.outcome.ledger.trace(entry), _number_html),
             result=Shown(entry.key, shortest(float(entry.value), DIGITS), unit_text(entry.unit)),
             basis=formulas(entry.basis.text()),
-            line=f"{equation.symbol} = {text_formula(equation.symbols())}",
+            line=desk.equation_line(equation) if is_new else "",
             citation=equation.citation.text(),
-            sources=sources(desk, entry, self.numbers),
+            sources=self._sources(entry),
         )
 
+    def _sources(self, entry: Entry) -> tuple[Source, ...]:
+        """The inputs of an entry: symbol, number, and the place it comes from (a step where it has one)."""
+        origin = entry.origin
+        assert isinstance(origin, FromEquation)
+        found = []
+        for name, keys in origin.inputs:
+            symbol = formulas(origin.equation.parameters[name].symbol.replace("_", " "))
+            if isinstance(keys, str):
+                found.append(self._source(symbol, keys))
+            else:
+                found += [self._source(f"{symbol}{at}", key) for at, key in enumerate(keys, 1)]
+        return tuple(found)
 
-def sources(desk: Desk, entry: Entry, steps: dict[str, int] | None = None) -> tuple[Source, ...]:
-    """The inputs of an entry: symbol, number, and the place it comes from (a step where it has one)."""
-    origin = entry.origin
-    assert isinstance(origin, FromEquation)
-    found = []
-    for name, keys in origin.inputs:
-        symbol = origin.equation.parameters[name].symbol
-        if isinstance(keys, str):
-            found.append(_source(desk, symbol, keys, steps or {}))
-        else:
-            found += [_source(desk, f"{symbol}{at}", key, steps or {}) for at, key in enumerate(keys, 1)]
-    return tuple(found)
-
-
-def _source(desk: Desk, symbol: str, key: str, steps: dict[str, int]) -> Source:
-    entry = desk.outcome.ledger[key]
-    if entry.is_indicator:
-        return Source(formulas(symbol.replace("_", " ")), value_text(entry), "", "", "section-criteria")
-    desk.printed[key] = None
-    where = f"step {steps[key]}" if key in steps else _where(entry)
-    return Source(formulas(symbol.replace("_", " ")), value_text(entry), unit_text(entry.unit), formulas(where), key)
+    def _source(self, symbol: str, key: str) -> Source:
+        entry = self.desk.outcome.ledger[key]
+        if entry.is_indicator:
+            return Source(symbol, value_text(entry), "", "", "section-criteria")
+        self.desk.printed[key] = None
+        key = self.desk.source_of(key)
+        if key in self.numbers:
+            step = self.numbers[key]
+            return Source(symbol, value_text(entry), unit_text(entry.unit), f"step {step}", f"step-{step}")
+        return Source(symbol, value_text(entry), unit_text(entry.unit), formulas(_where(entry)), key)
 
 
 def _where(entry: Entry) -> str:

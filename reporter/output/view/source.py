@@ -7,7 +7,7 @@ from collections.abc import Sequence
 from reporter.ledger import Entry
 from reporter.methods.criteria import method_family
 from reporter.output.numbers import formulas, moment, shortest, unit_text
-from reporter.output.view.desk import Desk, aligned, entered, gas_name, said, simple_table
+from reporter.output.view.desk import Desk, aligned, entered, filled, gas_name, said, simple_table
 from reporter.output.view.model import AnyCell, Block, Column, Item, Row, Table
 from reporter.record import Channel, FuelRow, Point, Run
 from reporter.references import bibliography
@@ -100,7 +100,7 @@ def _fuels(desk: Desk) -> Block:
         (row.fuel.value, row.factor_source.value, _analysis(row), said(row.laboratory), said(row.sample))
         for row in desk.outcome.record.fuels
     ]
-    table = simple_table(("Fuel", "F factors from", "Analysis", "Laboratory", "Sample"), rows, (2, 1.4, 5, 2, 1.6))
+    table = filled(simple_table(("Fuel", "F factors from", "Analysis", "Laboratory", "Sample"), rows, (2, 1.4, 5, 2, 1.6)))
     components = [
         f"{part.component.value} {shortest(part.mole_fraction.value, 6)} %" for part in desk.outcome.record.fuel_gas
     ]
@@ -133,7 +133,7 @@ def _process_log(desk: Desk) -> Block:
     for name in names:
         entries = [ledger.get(f"run.{run.key}.process.{name}") for run in runs]
         found = next(entry for entry in entries if entry is not None)
-        label = formulas(found.label or name.replace("_", " "))
+        label = formulas(found.label.partition(", mean of")[0] or name.replace("_", " "))
         rows.append(Row((label, unit_text(found.unit), *(_shown(desk, entry) for entry in entries))))
     return Block(tables=(aligned(Table(columns, tuple(rows))),))
 
@@ -200,7 +200,7 @@ def _channel(desk: Desk, channel: Channel) -> tuple[str, ...]:
     system = channel.system.value.value if channel.system is not None else desk.missing
     times = [entered(time, desk.missing) for time in (channel.response_time_up, channel.response_time_down)]
     return (
-        channel.channel.value,
+        formulas(channel.channel.value),
         basis,
         system,
         said(channel.analyzer, desk.missing),

@@ -12,7 +12,7 @@ from reporter.output.charts import (
     trace_chart,
 )
 from reporter.output.numbers import period, shown, unit_text
-from reporter.output.view.desk import Desk, gas_name
+from reporter.output.view.desk import Desk, channel_name, gas_name
 from reporter.output.view.model import Block, Picture
 from reporter.output.view.runs import left_out
 from reporter.outcome import GasResult, RunResult
@@ -48,9 +48,8 @@ def _trace(desk: Desk, channel: Channel) -> Trace | None:
     series = next((gas.series for _, gas in results if gas.series is not None), None)
     if series is None or not values:
         return None
-    gas = gas_name(channel.gas.value)
     return Trace(
-        name=gas if name == channel.gas.value else f"{gas}, {name}",
+        name=channel_name(channel),
         unit=f"{unit_text(channel.unit.value.unit)}, {channel.moisture_basis.value.value}",
         readings=values,
         interval=series.interval,

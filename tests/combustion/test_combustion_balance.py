@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import pytest
-from forward import OXYGEN, Burnout, Flue, Fuel, burn, stoichiometric_air
+from combustion_forward import OXYGEN, Burnout, Flue, Fuel, burn, stoichiometric_air
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
@@ -215,6 +215,18 @@ def test_wet_and_dry_readings_of_one_gas_give_one_balance() -> None:
     )
     for name in ("air_dry", "dry_products", "h2o", "co2", "o2", "excess_air"):
         assert wet.value(name) == pytest.approx(dry.value(name), rel=1e-12)
+
+
+def test_concentrations_are_expected_only_where_they_were_not_what_decided() -> None:
+    fuel = nominal_fuel("wood")
+    names = {"co2_expected", "o2_expected"}
+    made = {
+        "o2": balance(fuel, {"o2": 7.0, "co": 90.0}, wet=("co",)),
+        "wet o2": balance(fuel, {"o2": 7.0}, wet=("o2",)),
+        "co2": balance(fuel, {"co2": 12.0}),
+    }
+    found = {case: {name for name in names if state.get(name) is not None} for case, state in made.items()}
+    assert found == {"o2": {"co2_expected"}, "wet o2": names, "co2": {"o2_expected"}}
 
 
 def test_moisture_measured_tells_the_humidity_of_the_air() -> None:
