@@ -19,6 +19,7 @@ if TYPE_CHECKING:
     from reporter.api import Report as Report
     from reporter.api import assess as assess
     from reporter.api import problems_of as problems_of
+    from reporter.api import read as read
     from reporter.api import report as report
     from reporter.api import report_files as report_files
     from reporter.basis import Basis as Basis
@@ -27,7 +28,6 @@ if TYPE_CHECKING:
     from reporter.errors import BasisError as BasisError
     from reporter.errors import FluebookError as FluebookError
     from reporter.gases import gas as gas
-    from reporter.intake import read as read
     from reporter.intake.blank import write_blank as write_blank
     from reporter.ledger import Ledger as Ledger
     from reporter.outcome import Outcome as Outcome
@@ -47,7 +47,7 @@ _HOMES = {
     "BasisError": "errors",
     "FluebookError": "errors",
     "gas": "gases",
-    "read": "intake",
+    "read": "api",
     "write_blank": "intake.blank",
     "Ledger": "ledger",
     "Outcome": "outcome",

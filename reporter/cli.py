@@ -7,12 +7,16 @@ Exit codes: 0 nothing is withheld; 1 a result is withheld, for a reason said; 2 
 from __future__ import annotations
 
 import argparse
+import os
 import sys
 from collections.abc import Callable, Sequence
 from pathlib import Path
-from typing import TextIO
+from typing import TYPE_CHECKING, TextIO
 
 from reporter.version import VERSION
+
+if TYPE_CHECKING:
+    from reporter.tasks import Task
 
 OK, WITHHELD, USAGE, UNREADABLE, UNWRITTEN = 0, 1, 2, 3, 4
 
@@ -62,9 +66,7 @@ def _report_parser(command: argparse.ArgumentParser) -> None:
     command.add_argument("--minute-data", action="store_true", help="print the logged readings too")
 
 
-def main(
-    arguments: Sequence[str] | None = None, out: TextIO | None = None, err: TextIO | None = None
-) -> int:
+def main(arguments: Sequence[str] | None = None, out: TextIO | None = None, err: TextIO | None = None) -> int:
     """Run one command; streams can be given."""
     given = parser().parse_args(arguments)
     commands: dict[str, Callable[[argparse.Namespace, TextIO, TextIO], int]] = {
@@ -78,19 +80,23 @@ def main(
 
 
 def entry_point() -> None:
-    """The installed command."""
-    sys.exit(main())
+    """The installed command; a reader that closes the pipe early is no fault."""
+    try:
+        sys.exit(main())
+    except BrokenPipeError:
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        sys.exit(OK)
 
 
 def _check(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
-    from reporter.tasks import Task, check_input
+    from reporter.tasks import check_input
 
-    return _each(given.inputs, lambda path: check_input(path), out, err, Task)
+    return _each(given.inputs, check_input, out, err)
 
 
 def _report(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
     from reporter.api import issue_time
-    from reporter.tasks import Task, report_input
+    from reporter.tasks import report_input
 
     try:
         issued = issue_time(given.issued)
@@ -110,20 +116,16 @@ def _report(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
         lambda path: report_input(path, given.out, issued, given.templates, given.minute_data),
         out,
         err,
-        Task,
     )
 
 
-def _each(
-    inputs: Sequence[Path], work: Callable[[Path], object], out: TextIO, err: TextIO, kind: type
-) -> int:
+def _each(inputs: Sequence[Path], work: Callable[[Path], Task], out: TextIO, err: TextIO) -> int:
     """Every input as its own task; an overview closes a run of several."""
     from reporter.tasks import overview_of
 
-    done = []
+    done: list[Task] = []
     for path in inputs:
         task = work(path)
-        assert isinstance(task, kind)
         done.append(task)
         stream = err if task.code in {UNREADABLE, UNWRITTEN} else out
         print(_encodable(task.text, stream), file=stream)

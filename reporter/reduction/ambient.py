@@ -31,9 +31,7 @@ def ambient_air(book: Book, run: Run) -> Entry | None:
     barometer = book.given(f"run.{run.key}.barometric_pressure", run.barometric_pressure, book.unit("inHg", "kPa"))
     inputs = {
         "relative_humidity": book.given(f"{stem}.relative_humidity", run.relative_humidity, "%"),
-        "vapour_pressure": book.apply(
-            saturation_pressure, f"{stem}.saturation_pressure", {"temperature": kelvin}
-        ),
+        "vapour_pressure": book.apply(saturation_pressure, f"{stem}.saturation_pressure", {"temperature": kelvin}),
         "pressure": convert_entry(book.ledger, f"{stem}.pressure", barometer, "kPa"),
     }
     return book.apply(ambient_moisture, key, inputs)

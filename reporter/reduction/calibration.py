@@ -163,9 +163,7 @@ def _read(book: Book, lane: Lane, row: Calibration, certified: Entry, name: str)
     return Injection(row, reading, certified, None, None)
 
 
-def _close(
-    book: Book, lane: Lane, held: object, group: list[Injection], earlier: Sequence[DirectSet]
-) -> DirectSet:
+def _close(book: Book, lane: Lane, held: object, group: list[Injection], earlier: Sequence[DirectSet]) -> DirectSet:
     """Close a direct set: its span, the calibration error of each gas, and whether it is accepted.
 
     Readings that are no whole set are held to the span of the set before.

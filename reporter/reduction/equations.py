@@ -12,6 +12,7 @@ from reporter.functions import at_least, choose, higher, lower, total
 _PRACTICE = Citation("practice")
 _UNITS = Citation("units")
 _READABLE = Citation("practice", "", "smallest amount a gas analysis reads")
+_GAS_CONSTANT = Citation("ideal", "", "molar gas constant")
 _HEAT = ("MMBtu/h", "GJ/h")
 
 
@@ -426,9 +427,7 @@ def volume_from_mass(
     molar_mass: Value,
     temperature: Value,
     pressure: Value,
-    gas_constant: Value = constant(
-        8.314462618, "J/mol/K", "R", cite=Citation("ideal", "", "molar gas constant")
-    ),
+    gas_constant: Value = constant(8.314462618, "J/mol/K", "R", cite=_GAS_CONSTANT),
 ) -> Value:
     """Parts per million by volume from a mass concentration at stated conditions.
 

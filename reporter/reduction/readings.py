@@ -240,6 +240,8 @@ def _place(book: Book, lane: Lane, series: Series) -> Place:
     readings = book.record.readings
     letter = readings.columns[readings.index(lane.name)]
     cells = f"{letter}{series.first_row}:{letter}{series.last_row}" if series.last_row else letter
+    if book.record.source.name.lower().endswith(".json"):
+        cells = f"/{series.first_row}/{letter} to /{series.last_row}/{letter}"
     return Place(book.record.source.name, readings.place.sheet or "Readings", cells, lane.name)
 
 
@@ -297,9 +299,7 @@ def _show_policies(book: Book, lane: Lane, span: Window, values: Sequence[float]
             book.apply(run_mean, lane.key(span.run, f"mean.counted_{name}"), {"readings": some})
 
 
-def _lower_bound(
-    book: Book, lane: Lane, span: Window, values: Sequence[float], over: Sequence[float | None]
-) -> None:
+def _lower_bound(book: Book, lane: Lane, span: Window, values: Sequence[float], over: Sequence[float | None]) -> None:
     """The mean with each reading over range at its bound, or at the highest reading where none was logged."""
     place = Place(book.record.source.name, book.record.readings.place.sheet or "Readings", "", lane.name)
     known = [bound if bound is not None else max(values) for bound in over]

@@ -24,9 +24,7 @@ def method_standard(book: Book) -> Standard:
     return EPA_STANDARD if book.system is System.US else EPA_STANDARD_SI
 
 
-def conditions(
-    book: Book, temperature: Real | None, pressure: Real | None, unit: ReadUnit | None = None
-) -> Conditions:
+def conditions(book: Book, temperature: Real | None, pressure: Real | None, unit: ReadUnit | None = None) -> Conditions:
     """The conditions a volume is stated at.
 
     Parameters

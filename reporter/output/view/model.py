@@ -192,7 +192,10 @@ class Block:
 
 @dataclass(frozen=True, slots=True)
 class Source:
-    """Where a number of a calculation comes from: symbol, number, place in words and the key it leads to."""
+    """Where a number of a calculation comes from: symbol, number, place in words and the key it leads to.
+
+    The key is empty where the place in words is the whole derivation.
+    """
 
     symbol: str
     value: str

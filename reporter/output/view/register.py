@@ -83,7 +83,8 @@ def _input(desk: Desk, symbol: str, keys: list[str]) -> Source:
     name = formulas(symbol.replace("_", " "))
     if entries[0].is_indicator:
         return Source(name, ", ".join(dict.fromkeys(map(value_text, entries))), "", "", "section-criteria")
-    return Source(name, ", ".join(_texts(entries)), "", desk.cells(keys), keys[0])
+    here = all(isinstance(entry.origin, FromCells) and entry.key not in desk.printed for entry in entries)
+    return Source(name, ", ".join(_texts(entries)), "", desk.cells(keys), "" if here else keys[0])
 
 
 def _leaf(desk: Desk, entries: list[Entry]) -> Derivation:
