@@ -75,8 +75,10 @@ class Standard:
         """Whether two conditions are one condition, within rounding of their unit (0.01 K, 0.01 kPa)."""
         if None in (self.temperature_k, other.temperature_k, self.pressure_kpa, other.pressure_kpa):
             return self == other
-        assert self.temperature_k is not None and other.temperature_k is not None
-        assert self.pressure_kpa is not None and other.pressure_kpa is not None
+        assert self.temperature_k is not None
+        assert other.temperature_k is not None
+        assert self.pressure_kpa is not None
+        assert other.pressure_kpa is not None
         return (
             abs(self.temperature_k - other.temperature_k) <= 0.01
             and abs(self.pressure_kpa - other.pressure_kpa) <= 0.01

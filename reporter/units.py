@@ -96,7 +96,7 @@ def read_unit(text: str) -> ReadUnit:
     moisture: Moisture | None = None
     folded = _folded(plain)
     words = re.sub(r"[,;(]?\s*\b(dry|wet)\b\)?$", "", plain, flags=re.IGNORECASE).strip()
-    if words != plain:
+    if words and words != plain:
         moisture = Moisture.DRY if "dry" in folded else Moisture.WET
         plain, folded = words, _folded(words)
     for pattern, facet in _HINTS:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from reporter.assess.validity import counts
+from reporter.assess.validity import counts, included
 from reporter.errors import FluebookError
 from reporter.ledger import Entry, FromEquation
 from reporter.methods.averages import mean_of_valid, percent_difference
@@ -26,7 +26,7 @@ class Average:
 
 
 def average(book: Book, runs: Sequence[RunBook], name: str, limit: Limit | None = None, *, suffix: str = "") -> Average:
-    """Average ``run.<run>.<name>`` over the runs that count, key ``average.<name>``."""
+    """Average ``run.<run>.<name>`` over the runs that count, key ``average.<name>`` with the suffix."""
     parts: list[tuple[RunBook, Entry, Entry]] = []
     for about in runs:
         entry = book.ledger.get(about.key(name))
@@ -34,9 +34,8 @@ def average(book: Book, runs: Sequence[RunBook], name: str, limit: Limit | None 
             parts.append((about, entry, counts(book, about, entry, limit)))
     key = f"average.{name}{suffix}"
     made = _mean(book, key, [(entry, flag) for _, entry, flag in parts])
-    shut_out = any(about.run.excluded_because is not None for about, _, _ in parts)
     both = None
-    if shut_out:
+    if any(included(book, about) is not None for about, _, _ in parts):
         pairs = [(e, counts(book, a, e, limit, whatever_excluded=True)) for a, e, _ in parts]
         both = _mean(book, f"{key}.with_excluded", pairs)
     return Average(made, tuple(parts), both)
@@ -60,16 +59,16 @@ def order_of_averaging(book: Book, runs: Sequence[RunBook], name: str, made: Ave
     prefix = made.runs[0][0].key("")
     inputs: dict[str, Entry] = {}
     varying = 0
-    for argument, keys in origin.inputs:
-        if not isinstance(keys, str):
+    for argument, key in origin.inputs:
+        if not isinstance(key, str):
             return
-        if keys.startswith(prefix):
-            mean = average(book, runs, keys.removeprefix(prefix)).entry
-            if mean is None:
-                return
-            inputs[argument], varying = mean, varying + 1
-        else:
-            inputs[argument] = book.ledger[keys]
+        if not key.startswith(prefix):
+            inputs[argument] = book.ledger[key]
+            continue
+        mean = _mean_input(book, made, argument, key.removeprefix(prefix))
+        if mean is None:
+            return
+        inputs[argument], varying = mean, varying + 1
     if varying < 2:
         return
     try:
@@ -81,3 +80,14 @@ def order_of_averaging(book: Book, runs: Sequence[RunBook], name: str, made: Ave
     if abs(difference.value) > _ORDER_PERCENT:
         said = f"{name}: mean inputs would give {difference.value:+.2f} % against the mean of the runs' results"
         book.trouble("order-of-averaging", book.file_place(), said)
+
+
+def _mean_input(book: Book, made: Average, argument: str, name: str) -> Entry | None:
+    """Mean of an input over the same runs as the result; None where a run lacks it."""
+    assert made.entry is not None
+    pairs = [(book.ledger.get(about.key(name)), flag) for about, _, flag in made.runs]
+    entries = [entry for entry, _ in pairs if entry is not None]
+    if len(entries) < len(pairs):
+        return None
+    inputs = {"values": entries, "flags": [flag for _, flag in pairs]}
+    return book.apply(mean_of_valid, f"{made.entry.key}.mean_of_{argument}", inputs)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from typing import Any
@@ -12,6 +13,7 @@ from reporter.basis import NO_BASIS, NO_VOLUME, Basis, Moisture, Oxygen, OxygenK
 from reporter.conversions import convert_entry
 from reporter.equation import Equation
 from reporter.errors import BasisError, RecordError
+from reporter.gases import Gas, find_gas
 from reporter.ledger import Entry, slug
 from reporter.methods.averages import (
     at_least_limit,
@@ -27,7 +29,7 @@ from reporter.record import Limit, MoistureBasis, text_of
 from reporter.reduction import plans as kinds
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
-from reporter.reduction.equations import highest_of_valid, lowest_of_valid
+from reporter.reduction.equations import carried, highest_of_valid, lowest_of_valid
 from reporter.reduction.plans import Plan
 from reporter.reduction.results import Missing
 
@@ -40,11 +42,12 @@ _RELATIONS: dict[str, Equation[Any]] = {
 
 @dataclass(frozen=True, slots=True)
 class Made:
-    """What a limit is compared with: its plan, the average, and why runs lack the result."""
+    """What a limit is compared with: its plan, the average, why runs lack the result, and why no run is meant."""
 
     plan: Plan
     average: Average
     missing: tuple[Missing, ...]
+    refusal: str = ""
 
 
 def compare(book: Book, runs: Sequence[RunBook], made: Made) -> Comparison:
@@ -57,13 +60,18 @@ def compare(book: Book, runs: Sequence[RunBook], made: Made) -> Comparison:
     if not reason and made.plan.problem is not None:
         book.trouble(made.plan.problem[0], limit.place, made.plan.problem[1], concerns=(key,))
         reason = made.plan.problem[1]
+    if made.refusal:
+        book.trouble("basis-missing", limit.place, f"limit {limit.limit_id.value}: {made.refusal}", concerns=(key,))
+        reason = reason or made.refusal
     for gap in made.missing:
         book.trouble(gap.code, limit.place, gap.words, concerns=(key,))
     if made.average.entry is None:
         reason = reason or (made.missing[0].words if made.missing else "no valid run has this result")
         return _without(blank, reason)
     try:
-        return _compared(book, runs, made, blank, reason)
+        if reason:
+            return _measured(book, made, blank, reason)[0]
+        return _compared(book, runs, made, blank)
     except (BasisError, RecordError) as error:
         code = "rounding-rule-unknown" if isinstance(error, RecordError) else "basis-missing"
         book.trouble(code, limit.place, error.message, concerns=(key,))
@@ -91,12 +99,14 @@ def _refusal(book: Book, limit: Limit, key: str) -> str:
         said = f"limit {limit.limit_id.value}: no {' and no '.join(lacking)} entered"
         book.trouble("no-citation", limit.place, said, concerns=(key,))
         return f"no {' and no '.join(lacking)} is entered for this limit"
-    day = book.record.test.test_date.value
+    first = book.record.test.test_date.value
+    last_day = book.record.test.last_test_day
+    last = last_day.value if last_day is not None else first
     start, end = limit.in_force_from, limit.in_force_until
     if start is None:
         book.trouble("effective-date-missing", limit.place, f"limit {limit.limit_id.value}")
-    if (start is not None and start.value > day) or (end is not None and end.value < day):
-        said = f"limit {limit.limit_id.value}: test on {day}"
+    if (start is not None and start.value > first) or (end is not None and end.value < last):
+        said = f"limit {limit.limit_id.value}: test on {first}" + (f" to {last}" if last != first else "")
         book.trouble("limit-not-in-force", limit.place, said, concerns=(key,))
         return "the limit was not in force on the day of the test, as entered"
     return ""
@@ -106,7 +116,7 @@ def limit_basis(plan: Plan) -> Basis:
     """The basis a limit is stated on, from its record."""
     limit = plan.limit
     assert limit is not None
-    expressed = text_of(limit.expressed_as) or plan.lane.gas.expressed_as
+    expressed = _expressed(limit, plan.lane.gas)
     if plan.quantity not in {kinds.CONCENTRATION, kinds.MASS_CONCENTRATION}:
         return Basis(expressed_as=expressed)
     oxygen = Oxygen(OxygenKind.AS_MEASURED)
@@ -126,21 +136,31 @@ def limit_basis(plan: Plan) -> Basis:
     )
 
 
+def _expressed(limit: Limit, gas: Gas) -> str:
+    """What a limit's mass is stated as, in the words of the gas table: nothing where it is the gas itself."""
+    text = text_of(limit.expressed_as).strip()
+    if not text:
+        return gas.expressed_as
+    named = find_gas(re.sub(r"^as\s+", "", text, flags=re.IGNORECASE))
+    if named is None:
+        return text
+    return "" if named.key == gas.key and not gas.expressed_as else named.label
+
+
 def _in_limit_unit(book: Book, entry: Entry, unit: str) -> Entry:
     if entry.unit == unit:
         return entry
-    key = f"{entry.key}.as_{slug(unit)}"
+    key = f"{entry.key}.as_{slug(unit.replace('µ', 'u').replace('%', 'percent'))}"
     return book.ledger.get(key) or convert_entry(book.ledger, key, entry, unit)
 
 
-def _compared(book: Book, runs: Sequence[RunBook], made: Made, blank: Comparison, reason: str) -> Comparison:
+def _measured(book: Book, made: Made, blank: Comparison, reason: str = "") -> tuple[Comparison, Entry, Entry]:
+    """What was measured beside the limit, unrounded and rounded, with nothing compared; value and bound with it."""
     limit, key = blank.limit, blank.key
     unit = limit.unit.value.unit
     places = decimals_of(limit.limit.text)
     bound = book.given(f"{key}.limit", limit.limit, unit, basis=limit_basis(made.plan), decimals=places)
     relation = text_of(limit.relation, "at most")
-    if limit.relation is None:
-        book.say(f"Limit {limit.limit_id.value}: no relation was entered; 'at most' is taken.")
     rule = rounding_rule(limit)
     parts = [(_in_limit_unit(book, entry, unit), flag) for _, entry, flag in made.average.runs]
     each = text_of(limit.averaging, "mean of runs") == "each run"
@@ -150,44 +170,64 @@ def _compared(book: Book, runs: Sequence[RunBook], made: Made, blank: Comparison
         eq = lowest_of_valid if relation == "at least" else highest_of_valid
         inputs = {"values": [e for e, _ in parts], "flags": [f for _, f in parts]}
         value = book.apply(eq, f"{key}.value", inputs)
-    count = book.apply(count_valid, f"{key}.count", {"flags": [flag for _, flag in parts]})
-    required = _required(book, limit, key)
-    rounded = _rounded(book, limit, key, value, rule)
-    both = {"value": rounded, "limit": bound}
-    met = book.apply(_RELATIONS[relation], f"{key}.met", both)
-    left = book.apply(margin, f"{key}.margin", both)
-    if bound.value != 0.0:
-        book.apply(percent_of_limit, f"{key}.percent", both)
-    enough = book.apply(at_or_above, f"{key}.enough", {"value": count, "bound": required})
-    notes = _notes(made, each, limit)
-    if enough.value != 1.0 and not reason:
-        reason, approved = _too_few(book, limit, key, count, required, runs)
-        notes += approved
-    if not each:
-        order_of_averaging(book, runs, _name(made.plan), made.average)
+    rounded = _rounded(book, key, value, rule)
     shut = made.average.with_excluded
-    cross = book.ledger.get(f"average.{_name(made.plan)}.cross_check")
-    return replace(
+    cross = book.ledger.get(f"{made.average.entry.key}.cross_check")
+    shown = replace(
         blank,
         value=value.key,
         rounded=rounded.key,
         limit_key=bound.key,
-        margin=left.key,
-        met=met.key,
-        count=count.key,
-        required=required.key,
-        is_met=None if reason else met.value == 1.0,
+        count=book.apply(count_valid, f"{key}.count", {"flags": [flag for _, flag in parts]}).key,
+        required=_required(book, limit, key).key,
         reason=reason,
         rounding_words=rule.words,
         with_excluded="" if shut is None else shut.key,
         cross="" if cross is None else cross.key,
         cross_words="" if cross is None else "second route",
-        notes=notes,
+        notes=_notes(book, made, each, limit),
+    )
+    return shown, rounded, bound
+
+
+def _compared(book: Book, runs: Sequence[RunBook], made: Made, blank: Comparison) -> Comparison:
+    limit, key = blank.limit, blank.key
+    relation = text_of(limit.relation, "at most")
+    if limit.relation is None:
+        book.say(f"Limit {limit.limit_id.value}: no relation was entered; 'at most' is taken.")
+    shown, rounded, bound = _measured(book, made, blank)
+    both = {"value": rounded, "limit": bound}
+    met = book.apply(_RELATIONS[relation], f"{key}.met", both)
+    left = book.apply(margin, f"{key}.margin", both)
+    if bound.value != 0.0:
+        book.apply(percent_of_limit, f"{key}.percent", both)
+    count, required = book.ledger[shown.count], book.ledger[shown.required]
+    enough = book.apply(at_or_above, f"{key}.enough", {"value": count, "bound": required})
+    reason, approved = "", tuple[str, ...]()
+    if enough.value != 1.0:
+        reason, approved = _too_few(book, limit, key, count, required, runs)
+    if text_of(limit.averaging, "mean of runs") != "each run":
+        order_of_averaging(book, runs, _name(made.plan), made.average)
+    return replace(
+        shown,
+        margin=left.key,
+        met=met.key,
+        is_met=None if reason else met.value == 1.0,
+        reason=reason,
+        notes=shown.notes + approved,
     )
 
 
-def _notes(made: Made, each: bool, limit: Limit) -> tuple[str, ...]:
+def _notes(book: Book, made: Made, each: bool, limit: Limit) -> tuple[str, ...]:
     notes: list[str] = []
+    if limit.minimum_run_length is not None:
+        bound = book.ledger[f"limit.{limit.key}.minimum_run_length"]
+        lengths = [(about.run.run.value, book.given_duration(about.run).value) for about, _, _ in made.average.runs]
+        notes += [
+            f"run {name} is {minutes:g} min long; the limit asks for {bound.value:g} min"
+            for name, minutes in lengths
+            if minutes < bound.value
+        ]
     if each:
         notes.append("each run is compared; the value shown is the one nearest to or beyond the limit")
     if limit.in_force_from is None:
@@ -206,16 +246,14 @@ def _required(book: Book, limit: Limit, key: str) -> Entry:
     return book.state(f"{key}.required", 3.0, "1", words)
 
 
-def _rounded(book: Book, limit: Limit, key: str, value: Entry, rule: Rule) -> Entry:
-    from reporter.reduction.equations import carried
-
-    if rule.equation is None:
+def _rounded(book: Book, key: str, value: Entry, rule: Rule) -> Entry:
+    """The compared number; zero has no significant digits and is compared as it is."""
+    if rule.equation is None or (rule.significant and value.value == 0.0):
         return book.apply(carried, f"{key}.rounded", {"value": value})
     name = "digits" if rule.significant else "decimals"
     digits = book.state(f"{key}.rounding_{name}", float(rule.digits), "1", rule.words, basis=NO_BASIS)
     places = rule.digits if not rule.significant else significant_places(value.value, rule.digits)
-    inputs = {"value": value, name: digits}
-    return book.apply(rule.equation, f"{key}.rounded", inputs, decimals=places)
+    return book.apply(rule.equation, f"{key}.rounded", {"value": value, name: digits}, decimals=places)
 
 
 def _too_few(
@@ -228,3 +266,9 @@ def _too_few(
         return "", (f"{said}; fewer runs as approved: {', '.join(dict.fromkeys(approvals))}",)
     book.trouble("too-few-valid-runs", limit.place, f"limit {limit.limit_id.value}: {said}", concerns=(key,))
     return said, ()
+
+
+def not_measured(limit: Limit) -> Comparison:
+    """A limit whose pollutant no channel measures."""
+    reason = f"no channel measures {limit.pollutant.value}"
+    return Comparison(limit=limit, key=f"comparison.{limit.key}", quantity="", runs=(), reason=reason)

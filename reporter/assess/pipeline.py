@@ -5,8 +5,10 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from reporter.assess.averages import Average, average
-from reporter.assess.comparison import Made, compare
+from reporter.assess.comparison import Made, compare, not_measured
 from reporter.assess.findings import look_at_balance, look_at_record
+from reporter.assess.gaps import say_gaps
+from reporter.assess.groups import groups, runs_of, suffix_of
 from reporter.assess.states import run_results
 from reporter.ledger import Ledger
 from reporter.methods.averages import mean_of_valid
@@ -60,6 +62,7 @@ def assess(record: Record) -> Outcome:
     for about in abouts:
         _reduce_run(book, about, wanted, missing)
     look_at_record(book, tracks, abouts, windows, series)
+    say_gaps(book, wanted, missing)
     comparisons = _compare(book, abouts, wanted, missing)
     averages = _averages(book, abouts, wanted)
     look_at_balance(book, abouts)
@@ -113,22 +116,27 @@ def _reduce_run(book: Book, about: RunBook, wanted: Sequence[Plan], missing: dic
 def _compare(
     book: Book, abouts: Sequence[RunBook], wanted: Sequence[Plan], missing: dict[str, list[Missing]]
 ) -> tuple[Comparison, ...]:
-    made: list[Comparison] = []
-    used: set[str] = set()
+    """Every limit in the order entered, with the runs of its group."""
+    made: dict[str, Comparison] = {}
+    lengths: dict[str, float | None] = {}
     for plan in wanted:
-        if plan.limit is None:
+        limit = plan.limit
+        if limit is None:
             continue
-        name = f"{plan.lane.segment}.{plan.ending}"
-        own = plan.limit.minimum_run_length is not None and name in used
-        used.add(name)
-        mean = average(book, abouts, name, plan.limit, suffix=f".limit_{plan.limit.key}" if own else "")
-        _cross_average(book, abouts, name, mean)
-        gaps = tuple(dict.fromkeys(missing.get(plan.limit.key, ())))
-        made.append(compare(book, abouts, Made(plan, mean, gaps)))
-    return tuple(made)
+        chosen = runs_of(limit, abouts)
+        name, group = f"{plan.lane.segment}.{plan.ending}", suffix_of(abouts, chosen)
+        length = None if limit.minimum_run_length is None else limit.minimum_run_length.value
+        own = lengths.setdefault(f"{name}{group}", length) != length
+        mean = average(book, chosen, name, limit, suffix=group + (f".limit_{limit.key}" if own else ""))
+        _cross_average(book, name, mean)
+        runs = {about.run.key for about in chosen}
+        gaps = tuple(dict.fromkeys(gap for gap in missing.get(limit.key, ()) if gap.run in runs))
+        refusal = "" if chosen else "the runs are of several groups and 'Applies when' names none, or more than one"
+        made[limit.key] = compare(book, chosen, Made(plan, mean, gaps, refusal))
+    return tuple(made.get(limit.key) or not_measured(limit) for limit in book.record.limits)
 
 
-def _cross_average(book: Book, abouts: Sequence[RunBook], name: str, mean: Average) -> None:
+def _cross_average(book: Book, name: str, mean: Average) -> None:
     """Average of the second route, where every run that counts has it."""
     if mean.entry is None:
         return
@@ -137,7 +145,7 @@ def _cross_average(book: Book, abouts: Sequence[RunBook], name: str, mean: Avera
         entries = [entry for entry, _ in pairs if entry is not None]
         if entries and len(entries) == len(pairs):
             inputs = {"values": entries, "flags": [flag for _, flag in pairs]}
-            book.apply(mean_of_valid, f"average.{name}.cross_check", inputs)
+            book.apply(mean_of_valid, f"{mean.entry.key}.cross_check", inputs)
 
 
 def _averages(book: Book, abouts: Sequence[RunBook], wanted: Sequence[Plan]) -> tuple[str, ...]:
@@ -151,9 +159,10 @@ def _averages(book: Book, abouts: Sequence[RunBook], wanted: Sequence[Plan]) -> 
         names[f"{plan.lane.segment}.{plan.ending}"] = None
     keys: list[str] = []
     for name in names:
-        made = average(book, abouts, name)
-        if made.entry is not None:
-            keys.append(made.entry.key)
+        for members in groups(abouts).values():
+            made = average(book, members, name, suffix=suffix_of(abouts, members))
+            if made.entry is not None:
+                keys.append(made.entry.key)
     return tuple(keys)
 
 

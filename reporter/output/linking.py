@@ -1,56 +1,66 @@
-"""Links of table cells, and the anchors of keys that share a row.
+"""Links of table cells and anchors of rows, put into the laid-out report without a box or style of their own.
 
-A cell that is a link as a whole needs no box of its own for it: the cell carries a name, its rectangle is
-known once the page is laid out, and the link is put there when the file is written.
+Each element with an ``id`` has a style of its own, and so has everything in it: in a report with hundreds of
+keys that is most of the time of the layout.  Elements carry ``data-key`` (an anchor) and ``data-to`` (a link)
+instead; where they came to stand is read from the laid-out pages.
 """
 
 from __future__ import annotations
 
-import re
-from collections.abc import Mapping
-from itertools import count
+from collections.abc import Iterator, Mapping
 from typing import Any
 
-_MARK = "~"
-_TO = re.compile(r' data-to="#([^"]+)"')
 #: One CSS pixel in points.
 _POINT = 0.75
 
-CellLinks = list[tuple[int, str, tuple[float, float, float, float]]]
+Rectangle = tuple[float, float, float, float]
+#: Page number, key and rectangle of each linked cell.
+CellLinks = list[tuple[int, str, Rectangle]]
 
 
-def named_cells(text: str) -> str:
-    """The HTML with a name of its own for each linked cell, which holds the key it leads to."""
-    number = count(1)
-    return _TO.sub(lambda match: f' id="{_MARK}{next(number)}{_MARK}{match.group(1)}"', text)
+def settle(document: Any, places: Mapping[str, str]) -> CellLinks:
+    """Make every key an anchor of its page, and tell where the linked cells are.
 
-
-def take_cells(document: Any) -> CellLinks:
-    """Page number, key and rectangle of each linked cell; their names are no anchors any more."""
-    found: CellLinks = []
-    for number, page in enumerate(document.pages):
-        for name in [name for name in page.anchors if name.startswith(_MARK)]:
-            found.append((number, name.split(_MARK)[2], page.anchors.pop(name)))
-    return found
-
-
-def add_aliases(document: Any, places: Mapping[str, str]) -> None:
-    """An anchor for each key that shares its derivation row with another."""
-    by_anchor: dict[str, list[str]] = {}
+    Parameters
+    ----------
+    document
+        The laid-out report.
+    places
+        The anchor of each key; keys that share a derivation row share its anchor.
+    """
+    sharing: dict[str, list[str]] = {}
     for key, anchor in places.items():
-        if key != anchor:
-            by_anchor.setdefault(anchor, []).append(key)
-    for page in document.pages:
-        for anchor in [anchor for anchor in page.anchors if anchor in by_anchor]:
-            page.anchors.update(dict.fromkeys(by_anchor[anchor], page.anchors[anchor]))
+        sharing.setdefault(anchor, []).append(key)
+    links: CellLinks = []
+    for number, page in enumerate(document.pages):
+        for element, rectangle in _carriers(page):
+            anchor, target = element.get("data-key"), element.get("data-to")
+            if anchor and anchor not in page.anchors:
+                page.anchors.update(dict.fromkeys((anchor, *sharing.get(anchor, ())), rectangle))
+            if target:
+                links.append((number, target, rectangle))
+    return links
 
 
-def add_links(document: Any, pdf: Any, cells: CellLinks) -> None:
+def _carriers(page: Any) -> Iterator[tuple[Any, Rectangle]]:
+    """The elements of a page that carry a key, each with the rectangle of its outermost box."""
+    seen: set[int] = set()
+    for box in page._page_box.descendants():
+        element = box.element
+        if element is None or isinstance(element, str) or id(element) in seen:
+            continue
+        seen.add(id(element))
+        if element.get("data-key") or element.get("data-to"):
+            left, top, width, height = box.hit_area()
+            yield element, (left, top, left + width, top + height)
+
+
+def add_links(document: Any, pdf: Any, links: CellLinks) -> None:
     """A link annotation over each cell, printable as the variant of the file asks."""
     import pydyf
 
     numbers = pdf.pages["Kids"][::3]
-    for number, key, (left, top, right, bottom) in cells:
+    for number, key, (left, top, right, bottom) in links:
         height = document.pages[number].height
         corners = (left, height - bottom, right, height - top)
         link = pydyf.Dictionary(

@@ -12,6 +12,8 @@ from reporter.output.phrases import Phrases
 from reporter.resources import templates_folder
 
 if TYPE_CHECKING:
+    from xml.etree.ElementTree import Element
+
     from jinja2 import Environment
     from markupsafe import Markup
 
@@ -19,6 +21,8 @@ if TYPE_CHECKING:
 
 #: The one stylesheet, and the one a firm may add.
 STYLE, OWN_STYLE = "style.css", "style_extra.css"
+#: What the elements of HTML are, where no style sheet says more.
+ELEMENTS = "elements.css"
 _POWER = re.compile(r"×10\^(−?[0-9]+)")
 
 
@@ -46,6 +50,23 @@ def style_text(overlay: Path | None) -> str:
     if overlay is not None and (overlay / OWN_STYLE).is_file():
         parts.append((overlay / OWN_STYLE).read_text(encoding="utf-8"))
     return "\n".join(parts)
+
+
+def well_formed(text: str) -> Element | None:
+    """The tree of an HTML text that is well-formed XML too, as the shipped templates make it; None where a
+    firm's own templates are not, so that the (slower) reader of HTML is needed."""
+    from xml.etree.ElementTree import ParseError, fromstring
+
+    try:
+        return fromstring(text)
+    except ParseError:
+        return None
+
+
+def elements_text() -> str:
+    """The rules that make HTML elements blocks, tables or text, and the widths of columns in percent."""
+    widths = "".join(f".w{percent} {{ width: {percent}% }}\n" for percent in range(1, 101))
+    return (templates_folder() / ELEMENTS).read_text(encoding="utf-8") + widths
 
 
 def _chosen(name: str, overlay: Path | None) -> Path:

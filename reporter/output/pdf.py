@@ -14,9 +14,9 @@ from pathlib import Path
 from typing import Any
 
 from reporter.errors import OutputError
-from reporter.output.linking import add_aliases, add_links, named_cells, take_cells
+from reporter.output.linking import add_links, settle
 from reporter.output.packing import pack
-from reporter.output.pages import page_text, style_text
+from reporter.output.pages import elements_text, page_text, style_text, well_formed
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.output.view import Document, View, build_view
 from reporter.output.view.documents import kind_of
@@ -25,6 +25,7 @@ from reporter.resources import templates_folder
 
 _BASE = "https://templates.invalid/"
 _VARIANT = "pdf/a-3u"
+_SHELL = "<html><head><title></title></head><body></body></html>"
 
 
 @dataclass(frozen=True, slots=True)
@@ -155,6 +156,7 @@ def _font(name: str) -> bytes:
 
 
 def _rendered(text: str, style: str, read: Callable[[str], bytes], extras: _Extras) -> bytes:
+    from cssselect2 import ElementWrapper
     from weasyprint import CSS, HTML, Attachment
     from weasyprint.text.fonts import FontConfiguration
     from weasyprint.urls import FatalURLFetchingError, URLFetcher, URLFetcherResponse
@@ -164,6 +166,18 @@ def _rendered(text: str, style: str, read: Callable[[str], bytes], extras: _Extr
             kind = mimetypes.guess_type(url)[0] or "application/octet-stream"
             return URLFetcherResponse(url, read(url), {"Content-Type": kind})
 
+    class Report(HTML):  # type: ignore[misc]
+        def __init__(self) -> None:
+            super().__init__(string=text if root is None else _SHELL, base_url=_BASE, url_fetcher=fetcher)
+            if root is not None:
+                self.wrapper_element = ElementWrapper.from_html_root(root)
+                self.etree_element = root
+
+        def _ua_stylesheets(self, forms: bool = False) -> list[Any]:
+            """The few rules the templates need; the usual ones style six pseudo-elements of every element."""
+            return [CSS(string=elements_text(), base_url=_BASE, url_fetcher=fetcher)]
+
+    root = well_formed(text)
     fetcher = TemplatesOnly(fail_on_errors=True)
     fonts = FontConfiguration()
     attachments = [
@@ -179,10 +193,8 @@ def _rendered(text: str, style: str, read: Callable[[str], bytes], extras: _Extr
     ]
     try:
         sheet = CSS(string=style, base_url=_BASE, url_fetcher=fetcher, font_config=fonts)
-        page = HTML(string=named_cells(text), base_url=_BASE, url_fetcher=fetcher)
-        document = page.render(stylesheets=[sheet], font_config=fonts, pdf_variant=_VARIANT, pdf_tags=True)
-        cells = take_cells(document)
-        add_aliases(document, extras.view.places)
+        document = Report().render(stylesheets=[sheet], font_config=fonts, pdf_variant=_VARIANT, pdf_tags=True)
+        cells = settle(document, extras.view.places)
 
         def finish(document: Any, pdf: Any) -> None:
             add_links(document, pdf, cells)

@@ -49,7 +49,6 @@ _STYLES: dict[str, dict[str, Any]] = {
     "center": {"align": "center"},
     "key": {"font_name": "Consolas", "font_size": 8, "text_wrap": True},
     "number": {"align": "right"},
-    "uncounted": {"align": "right", "font_color": "#8A949E", "font_strikeout": True},
     "raw": {"align": "right", "font_color": "#7A8590"},
     "input": {**_YELLOW, "align": "right"},
     "given": {**_GREEN, "align": "right"},
@@ -101,6 +100,8 @@ class Book:
         created = self.issued.replace(tzinfo=None)
         self._file.set_properties({"title": self.report, "comments": "Results workbook", "created": created})
         self.rule = self._file.add_format({"bottom": 1, "bottom_color": _RULE})
+        struck = {"font_strikeout": True, "font_color": "#8A949E", "bottom": 1, "bottom_color": _RULE}
+        self.struck = self._file.add_format(struck)
 
     def sheet(self, name: str, *, wide: bool = False) -> Sheet:
         """A new sheet with the print set-up all sheets share; a wide one is printed on A3 or tabloid."""
@@ -208,6 +209,11 @@ class Sheet:
         if self.row > first:
             rule = {"type": "formula", "criteria": "=TRUE", "format": self.book.rule}
             self.made.conditional_format(first, 0, self.row - 1, columns - 1, rule)
+
+    def strike(self, first: int, column: int, condition: str) -> None:
+        """Strike out the cells of a column from `first` to the row before, where a live condition holds."""
+        rule = {"type": "formula", "criteria": f"={condition}", "format": self.book.struck}
+        self.made.conditional_format(first, column, self.row - 1, column, rule)
 
     def text(self, column: int, text: str, style: str = "text") -> None:
         """Text as text, cut where a cell cannot hold it; an empty text leaves the cell empty."""

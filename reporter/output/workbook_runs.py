@@ -31,6 +31,7 @@ def write_runs(sheet: Sheet, outcome: Outcome) -> None:
         for name, entries in rows.items():
             if _subject(name) == subject:
                 _row(sheet, outcome, name, entries, table)
+        _strike(sheet, runs, first, subject)
         sheet.rules(first, len(table))
 
 
@@ -48,14 +49,19 @@ def _row(sheet: Sheet, outcome: Outcome, name: str, entries: Mapping[str, Entry]
     sheet.texts([_row_label(shown, name), unit_text(shown.unit), shown.basis.text()], table)
     for column, run in enumerate(outcome.runs, _FIRST_RUN):
         entry = entries.get(run.key)
-        gas = run.gas(name.partition(".")[0])
         if entry is not None:
-            style = "number" if gas is None or gas.is_valid else "uncounted"
-            sheet.live(column, entry.key, entry.value, number_format(entry), style)
+            sheet.live(column, entry.key, entry.value, number_format(entry))
     average = outcome.ledger.get(f"average.{name}")
     if average is not None:
         sheet.live(_FIRST_RUN + len(outcome.runs), average.key, average.value, number_format(average))
     sheet.next()
+
+
+def _strike(sheet: Sheet, runs: Sequence[RunResult], first: int, subject: str) -> None:
+    """Strike out the numbers of a gas in the runs in which its channel is not valid, as the indicator says."""
+    for column, run in enumerate(runs, _FIRST_RUN):
+        for gas in (gas for gas in run.gases if _subject(f"{gas.segment}.mean") == subject):
+            sheet.strike(first, column, f"{gas.valid}<>1")
 
 
 def _row_label(entry: Entry, name: str) -> str:

@@ -99,19 +99,20 @@ def _of_one_gas(
 
 def _void_after_adjustment(book: Book, lane: Lane, made: Pairing) -> None:
     """An adjustment between the end of a run and its check after it voids that check."""
+    run = made.run
     for event in book.record.events:
         if not _adjusts(event, lane.channel, book.record.channels):
             continue
-        for name in ("after_low", "after_up"):
-            check = getattr(made, name)
-            if check is None or not made.run.end.value <= event.time.value <= check.time:
-                continue
-            setattr(made, name, None)
-            said = f"{event.what.value} at {event.time.value:%H:%M}, before the check at {check.time:%H:%M}"
-            if said not in made.missing:
-                made.missing.append(said)
-                concerns = (lane.key(made.run, "corrected"),)
-                book.trouble("adjustment-before-check", event.place, said, concerns=concerns)
+        voided = [
+            i for i in (made.after_low, made.after_up) if i is not None and run.end.value <= event.time.value <= i.time
+        ]
+        if not voided:
+            continue
+        made.after_low = None if made.after_low in voided else made.after_low
+        made.after_up = None if made.after_up in voided else made.after_up
+        said = f"{event.what.value} at {event.time.value:%H:%M}, before the check at {voided[0].time:%H:%M}"
+        made.missing.append(said)
+        book.trouble("adjustment-before-check", event.place, said, concerns=(lane.key(run, "corrected"),))
 
 
 def _adjusts(event: Event, channel: Channel, channels: Sequence[Channel]) -> bool:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
 from typing import Any
 
@@ -33,10 +33,11 @@ _ROUTES = {"heat input": "by_heat_input", "flow": "by_flow"}
 
 @dataclass(frozen=True, slots=True)
 class Missing:
-    """Why a result was not made: problem code and words."""
+    """Why a result was not made: problem code, words, and the run it belongs to by key segment."""
 
     code: str
     words: str
+    run: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -50,21 +51,26 @@ class Means:
 
 def result(book: Book, about: RunBook, means: Means, plan: Plan) -> Entry | Missing:
     """The entry of a plan in a run, key ``run.<run>.<gas>.<ending>``, or why there is none."""
+    made = _made(book, about, means, plan)
+    return replace(made, run=about.run.key) if isinstance(made, Missing) else made
+
+
+def _made(book: Book, about: RunBook, means: Means, plan: Plan) -> Entry | Missing:
     if plan.problem is not None:
         return Missing(*plan.problem)
     key = about.key(f"{plan.lane.segment}.{plan.ending}")
     found = book.ledger.get(key)
     if found is not None:
         return found
+    run = about.run.run.value
     if plan.lane.segment not in about.measured:
-        return Missing("run-invalid", f"run {about.run.run.value}: {plan.lane.name} has no corrected mean")
+        return Missing("run-invalid", f"run {run}: {plan.lane.name} has no corrected mean")
     try:
-        made = _MAKERS[plan.quantity](book, about, means, plan, key)
+        return _MAKERS[plan.quantity](book, about, means, plan, key)
     except BasisError as error:
-        return Missing("basis-missing", f"run {about.run.run.value}: {error.message}")
+        return Missing("basis-missing", f"run {run}: {error.message}")
     except EquationError as error:
-        return Missing("factor-missing", f"run {about.run.run.value}: {error.message}")
-    return made if isinstance(made, (Entry, Missing)) else Missing("basis-missing", str(made))
+        return Missing("factor-missing", f"run {run}: {error.message}")
 
 
 def _on_moisture(about: RunBook, plan: Plan) -> Entry | Missing:
@@ -299,7 +305,7 @@ def _output_rate(book: Book, about: RunBook, means: Means, plan: Plan, key: str)
     return book.ledger.apply(mass_per_output, key, {"rate": rate, "output": output})
 
 
-_MAKERS = {
+_MAKERS: Mapping[str, Callable[[Book, RunBook, Means, Plan, str], Entry | Missing]] = {
     kinds.CONCENTRATION: _concentration,
     kinds.MASS_CONCENTRATION: _mass_concentration,
     kinds.EMISSION_RATE: _emission_rate,

@@ -20,7 +20,11 @@ from reporter.outcome import Outcome
 from reporter.output.workbook import write_workbook
 from tests.spreadsheet import agrees, largest_term, need_office, recalculated
 
-SAMPLES = sorted((Path(__file__).parents[2] / "sample_inputs" / "valid").glob("*.xlsx"))
+_INPUTS = Path(__file__).parents[2] / "sample_inputs"
+#: Tests with results withheld for one reason or another; and series that are no column of the readings.
+_WITHHELD = ("undecided-not-detected", "over-range-in-run", "diluent-missing", "no-citation")
+SAMPLES = sorted((_INPUTS / "valid").glob("*.xlsx"))
+SAMPLES += [_INPUTS / "defects" / f"{name}.xlsx" for name in _WITHHELD]
 ISSUED = datetime(2026, 1, 2, 3, 4, 5, tzinfo=UTC)
 
 
@@ -80,7 +84,8 @@ def wrong_entries(book: Any, outcome: Outcome, expected: dict[str, Any]) -> list
 
 
 def test_there_are_samples() -> None:
-    assert len(SAMPLES) >= 5
+    assert len(SAMPLES) >= 9
+    assert all(path.is_file() for path in SAMPLES)
 
 
 @pytest.mark.libreoffice
@@ -98,7 +103,7 @@ def test_every_formula_recalculates_to_its_stored_value(name: str, calculated: d
             if not agrees(found or "" if value == "" else found, value, largest):
                 wrong.append((sheet.title, cell.coordinate, found, value))
     assert not wrong, (len(wrong), wrong[:5])
-    assert checked > 1000
+    assert checked > 500
 
 
 @pytest.mark.libreoffice
@@ -236,6 +241,17 @@ def test_readings_stand_as_logged_and_as_used(name: str) -> None:
                 if row.time in left_out:
                     assert sheet.cell(number, column).value is None
                     assert series.channel in sheet.cell(number, len(heads)).value
+
+
+def test_numbers_of_a_channel_that_is_not_valid_are_struck_out_live() -> None:
+    name = SAMPLES[0].stem
+    conditions = {
+        formula
+        for ranges in formulas_of(name)["Runs"].conditional_formatting
+        for rule in ranges.rules
+        for formula in rule.formula
+    }
+    assert conditions >= {f"{gas.valid}<>1" for run in outcome_of(name).runs for gas in run.gases}
 
 
 def test_print_set_up() -> None:

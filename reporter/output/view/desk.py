@@ -11,7 +11,7 @@ from dataclasses import dataclass, field, replace
 from datetime import datetime
 from typing import Any
 
-from reporter.equation import Equation
+from reporter.equation import Citation, Equation
 from reporter.errors import LedgerError
 from reporter.gases import find_gas
 from reporter.ledger import Entry, FromCells, FromEquation, FromTable
@@ -43,7 +43,7 @@ class Desk:
     phrases: Phrases
     printed: dict[str, None] = field(default_factory=dict)
     places: dict[str, str] = field(default_factory=dict)
-    _lines: dict[str, str] = field(default_factory=dict)
+    _lines: dict[tuple[str, Citation], str] = field(default_factory=dict)
     _below: dict[str, list[str]] = field(default_factory=dict)
 
     def words(self, name: str, **values: object) -> str:
@@ -138,11 +138,11 @@ class Desk:
 
     def equation_line(self, equation: Equation[Any]) -> str:
         """An equation in symbols, in one line of text."""
-        name = equation.name
-        if name not in self._lines:
+        known = (equation.name, equation.citation)
+        if known not in self._lines:
             term = equation.in_system(self.outcome.ledger.system).symbols()
-            self._lines[name] = f"{equation.symbol} = {text_formula(term)}"
-        return self._lines[name]
+            self._lines[known] = f"{equation.symbol} = {text_formula(term)}"
+        return self._lines[known]
 
     def needed(self, keys: Iterable[str]) -> set[str]:
         """The keys some numbers rest on, themselves too; the answers of criteria are not followed."""
@@ -160,11 +160,11 @@ class Desk:
         return found
 
     def origin_kind(self, entry: Entry) -> str:
-        """Sheet and column of a value read, or the words of its origin: what like entries have in common."""
+        """Sheet and column of a value read, or the citation of its table: what like entries have in common."""
         origin = entry.origin
         if isinstance(origin, FromCells):
             return f"{origin.place.sheet} {origin.place.field}"
-        return self.origin_words(entry)
+        return origin.citation.text() if isinstance(origin, FromTable) else self.origin_words(entry)
 
     def cells(self, keys: Iterable[str]) -> str:
         """The cells some entries were read from, the sheet once: ``Runs!L4 L5 L6``; nothing for other origins."""
@@ -173,7 +173,7 @@ class Desk:
             origin = self.outcome.ledger[key].origin
             if isinstance(origin, FromCells):
                 by_sheet.setdefault(origin.place.sheet, {})[origin.place.cell] = None
-        return ", ".join(f"{sheet}!{' '.join(cells)}" for sheet, cells in by_sheet.items())
+        return ", ".join(f"{sheet}!{' '.join(cells)}".strip("!") for sheet, cells in by_sheet.items())
 
     def source_of(self, key: str) -> str:
         """The key an entry was carried over from under a second name; else the key itself."""

@@ -81,10 +81,14 @@ class Table:
         return len(self.rows) <= KEPT
 
     @property
-    def widths(self) -> tuple[str, ...]:
-        """The widths of the columns in percent, as text."""
+    def widths(self) -> tuple[int, ...]:
+        """The widths of the columns in whole percent, together 100."""
         whole = sum(column.width for column in self.columns)
-        return tuple(f"{100 * column.width / whole:.2f}" for column in self.columns)
+        ends = [0]
+        for column in self.columns:
+            ends.append(ends[-1] + column.width * 100 / whole)
+        rounded = [round(end) for end in ends]
+        return tuple(after - before for before, after in zip(rounded, rounded[1:], strict=False))
 
 
 @dataclass(frozen=True, slots=True)

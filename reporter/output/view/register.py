@@ -8,13 +8,13 @@ from __future__ import annotations
 
 import re
 
-from reporter.ledger import Entry, FromCells, FromEquation
+from reporter.ledger import Entry, FromCells, FromEquation, FromTable
 from reporter.output.numbers import formulas, unit_text
 from reporter.output.view.desk import Desk
 from reporter.output.view.model import Derivation, DerivationGroup, Register, Source
 from reporter.output.view.sample import value_text
 
-_VARYING = re.compile(r"^(run)\.[a-z0-9_]+|(?<=\.)(direct|system)_[0-9]+")
+_VARYING = re.compile(r"^(run|cylinder|component)\.[a-z0-9_]+|(?<=\.)(direct|system)_[0-9]+|(?<=\.component)\.[a-z0-9_]+")
 _Inputs = tuple[tuple[str, tuple[str, ...]], ...]
 
 
@@ -52,8 +52,14 @@ def register(desk: Desk) -> Register:
 
 
 def pattern(key: str) -> str:
-    """A key with a star for the run and for the number of a calibration reading."""
-    return _VARYING.sub(lambda match: "run.*" if match.group(1) else f"{match.group(2)}_*", key)
+    """A key with a star for the run, the cylinder, the component, the number of a calibration reading."""
+    return _VARYING.sub(_star, key)
+
+
+def _star(match: re.Match[str]) -> str:
+    if match.group(1):
+        return f"{match.group(1)}.*"
+    return f"{match.group(2)}_*" if match.group(2) else ".*"
 
 
 def _patterns(origin: FromEquation) -> _Inputs:
@@ -88,9 +94,17 @@ def _input(desk: Desk, symbol: str, keys: list[str]) -> Source:
 
 
 def _leaf(desk: Desk, entries: list[Entry]) -> Derivation:
-    words = dict.fromkeys(desk.origin_words(entry) for entry in entries)
-    name = pattern(entries[0].key)
-    return Derivation(_placed(desk, entries), name, _values(entries), (), formulas("; ".join(words)))
+    where = desk.cells(entry.key for entry in entries) or _table_words(desk, entries)
+    return Derivation(_placed(desk, entries), pattern(entries[0].key), _values(entries), (), formulas(where))
+
+
+def _table_words(desk: Desk, entries: list[Entry]) -> str:
+    """Where entries of one table come from: the citation once, then their rows."""
+    origins = [entry.origin for entry in entries]
+    rows = [origin.row for origin in origins if isinstance(origin, FromTable) and origin.row]
+    if len(rows) < 2:
+        return desk.origin_words(entries[0])
+    return f"{desk.origin_kind(entries[0])}, {', '.join(dict.fromkeys(rows))}"
 
 
 def _placed(desk: Desk, entries: list[Entry]) -> str:
