@@ -97,14 +97,16 @@ def report_files(
     """
     from reporter.output.data import to_json
     from reporter.output.pdf import PdfOptions, render_pdf
+    from reporter.output.phrases import load_phrases
     from reporter.output.workbook import write_workbook
 
     stem = Path(outcome.record.source.name).stem
-    data = to_json(outcome, issued, VERSION)
-    workbook = write_workbook(outcome, issued=issued, version=VERSION)
-    enclosed = {f"{stem}.json": data, f"{stem}.results.xlsx": workbook}
     options = PdfOptions(templates=templates, folder=folder, minute_data=minute_data)
     with _collector_paused():
+        data = to_json(outcome, issued, VERSION)
+        phrases = load_phrases(templates)
+        workbook = write_workbook(outcome, issued=issued, version=VERSION, phrases=phrases)
+        enclosed = {f"{stem}.json": data, f"{stem}.results.xlsx": workbook}
         pdf = render_pdf(outcome, issued=issued, version=VERSION, enclosed=enclosed, options=options)
     return {".json": data, ".xlsx": workbook, ".pdf": pdf}
 

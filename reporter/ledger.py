@@ -10,6 +10,7 @@ from __future__ import annotations
 
 import math
 import re
+import unicodedata
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import Any
@@ -28,7 +29,15 @@ _NOT_SLUG = re.compile(r"[^a-z0-9]+")
 
 def slug(text: str) -> str:
     """A key segment from a name people wrote: lower case, all but letters and digits become ``_``."""
-    return _NOT_SLUG.sub("_", text.strip().lower()).strip("_") or "x"
+    plain = "".join(_latin(char) for char in unicodedata.normalize("NFKD", text.strip().lower()))
+    return _NOT_SLUG.sub("_", plain).strip("_") or "x"
+
+
+def _latin(char: str) -> str:
+    """A letter or digit outside ASCII by its code point, so that names in other scripts stay apart."""
+    if char.isascii() or unicodedata.combining(char) or not char.isalnum():
+        return char if not unicodedata.combining(char) else ""
+    return f"_u{ord(char):x}_"
 
 
 @dataclass(frozen=True, slots=True)

@@ -425,13 +425,15 @@ class Analysis:
 
 @dataclass(frozen=True, slots=True)
 class ProcessLog:
-    """Logged process readings: column names with units, rows of (time, values)."""
+    """Logged process readings: column names with units and letters, rows of (time, values) with their numbers."""
 
     columns: tuple[str, ...] = ()
     units: tuple[ReadUnit | None, ...] = ()
     times: tuple[datetime, ...] = ()
     values: tuple[tuple[float | str | None, ...], ...] = ()
     place: Place = field(default_factory=Place)
+    letters: tuple[str, ...] = ()
+    rows: tuple[int, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

@@ -145,7 +145,7 @@ def _balance(given: Inputs) -> tuple[float, float]:
 
 
 def _excess_air(given: Inputs) -> float:
-    return float(mixture.excess_air(air=_balance(given)[0], stoichiometric=_air(given)))
+    return float(mixture.excess_air_of_balance(air=_balance(given)[0], stoichiometric=_air(given)))
 
 
 def _co2(given: Inputs) -> float:
@@ -354,7 +354,7 @@ ANSWERS: dict[str, Answer] = {
     ),
     "excess_air_from_air_fuel_ratio": _renamed(mixture.excess_air, air="af", stoichiometric="af_stoich"),
     "percent_theoretical_air": lambda g: (
-        100.0 + mixture.excess_air(air=g["af_molar"], stoichiometric=g["af_molar_stoich"])
+        100.0 + mixture.excess_air_of_balance(air=g["af_molar"], stoichiometric=g["af_molar_stoich"])
     ),
     "product_moles_o2": _product("o2"),
     "product_moles_n2": _product("n2"),

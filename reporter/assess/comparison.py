@@ -198,7 +198,8 @@ def _compared(book: Book, runs: Sequence[RunBook], made: Made, blank: Comparison
     shown, rounded, bound = _measured(book, made, blank)
     both = {"value": rounded, "limit": bound}
     met = book.apply(_RELATIONS[relation], f"{key}.met", both)
-    left = book.apply(margin, f"{key}.margin", both)
+    unrounded = {"value": book.ledger[shown.value], "limit": bound}
+    left = book.apply(margin, f"{key}.margin", unrounded, decimals=decimals_of(limit.limit.text) + 2)
     if bound.value != 0.0:
         book.apply(percent_of_limit, f"{key}.percent", both)
     count, required = book.ledger[shown.count], book.ledger[shown.required]

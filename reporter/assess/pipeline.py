@@ -25,6 +25,7 @@ from reporter.reduction.diluents import reduce_diluents
 from reporter.reduction.flow import dry_standard_flow
 from reporter.reduction.fuels import run_factors, shares
 from reporter.reduction.heat import heat_input, heat_inputs
+from reporter.reduction.levels import check_levels
 from reporter.reduction.moisture import moisture
 from reporter.reduction.plans import Plan, plans
 from reporter.reduction.process import reduce_load
@@ -34,7 +35,7 @@ from reporter.reduction.results import Means, Missing, result
 from reporter.reduction.uncertainty import reading_uncertainty
 
 #: Quantities averaged over the valid runs for the table of runs, whatever the limits ask.
-_SHOWN = ("mean", "corrected", "dry", "wet")
+_SHOWN = ("mean", "corrected", "dry", "wet", "mass_concentration", "emission_rate", "mass_rate")
 
 
 def assess(record: Record) -> Outcome:
@@ -88,6 +89,7 @@ def _correct(book: Book, tracks: Sequence[Lane], runs: Sequence[Run], abouts: Se
     for lane in tracks:
         found = calibrations(book, lane)
         check_converter(book, lane)
+        check_levels(book, found, runs)
         for about, corrected in zip(abouts, correct(book, found, runs), strict=True):
             put_on_bases(book, about, corrected)
 
@@ -169,7 +171,7 @@ def _averages(book: Book, abouts: Sequence[RunBook], wanted: Sequence[Plan]) -> 
 def _run_quantities(book: Book, about: RunBook) -> list[str]:
     wanted = (
         "moisture", "heat_input", "flow.dry_standard", "load", "output", "combustion.excess_air",
-        "combustion.fuel_factor", "combustion.molecular_weight_dry", "combustion.molecular_weight_wet",
+        "combustion.excess_air.by_analysis", "combustion.fuel_factor", "combustion.molecular_weight_dry", "combustion.molecular_weight_wet",
         "combustion.equivalence_ratio", "combustion.air_fuel_mole", "combustion.air_fuel_mass",
         "combustion.co2_expected", "combustion.moisture_expected",
     )  # fmt: skip

@@ -30,7 +30,10 @@ def channels_behind(book: Book, about: RunBook, entry: Entry) -> list[str]:
 
 
 def counts(book: Book, about: RunBook, entry: Entry, limit: Limit | None, *, whatever_excluded: bool = False) -> Entry:
-    """The indicator that a result counts, made of the validity of its channels and the run's own state."""
+    """The indicator that a result counts, made of the validity of its channels and the run's own state.
+
+    A result that rests on no analyzer (heat input, load, flow) counts where every channel of the run does.
+    """
     segments = channels_behind(book, about, entry)
     flags = [about.corrected[segment].valid for segment in segments]
     name = "_".join(segments) or "all"
@@ -41,8 +44,10 @@ def counts(book: Book, about: RunBook, entry: Entry, limit: Limit | None, *, wha
     if limit is not None and limit.minimum_run_length is not None:
         flags.append(_long_enough(book, about, limit))
         name += f".limit_{limit.key}"
+    if not segments:
+        flags += [corrected.valid for corrected in about.corrected.values()]
     if not flags:
-        return book.state(about.key("valid.all"), 1.0, "1", "rests on no analyzer")
+        return book.state(about.key("valid.all"), 1.0, "1", "no analyzer in this run")
     return book.apply(all_met, about.key(f"valid.{name}"), {"flags": flags})
 
 

@@ -18,7 +18,7 @@ _AIR = {"air": "a", "stoichiometric": "A_st"}
     symbols=_AIR,
     difference=True,
 )
-def excess_air(*, air: Value, stoichiometric: Value, hundred: Value = constant(100.0, "%")) -> Value:
+def excess_air_of_balance(*, air: Value, stoichiometric: Value, hundred: Value = constant(100.0, "%")) -> Value:
     """Excess air from the air burned.
 
     Parameters

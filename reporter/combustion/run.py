@@ -193,7 +193,7 @@ def _mixture(book: RunBook, solution: Solution, n: dict[str, Entry]) -> None:
     )
     pair = {"air": solution.air, "stoichiometric": least}
     book.apply(humid_air, "air_humid", {"air": solution.air, "humidity": book.humidity()}, "air with its water")
-    book.apply(mixture.excess_air, "excess_air", pair, "excess air")
+    book.apply(mixture.excess_air_of_balance, "excess_air", pair, "excess air")
     ratio = book.apply(mixture.equivalence_ratio, "equivalence_ratio", pair, "equivalence ratio")
     by_mole = book.apply(
         mixture.air_fuel_by_mole,

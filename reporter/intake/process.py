@@ -25,7 +25,9 @@ def read_process(table: SheetTable, reader: RowReader) -> ProcessLog:
     units = tuple(_process_unit(header) for _, header in columns)
     names = tuple(h.name if unit else h.text for (_, h), unit in zip(columns, units, strict=True))
     place = reader.gathered.place(table.sheet)
-    return ProcessLog(names, units, tuple(moment for _, moment in rows), values, place)
+    letters = tuple(header.column for _, header in columns)
+    numbers = tuple(row.number for row, _ in rows)
+    return ProcessLog(names, units, tuple(moment for _, moment in rows), values, place, letters, numbers)
 
 
 def _process_unit(header: HeaderCell) -> ReadUnit | None:

@@ -15,9 +15,10 @@ from typing import Any
 
 from reporter.equation import Citation, Value, constant, equation
 from reporter.functions import absolute, all_of, any_of, at_least, at_most, less_than
+from reporter.references import short_name
 from reporter.resources import table_text
 
-_CRITERIA = Citation("m7e", "13")
+_CRITERIA = Citation("criterion")
 
 
 @dataclass(frozen=True, slots=True)
@@ -40,6 +41,11 @@ class Criterion:
     consequence: str
     status: str
     citation: Citation
+
+
+def _adopted(method: str, printed_in: str) -> str:
+    """The method that takes a criterion over from the one it is printed in; empty where they are one."""
+    return "" if method == printed_in else f"as adopted by {short_name(method)}"
 
 
 @cache
@@ -80,7 +86,7 @@ def criteria(method: str) -> Mapping[str, Criterion] | None:
             paragraph=row["paragraph"],
             consequence=row["consequence"],
             status=_weaker(row["status"], family["status"]),
-            citation=Citation(row["document"], row["paragraph"]),
+            citation=Citation(row["document"], row["paragraph"], _adopted(family["document"], row["document"])),
         )
     return held
 

@@ -114,7 +114,7 @@ def water_volume_from_volume(
 
 @equation("V_wsg(std)", _VOLUME, {"mass": "g"}, _VWSG, symbols={"mass": "W_sg"}, gives=_VAPOUR)
 def silica_gel_volume(
-    *, mass: Value, k: Value = constant(0.04716, ("ft3/g", "m3/g"), "K_2", si=0.001335, cite=_VWSG)
+    *, mass: Value, k: Value = constant(0.04716, ("ft3/g", "m3/g"), "K_3", si=0.001335, cite=_VWSG)
 ) -> Value:
     """Volume of the water held by the silica gel as vapour.
 

@@ -26,7 +26,7 @@ def _corrected_co2(bases: Mapping[str, Basis], values: Mapping[str, Any]) -> Bas
     "C_ref",
     "*c",
     {"c": "*c", "o2": "%", "reference": "%", "k": "%"},
-    Citation("cfr60_4213", "", "paragraph (d), (k − ref)/(k − O2)"),
+    Citation("reference_oxygen", "", "(k − ref)/(k − O2)"),
     symbols={"c": "C", "o2": "%O2", "reference": "%O2_ref", "k": "k"},
     needs={"c": NEED_DRY, "o2": NEED_DRY},
     gives=_corrected_o2,

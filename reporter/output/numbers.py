@@ -18,6 +18,8 @@ from reporter.quantities import quantity_of
 #: Significant digits of a number whose quantity is not in the table.
 SIGNIFICANT = 4
 _SMALLEST, _GROUPED, _LARGEST = 1e-4, 10_000, 1e7
+#: A space as wide as a digit (and as a minus), for numbers that are aligned as text.
+FIGURE_SPACE = "\u2007"
 _NARROW = "\u202f"
 _POWERS = str.maketrans("23", "²³")
 _LOWERED = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")

@@ -94,12 +94,17 @@ def mixed_heat(*, masses: Value, shares: Value) -> Value:
     return total(shares) / total(masses)
 
 
-def enter_blend(book: Book, stem: str, fuels: Mapping[str, str], shares: Mapping[str, Entry]) -> str | None:
-    """Enter the mixture of a run under `stem`, from the compositions (key stems by fuel name) and shares.
+def enter_blend(
+    book: Book,
+    stem: str,
+    fuels: Mapping[str, str],
+    shares: Mapping[str, Entry],
+    heats: Mapping[str, Entry | None],
+) -> str | None:
+    """Enter the mixture of a run under `stem`, from compositions (key stems by fuel name), shares and heats.
 
     None where a fuel has no heating value to weigh it by.
     """
-    heats = {name: book.ledger.get(f"{prefix}.gross_heating_value") for name, prefix in fuels.items()}
     if any(heat is None for heat in heats.values()):
         return None
     masses = [

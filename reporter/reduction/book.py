@@ -68,7 +68,7 @@ class Book:
             return found
         minutes = (run.end.value - run.start.value).total_seconds() / 60.0
         words = f"{run.start.text} to {run.end.text}"
-        return self.ledger.enter(key, minutes, "min", FromCells(run.start.place, words))
+        return self.ledger.enter(key, minutes, "min", FromCells(_both(run), words))
 
     def table(self, key: str, value: float, unit: str, citation: Citation, *, row: str = "") -> Entry:
         """Enter a number from a published table, once."""
@@ -119,6 +119,13 @@ class Book:
     def file_place(self) -> Place:
         """The input as a whole."""
         return Place(file=self.record.source.name)
+
+
+def _both(run: Run) -> Place:
+    """Start and end of a run as one place."""
+    start, end = run.start.place, run.end.place
+    cells = f"{start.cell}, {end.cell}" if end.cell and end.cell != start.cell else start.cell
+    return Place(start.file, start.sheet, cells, f"{start.field}, {end.field}")
 
 
 @dataclass(frozen=True, slots=True)

@@ -8,7 +8,7 @@ from reporter.combustion.run import balance_run
 from reporter.combustion.run_book import FlueGas
 from reporter.combustion.state import State
 from reporter.errors import FluebookError
-from reporter.ledger import Entry
+from reporter.ledger import Entry, slug
 from reporter.methods.criteria import reading_difference
 from reporter.outcome import Finding
 from reporter.record import FuelRow, text_of
@@ -48,7 +48,19 @@ def _fuel(book: Book, about: RunBook, burned: list[FuelRow], share: dict[str, En
         return None
     if len(known) == 1:
         return next(iter(known.values()))
-    return enter_blend(book, about.key("combustion.fuel"), known, {name: share[name] for name in known})
+    chosen = {name: share[name] for name in known}
+    return enter_blend(book, about.key("combustion.fuel"), known, chosen, _heats(book, about, known))
+
+
+def _heats(book: Book, about: RunBook, known: dict[str, str]) -> dict[str, Entry | None]:
+    """Gross heating value by mass of each fuel: as used in the run, as analysed, else of its composition."""
+    wanted = book.unit("Btu/lb", "kJ/kg")
+    found: dict[str, Entry | None] = {}
+    for name, stem in known.items():
+        keys = (about.key(f"fuel_use.{slug(name)}.heating_value"), f"fuel.{slug(name)}.gross_heating_value")
+        entered = (book.ledger.get(key) for key in (*keys, f"{stem}.gross_heating_value"))
+        found[name] = next((entry for entry in entered if entry is not None and entry.unit == wanted), None)
+    return found
 
 
 def _gas(book: Book, about: RunBook) -> FlueGas:

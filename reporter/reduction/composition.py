@@ -11,13 +11,18 @@ from reporter.combustion.fuel import (
     nominal_fuel,
     nominal_names,
 )
-from reporter.combustion.fuel_entries import enter_fuel
+from reporter.combustion.fuel_entries import by_mass, enter_fuel
 from reporter.combustion.stoichiometry_entries import enter_stoichiometry
+from reporter.equation import Citation
+from reporter.gases import atomic_weights
 from reporter.ledger import Entry, FromCells, Origin, slug
+from reporter.methods.f_factors import eq_19_13, eq_19_14, eq_19_15
 from reporter.record import FuelRow, Real, text_of
 from reporter.reduction.book import Book
+from reporter.reduction.equations import percent_by_weight
 from reporter.reduction.fuels import Factors
 
+_ELEMENTS = {"hydrogen": "H", "carbon": "C", "sulfur": "S", "nitrogen": "N", "oxygen": "O"}
 _SHARES = ("carbon", "hydrogen", "oxygen", "nitrogen", "sulfur", "ash", "water")
 
 
@@ -110,9 +115,28 @@ def enter_composition(book: Book, row: FuelRow) -> str | None:
 
 
 def factors_from_composition(book: Book, row: FuelRow, stem: str) -> Factors:
-    """F factors computed from the composition of a gas fuel."""
+    """F factors of a gas fuel by Eqs. 19-13 to 19-15, on its composition by weight."""
     made = enter_composition(book, row)
     if made is None:
         book.trouble("factor-missing", row.place, f"{row.fuel.value}: no composition in Fuel gas", concerns=(stem,))
         return Factors(None, None, None)
-    return Factors(*(book.ledger.get(f"{made}.{name}.composition") for name in ("fd", "fw", "fc")))
+    gcv = book.ledger.get(f"{made}.gross_heating_value")
+    if gcv is None:
+        book.trouble("factor-missing", row.place, f"{row.fuel.value}: no heating value follows", concerns=(stem,))
+        return Factors(None, None, None)
+    parts = {name: _by_weight(book, made, stem, name, symbol) for name, symbol in _ELEMENTS.items()}
+    inputs = {**parts, "gcv": gcv}
+    water = book.state(f"{stem}.water", 0.0, "%", "dry gas: the analysis names no water")
+    return Factors(
+        book.apply(eq_19_13, f"{stem}.fd", inputs),
+        book.apply(eq_19_14, f"{stem}.fw", {**inputs, "water": water}),
+        book.apply(eq_19_15, f"{stem}.fc", {"carbon": parts["carbon"], "gcv": gcv}),
+    )
+
+
+def _by_weight(book: Book, made: str, stem: str, name: str, symbol: str) -> Entry:
+    """Percent by weight of an element of a gas fuel."""
+    weight = atomic_weights()[symbol]
+    mass = book.table(f"element.{name}.molar_mass", weight, "g/mol", Citation("ciaaw"), row=symbol)
+    amount = by_mass(book.ledger, made, name)
+    return book.apply(percent_by_weight, f"{stem}.{name}", {"amount": amount, "molar_mass": mass})

@@ -450,3 +450,32 @@ def volume_from_mass(
         Concentration [ppm], on the moisture and oxygen basis of `c`.
     """
     return c * gas_constant * temperature / (molar_mass * pressure)
+
+
+@equation(
+    "X",
+    "%",
+    {"amount": "mol/kg", "molar_mass": "g/mol"},
+    Citation("ciaaw", "", "amount times molar mass"),
+    symbols={"amount": "n", "molar_mass": "M"},
+)
+def percent_by_weight(
+    *, amount: Value, molar_mass: Value, per_kilogram: Value = constant(10.0, "g/kg/%", cite=_UNITS)
+) -> Value:
+    """Percent by weight of an element from its amount in a kilogram of fuel.
+
+    Parameters
+    ----------
+    amount
+        Amount of the element [mol/kg of fuel].
+    molar_mass
+        Molar mass of the element [g/mol].
+    per_kilogram
+        Grams per kilogram in one percent [g/kg/%].
+
+    Returns
+    -------
+    float
+        Percent by weight [%].
+    """
+    return amount * molar_mass / per_kilogram

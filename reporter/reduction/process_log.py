@@ -10,6 +10,7 @@ from reporter.ledger import FromCells, slug
 from reporter.problems import Place
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
+from reporter.reduction.readings import cell_ranges
 
 
 @equation(
@@ -42,13 +43,17 @@ def reduce_process_log(book: Book, about: RunBook) -> None:
     inside = [i for i, time in enumerate(log.times) if _within(about, time)]
     taken: set[str] = set()
     for position, column in enumerate(log.columns):
-        values = [value for i in inside if isinstance(value := log.values[i][position], float)]
+        with_number = [i for i in inside if isinstance(log.values[i][position], float)]
+        values = [value for i in with_number if isinstance(value := log.values[i][position], float)]
         name = slug(column)
         if not values or name in taken:
             continue
         taken.add(name)
         unit = log.units[position]
-        place = Place(book.record.source.name, log.place.sheet or "Process", "", column)
+        rows = [log.rows[i] for i in with_number] if log.rows else []
+        letter = log.letters[position] if log.letters else ""
+        cells = cell_ranges(letter, rows, book.record.source.name)
+        place = Place(book.record.source.name, log.place.sheet or "Process", cells, column)
         words = f"{len(values)} readings from {log.times[inside[0]]:%H:%M} to {log.times[inside[-1]]:%H:%M}"
         key = about.key(f"process.{name}")
         series = book.ledger.enter(

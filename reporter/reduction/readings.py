@@ -49,7 +49,7 @@ def reading_count(*, readings: Value) -> Value:
     "coverage",
     "%",
     {"number": "1", "interval": "min", "duration": "min"},
-    Citation("m7e", "8.5"),
+    Citation("m7e", "", "one valid reading a minute"),
     symbols={"number": "n", "interval": "Δt", "duration": "t_run"},
 )
 def coverage(*, number: Value, interval: Value, duration: Value, hundred: Value = constant(100.0, "%")) -> Value:
@@ -239,10 +239,23 @@ def _detection_limit(lane: Lane) -> float | None:
 def _place(book: Book, lane: Lane, series: Series) -> Place:
     readings = book.record.readings
     letter = readings.columns[readings.index(lane.name)]
-    cells = f"{letter}{series.first_row}:{letter}{series.last_row}" if series.last_row else letter
-    if book.record.source.name.lower().endswith(".json"):
-        cells = f"/{series.first_row}/{letter} to /{series.last_row}/{letter}"
+    used = {time for time, _ in series.used}
+    numbers = [row.row for row in readings.rows if row.time in used]
+    cells = cell_ranges(letter, numbers, book.record.source.name)
     return Place(book.record.source.name, readings.place.sheet or "Readings", cells, lane.name)
+
+
+def cell_ranges(letter: str, rows: Sequence[int], file: str) -> str:
+    """The cells of some rows of a column as ranges, e.g. ``B149:B175;B179:B211``; JSON pointers in a JSON record."""
+    parts: list[tuple[int, int]] = []
+    for row in rows:
+        if parts and row == parts[-1][1] + 1:
+            parts[-1] = (parts[-1][0], row)
+        else:
+            parts.append((row, row))
+    if file.lower().endswith(".json"):
+        return ";".join(f"/{first}/{letter} to /{last}/{letter}" for first, last in parts)
+    return ";".join(f"{letter}{first}:{letter}{last}" for first, last in parts) or letter
 
 
 def _implausible(book: Book, lane: Lane, span: Window, place: Place, found: _Sorted) -> None:

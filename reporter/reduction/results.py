@@ -28,6 +28,11 @@ from reporter.reduction.referenced import at_reference
 
 #: Oxygen of dry air [%] in Method 19, always.
 _AIR = 20.9
+_FLOW_WORDS = (
+    "Mass rates from flow rest on the stack flow as entered: no velocity traverse and no cyclonic-flow check is "
+    "computed here. They use the factors of Method 19, Table 19-1, at its standard conditions; mass concentrations "
+    "use molar masses and the ideal-gas law at the limit's own conditions, which differs in the fourth digit."
+)
 _ROUTES = {"heat input": "by_heat_input", "flow": "by_flow"}
 
 
@@ -252,7 +257,7 @@ def _mass_rate(book: Book, about: RunBook, means: Means, plan: Plan, key: str) -
     first = tried[order[0]]
     if isinstance(first, Missing):
         return first
-    primary = book.ledger.apply(first[0], key, first[1])
+    primary = book.ledger.apply(first[0], key, first[1], note=f"from {order[0]}")
     second = tried[order[1]]
     if not isinstance(second, Missing):
         _cross_check(book, about, plan, key, primary, second, order[1])
@@ -260,7 +265,7 @@ def _mass_rate(book: Book, about: RunBook, means: Means, plan: Plan, key: str) -
 
 
 def _cross_check(book: Book, about: RunBook, plan: Plan, key: str, primary: Entry, second: Any, name: str) -> None:
-    cross = book.ledger.apply(second[0], f"{key}.{_ROUTES[name]}", second[1])
+    cross = book.ledger.apply(second[0], f"{key}.{_ROUTES[name]}", second[1], note=f"from {name}")
     inputs = {"value": cross, "reference": primary}
     difference = book.attempt(percent_difference, f"{key}.route_difference", inputs)
     if difference is not None and abs(difference.value) > 10.0:
@@ -279,6 +284,7 @@ def _route(book: Book, about: RunBook, means: Means, plan: Plan, name: str) -> A
         if plan.lane.segment not in about.dry:
             return Missing("moisture-missing", f"run {run}: a dry concentration needs moisture")
         c = gas_per_volume(book, about, plan, dry=True)
+        book.say(_FLOW_WORDS)
         return mass_rate_by_flow, {"c": c, "flow": means.flow}
     if means.heat_input is None:
         return Missing("heat-input-missing", f"run {run}: no heat input")

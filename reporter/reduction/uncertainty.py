@@ -5,7 +5,7 @@ from __future__ import annotations
 from reporter.ledger import Entry
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
-from reporter.reduction.equations import diluent_uncertainty
+from reporter.reduction.equations import carried, diluent_uncertainty
 
 
 def reading_uncertainty(book: Book, about: RunBook, segment: str) -> Entry | None:
@@ -14,9 +14,10 @@ def reading_uncertainty(book: Book, about: RunBook, segment: str) -> Entry | Non
     if lane is None or corrected is None:
         return None
     entered = lane.channel.standard_uncertainty
-    if entered is not None:
-        return book.given(f"channel.{segment}.uncertainty", entered, "%")
     key = about.key(f"{segment}.uncertainty")
+    if entered is not None:
+        value = book.given(f"channel.{segment}.uncertainty", entered, "%")
+        return book.apply(carried, key, {"value": value})
     found = book.ledger.get(key)
     pairing = corrected.pairing
     if found is not None or pairing is None or pairing.after_up is None or pairing.before_up is None:

@@ -80,9 +80,9 @@ class Desk:
         name = unit_text(entry.unit)
         return Shown(entry.key, f"{text} {name}".strip() if unit else text, name, decimals_in(text))
 
-    def number_text(self, key: str) -> str:
+    def number_text(self, key: str, *, unit: bool = True) -> str:
         """The printed number of a key with its unit, for a sentence; remembered as printed."""
-        cell = self.show(key, unit=True)
+        cell = self.show(key, unit=unit)
         return cell.text if isinstance(cell, Shown) else str(cell)
 
     def place(self, keys: Iterable[str]) -> str:

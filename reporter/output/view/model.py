@@ -31,10 +31,13 @@ class Shown:
 
 @dataclass(frozen=True, slots=True)
 class Cell:
-    """A text cell with more to it than its text: a key whose derivation row is here, emphasis, a span."""
+    """A text cell with more to it than its text: the key of the number in it, emphasis, a span.
+
+    A tab in the text stands before what is aligned.
+    """
 
     text: str
-    anchor: str = ""
+    to: str = ""
     strong: bool = False
     span: int = 1
 
@@ -210,19 +213,19 @@ class Source:
 
 @dataclass(frozen=True, slots=True)
 class Step:
-    """One step of the sample calculation; `formula` and `numbers` are markup made by the typesetter.
+    """One step of the sample calculation.
 
-    `formula` and its one-line form `line` are empty where the equation stood in an earlier step.
+    `formula` is markup made by the typesetter, `line` the same in one line of text; both are empty where the
+    equation stood in an earlier step.  `numbers` is the line with the numbers put in.
     """
 
     number: int
     title: str
-    symbol: str
     formula: str
+    line: str
     numbers: str
     result: Shown
     basis: str
-    line: str
     citation: str
     sources: tuple[Source, ...]
 

@@ -4,10 +4,11 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import replace
+from itertools import zip_longest
 
 from reporter.ledger import Entry, FromEquation
-from reporter.output.numbers import formulas, unit_text
-from reporter.output.view.desk import Desk, aligned, gas_name
+from reporter.output.numbers import FIGURE_SPACE, formulas, unit_text
+from reporter.output.view.desk import Desk, gas_name
 from reporter.output.view.model import AnyCell, Block, Cell, Column, ProblemView, QualityView, Row, Table
 from reporter.outcome import Check, RunState
 from reporter.problems import Grade, Problem
@@ -136,27 +137,34 @@ def _block(desk: Desk, title: str, checks: Sequence[Check]) -> Block:
     values = [desk.outcome.ledger[check.value] for check in checks]
     common, shared = _common_bounds(desk, checks), _share_bounds(desk, checks)
     bounds = [key for check in checks for key in (check.bound, check.alternative) if key and desk.is_read(key)]
-    columns = (Column("", width=4.6), Column("", width=1, number=True), Column("", width=1.3)) * 2
-    half = -(-len(checks) // 2)
-    rows = []
-    for at in range(half):
-        cells = _cells(desk, checks[at], bound=not shared)
-        cells += _cells(desk, checks[at + half], bound=not shared) if at + half < len(checks) else ["", "", ""]
-        rows.append(Row(tuple(cells)))
+    cells = _cells(desk, checks, bound=not shared)
+    half = -(-len(cells) // 2)
+    pairs = zip_longest(cells[:half], cells[half:], fillvalue="")
     words = f"{common}{_value_words(desk, values)}"
-    table = aligned(Table(columns, tuple(rows)))
+    table = Table((Column(""), Column("")), tuple(Row(pair) for pair in pairs))
     return Block(title=formulas(title), anchor=desk.place(bounds), text=(words,), tables=(table,))
 
 
-def _cells(desk: Desk, check: Check, *, bound: bool) -> list[AnyCell]:
-    """What was checked, its value (and the difference where that decides), whether it is met."""
-    answer = Cell(desk.words("criterion.met" if check.met else "criterion.not_met"), strong=not check.met)
-    name = _row_name(check)
-    if bound:
-        name += f", {_relation(desk, check)} {desk.number_text(check.bound)}"
-    if _needs_alternative(desk, check):
-        name += f", {desk.words('criterion.difference')} {desk.number_text(check.difference)}"
-    return [name, desk.show(check.value), answer]
+def _cells(desk: Desk, checks: Sequence[Check], *, bound: bool) -> list[Cell]:
+    """One cell per check: what was checked, a tab, its value and whether it is met."""
+    texts = []
+    for check in checks:
+        name = _row_name(check)
+        if bound:
+            name += f", {_relation(desk, check)} {desk.number_text(check.bound)}"
+        if _needs_alternative(desk, check):
+            name += f", {desk.words('criterion.difference')} {desk.number_text(check.difference)}"
+        texts.append((name, desk.number_text(check.value, unit=False), check))
+    widest = max(len(value) for _, value, _ in texts)
+    return [
+        Cell(
+            f"{name}\t{value.rjust(widest, FIGURE_SPACE)}\u2002"
+            f"{desk.words('criterion.met' if check.met else 'criterion.not_met')}",
+            to=check.value,
+            strong=not check.met,
+        )
+        for name, value, check in texts
+    ]
 
 
 def _needs_alternative(desk: Desk, check: Check) -> bool:

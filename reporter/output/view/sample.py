@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass, field
-from html import escape
+from typing import Any
 
+from reporter.equation import Equation
 from reporter.ledger import Entry, FromCells, FromEquation, FromTable, Stated
 from reporter.output.numbers import formulas, shortest, unit_text
 from reporter.output.view.desk import Desk, cell_words, gas_name
@@ -13,7 +14,7 @@ from reporter.output.view.limits import limit_words
 from reporter.output.view.model import Chapter, Shown, Source, Step
 from reporter.outcome import Comparison, RunResult
 from reporter.trace import Name
-from reporter.typeset import html_formula, symbol_html
+from reporter.typeset import html_formula, symbol_html, text_formula
 
 #: Significant digits of numbers put into equations.
 DIGITS = 6
@@ -50,12 +51,11 @@ class _Writer:
         return Step(
             number=self.numbers[entry.key],
             title=desk.label(entry.key),
-            symbol=symbol_html(equation.symbol),
-            formula=html_formula(equation.symbols()) if is_new else "",
-            numbers=html_formula(desk.outcome.ledger.trace(entry), _number_html),
+            formula=_formula(equation) if is_new else "",
+            line=desk.equation_line(equation) if is_new else "",
+            numbers=text_formula(desk.outcome.ledger.trace(entry), _number),
             result=Shown(entry.key, shortest(float(entry.value), DIGITS), unit_text(entry.unit)),
             basis=formulas(entry.basis.text()),
-            line=desk.equation_line(equation) if is_new else "",
             citation=equation.citation.text(),
             sources=self._sources(entry),
         )
@@ -106,16 +106,13 @@ def value_text(entry: Entry) -> str:
     return shortest(float(entry.value), DIGITS)
 
 
-def _number_html(name: Name) -> str:
-    if name.series:
-        return escape(f"{len(name.value)} readings")
-    return powers(shortest(float(name.value), DIGITS))
+def _formula(equation: Equation[Any]) -> str:
+    """Markup of an equation, its symbol before it."""
+    return f"{symbol_html(equation.symbol)} = {html_formula(equation.symbols())}"
 
 
-def powers(text: str) -> str:
-    """Markup of a number with its power of ten raised."""
-    mantissa, times, power = escape(text).partition("×10^")
-    return f"{mantissa}\u00a0×\u00a010<sup>{power}</sup>" if times else mantissa
+def _number(name: Name) -> str:
+    return f"{len(name.value)} readings" if name.series else shortest(float(name.value), DIGITS)
 
 
 def sample_run(desk: Desk) -> RunResult | None:
