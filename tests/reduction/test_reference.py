@@ -5,13 +5,16 @@ Equations: 40 CFR 60.4213(d) (20.9 - ref)/(20.9 - O2); directive 2010/75/EU (21 
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Any
 
 import pytest
 
 from reporter.outcome import Outcome
 from tests.record_factory import (
+    assess,
     assessed,
+    calibrations,
     channel,
     codes,
     comparison,
@@ -21,6 +24,8 @@ from tests.record_factory import (
     limit,
     number,
     readings,
+    recalibrated,
+    record,
     said,
     value,
 )
@@ -90,8 +95,6 @@ def test_the_uncertainty_of_oxygen_as_entered() -> None:
 
 def test_half_the_drift_enters_the_uncertainty() -> None:
     """Zero 0 then 0.2 %, upscale 10 then 10.3 %: (0.1^2/3 + 0.2^2/12 + 0.3^2/12)^0.5."""
-    from tests.record_factory import assess, recalibrated, record
-
     at_15 = limit(reference_oxygen=number(15.0, "%"), oxygen_constant=number(20.9, "%"))
     made = record(limits=(at_15,))
     made = recalibrated(recalibrated(made, "08:40", "O2", 0.2), "08:42", "O2", 10.3)
@@ -213,10 +216,6 @@ def test_an_oxygen_channel_in_ppm_corrects_as_percent() -> None:
         c if c.gas.value != "o2" else cylinder(c.cylinder.value, "o2", c.certified_value.value * 1e4, "ppm")
         for c in cylinders()
     )
-    from dataclasses import replace
-
-    from tests.record_factory import calibrations
-
     rows = tuple(
         replace(row, reading=number(row.reading.value * 1e4)) if row.channel.value == "O2" else row
         for row in calibrations()

@@ -40,7 +40,7 @@ def _readings(desk: Desk) -> Table:
     """One row per set and channel, one column per level; the gases stand in the row of the channel."""
     points = desk.outcome.calibration_points
     levels = [level for level in _LEVELS if any(point.level == level for point in points)]
-    columns = [Column("Time", width=1.4), Column("Route", width=1.2)]
+    columns = [Column("Route, time", width=2.2)]
     columns += [Column(level if level == "NO2" else level.capitalize(), number=True) for level in levels]
     columns.append(Column("Cells", width=2.4))
     rows: list[Row] = []
@@ -49,7 +49,7 @@ def _readings(desk: Desk) -> Table:
         rows.append(group_row(_gases(desk, channel, mine), len(columns)))
         for one in _sets(mine):
             by_level = {point.level: point for point in one}
-            cells: list[AnyCell] = [period(one[0].time, one[-1].time), one[0].route]
+            cells: list[AnyCell] = [f"{one[0].route}, {period(one[0].time, one[-1].time)}"]
             cells += [desk.show(by_level[level].reading) if level in by_level else "" for level in levels]
             read = [point.reading for point in one if desk.is_read(point.reading)]
             cells.append(desk.cells(read))

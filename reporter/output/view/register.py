@@ -21,7 +21,7 @@ _Inputs = tuple[tuple[str, tuple[str, ...]], ...]
 def register(desk: Desk) -> Register:
     """Rows of all keys that are printed, or needed by one that is, and have no row yet."""
     ledger = desk.outcome.ledger
-    shown = set(desk.printed)
+    shown = set(desk.printed) | {desk.source_of(key) for key in desk.printed}
     needed = desk.needed(shown)
     computed: dict[tuple[str, str], dict[tuple[str, _Inputs], list[Entry]]] = {}
     leaves: dict[tuple[str, str], list[Entry]] = {}

@@ -20,6 +20,8 @@ from reporter.record import Channel, ReadingKind
 
 #: Panels on one page.
 PER_PICTURE = 4
+#: Height of a panel [pt].
+_PANEL = 84.0
 
 
 def traces(desk: Desk) -> tuple[Block, ...]:
@@ -29,7 +31,7 @@ def traces(desk: Desk) -> tuple[Block, ...]:
     for start in range(0, len(panels), PER_PICTURE):
         some = panels[start : start + PER_PICTURE]
         names = ", ".join(trace.name for trace in some)
-        pictures.append(Picture(trace_chart(some, title=f"Readings over time: {names}.")))
+        pictures.append(Picture(trace_chart(some, title=f"Readings over time: {names}.", panel_height=_PANEL)))
     return (Block(pictures=tuple(pictures)), *left_out(desk, _numbers(desk)))
 
 
