@@ -25,12 +25,11 @@ def register(desk: Desk) -> Register:
     needed = desk.needed(shown)
     computed: dict[tuple[str, str], dict[tuple[str, _Inputs], list[Entry]]] = {}
     leaves: dict[tuple[str, str], list[Entry]] = {}
-    carried: list[str] = []
+    open_keys = [entry.key for entry in ledger if entry.key in needed and entry.key not in desk.places]
+    carried = [key for key in open_keys if desk.source_of(key) != key]
+    shown |= {desk.source_of(key) for key in carried}
     for entry in ledger:
-        if entry.key not in needed or entry.key in desk.places:
-            continue
-        if desk.source_of(entry.key) != entry.key:
-            carried.append(entry.key)
+        if entry.key not in needed | shown or entry.key in desk.places or entry.key in carried:
             continue
         if isinstance(entry.origin, FromEquation):
             equation = entry.origin.equation
