@@ -29,7 +29,7 @@ _NOT_SLUG = re.compile(r"[^a-z0-9]+")
 
 def slug(text: str) -> str:
     """A key segment from a name people wrote: lower case, all but letters and digits become ``_``."""
-    plain = "".join(_latin(char) for char in unicodedata.normalize("NFKD", text.strip().lower()))
+    plain = "".join(_latin(char) for char in unicodedata.normalize("NFKD", text.strip()).lower())
     return _NOT_SLUG.sub("_", plain).strip("_") or "x"
 
 

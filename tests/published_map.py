@@ -352,7 +352,7 @@ ANSWERS: dict[str, Answer] = {
     "air_fuel_ratio_molar_from_mass": lambda g: (
         g["af"] / st.air_by_mass_of_gas(air=1.0, air_mass=g["m_air"], fuel_mass=g["m_fuel"])
     ),
-    "excess_air_from_air_fuel_ratio": _renamed(mixture.excess_air, air="af", stoichiometric="af_stoich"),
+    "excess_air_from_air_fuel_ratio": _renamed(mixture.excess_air_of_balance, air="af", stoichiometric="af_stoich"),
     "percent_theoretical_air": lambda g: (
         100.0 + mixture.excess_air_of_balance(air=g["af_molar"], stoichiometric=g["af_molar_stoich"])
     ),

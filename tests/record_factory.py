@@ -42,6 +42,8 @@ from reporter.record import (
 from reporter.units import read_unit
 
 DAY = date(2025, 3, 14)
+#: Where every number of a record made in Python is said to stand.
+HERE = Place("made.xlsx", "Made", "A1")
 RUNS = (("1", "08:00", "08:30"), ("2", "09:00", "09:30"), ("3", "10:00", "10:30"))
 #: Times of the system checks: the inner ones close one run and open the next.
 CHECKS = ("07:50", "08:40", "09:40", "10:40")
@@ -61,16 +63,16 @@ def at(clock: str) -> datetime:
 
 
 def text(value: str) -> Given[str]:
-    return Given(value, text=value)
+    return Given(value, HERE, value)
 
 
 def number(value: float, unit: str = "", place: Place | None = None) -> Given[float]:
     """A number as entered, with its unit as people write it."""
-    return Given(value, place or Place(), f"{value:g}", read_unit(unit) if unit else None)
+    return Given(value, place or HERE, f"{value:g}", read_unit(unit) if unit else None)
 
 
 def moment(clock: str) -> Given[datetime]:
-    return Given(at(clock), text=clock)
+    return Given(at(clock), HERE, clock)
 
 
 def channel(name: str, *, unit: str = "", wet: bool = False, gas: str = "", **more: Any) -> Channel:
@@ -83,7 +85,7 @@ def channel(name: str, *, unit: str = "", wet: bool = False, gas: str = "", **mo
         Place(sheet="Channels", cell=name),
         text(name),
         text(gas or name.lower()),
-        Given(read_unit(unit or usual)),
+        Given(read_unit(unit or usual), HERE),
         Given(basis),
         **fields,
     )
@@ -94,7 +96,7 @@ def _field(key: str, value: Any) -> Any:
         return Given(SamplingSystem(value))
     if value is None or isinstance(value, Given):
         return value
-    return text(value) if isinstance(value, str) else Given(value, text=f"{value}")
+    return text(value) if isinstance(value, str) else Given(value, HERE, f"{value}")
 
 
 def cylinder(name: str, gas: str, certified: float, unit: str, **more: Any) -> Cylinder:

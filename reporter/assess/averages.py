@@ -9,6 +9,7 @@ from reporter.assess.validity import counts, included
 from reporter.errors import FluebookError
 from reporter.ledger import Entry, FromEquation
 from reporter.methods.averages import mean_of_valid, percent_difference
+from reporter.quantities import label_of
 from reporter.record import Limit
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
@@ -90,4 +91,5 @@ def _mean_input(book: Book, made: Average, argument: str, name: str) -> Entry | 
     if len(entries) < len(pairs):
         return None
     inputs = {"values": entries, "flags": [flag for _, flag in pairs]}
-    return book.apply(mean_of_valid, f"{made.entry.key}.mean_of_{argument}", inputs)
+    label = entries[0].label or label_of(f"average.{name}")
+    return book.apply(mean_of_valid, f"{made.entry.key}.mean_of_{argument}", inputs, label=label)

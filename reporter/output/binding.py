@@ -101,7 +101,7 @@ def _form(pdf: Any, copier: Copier, page: Any, box: tuple[float, float, float, f
     content = page.get_contents()
     drawn = [b"q", content.get_data() if content is not None else b"", b"Q"]
     resources = copier.direct(page.get("/Resources", {}))
-    forms = resources.setdefault("XObject", pydyf.Dictionary()) if page.get("/Annots") else None
+    forms: Any = resources.setdefault("XObject", pydyf.Dictionary())
     if isinstance(forms, bytes):
         forms = resources["XObject"] = copier.direct(page["/Resources"]["/XObject"].get_object())
     for at, (annotation, look) in enumerate(_looks(page)):

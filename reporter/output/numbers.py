@@ -24,9 +24,7 @@ _NARROW = "\u202f"
 _POWERS = str.maketrans("23", "²³")
 _LOWERED = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
 _POWER = re.compile(r"(?<=ft|in|[^a-zA-Z]m|cm|mm)[23](?![0-9A-Za-z])|(?<=^m)[23](?![0-9A-Za-z])")
-_FORMULA = re.compile(
-    r"(?<![A-Za-z])(in|mm)?(CO2|SO2|NO2|N2O|H2O|H2S|NH3|O2|N2|H2|C3H8|CH4|C2H6)(?![A-Za-z0-9])"
-)
+_FORMULA = re.compile(r"(?<![A-Za-z])(in|mm)?(CO2|SO2|NO2|N2O|H2O|H2S|NH3|O2|N2|H2|C3H8|CH4|C2H6)(?![A-Za-z0-9])")
 
 
 def fixed(value: float, decimals: int) -> str:
@@ -51,9 +49,7 @@ def significant(value: float, digits: int) -> str:
     if decimals >= 0:
         return fixed(value, decimals)
     step = Decimal(1).scaleb(-decimals)
-    return _grouped(f"{Decimal(repr(float(value))).quantize(step, rounding=ROUND_HALF_EVEN):f}").replace(
-        "-", "−"
-    )
+    return _grouped(f"{Decimal(repr(float(value))).quantize(step, rounding=ROUND_HALF_EVEN):f}").replace("-", "−")
 
 
 def shortest(value: float, digits: int) -> str:
@@ -81,11 +77,7 @@ def shown(entry: Entry) -> str:
 
 def decimals_in(text: str) -> int:
     """The count of digits behind the decimal point of a printed number."""
-    return (
-        len(text.partition(".")[2])
-        if text.replace("−", "").replace(_NARROW, "").replace(".", "").isdigit()
-        else 0
-    )
+    return len(text.partition(".")[2]) if text.replace("−", "").replace(_NARROW, "").replace(".", "").isdigit() else 0
 
 
 def unit_text(unit: str) -> str:

@@ -23,6 +23,8 @@ if TYPE_CHECKING:
 STYLE, OWN_STYLE = "style.css", "style_extra.css"
 #: What the elements of HTML are, where no style sheet says more.
 ELEMENTS = "elements.css"
+#: Characters that no document may hold; a workbook's text may have them.
+_FORBIDDEN = re.compile("[^\t\n\r\x20-\ud7ff\ue000-\ufffd\U00010000-\U0010ffff]")
 _POWER = re.compile(r"×10\^(−?[0-9]+)")
 
 
@@ -38,10 +40,11 @@ def page_text(view: View, phrases: Phrases, issued: datetime, overlay: Path | No
 
     try:
         template = _environment(overlay).get_template("report.html")
-        return template.render(view=view, words=phrases, issued_at=issued.isoformat(timespec="seconds"))
+        text = template.render(view=view, words=phrases, issued_at=issued.isoformat(timespec="seconds"))
     except TemplateError as error:
         where = f"{getattr(error, 'name', '') or 'template'}, line {getattr(error, 'lineno', '?')}"
         raise OutputError(f"the templates cannot be filled in: {error}", where) from None
+    return _FORBIDDEN.sub("\ufffd", text)
 
 
 def style_text(overlay: Path | None) -> str:

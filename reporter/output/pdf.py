@@ -14,13 +14,13 @@ from pathlib import Path
 from typing import Any
 
 from reporter.errors import OutputError
+from reporter.outcome import Outcome
 from reporter.output.linking import add_links, settle
 from reporter.output.packing import pack
 from reporter.output.pages import elements_text, page_text, style_text, well_formed
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.output.view import Document, View, build_view
 from reporter.output.view.documents import kind_of
-from reporter.outcome import Outcome
 from reporter.resources import templates_folder
 
 _BASE = "https://templates.invalid/"
@@ -201,9 +201,7 @@ def _rendered(text: str, style: str, read: Callable[[str], bytes], extras: _Extr
             _bind(document, pdf, extras)
             pack(pdf)
 
-        return bytes(
-            document.write_pdf(finisher=finish, pdf_variant=_VARIANT, pdf_tags=True, attachments=attachments)
-        )
+        return bytes(document.write_pdf(finisher=finish, pdf_variant=_VARIANT, pdf_tags=True, attachments=attachments))
     except FatalURLFetchingError as error:
         cause = error.__cause__
         raise OutputError(str(cause or error), getattr(cause, "place", "")) from None

@@ -38,9 +38,7 @@ class Phrases:
 
     def all(self, table: str) -> dict[str, str]:
         """All phrases of one table, in the order of the file, by their name in it."""
-        return {
-            name.split(".", 1)[1]: words for name, words in self.words.items() if name.startswith(table + ".")
-        }
+        return {name.split(".", 1)[1]: words for name, words in self.words.items() if name.startswith(table + ".")}
 
 
 def load_phrases(overlay: Path | None = None) -> Phrases:
@@ -71,6 +69,4 @@ def _read(path: Path) -> dict[str, str]:
         tables = tomllib.loads(path.read_text(encoding="utf-8"))
     except (OSError, UnicodeDecodeError, tomllib.TOMLDecodeError) as error:
         raise OutputError(f"the phrases cannot be read: {error}", path.name) from None
-    return {
-        f"{table}.{name}": str(words) for table, entries in tables.items() for name, words in entries.items()
-    }
+    return {f"{table}.{name}": str(words) for table, entries in tables.items() for name, words in entries.items()}

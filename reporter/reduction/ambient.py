@@ -34,4 +34,7 @@ def ambient_air(book: Book, run: Run) -> Entry | None:
         "vapour_pressure": book.apply(saturation_pressure, f"{stem}.saturation_pressure", {"temperature": kelvin}),
         "pressure": convert_entry(book.ledger, f"{stem}.pressure", barometer, "kPa"),
     }
+    if inputs["pressure"].value <= inputs["vapour_pressure"].value:
+        book.say(f"Run {run.run.value}: the barometer is below the vapour pressure of water; no ambient moisture.")
+        return None
     return book.apply(ambient_moisture, key, inputs)

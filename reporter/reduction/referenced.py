@@ -76,7 +76,7 @@ def _by_carbon_dioxide(
         return "factor-missing", f"run {run}: the CO2 route needs the fuel's F factors"
     assert limit.reference_oxygen is not None
     other = "" if plan.table == DEFAULT_TABLE else f".table_{slug(plan.table)}"
-    named = about.key(f"fuel_factor.expected{other}")
+    named = about.key(f"combustion.fuel_factor.expected{other}")
     fo = book.apply(fuel_factor_from_f, named, {"fd": factors.fd, "fc": factors.fc})
     inputs = {
         "c": value,

@@ -62,6 +62,7 @@ def values_only(thing: Any) -> Any:
         return None
     if dataclasses.is_dataclass(thing) and not isinstance(thing, type):
         left_out = {"place", "source", "sheets", "row", "columns", "text"}
+        left_out |= {"letters", "rows"} if type(thing).__name__ == "ProcessLog" else set()
         return {
             f.name: values_only(getattr(thing, f.name)) for f in dataclasses.fields(thing) if f.name not in left_out
         }

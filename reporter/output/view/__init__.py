@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from datetime import datetime
 
 from reporter.equation import System
+from reporter.outcome import Outcome
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.output.view.calibrations import calibrations
 from reporter.output.view.checklist import checklist
@@ -20,10 +21,9 @@ from reporter.output.view.model import Block, View
 from reporter.output.view.quality import criteria, quality
 from reporter.output.view.register import register
 from reporter.output.view.runs import runs
-from reporter.output.view.sample import sample, sample_run
+from reporter.output.view.sample import sample, sample_lead, sample_run
 from reporter.output.view.source import location, process
 from reporter.output.view.traces import traces
-from reporter.outcome import Outcome
 
 __all__ = ["Document", "View", "build_view"]
 
@@ -80,7 +80,7 @@ def build_view(
         limits=compared,
         quality=assured,
         sections=sections,
-        sample_run="" if run is None else run.run.run.value,
+        sample_lead=sample_lead(desk, run),
         sample=calculation,
         register=rows,
         documents=bound,

@@ -4,10 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
+from reporter.outcome import CalibrationPoint
 from reporter.output.numbers import day, formulas, moment, period, shortest, unit_text
 from reporter.output.view.desk import Desk, aligned, entered, gas_name, group_row, said
 from reporter.output.view.model import AnyCell, Block, Column, Row, Table
-from reporter.outcome import CalibrationPoint
 from reporter.record import Cylinder
 
 _LEVELS = ("zero", "low", "mid", "high", "NO2")
@@ -113,7 +113,15 @@ def _papers(desk: Desk, cylinder: Cylinder) -> str:
     expires = f"expires {day(cylinder.expires.value)}" if cylinder.expires is not None else ""
     number = f"certificate {cylinder.certificate_number.value}" if cylinder.certificate_number is not None else ""
     balance = f"in {cylinder.balance_gas.value}" if cylinder.balance_gas is not None else ""
-    parts = (said(cylinder.kind), balance, said(cylinder.producer), number, assay, expires, entered(cylinder.pressure, ""))
+    parts = (
+        said(cylinder.kind),
+        balance,
+        said(cylinder.producer),
+        number,
+        assay,
+        expires,
+        entered(cylinder.pressure, ""),
+    )
     return ", ".join(part for part in parts if part) or desk.words("missing.text")
 
 
@@ -127,11 +135,17 @@ def _events(desk: Desk) -> Block:
     )  # fmt: skip
     rows = []
     for event in events:
-        times = (
-            period(event.time.value, event.until.value) if event.until is not None else moment(event.time.value)
-        )
+        times = period(event.time.value, event.until.value) if event.until is not None else moment(event.time.value)
         left = event.readings_excluded
         rows.append(
-            Row((times, event.what.value, said(event.run), "yes" if left is not None and left.value else "no", said(event.reason)))
+            Row(
+                (
+                    times,
+                    event.what.value,
+                    said(event.run),
+                    "yes" if left is not None and left.value else "no",
+                    said(event.reason),
+                )
+            )
         )
     return Block(title="Events", tables=(Table(columns, tuple(rows)),))

@@ -70,5 +70,3 @@ def _present(record: Record, name: str) -> bool:
 def _field_words(name: str) -> str:
     table, _, rest = name.partition(".")
     return f"{rest.replace('_', ' ')} ({table})" if rest else f"sheet {table.replace('_', ' ').capitalize()}"
-
-

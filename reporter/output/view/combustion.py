@@ -5,12 +5,12 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from reporter.ledger import Entry
+from reporter.outcome import RunResult
 from reporter.output.charts import DiagramPoint, FactorBand, FuelLine, OxygenDiagram, oxygen_diagram
 from reporter.output.numbers import formulas
 from reporter.output.view.desk import Desk, aligned
 from reporter.output.view.model import AnyCell, Block, Column, Picture, Row, Table
 from reporter.output.view.runs import layout, rows_table, unit_and_basis
-from reporter.outcome import RunResult
 
 #: Percent oxygen of dry air: in physics, and as the methods print it (the fuel factor's range).
 _OXYGEN_OF_AIR, _OXYGEN_PRINTED = 20.95, 20.9
@@ -34,8 +34,7 @@ def _findings(desk: Desk) -> tuple[str, ...]:
     for finding in desk.outcome.findings:
         runs.setdefault(finding.words, []).append(finding.run)
     return tuple(
-        f"Run {', '.join(some)}: {formulas(words)}" if any(some) else formulas(words)
-        for words, some in runs.items()
+        f"Run {', '.join(some)}: {formulas(words)}" if any(some) else formulas(words) for words, some in runs.items()
     )
 
 

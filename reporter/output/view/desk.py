@@ -15,12 +15,12 @@ from reporter.equation import Citation, Equation
 from reporter.errors import LedgerError
 from reporter.gases import find_gas
 from reporter.ledger import Entry, FromCells, FromEquation, FromTable
+from reporter.outcome import Outcome
 from reporter.output.numbers import decimals_in, formulas, shortest, shown, unit_text
 from reporter.output.phrases import Phrases
 from reporter.output.view.model import AnyCell, Cell, Column, Heading, Row, Shown, Table
-from reporter.outcome import Outcome
 from reporter.quantities import label_of, quantity_of
-from reporter.record import Channel, Real, Text
+from reporter.record import Channel, Real, Record, Run, Text
 from reporter.typeset import text_formula
 
 #: The equation that only gives an entry a second name.
@@ -78,7 +78,7 @@ class Desk:
         self.printed[entry.key] = None
         text = shown(entry)
         name = unit_text(entry.unit)
-        return Shown(entry.key, f"{text} {name}".strip() if unit else text, name, decimals_in(text))
+        return Shown(entry.key, f"{text}\u00a0{name}".strip() if unit else text, name, decimals_in(text))
 
     def number_text(self, key: str, *, unit: bool = True) -> str:
         """The printed number of a key with its unit, for a sentence; remembered as printed."""
@@ -194,6 +194,12 @@ def gas_name(text: str) -> str:
     """A gas as it is printed."""
     found = find_gas(text)
     return formulas(found.label if found is not None else text)
+
+
+def fuel_words(record: Record, run: Run) -> str:
+    """The fuels burned in a run: those of Fuel use, else those of the sheet Fuel."""
+    used = [use.fuel.value for use in record.fuel_use if use.run.value == run.run.value]
+    return ", ".join(dict.fromkeys(used or [fuel.fuel.value for fuel in record.fuels]))
 
 
 def channel_name(channel: Channel) -> str:

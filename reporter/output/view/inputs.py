@@ -31,9 +31,7 @@ def inputs(desk: Desk, *, minute_data: bool) -> tuple[Block, ...]:
 
 def _sheet(sheet: SheetCopy) -> Block:
     title = f"{sheet.sheet} (hidden sheet)" if sheet.hidden else sheet.sheet
-    filled = [
-        index for index in range(len(sheet.header)) if any(index < len(row) and row[index] for row in sheet.rows)
-    ]
+    filled = [index for index in range(len(sheet.header)) if any(index < len(row) and row[index] for row in sheet.rows)]
     header = [sheet.header[index] for index in filled]
     rows = [[row[index] if index < len(row) else "" for index in filled] for row in sheet.rows]
     if tuple(header[:2]) == _ITEMS:
@@ -42,7 +40,9 @@ def _sheet(sheet: SheetCopy) -> Block:
     if len(rows) >= _LONG and len(header) * _tab(longest) <= _WIDTH:
         names = "; ".join(f"({number}) {name}" for number, name in enumerate(header, 1))
         marks = [f"({number})" for number in range(1, len(header) + 1)]
-        return Block(title=title, text=(names,), lines=tuple("\t".join(row) for row in (marks, *rows)), tab=_tab(longest))
+        return Block(
+            title=title, text=(names,), lines=tuple("\t".join(row) for row in (marks, *rows)), tab=_tab(longest)
+        )
     return Block(title=title, lines=tuple(_paragraph(header, row) for row in rows))
 
 
@@ -62,7 +62,5 @@ def _minutes(desk: Desk) -> Block:
     readings = desk.outcome.record.readings
     names = ("Time", *readings.channels)
     lines = ["\t".join(names)]
-    lines += [
-        "\t".join((moment(row.time), *(reading.text for reading in row.readings))) for row in readings.rows
-    ]
+    lines += ["\t".join((moment(row.time), *(reading.text for reading in row.readings))) for row in readings.rows]
     return Block(title="Readings", lines=tuple(lines), tab=max(18, _WIDTH // max(len(names), 8)))

@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 
-from reporter.output.charts import Bar, ComparisonBars, comparison_strip
-from reporter.output.numbers import day, formulas, shortest, unit_text
-from reporter.output.view.desk import Desk, aligned, entered, gas_name, said
-from reporter.output.view.model import AnyCell, Cell, Column, Item, LimitsView, LimitView, Picture, Row, Shown, Table
 from reporter.outcome import Comparison, RunState
+from reporter.output.charts import Bar, ComparisonBars, comparison_strip
+from reporter.output.numbers import day, decimals_in, fixed, formulas, shortest, significant, unit_text
+from reporter.output.view.desk import Desk, aligned, entered, fuel_words, gas_name, said
+from reporter.output.view.model import AnyCell, Cell, Column, Item, LimitsView, LimitView, Picture, Row, Shown, Table
 from reporter.record import Limit, Run, text_of
 
 _YES = "yes"
+#: Significant digits of an average before it is rounded.
+_DIGITS = 6
 _RELATIONS = {"at most": "at_most", "less than": "less_than", "at least": "at_least"}
 
 
@@ -20,9 +23,7 @@ def limits(desk: Desk) -> LimitsView:
     made = desk.outcome.comparisons
     if not made:
         return LimitsView(None, (), desk.words("lead.no_limits"))
-    return LimitsView(
-        _table(desk), tuple(_limit(desk, comparison) for comparison in made), desk.words("lead.summary")
-    )
+    return LimitsView(_table(desk), tuple(_limit(desk, comparison) for comparison in made), desk.words("lead.summary"))
 
 
 def relation_words(desk: Desk, comparison: Comparison) -> str:
@@ -83,7 +84,9 @@ def _table(desk: Desk) -> Table:
         rows += _rows(desk, comparison, len(columns))
     load, fuel = Cell("Load", strong=True), Cell("Fuel", strong=True)
     rows.append(Row((load, *(_load(desk, run.run) for run in runs), Cell("", span=4)), style="foot"))
-    rows.append(Row((fuel, *(_fuel(desk, run.run) for run in runs), Cell("", span=4))))
+    rows.append(
+        Row((fuel, *(fuel_words(desk.outcome.record, run.run) or desk.missing for run in runs), Cell("", span=4)))
+    )
     return aligned(Table(tuple(columns), tuple(rows)))
 
 
@@ -95,13 +98,30 @@ def _rows(desk: Desk, comparison: Comparison, columns: int) -> list[Row]:
     words = f"{limit.limit_id.value}: {relation_words(desk, comparison)}"
     measured: list[AnyCell] = [f"{gas_name(limit.pollutant.value)} [{unit}]"]
     measured += [desk.show(of_run[run][0]) if run in of_run else desk.missing for run in runs]
-    keys = (comparison.value, comparison.rounded, comparison.limit_key, comparison.margin)
-    measured += [desk.show(key) for key in keys]
+    measured += _compared(desk, comparison)
     rows = [Row((Cell(words, strong=True, span=columns),), style="group"), Row(tuple(measured))]
     counts = [_counts(desk, comparison, of_run[run][1]) if run in of_run else "" for run in runs]
     if any(count != _YES for count in counts):
         rows.append(Row((desk.words("limit.counts"), *counts, Cell("", span=4))))
     return rows
+
+
+def _compared(desk: Desk, comparison: Comparison) -> list[AnyCell]:
+    """Average with six significant digits, rounded, limit, and margin with the digits of the two before it."""
+    ledger = desk.outcome.ledger
+    margin_key = comparison.margin if comparison.compared else ""
+    cells = [desk.show(key) for key in (comparison.value, comparison.rounded, comparison.limit_key, margin_key)]
+    average, rounded, limit, margin = cells
+    if isinstance(average, Shown):
+        cells[0] = _with_text(average, significant(float(ledger[average.key].value), _DIGITS))
+    if isinstance(rounded, Shown) and isinstance(limit, Shown) and isinstance(margin, Shown):
+        decimals = max(rounded.decimals, limit.decimals)
+        cells[3] = _with_text(margin, fixed(float(ledger[margin.key].value), decimals))
+    return cells
+
+
+def _with_text(cell: Shown, text: str) -> Shown:
+    return replace(cell, text=text, decimals=decimals_in(text))
 
 
 def _counts(desk: Desk, comparison: Comparison, at: int) -> str:
@@ -120,9 +140,7 @@ def _load(desk: Desk, run: Run) -> str:
         return said_load(desk, run)
     share = f"{key}.share"
     text = (
-        desk.number_text(key)
-        if ledger[key].unit not in {"", "1"}
-        else f"{desk.number_text(key)} {said(run.load_unit)}"
+        desk.number_text(key) if ledger[key].unit not in {"", "1"} else f"{desk.number_text(key)} {said(run.load_unit)}"
     )
     return f"{text} ({desk.number_text(share)})" if share in ledger else text
 
@@ -134,30 +152,22 @@ def said_load(desk: Desk, run: Run) -> str:
     return f"{entered(run.load, desk.missing)} {said(run.load_unit)}".strip()
 
 
-def _fuel(desk: Desk, run: Run) -> str:
-    used = [use.fuel.value for use in desk.outcome.record.fuel_use if use.run.value == run.run.value]
-    names = used or [fuel.fuel.value for fuel in desk.outcome.record.fuels]
-    return ", ".join(dict.fromkeys(names)) or desk.missing
-
-
 def _facts(desk: Desk, comparison: Comparison) -> tuple[Item, ...]:
     limit = comparison.limit
     source = ", ".join(part for part in (said(limit.authority), said(limit.citation)) if part)
     rows = [
         ("Source", source or desk.words("limit.no_source")),
+        ("Basis", _full_basis(desk, comparison)),
+        ("Applies", said(limit.applies_when)),
         ("Entered", _entered_by(desk, limit)),
         ("In force", _in_force(desk, limit)),
-        ("Applies", said(limit.applies_when)),
-        ("Basis", _full_basis(desk, comparison)),
         ("Averaging", f"{text_of(limit.averaging, 'mean of runs')}{_runs_required(desk, comparison)}"),
         ("Rounding", formulas(comparison.rounding_words)),
     ]
     if comparison.with_excluded:
         rows.append(("With excluded runs", desk.number_text(comparison.with_excluded)))
     if comparison.cross:
-        rows.append(
-            ("Second route", f"{desk.number_text(comparison.cross)}. {formulas(comparison.cross_words)}")
-        )
+        rows.append(("Second route", desk.number_text(comparison.cross)))
     return tuple(Item(label, text) for label, text in rows if text)
 
 
@@ -186,9 +196,7 @@ def _full_basis(desk: Desk, comparison: Comparison) -> str:
 def _runs_required(desk: Desk, comparison: Comparison) -> str:
     if not comparison.count or not comparison.required:
         return ""
-    return (
-        f"; {desk.number_text(comparison.count)} runs count, {desk.number_text(comparison.required)} required"
-    )
+    return f"; {desk.number_text(comparison.count)} runs count, {desk.number_text(comparison.required)} required"
 
 
 def _notes(desk: Desk, comparison: Comparison) -> Sequence[str]:

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-
+from itertools import pairwise
 
 #: A table of at most so many rows is not broken over pages.
 KEPT = 14
@@ -87,11 +87,11 @@ class Table:
     def widths(self) -> tuple[int, ...]:
         """The widths of the columns in whole percent, together 100."""
         whole = sum(column.width for column in self.columns)
-        ends = [0]
+        ends = [0.0]
         for column in self.columns:
             ends.append(ends[-1] + column.width * 100 / whole)
         rounded = [round(end) for end in ends]
-        return tuple(after - before for before, after in zip(rounded, rounded[1:], strict=False))
+        return tuple(after - before for before, after in pairwise(rounded))
 
 
 @dataclass(frozen=True, slots=True)
@@ -329,7 +329,7 @@ class View:
     limits: LimitsView
     quality: QualityView
     sections: Mapping[str, tuple[Block, ...]]
-    sample_run: str
+    sample_lead: str
     sample: tuple[Chapter, ...]
     register: Register
     documents: tuple[BoundDocument, ...]

@@ -7,10 +7,10 @@ from dataclasses import replace
 from itertools import zip_longest
 
 from reporter.ledger import Entry, FromEquation
+from reporter.outcome import Check, RunState
 from reporter.output.numbers import FIGURE_SPACE, formulas, unit_text
 from reporter.output.view.desk import Desk, gas_name
 from reporter.output.view.model import AnyCell, Block, Cell, Column, ProblemView, QualityView, Row, Table
-from reporter.outcome import Check, RunState
 from reporter.problems import Grade, Problem
 
 #: A criterion with more bounds than this has each beside its value.
@@ -58,7 +58,7 @@ def _overview(desk: Desk) -> Table:
     columns += [Column(gas_name(gas), width=1.1) for gas in gases]
     rows = []
     for title, checks in groups.items():
-        cells: list[AnyCell] = [title, checks[0].citation.text()]
+        cells: list[AnyCell] = [formulas(title), checks[0].citation.text()]
         for gas in gases:
             mine = [check.met for check in checks if check.gas == gas]
             words = desk.words("criterion.met" if all(mine) else "criterion.not_met")
@@ -97,10 +97,11 @@ def _run_words(desk: Desk) -> list[str]:
 
 
 def _paragraph(desk: Desk, run: str, gas: str) -> str:
-    """The paragraphs of the criteria of a run and gas that are not met, else of the method's run criteria."""
-    mine = [c for c in desk.outcome.checks if gas_name(c.gas) == gas_name(gas) and (run in c.runs or not c.runs)]
-    chosen = [c for c in mine if not c.met and c.decides_validity] or mine
-    return " and ".join(dict.fromkeys(c.citation.text() for c in chosen)) or desk.words("criterion.no_paragraph")
+    """The paragraphs of the criteria that make a run invalid for a gas: its own, else earlier ones of the gas."""
+    mine = [c for c in desk.outcome.checks if gas_name(c.gas) == gas_name(gas) and not c.met]
+    own = [c for c in mine if c.decides_validity and (run in c.runs or not c.runs)]
+    paragraphs = dict.fromkeys(check.citation.text() for check in own or mine)
+    return " and ".join(paragraphs) or desk.words("criterion.no_paragraph")
 
 
 def _problems(desk: Desk) -> list[ProblemView]:

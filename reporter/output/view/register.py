@@ -8,50 +8,50 @@ from __future__ import annotations
 
 import re
 
+from reporter.basis import Basis
 from reporter.ledger import Entry, FromCells, FromEquation, FromTable
 from reporter.output.numbers import formulas, unit_text
 from reporter.output.view.desk import Desk
 from reporter.output.view.model import Derivation, DerivationGroup, Register, Source
 from reporter.output.view.sample import value_text
 
-_VARYING = re.compile(r"^(run|cylinder|component)\.[a-z0-9_]+|(?<=\.)(direct|system)_[0-9]+|(?<=\.component)\.[a-z0-9_]+")
+_VARYING = re.compile(
+    r"^(run|cylinder|component|comparison|limit)\.[a-z0-9_]+"
+    r"|(?<=\.)(direct|system)_[0-9]+"
+    r"|(?<=\.component)\.[a-z0-9_]+"
+)
 _Inputs = tuple[tuple[str, tuple[str, ...]], ...]
 
 
 def register(desk: Desk) -> Register:
     """Rows of all keys that are printed, or needed by one that is, and have no row yet."""
-    ledger = desk.outcome.ledger
-    shown = set(desk.printed) | {desk.source_of(key) for key in desk.printed}
-    needed = desk.needed(shown)
-    computed: dict[tuple[str, str], dict[tuple[str, _Inputs], list[Entry]]] = {}
-    leaves: dict[tuple[str, str], list[Entry]] = {}
-    open_keys = [entry.key for entry in ledger if entry.key in needed and entry.key not in desk.places]
-    carried = [key for key in open_keys if desk.source_of(key) != key]
-    shown |= {desk.source_of(key) for key in carried}
-    for entry in ledger:
-        if entry.key not in needed | shown or entry.key in desk.places or entry.key in carried:
+    open_keys = {key for key in desk.needed(desk.printed) if key not in desk.places}
+    carried = {key: source for key in open_keys if (source := desk.source_of(key)) != key}
+    shown = set(desk.printed) | set(carried.values())
+    computed: dict[tuple[str, str], dict[tuple[str, str, Basis, _Inputs], list[Entry]]] = {}
+    leaves: dict[tuple[str, str, Basis, str], list[Entry]] = {}
+    for entry in desk.outcome.ledger:
+        if entry.key not in open_keys or entry.key in carried:
             continue
         if isinstance(entry.origin, FromEquation):
             equation = entry.origin.equation
             rule = (desk.equation_line(equation), equation.citation.text())
-            row = (pattern(entry.key), _patterns(entry.origin))
+            row = (pattern(entry.key), entry.unit, entry.basis, _patterns(entry.origin))
             computed.setdefault(rule, {}).setdefault(row, []).append(entry)
         elif entry.key in shown or not isinstance(entry.origin, FromCells):
-            leaves.setdefault((pattern(entry.key), desk.origin_kind(entry)), []).append(entry)
+            leaf = (pattern(entry.key), entry.unit, entry.basis, desk.origin_kind(entry))
+            leaves.setdefault(leaf, []).append(entry)
     groups = tuple(
         DerivationGroup(*rule, tuple(_computed(desk, entries) for entries in rows.values()))
         for rule, rows in computed.items()
     )
-    rows = tuple(_leaf(desk, entries) for entries in leaves.values())
-    for key in carried:
-        desk.places[key] = desk.places[desk.source_of(key)]
-    return Register(groups, rows)
-
-
+    values = tuple(_leaf(desk, entries) for entries in leaves.values())
+    desk.places.update({key: desk.places[source] for key, source in carried.items()})
+    return Register(groups, values)
 
 
 def pattern(key: str) -> str:
-    """A key with a star for the run, the cylinder, the component, the number of a calibration reading."""
+    """A key with a star for the run, cylinder, component or limit, and for the number of a calibration reading."""
     return _VARYING.sub(_star, key)
 
 
@@ -85,11 +85,10 @@ def _computed(desk: Desk, entries: list[Entry]) -> Derivation:
 
 def _input(desk: Desk, symbol: str, keys: list[str]) -> Source:
     entries = [desk.outcome.ledger[key] for key in keys]
-    name = formulas(symbol.replace("_", " "))
     if entries[0].is_indicator:
-        return Source(name, ", ".join(dict.fromkeys(map(value_text, entries))), "", "", "section-criteria")
+        return Source(symbol, ", ".join(dict.fromkeys(map(value_text, entries))), "", "", "section-criteria")
     here = all(isinstance(entry.origin, FromCells) and entry.key not in desk.printed for entry in entries)
-    return Source(name, ", ".join(_texts(entries)), "", desk.cells(keys), "" if here else keys[0])
+    return Source(symbol, ", ".join(_texts(entries)), "", desk.cells(keys), "" if here else keys[0])
 
 
 def _leaf(desk: Desk, entries: list[Entry]) -> Derivation:

@@ -8,10 +8,10 @@ from dataclasses import dataclass
 from functools import cache
 
 from reporter.ledger import Entry
+from reporter.outcome import RunResult, RunState
 from reporter.output.numbers import day, formulas, moment, period, unit_text
 from reporter.output.view.desk import Desk, aligned, channel_name, gas_name, group_row
 from reporter.output.view.model import AnyCell, Block, Cell, Column, Row, Table
-from reporter.outcome import RunResult, RunState
 from reporter.resources import templates_folder
 
 #: Runs beside each other in one table.
@@ -68,24 +68,47 @@ def _results(desk: Desk, some: Sequence[RunResult], *, averages: bool) -> tuple[
 def _times(desk: Desk) -> Block:
     columns = (
         Column("Run", width=1), Column("Day", width=1.2), Column("From, until", width=1.4),
-        Column("Length", "min", 1, number=True), Column("State", width=5),
+        Column("Length", "min", 1, number=True), Column("Valid readings", width=2.4), Column("State", width=4),
     )  # fmt: skip
     rows = []
     for result in desk.outcome.runs:
         run = result.run
         start, end = run.start.value, run.end.value
         rows.append(
-            Row((run.run.value, day(start), period(start, end), desk.show(f"run.{run.key}.duration"), _state(desk, result)))
+            Row(
+                (
+                    run.run.value,
+                    day(start),
+                    period(start, end),
+                    desk.show(f"run.{run.key}.duration"),
+                    _counts(desk, result),
+                    _state(desk, result),
+                )
+            )
         )
     return Block(tables=(aligned(Table(columns, tuple(rows))),))
 
 
-def _state(desk: Desk, result: RunResult) -> AnyCell:
+def _counts(desk: Desk, result: RunResult) -> AnyCell:
+    """The number of valid readings: once where all gases have the same, else for each."""
+    keys = {
+        gas.segment: f"run.{result.key}.{gas.segment}.count"
+        for gas in result.gases
+        if f"run.{result.key}.{gas.segment}.count" in desk.outcome.ledger
+    }
+    texts = {segment: desk.number_text(key) for segment, key in keys.items()}
+    if not texts:
+        return desk.missing
+    if len(set(texts.values())) == 1:
+        return Cell(f"{next(iter(texts.values()))} of each gas", to=next(iter(keys.values())))
+    return ", ".join(f"{gas_name(segment)} {text}" for segment, text in texts.items())
+
+
+def _state(desk: Desk, result: RunResult) -> str:
     name = {RunState.VALID: "valid", RunState.INVALID: "invalid", RunState.EXCLUDED: "excluded"}[result.state]
     reasons = formulas("; ".join(result.reasons))
     words = desk.words(f"run.{name}")
-    text = f"{words}: {reasons}" if reasons else words
-    return Cell(text, strong=result.state is not RunState.VALID)
+    return f"{words}: {reasons}" if reasons else words
 
 
 def _gas_rows(desk: Desk, some: Sequence[RunResult], segment: str, averages: bool) -> list[Row]:
@@ -176,7 +199,12 @@ def left_out(desk: Desk, numbers: Mapping[str, str]) -> tuple[Block, ...]:
     ]
     blocks = []
     if rows:
-        columns = (Column("No.", width=0.6), Column("Run", width=1), Column("Period", width=1.6), Column("Reason", width=6))
+        columns = (
+            Column("No.", width=0.6),
+            Column("Run", width=1),
+            Column("Period", width=1.6),
+            Column("Reason", width=6),
+        )
         blocks.append(Block(title=desk.words("lead.left_out"), tables=(Table(columns, tuple(rows)),)))
     lines = list(_missing_minutes(desk))
     words = lines or [desk.words("lead.no_missing_minutes")]

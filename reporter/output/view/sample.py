@@ -8,11 +8,11 @@ from typing import Any
 
 from reporter.equation import Equation
 from reporter.ledger import Entry, FromCells, FromEquation, FromTable, Stated
+from reporter.outcome import Comparison, RunResult, RunState
 from reporter.output.numbers import formulas, shortest, unit_text
 from reporter.output.view.desk import Desk, cell_words, gas_name
 from reporter.output.view.limits import limit_words
 from reporter.output.view.model import Chapter, Shown, Source, Step
-from reporter.outcome import Comparison, RunResult
 from reporter.trace import Name
 from reporter.typeset import html_formula, symbol_html, text_formula
 
@@ -66,7 +66,7 @@ class _Writer:
         assert isinstance(origin, FromEquation)
         found = []
         for name, keys in origin.inputs:
-            symbol = formulas(origin.equation.parameters[name].symbol.replace("_", " "))
+            symbol = origin.equation.parameters[name].symbol
             if isinstance(keys, str):
                 found.append(self._source(symbol, keys))
             else:
@@ -117,14 +117,24 @@ def _number(name: Name) -> str:
 
 def sample_run(desk: Desk) -> RunResult | None:
     """The run whose results count in most comparisons, the first of equals; None where no run has results."""
-    counts = {run.key: 0 for run in desk.outcome.runs}
-    for comparison in desk.outcome.comparisons:
-        for segment, _, indicator in comparison.runs:
-            flag = desk.outcome.ledger.get(indicator)
-            counts[segment] += flag is not None and float(flag.value) == 1.0
-    for run in desk.outcome.runs:
-        counts[run.key] += 0 if counts[run.key] else -1 + sum(gas.is_valid for gas in run.gases) / 100
-    return max(desk.outcome.runs, key=lambda run: counts[run.key], default=None)
+    ledger = desk.outcome.ledger
+
+    def merit(run: RunResult) -> tuple[int, int]:
+        """In how many comparisons a run counts, then for how many gases it is valid."""
+        flags = [flag for one in desk.outcome.comparisons for key, _, flag in one.runs if key == run.key]
+        counted = [flag for flag in flags if flag in ledger and float(ledger[flag].value) == 1.0]
+        return len(counted), sum(gas.is_valid for gas in run.gases)
+
+    return max(desk.outcome.runs, key=merit, default=None)
+
+
+def sample_lead(desk: Desk, run: RunResult | None) -> str:
+    """What the calculation shows, and whose run it is."""
+    lead = desk.words("lead.sample")
+    if run is None:
+        return lead
+    name = "run.sample" if run.state is RunState.VALID else "run.none_valid"
+    return f"{lead} {desk.words(name, run=run.run.run.value)}"
 
 
 def sample(desk: Desk, run: RunResult | None) -> tuple[Chapter, ...]:

@@ -7,7 +7,7 @@ from collections.abc import Sequence
 from reporter.ledger import Entry
 from reporter.methods.criteria import method_family
 from reporter.output.numbers import formulas, moment, shortest, unit_text
-from reporter.output.view.desk import Desk, aligned, entered, filled, gas_name, said, simple_table
+from reporter.output.view.desk import Desk, aligned, entered, filled, fuel_words, gas_name, said, simple_table
 from reporter.output.view.model import AnyCell, Block, Column, Item, Row, Table
 from reporter.record import Channel, FuelRow, Point, Run
 from reporter.references import bibliography
@@ -74,7 +74,7 @@ def _operation(desk: Desk) -> Block:
         if name not in done and any(value is not None for value in values):
             texts = [entered(value, desk.missing) for value in values]
             rows.append(Row((label, "", *texts)))
-    rows.append(Row(("Fuel", "", *(_fuel_of(desk, run) for run in runs))))
+    rows.append(Row(("Fuel", "", *(fuel_words(desk.outcome.record, run) or desk.missing for run in runs))))
     return Block(tables=(aligned(Table(columns, tuple(rows))),))
 
 
@@ -90,17 +90,14 @@ def _run_columns(runs: Sequence[Run]) -> tuple[Column, ...]:
     return tuple(Column(f"Run {run.run.value}", number=True) for run in runs)
 
 
-def _fuel_of(desk: Desk, run: Run) -> str:
-    used = [use for use in desk.outcome.record.fuel_use if use.run.value == run.run.value]
-    return ", ".join(use.fuel.value for use in used) or desk.missing
-
-
 def _fuels(desk: Desk) -> Block:
     rows = [
         (row.fuel.value, row.factor_source.value, _analysis(row), said(row.laboratory), said(row.sample))
         for row in desk.outcome.record.fuels
     ]
-    table = filled(simple_table(("Fuel", "F factors from", "Analysis", "Laboratory", "Sample"), rows, (2, 1.4, 5, 2, 1.6)))
+    table = filled(
+        simple_table(("Fuel", "F factors from", "Analysis", "Laboratory", "Sample"), rows, (2, 1.4, 5, 2, 1.6))
+    )
     components = [
         f"{part.component.value} {shortest(part.mole_fraction.value, 6)} %" for part in desk.outcome.record.fuel_gas
     ]
@@ -111,9 +108,7 @@ def _fuels(desk: Desk) -> Block:
 def _analysis(row: FuelRow) -> str:
     names = ("carbon", "hydrogen", "nitrogen", "sulfur", "oxygen", "water", "ash", "gross_heating_value")
     parts = [
-        f"{name.replace('_', ' ')} {entered(value, '')}"
-        for name in names
-        if (value := getattr(row, name)) is not None
+        f"{name.replace('_', ' ')} {entered(value, '')}" for name in names if (value := getattr(row, name)) is not None
     ]
     basis = f" ({row.analysis_basis.value})" if row.analysis_basis is not None else ""
     return ", ".join(parts) + basis if parts else ""
@@ -123,9 +118,7 @@ def _process_log(desk: Desk) -> Block:
     """Means of the process log over each run, where the ledger holds them; else where the log is printed."""
     runs = [run.run for run in desk.outcome.runs]
     ledger = desk.outcome.ledger
-    names = dict.fromkeys(
-        entry.key.split(".")[3] for run in runs for entry in ledger.under(f"run.{run.key}.process")
-    )
+    names = dict.fromkeys(entry.key.split(".")[3] for run in runs for entry in ledger.under(f"run.{run.key}.process"))
     if not names:
         return Block(notes=(desk.words("lead.process_log", inputs=desk.section_number("inputs")),))
     columns = (Column("Process log, mean over the run", width=3), Column("Unit", width=1.4), *_run_columns(runs))
@@ -213,9 +206,7 @@ def _points(desk: Desk) -> Block:
     by_run: dict[str, list[Point]] = {}
     for point in desk.outcome.record.points:
         by_run.setdefault(point.run.value, []).append(point)
-    rows = [
-        (run, "; ".join(_point(point) for point in points)) for run, points in by_run.items()
-    ]
+    rows = [(run, "; ".join(_point(point) for point in points)) for run, points in by_run.items()]
     return Block(title="Sampling points", tables=(simple_table(("Run", "Points visited"), rows, (1, 8)),))
 
 

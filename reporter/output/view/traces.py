@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from reporter.outcome import GasResult, RunResult
 from reporter.output.charts import (
     CalibrationMark,
     ExcludedPeriod,
@@ -15,23 +16,21 @@ from reporter.output.numbers import period, shown, unit_text
 from reporter.output.view.desk import Desk, channel_name, gas_name
 from reporter.output.view.model import Block, Picture
 from reporter.output.view.runs import left_out
-from reporter.outcome import GasResult, RunResult
 from reporter.record import Channel, ReadingKind
 
-#: Panels on one page.
-PER_PICTURE = 4
-#: Height of a panel [pt].
-_PANEL = 84.0
+#: Panels in one picture, its height, the highest panel and the room between two [pt].
+_PER_PICTURE, _PICTURE, _HIGHEST, _BETWEEN = 6, 470.0, 84.0, 20.0
 
 
 def traces(desk: Desk) -> tuple[Block, ...]:
     """All channels in the order of the sheet, then what was left out of the means."""
     panels = [trace for channel in desk.outcome.record.channels if (trace := _trace(desk, channel)) is not None]
     pictures = []
-    for start in range(0, len(panels), PER_PICTURE):
-        some = panels[start : start + PER_PICTURE]
+    for start in range(0, len(panels), _PER_PICTURE):
+        some = panels[start : start + _PER_PICTURE]
+        height = min(_HIGHEST, _PICTURE / len(some) - _BETWEEN)
         names = ", ".join(trace.name for trace in some)
-        pictures.append(Picture(trace_chart(some, title=f"Readings over time: {names}.", panel_height=_PANEL)))
+        pictures.append(Picture(trace_chart(some, title=f"Readings over time: {names}.", panel_height=height)))
     return (Block(pictures=tuple(pictures)), *left_out(desk, _numbers(desk)))
 
 

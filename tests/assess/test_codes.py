@@ -1,0 +1,185 @@
+"""Every code of the catalogue that is no matter of reading a file is found in a record made for it, with its place."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import replace
+from datetime import date
+from pathlib import Path
+from typing import Any
+
+import pytest
+
+import reporter
+from reporter.outcome import Outcome
+from reporter.problems import Grade, Problem, catalogue
+from reporter.record import Given
+from tests.record_factory import (
+    added,
+    assess,
+    assessed,
+    at,
+    calibration,
+    calibrations,
+    channel,
+    codes,
+    cylinders,
+    event,
+    fuel,
+    identity,
+    in_run,
+    limit,
+    number,
+    readings,
+    recalibrated,
+    record,
+    rerun,
+    runs,
+    without_calibrations,
+)
+
+AT_3 = {"reference_oxygen": number(3.0, "%"), "oxygen_constant": number(20.9, "%")}
+FLOW = {"stack_flow": number(600_000.0, "ft3/h"), "flow_basis": "dry standard"}
+
+
+def _values(**changed: Any) -> Any:
+    return readings({"NOx": 40.0, "CO": 10.0, "O2": 5.0, "CO2": 9.0} | changed)
+
+
+def _expired() -> Outcome:
+    bottles = tuple(
+        replace(c, expires=Given(date(2025, 3, 1))) if c.cylinder.value == "NOx-mid" else c for c in cylinders()
+    )
+    return assessed(cylinders=bottles)
+
+
+def _typed() -> Outcome:
+    rows = tuple(
+        replace(row, certified_value=number(49.0)) if row.time.value == at("07:01") else row for row in calibrations()
+    )
+    return assessed(calibrations=rows)
+
+
+def _late() -> Outcome:
+    made = without_calibrations(record(), "NOx", "10:40", "10:42")
+    return assess(
+        added(
+            made,
+            calibration("13:00", "NOx", "system", "zero", 0.0),
+            calibration("13:02", "NOx", "system", "mid", 50.0),
+        )
+    )
+
+
+def _alone(*names: str) -> Outcome:
+    values = {"NOx": 40.0, "CO": 10.0, "O2": 5.0, "CO2": 9.0}
+    return assessed(
+        channels=tuple(channel(name) for name in names), readings=readings({name: values[name] for name in names})
+    )
+
+
+MADE: dict[str, Callable[[], Outcome]] = {
+    "calibration-missing": lambda: assess(without_calibrations(record(), "NOx", "10:40", "10:42")),
+    "calibration-late": lambda: assess(without_calibrations(record(), "NOx", "08:40", "08:42")),
+    "span-missing": lambda: assess(without_calibrations(record(), "NOx", "07:02")),
+    "certificate-missing": lambda: assessed(cylinders=tuple(c for c in cylinders() if c.cylinder.value != "NOx-mid")),
+    "cylinder-expired": _expired,
+    "certificate-differs": _typed,
+    "over-range-in-run": lambda: assessed(readings=_values(NOx=lambda t: "OVER" if t == at("08:05") else 40.0)),
+    "undecided-not-detected": lambda: assessed(readings=_values(CO=lambda t: "ND" if t == at("08:05") else 3.0)),
+    "oxygen-at-or-above-air": lambda: assessed(readings=_values(O2=20.95), limits=(limit(**AT_3),)),
+    "moisture-missing": lambda: assessed(
+        channels=tuple(channel(name, wet=name == "NOx") for name in ("NOx", "CO", "O2", "CO2"))
+    ),
+    "too-few-valid-runs": lambda: assess(rerun(record(limits=(limit(),)), "3", excluded_because="trip")),
+    "run-invalid": lambda: assess(recalibrated(record(), "08:42", "NOx", 60.0)),
+    "adjustment-before-check": lambda: assessed(events=(event("08:35", "NOx analyzer adjusted"),)),
+    "basis-missing": lambda: assessed(limits=(limit(moisture_basis=None),)),
+    "flow-missing": lambda: assessed(limits=(limit(unit="lb/h", mass_rate_route="flow"),)),
+    "heat-input-missing": lambda: assessed(fuels=(fuel(),), limits=(limit(unit="lb/h", mass_rate_route="heat input"),)),
+    "fuel-missing": lambda: assessed(limits=(limit(unit="lb/MMBtu"),)),
+    "factor-missing": lambda: assessed(fuels=(fuel("mill gas"),), limits=(limit(unit="lb/MMBtu"),)),
+    "diluent-missing": lambda: _alone("NOx", "CO"),
+    "pollutant-missing": lambda: _alone("O2", "CO2"),
+    "run-mean-above-span": lambda: assessed(readings=_values(NOx=101.0)),
+    "no-citation": lambda: assessed(limits=(limit(citation=None),)),
+    "limit-not-in-force": lambda: assessed(limits=(limit(in_force_until=date(2024, 1, 1)),)),
+    "rounding-rule-unknown": lambda: assessed(limits=(limit(rounding="as usual"),)),
+    "no-criteria-held": lambda: assessed(
+        channels=(channel("NOx", method="EN 14792"), *(channel(name) for name in ("CO", "O2", "CO2")))
+    ),
+    "span-differs": lambda: assessed(
+        channels=(channel("NOx", calibration_span=number(90.0)), *(channel(name) for name in ("CO", "O2", "CO2")))
+    ),
+    "impossible-balance": lambda: assessed(readings=_values(O2=21.6, CO2=2.0), fuels=(fuel(),)),
+    "coverage-low": lambda: assessed(readings=_values(NOx=lambda t: "" if t == at("08:05") else 40.0)),
+    "oxygen-reading-implausible": lambda: assessed(readings=_values(O2=lambda t: 21.3 if t == at("08:05") else 5.0)),
+    "moisture-below-combustion": lambda: assessed(fuels=(fuel(),), runs=runs(moisture=number(5.0, "%"))),
+    "converter-missing": assessed,
+    "response-time-missing": lambda: assessed(
+        channels=(channel("NOx", response_time_up=None), *(channel(name) for name in ("CO", "O2", "CO2")))
+    ),
+    "effective-date-missing": lambda: assessed(limits=(limit(in_force_from=None),)),
+    "routes-disagree": lambda: assessed(
+        fuels=(fuel(),), runs=runs(**FLOW, heat_input=number(20.0, "MMBtu/h")), limits=(limit(unit="lb/h"),)
+    ),
+    "sequence-late": _late,
+    "standard-conditions-assumed": lambda: assessed(runs=runs(**FLOW)),
+    "near-oxygen-constant": lambda: assessed(readings=_values(O2=19.5, CO2=0.8), limits=(limit(**AT_3),)),
+    "order-of-averaging": lambda: assessed(
+        readings=_values(O2=in_run((3.0, 5.0, 12.0)), CO2=in_run((10.2, 9.0, 5.0))), limits=(limit(**AT_3),)
+    ),
+    "fuel-factor-out-of-range": lambda: assessed(readings=_values(CO2=12.0), fuels=(fuel(),)),
+}
+
+
+def _of_assessment() -> list[str]:
+    """The codes of the catalogue from the first of the assessment on: it is ordered so."""
+    names = list(catalogue())
+    return names[names.index("calibration-missing") :]
+
+
+def test_every_code_of_the_assessment_has_a_record() -> None:
+    assert set(_of_assessment()) == set(MADE)
+
+
+@pytest.mark.parametrize("code", MADE)
+def test_the_code_is_found_and_complete(code: str) -> None:
+    outcome = MADE[code]()
+    found = [problem for problem in outcome.problems if problem.code == code]
+    assert found
+    clean = assessed(test=identity()) if code != "converter-missing" else None
+    if clean is not None:
+        assert code not in codes(clean)
+    for problem in found:
+        _complete(problem)
+    if catalogue()[code].grade is Grade.BLOCKS:
+        assert outcome.worst is Grade.BLOCKS
+
+
+def _complete(problem: Problem) -> None:
+    assert problem.found
+    assert problem.expected
+    assert problem.remedy
+    assert problem.place.sheet or problem.place.file
+    text = problem.text()
+    assert "None" not in text
+    assert "nan" not in text.lower().split()
+
+
+def test_every_code_of_the_catalogue_is_raised_somewhere() -> None:
+    sources = "\n".join(path.read_text(encoding="utf-8") for path in Path(reporter.__file__).parent.rglob("*.py"))
+    assert [code for code in catalogue() if f'"{code}"' not in sources] == []
+
+
+FORBIDDEN = ("pass", "passed", "fail", "failed", "compliant", "compliance", "violation", "verdict")
+
+
+@pytest.mark.parametrize("code", MADE)
+def test_no_forbidden_word_reaches_the_reader(code: str) -> None:
+    outcome = MADE[code]()
+    texts = [problem.text() for problem in outcome.problems]
+    texts += [*outcome.stated, *(check.title for check in outcome.checks), *(c.reason for c in outcome.comparisons)]
+    texts += [check.consequence for check in outcome.checks]
+    for words in texts:
+        assert not set(FORBIDDEN) & {word.strip(".,;:()").lower() for word in words.split()}
