@@ -106,7 +106,8 @@ def report_files(
         data = to_json(outcome, issued, VERSION)
         phrases = load_phrases(templates)
         workbook = write_workbook(outcome, issued=issued, version=VERSION, phrases=phrases)
-        enclosed = {f"{stem}.json": data, f"{stem}.results.xlsx": workbook}
+        own = ".results.json" if outcome.record.source.name.lower().endswith(".json") else ".json"
+        enclosed = {f"{stem}{own}": data, f"{stem}.results.xlsx": workbook}
         pdf = render_pdf(outcome, issued=issued, version=VERSION, enclosed=enclosed, options=options)
     return {".json": data, ".xlsx": workbook, ".pdf": pdf}
 
@@ -136,7 +137,7 @@ def report(
 ) -> Report:
     """Read, assess and write NAME.json, NAME.xlsx and NAME.pdf into a folder.
 
-    All three are made before the first is written; each appears whole or not at all.
+    All three are made before the first is written; they appear together, each whole, or none does.
 
     Raises
     ------
@@ -146,7 +147,7 @@ def report(
         A file cannot be written, or would overwrite the input.
     """
     from reporter.errors import OutputError
-    from reporter.output.files import write_whole
+    from reporter.output.files import write_all
 
     source, target = Path(path), Path(out)
     places = {suffix: target / f"{source.stem}{suffix}" for suffix in (".json", ".xlsx", ".pdf")}
@@ -160,16 +161,8 @@ def report(
         templates=None if templates is None else Path(templates),
         minute_data=minute_data,
     )
-    written: list[Path] = []
-    try:
-        for suffix, content in files.items():
-            write_whole(places[suffix], content)
-            written.append(places[suffix])
-    except OutputError:
-        for place in written:
-            place.unlink(missing_ok=True)
-        raise
-    return Report(source.stem, tuple(written), outcome)
+    write_all({places[suffix]: content for suffix, content in files.items()})
+    return Report(source.stem, tuple(places[suffix] for suffix in files), outcome)
 
 
 def grade_of(problems: tuple[Problem, ...]) -> Grade | None:

@@ -13,6 +13,7 @@ import re
 import unicodedata
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
+from functools import lru_cache
 from typing import Any
 
 from reporter.basis import NO_BASIS, Basis
@@ -27,6 +28,7 @@ _CELL = re.compile(r"[a-z]{1,3}[0-9]+|r[0-9]*c[0-9]*|r|c|true|false")
 _NOT_SLUG = re.compile(r"[^a-z0-9]+")
 
 
+@lru_cache(maxsize=4096)
 def slug(text: str) -> str:
     """A key segment from a name people wrote: lower case, all but letters and digits become ``_``."""
     plain = "".join(_latin(char) for char in unicodedata.normalize("NFKD", text.strip()).lower())

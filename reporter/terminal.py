@@ -212,17 +212,17 @@ def _limits(outcome: Outcome, words: Phrases) -> list[str]:
 
 def _limit(outcome: Outcome, comparison: Comparison, words: Phrases) -> str:
     limit = comparison.limit
-    relation = text_of(limit.relation, "at most").replace(" ", "_")
+    relation = text_of(limit.relation, "at most")
     ledger = outcome.ledger
     bound, value, rounded = (ledger.get(k) for k in (comparison.limit_key, comparison.value, comparison.rounded))
     basis = next((entry.basis.text() for entry in (bound, value) if entry is not None), "")
-    entered = f"{words(f'limit.symbol_{relation}')} {limit.limit.text or shortest(limit.limit.value, 8)}"
+    entered = f"{relation} {limit.limit.text or shortest(limit.limit.value, 8)}"
     about = f"{gas(limit.pollutant.value).label} {entered} {unit_text(limit.unit.value.unit)}"
     lines = [paragraph(f"{limit.limit_id.value}: {', '.join(part for part in (about, basis) if part)}")]
     if comparison.is_met is None:
         said = words("limit.not_compared", reason=comparison.reason)
     else:
-        said = words(f"limit.{relation}_{'met' if comparison.is_met else 'not_met'}")
+        said = words(f"limit.{relation.replace(' ', '_')}_{'met' if comparison.is_met else 'not_met'}")
     lines.append(paragraph(said, indent=4, hang=4))
     if value is not None and rounded is not None:
         numbers = f"{_compared(rounded)} ({comparison.rounding_words})"

@@ -260,7 +260,16 @@ def test_the_unit_system_sets_the_printed_constants() -> None:
 
 @pytest.mark.parametrize(
     ("text", "segment"),
-    [("Run 1", "run_1"), (" NOx-A ", "nox_a"), ("1", "1"), ("", "x"), ("é", "e"), ("№ Ж", "no_u436"), ("a.b", "a_b"), ("__", "x")],
+    [
+        ("Run 1", "run_1"),
+        (" NOx-A ", "nox_a"),
+        ("1", "1"),
+        ("", "x"),
+        ("é", "e"),
+        ("№ Ж", "no_u436"),
+        ("a.b", "a_b"),
+        ("__", "x"),
+    ],
 )
 def test_slugs(text: str, segment: str) -> None:
     assert slug(text) == segment

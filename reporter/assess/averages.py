@@ -45,6 +45,9 @@ def average(book: Book, runs: Sequence[RunBook], name: str, limit: Limit | None 
 def _mean(book: Book, key: str, parts: Sequence[tuple[Entry, Entry]]) -> Entry | None:
     if not any(flag.value == 1.0 for _, flag in parts):
         return None
+    if len({(entry.unit, entry.basis) for entry, _ in parts}) > 1:
+        book.say(f"{label_of(key)}: not stated; the runs have it in different units or on different bases.")
+        return None
     inputs = {"values": [entry for entry, _ in parts], "flags": [flag for _, flag in parts]}
     return book.apply(mean_of_valid, key, inputs)
 

@@ -7,7 +7,7 @@ from collections.abc import Mapping, Sequence
 from reporter.outcome import Series
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book, Lane
-from reporter.reduction.readings import Window
+from reporter.reduction.window import Window
 
 
 def look_at_record(

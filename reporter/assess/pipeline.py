@@ -30,9 +30,10 @@ from reporter.reduction.moisture import moisture
 from reporter.reduction.plans import Plan, plans
 from reporter.reduction.process import reduce_load
 from reporter.reduction.process_log import reduce_process_log
-from reporter.reduction.readings import reduce_readings, window
+from reporter.reduction.readings import reduce_readings
 from reporter.reduction.results import Means, Missing, result
 from reporter.reduction.uncertainty import reading_uncertainty
+from reporter.reduction.window import window
 
 #: Quantities averaged over the valid runs for the table of runs, whatever the limits ask.
 _SHOWN = ("mean", "corrected", "dry", "wet", "mass_concentration", "emission_rate", "mass_rate")
@@ -171,7 +172,8 @@ def _averages(book: Book, abouts: Sequence[RunBook], wanted: Sequence[Plan]) -> 
 def _run_quantities(book: Book, about: RunBook) -> list[str]:
     wanted = (
         "moisture", "heat_input", "flow.dry_standard", "load", "output", "combustion.excess_air",
-        "combustion.excess_air.by_analysis", "combustion.fuel_factor", "combustion.molecular_weight_dry", "combustion.molecular_weight_wet",
+        "combustion.excess_air.by_analysis", "combustion.fuel_factor", "combustion.molecular_weight_dry",
+        "combustion.molecular_weight_wet",
         "combustion.equivalence_ratio", "combustion.air_fuel_mole", "combustion.air_fuel_mass",
         "combustion.co2_expected", "combustion.moisture_expected",
     )  # fmt: skip

@@ -8,7 +8,7 @@ from reporter.outcome import GasResult, RunResult, RunState, Series
 from reporter.record import text_of
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book, Lane
-from reporter.reduction.readings import Window
+from reporter.reduction.window import Window
 
 
 def run_results(

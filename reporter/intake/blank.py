@@ -14,7 +14,7 @@ from typing import Any
 
 from reporter.equation import System
 from reporter.errors import OutputError, RecordError
-from reporter.gases import Gas, find_gas
+from reporter.gases import Gas, all_gases, find_gas
 from reporter.intake.prefilled import prefilled
 from reporter.intake.sheets import (
     ITEM_COLUMNS,
@@ -52,7 +52,7 @@ def write_blank(path: str | Path, gases: Sequence[str], runs: int, system: Syste
     Parameters
     ----------
     path
-        The file to write; it appears whole or not at all.
+        The file to write, ending in .xlsx; it appears whole or not at all, and never in the place of another file.
     gases
         The gases of the channels, as people write them, e.g. ``["NOx", "CO", "O2"]``.
     runs
@@ -63,12 +63,16 @@ def write_blank(path: str | Path, gases: Sequence[str], runs: int, system: Syste
     Raises
     ------
     RecordError
-        A gas is not known or named twice, or the number of runs is out of range.
+        A gas is not known or named twice, the number of runs is out of range, or the name does not end in .xlsx.
     OutputError
-        The file cannot be written.
+        The file cannot be written, or one of its name is there.
     """
-    content = blank_bytes(gases, runs, system)
     target = Path(path)
+    if target.suffix.lower() != ".xlsx":
+        raise RecordError(f"the name {target.name!r} does not end in .xlsx")
+    content = blank_bytes(gases, runs, system)
+    if target.exists() or target.is_symlink():
+        raise OutputError("a file of this name is there, perhaps filled in; choose another name", target.name)
     beside = target.with_name(f".{target.name}.part")
     try:
         beside.write_bytes(content)
@@ -105,7 +109,8 @@ def _gases(names: Sequence[str]) -> tuple[Gas, ...]:
     for name in names:
         gas = find_gas(name)
         if gas is None:
-            raise RecordError(f"the gas {name!r} is not known")
+            known = ", ".join(one.label for one in all_gases())
+            raise RecordError(f"the gas {name!r} is not known; known are {known}")
         if gas in found:
             raise RecordError(f"the gas {name!r} is named twice")
         found.append(gas)

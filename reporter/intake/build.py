@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from datetime import date
 from typing import Any
 
 from reporter import record as domain
@@ -149,13 +148,16 @@ class _Builder:
         checks.unit_against_basis([*rows.get("channels", ()), *rows.get("limits", ())], gathered)
         runs = rows.get("runs", [])
         checks.flow_against_basis(runs, gathered)
+        checks.events(rows.get("events", []), gathered)
         checks.run_times(runs, gathered, (self.reader.day, self._item("last_test_day")))
         if self.readings is not None and self.readings.rows:
-            checks.runs_with_readings(runs, self.readings, gathered)
-            checks.logging_interval(self.readings, self._interval(), gathered)
+            seconds, at_start = self._interval(), self._item("reading_stamp") == "interval start"
+            checks.runs_with_readings(runs, self.readings, gathered, seconds=seconds, at_start=at_start)
+            checks.logging_interval(self.readings, seconds, gathered)
         self.reader.say_assumed()
 
-    def _item(self, attr: str) -> date | None:
+    def _item(self, attr: str) -> Any:
+        """The value of an item of the sheet Test; None where there is none."""
         made = self.items["test"][0].values.get(attr) if "test" in self.items else None
         return made.value if made is not None else None
 

@@ -105,17 +105,32 @@ def gas_of(cell: Cell) -> str | Fault:
 
 
 def out_of_range(value: float, unit: ReadUnit | None, column: Column) -> Fault | None:
-    """Why a number cannot be right for its column, if it cannot."""
-    shown, suffix = value, unit.unit if unit else ""
-    if unit is not None and column.us and dimension(unit.unit) == dimension(column.us):
-        shown, suffix = convert(value, unit.unit, column.us), column.us
-    low, high = column.minimum, column.maximum
-    slack = 1e-9 * abs(shown)
-    if (low is None or shown >= low - slack) and (high is None or shown <= high + slack):
+    """Why a number cannot be right for its column, if it cannot; the bounds are said in the unit it stands in."""
+    low, high = _bounds(unit, column)
+    slack = 1e-9 * abs(value)
+    if (low is None or value >= low - slack) and (high is None or value <= high + slack):
         return None
-    bounds = f"from {low:g}" if low is not None else ""
-    bounds += f" to {high:g}" if high is not None else ""
-    return Fault("out-of-range", f"{shown:g} {suffix}".strip(), f"a value {bounds.strip()} {suffix}".strip())
+    suffix = unit.unit if unit else ""
+    bounds = f"from {low:.6g}" if low is not None else ""
+    bounds += f" to {high:.6g}" if high is not None else ""
+    return Fault("out-of-range", f"{value:g} {suffix}".strip(), f"a value {bounds.strip()} {suffix}".strip())
+
+
+def _bounds(unit: ReadUnit | None, column: Column) -> tuple[float | None, float | None]:
+    """Lowest and highest value of a column in a unit; no part of a gas is more than all of it."""
+    low, high = column.minimum, column.maximum
+    if unit is None:
+        return low, high
+    if column.unit_from and dimension(unit.unit) == "fraction":
+        return low, convert(100.0, "%", unit.unit)
+    if not column.us:
+        return low, high
+    if dimension(unit.unit) != dimension(column.us):  # the bounds are those of the column's first dimension
+        return (None if low is None else min(low, 0.0)), None
+    return (
+        None if low is None else convert(low, column.us, unit.unit),
+        None if high is None else convert(high, column.us, unit.unit),
+    )
 
 
 def perhaps_fraction(value: float, unit: ReadUnit | None, column: Column) -> Fault | None:

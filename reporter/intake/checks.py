@@ -129,16 +129,27 @@ def _within(row: Filled, gathered: Gathered, days: tuple[date | None, date | Non
         gathered.add("date-outside-test", start.place, found)
 
 
-def runs_with_readings(rows: Rows, readings: Readings, gathered: Gathered) -> None:
-    """At least one logged interval lies within each run."""
+def runs_with_readings(
+    rows: Rows, readings: Readings, gathered: Gathered, *, seconds: float | None = None, at_start: bool = False
+) -> None:
+    """At least one logged interval lies within each run, whole.
+
+    `seconds` is the logging interval (the usual step between readings if None), `at_start` whether a stamp names
+    its start.
+    """
     times = [row.time for row in readings.rows]
+    step = timedelta(seconds=seconds if seconds is not None else usual_step(readings) or 60.0)
+    lead, tail = (timedelta(0), step) if at_start else (step, timedelta(0))
     for row in rows:
         start, end = row.values.get("start"), row.values.get("end")
         if start is None or end is None or end.value <= start.value:
             continue
-        if not any(start.value <= moment <= end.value for moment in times):
-            found = f"run {row.text('run')} from {start.value:%Y-%m-%d %H:%M} to {end.value:%Y-%m-%d %H:%M}"
-            gathered.add("run-without-readings", row.place, f"{found}; {_span(times)}")
+        if any(start.value + lead <= moment <= end.value - tail for moment in times):
+            continue
+        found = f"run {row.text('run')} from {start.value:%Y-%m-%d %H:%M} to {end.value:%Y-%m-%d %H:%M}"
+        stamped = any(start.value <= moment <= end.value for moment in times)
+        why = f"no whole interval of {step.total_seconds():g} s" if stamped else _span(times)
+        gathered.add("run-without-readings", row.place, f"{found}; {why}")
 
 
 def _span(times: Sequence[datetime]) -> str:
@@ -147,12 +158,27 @@ def _span(times: Sequence[datetime]) -> str:
     return f"readings from {times[0]:%Y-%m-%d %H:%M} to {times[-1]:%Y-%m-%d %H:%M}"
 
 
+def usual_step(readings: Readings) -> float | None:
+    """The usual step between readings in seconds; None where there are not two."""
+    steps = sorted((b.time - a.time).total_seconds() for a, b in pairwise(readings.rows))
+    return steps[len(steps) // 2] if steps else None
+
+
 def logging_interval(readings: Readings, seconds: float | None, gathered: Gathered) -> None:
     """The usual step between readings is the logging interval entered."""
-    steps = sorted((b.time - a.time).total_seconds() for a, b in pairwise(readings.rows))
-    if seconds is None or not steps:
-        return
-    usual = steps[len(steps) // 2]
-    if abs(usual - seconds) > 0.1 * seconds:
+    usual = usual_step(readings)
+    if seconds is not None and usual is not None and abs(usual - seconds) > 0.1 * seconds:
         found = f"{usual:g} s between readings, {seconds:g} s entered"
         gathered.add("interval-differs", readings.place, found)
+
+
+def events(rows: Rows, gathered: Gathered) -> None:
+    """An event does not end before it begins, and readings are excluded for a reason."""
+    for row in rows:
+        begin, until, excluded = (row.values.get(attr) for attr in ("time", "until", "readings_excluded"))
+        if begin is not None and until is not None and until.value < begin.value:
+            found = f"{until.text}, and the event began at {begin.text}"
+            gathered.add("out-of-range", until.place, found, expected="a time at or after the one the event began at")
+        if excluded is not None and excluded.value and "reason" not in row.values:
+            place = gathered.place(row.place.sheet, excluded.place.cell, "Reason")
+            gathered.add("missing-entry", place, expected="the reason, where readings are excluded")

@@ -79,8 +79,7 @@ def look_at(content: bytes) -> Look:
         code = "encrypted" if _OLE_ENCRYPTED in content else "old-workbook"
         return Look([Finding(code, "a file of the old binary container")])
     if not content.startswith(b"PK"):
-        found = "an empty file" if not content else "a file that is no zip container"
-        return Look([Finding("not-a-workbook", found)])
+        return Look([Finding("not-a-workbook", _what_it_is(content[:4096]))])
     look = Look()
     try:
         with zipfile.ZipFile(io.BytesIO(content)) as archive:
@@ -92,6 +91,17 @@ def look_at(content: bytes) -> Look:
     except (zipfile.BadZipFile, zlib.error, EOFError, OSError, ValueError, NotImplementedError) as error:
         look.findings.append(Finding("truncated", str(error) or type(error).__name__))
     return look
+
+
+def _what_it_is(start: bytes) -> str:
+    """What a file that is no zip container seems to be."""
+    if not start:
+        return "an empty file"
+    if start.startswith(b"%PDF-"):
+        return "a PDF document"
+    if start.isascii() and b"\x00" not in start:
+        return "plain text, such as comma-separated values"
+    return "a file that is no zip container"
 
 
 def _container(archive: zipfile.ZipFile, look: Look) -> bool:

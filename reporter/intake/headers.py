@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from reporter.errors import UnitError
@@ -86,7 +86,8 @@ def match_columns(table: SheetTable, gathered: Gathered) -> tuple[Matched, ...]:
         place = gathered.place(table.sheet, header.cell, header.text)
         named = match_name(table.spec, header.text)
         if named is None:
-            if table.spec.kind is Kind.TABLE and _has_values(table, position):
+            read = table.spec.kind is Kind.TABLE and _has_values(table, position)
+            if read and not misspelt(gathered, table, header, header.text):
                 gathered.add("unknown-column", place, header.text or "values without a header")
             continue
         column, unit_text = named
@@ -104,6 +105,25 @@ def match_columns(table: SheetTable, gathered: Gathered) -> tuple[Matched, ...]:
             place = gathered.place(table.sheet, table.header[0].cell if table.header else "", column.name)
             gathered.add("missing-column", place, f"the columns {names}", expected=f"a column {column.name!r}")
     return tuple(m for attr, m in found.items() if attr not in unread)
+
+
+def misspelt(gathered: Gathered, table: SheetTable, cell: Cell | HeaderCell, text: str) -> bool:
+    """Whether a text is nearly the name of a column, or an item, that the sheet lacks; then it is a problem."""
+    near = table.spec.near(split_header(text)[0])
+    if near is None or any(named is not None and named[0] is near for named in _named(table)):
+        return False
+    place = gathered.place(table.sheet, cell.cell, near.name)
+    gathered.add("misspelt-name", place, text, expected=f"{near.name!r}, or a name less like it")
+    return True
+
+
+def _named(table: SheetTable) -> Iterator[tuple[Column, str] | None]:
+    """What the headers, or the items, of a table name."""
+    if table.spec.kind is not Kind.ITEMS:
+        yield from (match_name(table.spec, header.text) for header in table.header)
+        return
+    at = next((i for i, header in enumerate(table.header) if fold(header.text) == fold(ITEM_COLUMNS[0])), 0)
+    yield from (match_name(table.spec, row.cells[at].text) for row in table.rows)
 
 
 def header_unit(

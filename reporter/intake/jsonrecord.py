@@ -17,7 +17,7 @@ from typing import Any
 from reporter.intake.gather import Gathered
 from reporter.intake.sheets import ITEM_COLUMNS, Kind, Sheet, find_sheet
 from reporter.intake.table import Cell, HeaderCell, Raw, Row, SheetTable, split_header
-from reporter.intake.workbook import raw
+from reporter.intake.workbook import raw, unknown_sheet
 
 #: Larger texts are refused: a test of one day is well under a megabyte.
 MAX_BYTES = 50 << 20
@@ -45,7 +45,7 @@ def read_json(content: bytes, gathered: Gathered) -> tuple[SheetTable, ...]:
     for name, value in data.items():
         spec = find_sheet(name)
         if spec is None:
-            gathered.add("unknown-sheet", gathered.place(name), name)
+            unknown_sheet(gathered, name, list(data))
             continue
         table = _table(spec, name, value, gathered)
         if table is not None:

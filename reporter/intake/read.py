@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import errno
 import hashlib
 import os
 from dataclasses import dataclass
@@ -18,6 +19,14 @@ from reporter.record import Record, SourceFile
 
 #: A larger file is not read into memory.
 MAX_FILE = 100 << 20
+#: Why a file cannot be opened, in words.
+_WHY = {
+    errno.ENOENT: "no file of this name",
+    errno.EISDIR: "a folder",
+    errno.EACCES: "a file that may not be read",
+    errno.ENOTDIR: "a path that leads through a file",
+    errno.ENAMETOOLONG: "a name that is too long",
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -44,12 +53,16 @@ def read(path: str | Path) -> ReadResult:
     file = Path(path)
     gathered = Gathered(file.name)
     try:
-        if file.stat().st_size > MAX_FILE:
-            gathered.add("zip-bomb", gathered.place(), f"a file of {file.stat().st_size >> 20} MB")
+        too_large = file.is_file() and file.stat().st_size > MAX_FILE
+        with file.open("rb") as stream:
+            content = b"" if too_large else stream.read(MAX_FILE + 1)
+        if too_large or len(content) > MAX_FILE:
+            gathered.add("zip-bomb", gathered.place(), f"a file of more than {MAX_FILE >> 20} MB")
             return ReadResult(None, gathered.all())
-        content = file.read_bytes()
-    except OSError as error:
-        found = error.strerror or "a file that cannot be opened"
+    except (OSError, ValueError) as error:
+        found = (
+            _WHY.get(getattr(error, "errno", 0), "") or getattr(error, "strerror", "") or "a file that cannot be opened"
+        )
         remedy = "look at the name and the folder, and whether the file may be read"
         gathered.add("not-a-workbook", gathered.place(), found, expected="a file that can be opened", remedy=remedy)
         return ReadResult(None, gathered.all())

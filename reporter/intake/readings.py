@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+import math
 import re
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from datetime import datetime, time, timedelta
+from functools import cache
 from itertools import pairwise
 
 from reporter.errors import UnitError
@@ -16,7 +18,7 @@ from reporter.intake.sheets import fold, reading_words, sentinels
 from reporter.intake.table import Cell, HeaderCell, Row, SheetTable, clean, plain_number
 from reporter.problems import Place
 from reporter.record import Reading, ReadingKind, ReadingRow, Readings
-from reporter.units import ReadUnit, read_unit
+from reporter.units import ReadUnit, convert, dimension, read_unit
 
 _BOUND = re.compile(r"^([<>])\s*(.+)$")
 _BLANK = Reading(ReadingKind.BLANK, None, "")
@@ -175,7 +177,8 @@ def timed(table: SheetTable, clock: tuple[int, int | None], reader: RowReader) -
         if all(bare) and before - after > timedelta(hours=12):
             place = reader.gathered.place(table.sheet, two.cells[clock[0]].cell, "Time")
             words = f"{before:%H:%M} in row {one.number}, then {after:%H:%M}, without dates"
-            reader.gathered.add("run-across-midnight", place, words)
+            expected = "rows with their dates, where the readings cross midnight"
+            reader.gathered.add("run-across-midnight", place, words, expected=expected)
             break
     return found
 
@@ -201,9 +204,9 @@ def reading_of(cell: Cell, unit: str) -> Reading | Fault:
     value = cell.value
     if isinstance(value, float):
         if not cell.percent:
-            return Reading(ReadingKind.NUMBER, value, plain_number(value))
+            return _number(value, plain_number(value), unit)
         if unit == "%":
-            return Reading(ReadingKind.NUMBER, value * 100.0, cell.text)
+            return _number(value * 100.0, cell.text, unit)
         return Fault("wrong-dimension", cell.text, f"a number in {unit}")
     if cell.uncalculated:
         return Fault("formula-without-value", "a formula that was never calculated")
@@ -212,6 +215,23 @@ def reading_of(cell: Cell, unit: str) -> Reading | Fault:
     if not isinstance(value, str):
         return Fault("text-for-number", cell.text)
     return _word(clean(value), unit)
+
+
+@cache
+def _most(unit: str) -> float:
+    """The largest reading in a unit: the whole gas, where the unit is a part of it."""
+    return convert(100.0, "%", unit) if unit and dimension(unit) == "fraction" else math.inf
+
+
+def _number(value: float, text: str, unit: str) -> Reading | Fault:
+    """A measured number; one that no gas can have is asked about, so that it never enters a mean."""
+    if value < 0.0 and value in sentinels():
+        found = f"{text}, as loggers write for a missing value"
+        return Fault("out-of-range", found, "a measured number, an empty cell, or a word for what happened")
+    most = _most(unit)
+    if value > most:
+        return Fault("out-of-range", f"{text} {unit}", f"a reading of at most {most:g} {unit}, or a word such as OVER")
+    return Reading(ReadingKind.NUMBER, value, text)
 
 
 def _word(text: str, unit: str) -> Reading | Fault:
@@ -227,7 +247,7 @@ def _word(text: str, unit: str) -> Reading | Fault:
     if read.unit is not None and read.unit.unit != unit:
         return Fault("wrong-dimension", text, f"a number in {unit}")
     if bound is None:
-        return Reading(ReadingKind.NUMBER, read.value, text)
+        return _number(read.value, text, unit)
     return Reading(ReadingKind.BELOW if bound[1] == "<" else ReadingKind.OVER, read.value, text)
 
 

@@ -19,7 +19,7 @@ from reporter.intake.cells import (
 )
 from reporter.intake.dates import Fault, MomentRead, OrderWatch, date_of, moment_of
 from reporter.intake.gather import Gathered
-from reporter.intake.headers import Matched, header_unit, match_columns, match_name
+from reporter.intake.headers import Matched, header_unit, match_columns, match_name, misspelt
 from reporter.intake.sheets import ANY, Column, Sheet, Type
 from reporter.intake.table import Cell, HeaderCell, Row, SheetTable, split_header
 from reporter.problems import Place
@@ -82,7 +82,8 @@ class RowReader:
             if column.required and column.attr not in made.values and any(m.column is column for m in matched):
                 cell = next(row.cells[m.position] for m in matched if m.column is column)
                 if cell.blank:
-                    self.gathered.add("missing-entry", self.gathered.place(table.sheet, cell.cell, column.name))
+                    place = self.gathered.place(table.sheet, cell.cell, column.name)
+                    self.gathered.add("missing-entry", place, remedy="fill in the cell, or clear the whole row")
         return made
 
     def take(self, made: Filled, column: Column, cell: Cell, *, unit: ReadUnit | None = None, sheet: str = "") -> None:
@@ -145,6 +146,8 @@ class RowReader:
         if isinstance(used, Fault):
             return used
         value = read.value
+        if used is None and column.unit_from == "Unit" and value != 0.0:
+            self._assume(place, column.name, "the unit of the channel")
         if read.unit is not None:
             if used is None or not _fits(column, read.unit, used):
                 known = "a number alone" if used is None else f"a number, or a number in {used.unit}"
@@ -168,8 +171,11 @@ class RowReader:
             return named
         unit = column.default_unit(self.system)
         if column.us != column.si:
-            self._assumed.setdefault(place.sheet, (place, {}))[1].setdefault(column.name, unit)
+            self._assume(place, column.name, unit)
         return ReadUnit(unit)
+
+    def _assume(self, place: Place, name: str, unit: str) -> None:
+        self._assumed.setdefault(place.sheet, (place, {}))[1].setdefault(name, unit)
 
     def _unit_of_row(self, made: Filled, column: Column) -> ReadUnit | None:
         if column.unit_from == "Unit":
@@ -189,6 +195,7 @@ class RowReader:
                 continue
             named = match_name(table.spec, item.text)
             if named is None:
+                misspelt(self.gathered, table, item, item.text)
                 note = row.cells[note_at].text if note_at is not None else ""
                 place = self.gathered.place(table.sheet, entry.cell, item.text)
                 extra.append(ExtraItem(item.text, entry.text, note, place))

@@ -7,13 +7,17 @@ from __future__ import annotations
 
 import re
 import tomllib
+from collections.abc import Mapping
 from dataclasses import dataclass
+from difflib import get_close_matches
 from enum import Enum
 from functools import cache
-from typing import Any
+from typing import Any, TypeVar
 
 from reporter.equation import System
 from reporter.resources import table_text
+
+_T = TypeVar("_T")
 
 
 class Kind(Enum):
@@ -40,6 +44,8 @@ class Type(Enum):
 
 #: Stands for "every dimension of the unit table" in a column's dimensions.
 ANY = "any"
+#: How much alike two names are, and how long, before one is taken for a slip in writing the other.
+LIKENESS, SHORTEST = 0.85, 4
 #: The columns of a sheet of items.
 ITEM_COLUMNS = ("Item", "Entry", "Note")
 
@@ -104,6 +110,17 @@ class Sheet:
         """The column a header text names, by name or synonym."""
         return _column_index(self.name).get(fold(text))
 
+    def near(self, text: str) -> Column | None:
+        """The column a text nearly names: a slip of the pen, or a plural."""
+        return nearest(text, _column_index(self.name))
+
+
+def nearest(text: str, index: Mapping[str, _T]) -> _T | None:
+    """What of an index of folded names a text nearly names; None where it is short, or like none of them."""
+    wanted = fold(text)
+    close = get_close_matches(wanted, index, 1, LIKENESS) if len(wanted) >= SHORTEST else []
+    return index[close[0]] if close and len(close[0]) >= SHORTEST else None
+
 
 @cache
 def _column_index(name: str) -> dict[str, Column]:
@@ -146,6 +163,11 @@ def sheet(name: str) -> Sheet:
 def find_sheet(text: str) -> Sheet | None:
     """The sheet a tab's name stands for, by name or synonym."""
     return _sheet_index().get(fold(text))
+
+
+def near_sheet(text: str) -> Sheet | None:
+    """The sheet a tab's name nearly names."""
+    return nearest(text, _sheet_index())
 
 
 @cache

@@ -17,7 +17,7 @@ from typing import Any
 from reporter.intake.gather import Gathered
 from reporter.intake.guard import Look
 from reporter.intake.headers import HEADER_WITHIN, score, split_footers, unit_row
-from reporter.intake.sheets import Kind, Sheet, find_sheet, footer_words
+from reporter.intake.sheets import Kind, Sheet, find_sheet, footer_words, near_sheet
 from reporter.intake.table import Cell, HeaderCell, Raw, Row, SheetTable, show, split_header
 
 #: One sheet's cells by row and column number.
@@ -37,14 +37,24 @@ def read_workbook(content: bytes, look: Look, gathered: Gathered) -> tuple[Sheet
         gathered.add("truncated", gathered.place(), f"{type(error).__name__} while reading the workbook")
         return ()
     tables = []
+    names = [sheet.title for sheet in book.worksheets]
     for sheet in book.worksheets:
         spec = find_sheet(sheet.title)
         if spec is None:
-            gathered.add("unknown-sheet", gathered.place(sheet.title), sheet.title)
+            unknown_sheet(gathered, sheet.title, names)
             continue
         part = next((part for part, name in parts.items() if name == sheet.title), "")
         tables.append(_table(spec, sheet, look.uncalculated.get(part, frozenset()), gathered))
     return tuple(table for table in tables if table is not None)
+
+
+def unknown_sheet(gathered: Gathered, title: str, names: Sequence[str]) -> None:
+    """Say that a sheet was not read; a problem where its name is nearly that of one the file lacks."""
+    near = near_sheet(title)
+    if near is None or any(find_sheet(name) is near for name in names):
+        gathered.add("unknown-sheet", gathered.place(title), title)
+    else:
+        gathered.add("misspelt-name", gathered.place(title), title, expected=f"{near.name!r}, or a name less like it")
 
 
 def sheet_parts(content: bytes) -> dict[str, str]:
@@ -76,7 +86,7 @@ def _table(spec: Sheet, sheet: Any, uncalculated: frozenset[str], gathered: Gath
     start = _header_row(spec, grid)
     if start is None:
         if grid or spec.required:
-            gathered.add("missing-header", gathered.place(sheet.title), expected=_expected_header(spec))
+            gathered.add("missing-header", gathered.place(sheet.title), _top(grid), expected=_expected_header(spec))
         return SheetTable(spec, sheet.title, (), (), hidden=hidden, header_found=False)
     header, columns = _header(sheet, grid, start)
     _fill_merged(sheet, grid, start)
@@ -133,9 +143,20 @@ def _header_row(spec: Sheet, grid: Grid) -> int | None:
     return best
 
 
+def _top(grid: Grid) -> str:
+    """The row at the top of a sheet that holds the most texts, as it stands."""
+    texts = [
+        [show(c.value) for c in grid[n].values() if isinstance(c.value, str)] for n in sorted(grid)[:HEADER_WITHIN]
+    ]
+    fullest = max(texts, key=len, default=[])
+    return ", ".join(text[:40] for text in fullest[:8]) + (", ..." if len(fullest) > 8 else "")
+
+
 def _expected_header(spec: Sheet) -> str:
     if spec.kind is Kind.ITEMS:
         return "a row with the words Item, Entry, Note"
+    if spec.kind is Kind.READINGS:
+        return "a row with the word Time and the names of the channels"
     names = [column.name for column in spec.columns if column.required] or [c.name for c in spec.columns[:3]]
     return "a row with the words " + ", ".join(names)
 

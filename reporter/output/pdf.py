@@ -199,6 +199,8 @@ def _rendered(text: str, style: str, read: Callable[[str], bytes], extras: _Extr
         def finish(document: Any, pdf: Any) -> None:
             add_links(document, pdf, cells)
             _bind(document, pdf, extras)
+            if "AF" in pdf.catalog:  # the writer lists each attached file twice
+                pdf.catalog["AF"][:] = dict.fromkeys(pdf.catalog["AF"])
             pack(pdf)
 
         return bytes(document.write_pdf(finisher=finish, pdf_variant=_VARIANT, pdf_tags=True, attachments=attachments))

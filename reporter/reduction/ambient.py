@@ -13,7 +13,10 @@ _LIQUID = (273.15, 373.15)
 
 
 def ambient_air(book: Book, run: Run) -> Entry | None:
-    """Moisture of the ambient air as a fraction, key ``run.<run>.moisture.ambient``; None where it is not known."""
+    """Moisture of the ambient air as a fraction, key ``run.<run>.moisture.ambient``; None where it is not known.
+
+    Tried once for a run: what could not be computed is said the first time.
+    """
     key = f"run.{run.key}.moisture.ambient"
     found = book.ledger.get(key)
     if found is not None:
@@ -23,6 +26,8 @@ def ambient_air(book: Book, run: Run) -> Entry | None:
     if run.relative_humidity is None or run.ambient_temperature is None or run.barometric_pressure is None:
         return None
     stem = f"run.{run.key}.ambient"
+    if f"{stem}.temperature" in book.ledger:
+        return None
     temperature = book.given(f"{stem}.temperature", run.ambient_temperature, book.unit("°F", "°C"))
     kelvin = convert_entry(book.ledger, f"{stem}.temperature.kelvin", temperature, "K")
     if not _LIQUID[0] <= kelvin.value <= _LIQUID[1]:

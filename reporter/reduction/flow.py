@@ -61,7 +61,12 @@ def _to_dry_standard(book: Book, about: RunBook, entered: Entry) -> Entry | None
             return None
         say_static(book, about.run)
         inputs = {"flow": flow, "temperature": temperature, "pressure": pressure}
-        flow = book.apply(flow_to_standard, about.key("flow.wet_standard"), inputs)
+        made = book.attempt(flow_to_standard, about.key("flow.wet_standard"), inputs)
+        if made is None or made.value < 0.0:
+            said = f"run {about.run.run.value}: stack temperature and pressures give no volume"
+            book.trouble("flow-missing", about.run.place, said, concerns=(about.key("flow.dry_standard"),))
+            return None
+        flow = made
     elif not flow.basis.standard.same(target):
         flow = _restated(book, about, flow)
     if flow.basis.moisture is Moisture.DRY:

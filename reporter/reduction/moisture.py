@@ -134,6 +134,9 @@ def _at_saturation(book: Book, run: Run) -> Entry | None:
     if temperature is None or pressure is None:
         return None
     stem = f"run.{run.key}"
+    found = book.ledger.get(f"{stem}.moisture.saturation")
+    if found is not None or f"{stem}.stack_temperature.kelvin" in book.ledger:
+        return found
     kelvin = convert_entry(book.ledger, f"{stem}.stack_temperature.kelvin", temperature, "K")
     if not 273.15 <= kelvin.value <= 373.15:
         return None

@@ -15,6 +15,7 @@ from reporter.outcome import Outcome
 from reporter.problems import Grade, Problem, catalogue
 from reporter.record import Given
 from tests.record_factory import (
+    HERE,
     added,
     assess,
     assessed,
@@ -48,7 +49,7 @@ def _values(**changed: Any) -> Any:
 
 def _expired() -> Outcome:
     bottles = tuple(
-        replace(c, expires=Given(date(2025, 3, 1))) if c.cylinder.value == "NOx-mid" else c for c in cylinders()
+        replace(c, expires=Given(date(2025, 3, 1), HERE)) if c.cylinder.value == "NOx-mid" else c for c in cylinders()
     )
     return assessed(cylinders=bottles)
 

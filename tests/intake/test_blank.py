@@ -123,5 +123,14 @@ def test_what_it_refuses(tmp_path: Path) -> None:
     with pytest.raises(OutputError):
         write_blank(tmp_path / "nowhere" / "x.xlsx", GASES, 3, System.US)
     assert list(tmp_path.iterdir()) == []
+    with pytest.raises(RecordError, match="does not end in .xlsx"):
+        write_blank(tmp_path / "x.csv", GASES, 3, System.US)
     write_blank(tmp_path / "x.xlsx", GASES, 3, System.US)
     assert [path.name for path in tmp_path.iterdir()] == ["x.xlsx"]
+
+
+def test_a_workbook_already_filled_in_is_never_replaced(tmp_path: Path) -> None:
+    (tmp_path / "x.xlsx").write_bytes(b"a day of work")
+    with pytest.raises(OutputError, match="choose another name"):
+        write_blank(tmp_path / "x.xlsx", GASES, 3, System.US)
+    assert [(path.name, path.read_bytes()) for path in tmp_path.iterdir()] == [("x.xlsx", b"a day of work")]

@@ -116,14 +116,14 @@ def test_the_logging_interval() -> None:
 
 def test_notes_on_negative_and_missing_value_marks_change_nothing() -> None:
     sheets = tiny()
-    sheets["Readings"][2][1], sheets["Readings"][3][1], sheets["Readings"][4][2] = -0.2, -0.4, -999
+    sheets["Readings"][2][1], sheets["Readings"][3][1], sheets["Readings"][4][1] = -0.2, -0.4, 9999
     result = read_sheets(sheets)
     assert [(p.code, p.place.cell, p.found) for p in result.problems] == [
+        ("sentinel-value", "B5", "1 reading of 9999"),
         ("negative-reading", "B4", "2 readings, the lowest -0.4"),
-        ("sentinel-value", "C5", "1 reading of -999"),
     ]
     assert result.record is not None
-    assert result.record.readings.rows[3].readings[1].value == -999.0
+    assert result.record.readings.rows[3].readings[0].value == 9999.0
 
 
 def test_attachments_are_looked_for_beside_the_workbook_only(tmp_path: Path) -> None:

@@ -39,6 +39,12 @@ def changed() -> Callable[..., Outcome]:
     return lambda outcome, **sheets: assess(replace(outcome.record, **sheets))
 
 
+@pytest.fixture(scope="session")
+def thin(wood: Outcome, changed: Callable[..., Outcome]) -> Outcome:
+    """A test of which little was entered: its report is short."""
+    return changed(wood, limits=(), calibrations=(), cylinders=(), sheets=(), fuels=(), attachments=())
+
+
 @contextmanager
 def silent_renderer() -> Iterator[None]:
     """Any line of the renderer's log is a failure."""
@@ -63,9 +69,7 @@ def render() -> Callable[..., bytes]:
 
     def made(outcome: Outcome, **options: Any) -> bytes:
         with silent_renderer():
-            return render_pdf(
-                outcome, issued=ISSUED, version="0.1.0", enclosed=ENCLOSED, options=PdfOptions(**options)
-            )
+            return render_pdf(outcome, issued=ISSUED, version="0.1.0", enclosed=ENCLOSED, options=PdfOptions(**options))
 
     return made
 

@@ -11,7 +11,11 @@ from pathlib import Path
 import pytest
 
 from reporter.errors import OutputError
-from reporter.output.files import write_whole
+from reporter.output.files import write_all
+
+
+def write_whole(path: Path, content: bytes) -> None:
+    write_all({path: content})
 
 
 def failing(number: int):
@@ -75,6 +79,37 @@ def test_a_failure_leaves_the_old_file_and_nothing_else(
     assert caught.value.place == str(path)
     assert path.read_bytes() == b"old"
     assert [p.name for p in tmp_path.iterdir()] == ["a.txt"]
+
+
+@pytest.mark.parametrize("linked", [True, False])
+def test_where_one_of_several_cannot_be_written_all_places_are_as_they_were(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, linked: bool
+) -> None:
+    """The last file is open in another program: the older results stay, the new ones leave nothing."""
+    paths = [tmp_path / name for name in ("a.json", "a.xlsx", "a.pdf")]
+    paths[0].write_bytes(b"old json")
+    paths[2].write_bytes(b"old pdf")
+    replace = os.replace
+
+    def locked(source: Path, target: Path) -> None:
+        if Path(target) == paths[2]:
+            raise PermissionError(errno.EACCES, os.strerror(errno.EACCES))
+        replace(source, target)
+
+    monkeypatch.setattr(os, "replace", locked)
+    if not linked:
+        monkeypatch.setattr(os, "link", failing(errno.EPERM))
+    with pytest.raises(OutputError, match="a.pdf was not written.*another program has the file open"):
+        write_all({path: b"new" for path in paths})
+    left = {path.name: path.read_bytes() for path in tmp_path.iterdir()}
+    assert left == {"a.json": b"old json", "a.pdf": b"old pdf"}
+
+
+def test_several_files_replace_their_elders_and_leave_nothing_else(tmp_path: Path) -> None:
+    (tmp_path / "a.json").write_bytes(b"old")
+    write_all({tmp_path / name: name.encode() for name in ("a.json", "a.xlsx", "a.pdf")})
+    left = {path.name: path.read_bytes() for path in tmp_path.iterdir()}
+    assert left == {name: name.encode() for name in ("a.json", "a.xlsx", "a.pdf")}
 
 
 def test_an_interruption_leaves_nothing(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:

@@ -80,6 +80,4 @@ def test_only_formulas_of_gases_are_lowered() -> None:
 
 def test_a_period_names_the_day_only_where_it_changes() -> None:
     assert period(datetime(2026, 4, 14, 9, 0), datetime(2026, 4, 14, 10, 0)) == "09:00–10:00"
-    assert period(datetime(2026, 4, 14, 23, 0), datetime(2026, 4, 15, 1, 0)) == (
-        "2026-04-14 23:00 – 2026-04-15 01:00"
-    )
+    assert period(datetime(2026, 4, 14, 23, 0), datetime(2026, 4, 15, 1, 0)) == ("2026-04-14 23:00 – 2026-04-15 01:00")

@@ -30,13 +30,27 @@ def test_every_phrase_is_used_somewhere() -> None:
     assert unused == []
 
 
+def test_every_phrase_that_is_asked_for_is_there() -> None:
+    files = [*PACKAGE.rglob("*.py"), *templates_folder().rglob("*.html")]
+    asked = {
+        name
+        for path in files
+        for name in re.findall(r'(?:phrases|words|said|spoken)\("([a-z_]+\.[a-z_]+)"', path.read_text(encoding="utf-8"))
+    }
+    assert len(asked) > 60
+    assert sorted(asked - set(load_phrases().words)) == []
+
+
 def _built(name: str, text: str) -> bool:
     """Whether a name is put together in code: ``title.<section>``, ``limit.<relation>_met`` and the like."""
     table, entry = name.split(".", 1)
     if table in {"title", "cautions"}:
         return True
     stem = re.sub(r"(_not)?_met$|_role$", "", entry)
-    return f'"{table}.{{' in text and f'"{stem}"' in text
+    if f'"{table}.{{' in text and f'"{stem}"' in text:
+        return True
+    parts = entry.split("_")
+    return any(f'"{table}.{"_".join(parts[:cut])}_{{' in text for cut in range(1, len(parts)))
 
 
 def test_the_comparison_is_worded_as_fixed() -> None:
@@ -53,9 +67,7 @@ def test_a_firms_own_words_replace_the_shipped_ones(tmp_path: Path) -> None:
     assert phrases("title.runs") == load_phrases()("title.runs")
 
 
-@pytest.mark.parametrize(
-    "text", ['[title]\nreprot = "x"\n', "[title\n", '[limit]\nnot_compared = "{nobody}"\n']
-)
+@pytest.mark.parametrize("text", ['[title]\nreprot = "x"\n', "[title\n", '[limit]\nnot_compared = "{nobody}"\n'])
 def test_a_wrong_phrase_file_is_refused_with_its_name(tmp_path: Path, text: str) -> None:
     (tmp_path / "phrases.toml").write_text(text, encoding="utf-8")
     with pytest.raises(OutputError) as caught:

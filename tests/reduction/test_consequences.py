@@ -351,7 +351,7 @@ def test_runs_of_two_groups_may_overlap() -> None:
     """Run 1b of another group lies across run 1: both are closed by the check of 08:40."""
     more = run("1b", "08:10", "08:35", group="B")
     made = record()
-    outcome = assess(replace(made, runs=tuple(replace(r, group=None) for r in made.runs) + (more,)))
+    outcome = assess(replace(made, runs=(*(replace(r, group=None) for r in made.runs), more)))
     assert _valid(outcome) == [True] * 4
 
 

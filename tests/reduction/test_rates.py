@@ -235,10 +235,22 @@ def test_an_analysis_without_its_main_parts_gives_no_factor(lacking: str) -> Non
 
 
 def test_f_factors_from_a_gas_composition() -> None:
-    """Pure methane, ideal gas at 68 °F and 29.92 inHg, air 20.9/79.1: F_d 8624, F_w 10637, F_c 1006 scf/MMBtu.
-
-    Own derivation with heats of formation of the `chemicals` library; printed to four figures.
+    """Pure methane by 19-13 to 19-15: 12.011/16.043 carbon and 4.032/16.043 hydrogen by weight; gross heating value
+    890.58 kJ/mol (ISO 6976:2016, 25 °C) over 16.043 g/mol in Btu/lb.
     """
+    outcome = _rate(fuels=(fuel("line gas", "gas analysis"),), fuel_gas=(component("line gas", "CH4", 100.0),))
+    carbon, hydrogen = 1201.1 / 16.043, 403.2 / 16.043
+    gcv = 890.58e3 / 16.043 / 2.326
+    fd = 1e6 * (3.64 * hydrogen + 1.53 * carbon) / gcv
+    assert value(outcome, "fuel.line_gas.fd") == pytest.approx(fd, rel=5e-4)
+    assert value(outcome, "fuel.line_gas.fw") == pytest.approx(1e6 * (5.57 * hydrogen + 1.53 * carbon) / gcv, rel=5e-4)
+    assert value(outcome, "fuel.line_gas.fc") == pytest.approx(1e6 * 0.321 * carbon / gcv, rel=5e-4)
+    used = value(outcome, "fuel.line_gas.fd")
+    assert value(outcome, "run.1.nox.emission_rate") == pytest.approx(C * used * 20.9 / 15.9, rel=1e-12)
+
+
+def test_the_stoichiometric_factors_of_a_gas_stand_beside() -> None:
+    """Own derivation with heats of formation of the `chemicals` library: 8624, 10 637, 1006 scf/MMBtu for methane."""
     outcome = _rate(fuels=(fuel("line gas", "gas analysis"),), fuel_gas=(component("line gas", "CH4", 100.0),))
     found = {k: value(outcome, f"fuel.line_gas.composition.{k}.composition") for k in ("fd", "fw", "fc")}
     assert found["fd"] == pytest.approx(8624, rel=2e-3)

@@ -1,0 +1,266 @@
+"""The view: sorted, rounded and worded once; every number leads to a derivation."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Callable, Iterator
+from dataclasses import fields, is_dataclass, replace
+from datetime import date
+from typing import Any
+
+import pytest
+
+from reporter.ledger import FromEquation
+from reporter.outcome import Outcome
+from reporter.output.view import View, build_view
+from reporter.output.view.model import Shown, Source
+from reporter.output.view.register import pattern
+from reporter.record import Given
+from tests.output.conftest import ISSUED
+from tests.output.test_phrases import FORBIDDEN
+
+
+def view_of(outcome: Outcome, **options: Any) -> View:
+    return build_view(outcome, ISSUED, "0.1.0", **options)
+
+
+def texts(value: object) -> Iterator[str]:
+    """Every text of a view, wherever it stands; pictures are not read."""
+    if isinstance(value, str):
+        if not value.startswith("<svg"):
+            yield value
+    elif isinstance(value, dict):
+        for part in value.values():
+            yield from texts(part)
+    elif isinstance(value, (tuple, list)):
+        for part in value:
+            yield from texts(part)
+    elif is_dataclass(value):
+        for one in fields(value):
+            yield from texts(getattr(value, one.name))
+
+
+def shown_in(value: object) -> Iterator[Shown]:
+    """Every printed number of a view that stands in a cell."""
+    if isinstance(value, Shown):
+        yield value
+    elif isinstance(value, dict):
+        for part in value.values():
+            yield from shown_in(part)
+    elif isinstance(value, (tuple, list)):
+        for part in value:
+            yield from shown_in(part)
+    elif is_dataclass(value):
+        for one in fields(value):
+            yield from shown_in(getattr(value, one.name))
+
+
+def limit_cells(view: View, name: str) -> list[str]:
+    """The texts of the row of a limit in the table of limits: label, runs, average, rounded, limit, margin."""
+    assert view.limits.table is not None
+    rows = view.limits.table.rows
+    at = next(i for i, row in enumerate(rows) if getattr(row.cells[0], "text", "").startswith(f"{name}:"))
+    return [cell if isinstance(cell, str) else cell.text for cell in rows[at + 1].cells]
+
+
+def test_every_printed_number_has_a_derivation_row(boiler: Outcome, wood: Outcome) -> None:
+    for outcome in (boiler, wood):
+        view = view_of(outcome)
+        numbers = [cell for cell in shown_in(view) if not outcome.ledger[cell.key].is_indicator]
+        assert len(numbers) > 200
+        assert [cell.key for cell in numbers if cell.key not in view.places] == []
+
+
+def test_from_each_derivation_row_to_each_of_its_inputs(boiler: Outcome) -> None:
+    view = view_of(boiler)
+    rows = [row for group in view.register.groups for row in group.rows]
+    sources: list[Source] = [source for row in rows for source in row.inputs]
+    open_ends = [source for source in sources if not source.key and not source.where]
+    assert open_ends == []
+    keys = {source.key for source in sources if source.key} - {"section-criteria"}
+    assert keys <= set(view.places)
+
+
+def test_each_derivation_row_lists_the_inputs_of_its_equation(boiler: Outcome) -> None:
+    view = view_of(boiler)
+    for group in view.register.groups:
+        for row in group.rows:
+            origin = boiler.ledger[row.anchor].origin
+            assert isinstance(origin, FromEquation)
+            assert group.citation == origin.equation.citation.text()
+            assert [source.symbol for source in row.inputs] == [
+                origin.equation.parameters[name].symbol for name, _ in origin.inputs
+            ]
+
+
+def test_entries_of_one_row_differ_by_run_or_reading_alone(boiler: Outcome) -> None:
+    view = view_of(boiler)
+    names = {row.anchor: row.name for group in view.register.groups for row in group.rows}
+    for key, anchor in view.places.items():
+        origin = boiler.ledger[key].origin
+        carried = isinstance(origin, FromEquation) and origin.equation.name == "carried"
+        if anchor in names and not carried:
+            assert pattern(key) == names[anchor]
+    assert pattern("run.3.nox.corrected") == "run.*.nox.corrected"
+    assert pattern("calibration.nox.system_12.bias") == "calibration.nox.system_*.bias"
+
+
+def test_the_sample_calculation_reaches_each_limit_in_computable_order(boiler: Outcome) -> None:
+    view = view_of(boiler)
+    steps = [step for chapter in view.sample for step in chapter.steps]
+    assert [step.number for step in steps] == list(range(1, len(steps) + 1))
+    reached = {step.result.key for step in steps}
+    for comparison in boiler.comparisons:
+        assert comparison.runs[0][1] in reached
+    for step in steps:
+        earlier = [source.key for source in step.sources if source.key.startswith("step-")]
+        assert all(int(key.removeprefix("step-")) < step.number for key in earlier)
+
+
+def test_the_sample_calculation_puts_in_the_numbers_it_names(boiler: Outcome) -> None:
+    view = view_of(boiler)
+    step = next(step for chapter in view.sample for step in chapter.steps if step.result.key == "run.1.nox.corrected")
+    numbers = [source.value for source in step.sources]
+    assert all(number in step.numbers for number in numbers)
+    assert step.citation == "Method 7E, § 12.6, Eq. 7E-5b"
+    assert 'class="frac"' in step.formula
+    # The printed equation with the printed numbers gives the printed result to its digits.
+    value = eval(step.numbers.replace("·", "*").replace("−", "-"), {"__builtins__": {}})
+    assert value == pytest.approx(float(step.result.text), rel=1e-5)
+
+
+def test_the_limit_table_shows_unrounded_rounded_limit_and_margin(boiler: Outcome) -> None:
+    comparison = boiler.comparisons[0]
+    ledger = boiler.ledger
+    view = view_of(boiler)
+    name = comparison.limit.limit_id.value
+    cells = limit_cells(view, name)
+    average = float(cells[-4])
+    assert average == pytest.approx(ledger[comparison.value].value, rel=1e-5)
+    assert float(cells[-3]) == ledger[comparison.rounded].value
+    assert float(cells[-2]) == ledger[comparison.limit_key].value
+    assert float(cells[-1]) == pytest.approx(float(cells[-2]) - float(cells[-3]), abs=1e-12)
+    assert view.limits.limits[0].relation_words == "at or below the limit as entered"
+
+
+def test_above_a_limit_is_worded_as_fixed(boiler: Outcome, changed: Callable[..., Outcome]) -> None:
+    low = tuple(replace(x, limit=replace(x.limit, value=x.limit.value / 10)) for x in boiler.record.limits)
+    view = view_of(changed(boiler, limits=low))
+    assert {limit.relation_words for limit in view.limits.limits} == {"above the limit as entered"}
+    assert limit_cells(view, boiler.record.limits[0].limit_id.value)[-1].startswith("−")
+
+
+def test_a_limit_without_citation_is_not_compared_and_has_no_margin(
+    boiler: Outcome, changed: Callable[..., Outcome]
+) -> None:
+    bare = tuple(replace(x, citation=None) for x in boiler.record.limits)
+    view = view_of(changed(boiler, limits=bare))
+    assert all(limit.relation_words.startswith("not compared: ") for limit in view.limits.limits)
+    assert limit_cells(view, bare[0].limit_id.value)[-1] == "–"
+
+
+def test_an_excluded_run_is_told_from_an_invalid_one(boiler: Outcome, changed: Callable[..., Outcome]) -> None:
+    runs = tuple(
+        replace(run, excluded_because=Given("the fan tripped")) if at == 1 else run
+        for at, run in enumerate(boiler.record.runs)
+    )
+    view = view_of(changed(boiler, runs=runs))
+    assert any("is excluded by the user: the fan tripped" in words for words in view.quality.runs)
+    assert not any("is invalid" in words for words in view.quality.runs)
+
+
+def test_an_invalid_run_names_its_paragraph(boiler: Outcome, changed: Callable[..., Outcome]) -> None:
+    """A bias of a quarter of the span is not met: Method 7E § 13.2 makes the run invalid."""
+    calibrations = tuple(
+        replace(row, reading=replace(row.reading, value=row.reading.value + 12.5))
+        if row.channel.value == "NOx" and row.route.value.value == "system" and row.time.value.hour == 13
+        else row
+        for row in boiler.record.calibrations
+    )
+    outcome = changed(boiler, calibrations=calibrations)
+    assert not outcome.run("3").gas("nox").is_valid
+    view = view_of(outcome)
+    words = " ".join(view.quality.runs)
+    assert "is invalid under Method 7E, § 13.2 unless the authority agrees" in words
+    assert "Run 3" in words
+
+
+def test_what_is_missing_stays_a_dash(boiler: Outcome, changed: Callable[..., Outcome]) -> None:
+    outcome = changed(boiler, calibrations=())
+    view = view_of(outcome)
+    assert limit_cells(view, boiler.record.limits[0].limit_id.value)[1:] == ["–"] * 7
+
+
+def test_the_checklist_of_a_draft_says_what_is_missing_and_of_a_final_where_else(
+    boiler: Outcome, changed: Callable[..., Outcome]
+) -> None:
+    def words(view: View, number: str) -> str:
+        return next(row.words for group in view.checklist for row in group.rows if row.number == number)
+
+    test = replace(boiler.record.test, approvals=None, status=Given("draft"))
+    assert words(view_of(changed(boiler, test=test)), "12").startswith("missing: approvals")
+    final = replace(test, status=Given("final"))
+    view = view_of(changed(boiler, test=final))
+    assert words(view, "12") == "under separate cover"
+    assert words(view, "41") == "not part of this test"
+    assert view.draft_mark == ""
+
+
+def test_the_checklist_has_the_union_of_published_lines(boiler: Outcome) -> None:
+    rows = [row for group in view_of(boiler).checklist for row in group.rows]
+    assert [row.number for row in rows] == [str(number) for number in range(1, 60)]
+
+
+def test_the_page_follows_the_unit_system(boiler: Outcome, wood: Outcome) -> None:
+    assert (view_of(boiler).page, view_of(wood).page) == ("Letter", "A4")
+
+
+def test_two_test_days_stand_on_the_cover(boiler: Outcome, changed: Callable[..., Outcome]) -> None:
+    test = replace(boiler.record.test, last_test_day=Given(date(2026, 4, 15)))
+    assert view_of(changed(boiler, test=test)).cover.days == "2026-04-14 to 2026-04-15"
+
+
+def test_minute_readings_are_printed_on_request_only(boiler: Outcome) -> None:
+    def lines(view: View) -> int:
+        return sum(len(block.lines) for block in view.sections["inputs"] if block.title == "Readings")
+
+    assert lines(view_of(boiler)) == 0
+    assert lines(view_of(boiler, minute_data=True)) == len(boiler.record.readings.rows) + 1
+
+
+@pytest.mark.parametrize(
+    "sheets",
+    [
+        {"limits": ()},
+        {"cylinders": ()},
+        {"fuels": (), "fuel_use": (), "fuel_gas": ()},
+        {"limits": (), "cylinders": (), "calibrations": (), "events": (), "attachments": (), "sheets": ()},
+    ],
+    ids=["no limits", "no cylinders", "no fuel", "bare"],
+)
+def test_a_thin_record_still_makes_a_view_without_loose_ends(
+    boiler: Outcome, changed: Callable[..., Outcome], sheets: dict[str, Any]
+) -> None:
+    outcome = changed(boiler, **sheets)
+    view = view_of(outcome)
+    numbers = [cell for cell in shown_in(view) if not outcome.ledger[cell.key].is_indicator]
+    assert [cell.key for cell in numbers if cell.key not in view.places] == []
+
+
+def test_no_text_of_the_report_uses_a_forbidden_word(boiler: Outcome, wood: Outcome) -> None:
+    for outcome in (boiler, wood):
+        assert [text for text in texts(view_of(outcome)) if FORBIDDEN.search(text)] == []
+
+
+def test_the_same_outcome_gives_the_same_view(boiler: Outcome) -> None:
+    assert view_of(boiler) == view_of(boiler)
+
+
+def test_numbers_of_a_column_align_at_the_point(boiler: Outcome) -> None:
+    for block in view_of(boiler).sections["runs"]:
+        for table in block.tables:
+            for column in range(len(table.columns)):
+                cells = [row.cells[column] for row in table.rows if column < len(row.cells)]
+                numbers = [cell for cell in cells if isinstance(cell, Shown)]
+                behind = {cell.decimals + int(re.sub(r"\D", "", cell.pad) or 0) for cell in numbers}
+                assert len(behind) <= 1
