@@ -1,8 +1,8 @@
 """What the command line and other programs call: read, assess, write.
 
-    read      a field workbook or a JSON record becomes a `Record`, or problems that name each cell
-    assess    the record becomes an `Outcome`: ledger, criteria, balance, averages, comparisons
-    report    read, assess and write JSON, workbook and PDF, in this order
+read      a field workbook or a JSON record becomes a `Record`, or problems that name each cell
+assess    the record becomes an `Outcome`: ledger, criteria, balance, averages, comparisons
+report    read, assess and write JSON, workbook and PDF, in this order
 """
 
 from __future__ import annotations

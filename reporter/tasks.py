@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
+import traceback
 from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import datetime
 from pathlib import Path
 
 from reporter.cli import OK, UNREADABLE, UNWRITTEN, WITHHELD
-from reporter.errors import FluebookError, OutputError, UnreadableError
+from reporter.errors import OutputError, UnreadableError
 from reporter.outcome import Outcome
 from reporter.problems import Grade, Problem
 
@@ -32,28 +33,28 @@ def check_input(path: Path) -> Task:
 
     try:
         outcome = opened(path)
+        return _assessed(path, outcome, summary(outcome), "assessed")
     except UnreadableError as error:
         return _unreadable(path, error.problems)
-    return _assessed(path, outcome, summary(outcome), "assessed")
+    except Exception as error:  # a fault of the program must not stop the other inputs
+        return _stopped(path, error)
 
 
-def report_input(
-    path: Path, out: Path, issued: datetime, templates: Path | None, minute_data: bool
-) -> Task:
+def report_input(path: Path, out: Path, issued: datetime, templates: Path | None, minute_data: bool) -> Task:
     """Write the three files of an input and say in a few lines what was found."""
     from reporter.api import report
     from reporter.terminal import summary
 
     try:
         made = report(path, out, issued=issued, templates=templates, minute_data=minute_data)
+        files = ", ".join(file.name for file in made.files)
+        return _assessed(path, made.outcome, f"{summary(made.outcome)}\n\nWritten: {files}", "written")
     except UnreadableError as error:
         return _unreadable(path, error.problems)
     except OutputError as error:
         return Task(path.name, f"{path.name}: {error}", UNWRITTEN, "not written")
-    except FluebookError as error:
-        return Task(path.name, f"{path.name}: {error}", UNREADABLE, "stopped by an error")
-    files = ", ".join(file.name for file in made.files)
-    return _assessed(path, made.outcome, f"{summary(made.outcome)}\n\nWritten: {files}", "written")
+    except Exception as error:  # a fault of the program must not stop the other inputs
+        return _stopped(path, error)
 
 
 def _assessed(path: Path, outcome: Outcome, text: str, done: str) -> Task:
@@ -69,6 +70,14 @@ def _unreadable(path: Path, problems: Sequence[Problem]) -> Task:
     count = _count(problems, Grade.UNREADABLE)
     head = f"{path.name} cannot be read: {count} problem(s)\n"
     return Task(path.name, head + problems_text(problems), UNREADABLE, "cannot be read", count)
+
+
+def _stopped(path: Path, error: Exception) -> Task:
+    """An input that met a fault of the program: what it was, and where, in one line that can be sent on."""
+    steps = traceback.extract_tb(error.__traceback__)
+    where = ", ".join(f"{Path(step.filename).name} line {step.lineno}" for step in steps[-2:])
+    text = f"{path.name}: stopped by an error of the program\n  {type(error).__name__}: {error} ({where})"
+    return Task(path.name, text, UNREADABLE, "stopped by an error")
 
 
 def _count(problems: Sequence[Problem], grade: Grade) -> int:

@@ -6,7 +6,7 @@ of the report; numbers are rounded for print only.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 from dataclasses import replace
 from datetime import datetime
 
@@ -285,6 +285,6 @@ def _number(entry: Entry) -> str:
 
 
 def _finding(outcome: Outcome, run: str, said: str) -> str:
-    names: Iterable[str] = (result.run.run.value for result in outcome.runs if result.key == run)
-    name = next(iter(names), "")
+    names = (result.run.run.value for result in outcome.runs if run in (result.key, result.run.run.value))
+    name = next(names, "")
     return paragraph(f"Run {name}: {said}" if name else said)

@@ -9,7 +9,7 @@ from collections.abc import Collection, Sequence
 #: Characters of a line.
 WIDTH = 100
 # What could steer a terminal or turn the direction of the text; it comes from names and cells of others.
-_STEERING = re.compile("[\x00-\x1f\x7f-\x9f\u200e\u200f\u202a-\u202e\u2066-\u2069]+")
+_STEERING = re.compile("[\x00-\x1f\x7f-\x9f\u061c\u200e\u200f\u202a-\u202e\u2066-\u2069]+")
 _PLAIN = str.maketrans(
     {
         "−": "-", "–": "-", "—": "-", "·": "*", "×": "x", "≤": "<=", "≥": ">=", "°": " deg ", "µ": "u",
@@ -21,15 +21,16 @@ _PLAIN = str.maketrans(
 
 
 def encodable(text: str, encoding: str) -> str:
-    """The text with what an encoding cannot show put in plainer characters.
+    """The text with what an encoding cannot show put in plainer characters, and with nothing that steers a terminal.
 
     Parameters
     ----------
     text
-        Any text.
+        Any text, of several lines.
     encoding
         Of the stream it goes to.
     """
+    text = "\n".join(map(_still, text.split("\n")))
     try:
         text.encode(encoding)
     except UnicodeEncodeError:

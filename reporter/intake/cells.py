@@ -9,7 +9,7 @@ from reporter.errors import UnitError
 from reporter.gases import all_gases, find_gas
 from reporter.intake.dates import Fault
 from reporter.intake.sheets import ANY, Column, choice_words, fold
-from reporter.intake.table import Cell, clean
+from reporter.intake.table import Cell, clean, plain_number
 from reporter.units import ReadUnit, convert, dimension, read_unit, spellings_of
 
 _NUMBER = re.compile(r"^[+\-−]?(?:\d+\.?\d*|\.\d+)(?:[eE][+\-]?\d{1,3})?$")
@@ -111,9 +111,13 @@ def out_of_range(value: float, unit: ReadUnit | None, column: Column) -> Fault |
     if (low is None or value >= low - slack) and (high is None or value <= high + slack):
         return None
     suffix = unit.unit if unit else ""
-    bounds = f"from {low:.6g}" if low is not None else ""
-    bounds += f" to {high:.6g}" if high is not None else ""
+    bounds = f"from {_plain_bound(low)}" if low is not None else ""
+    bounds += f" to {_plain_bound(high)}" if high is not None else ""
     return Fault("out-of-range", f"{value:g} {suffix}".strip(), f"a value {bounds.strip()} {suffix}".strip())
+
+
+def _plain_bound(bound: float) -> str:
+    return plain_number(float(f"{bound:.4g}"))
 
 
 def _bounds(unit: ReadUnit | None, column: Column) -> tuple[float | None, float | None]:

@@ -149,7 +149,8 @@ def runs_with_readings(
         found = f"run {row.text('run')} from {start.value:%Y-%m-%d %H:%M} to {end.value:%Y-%m-%d %H:%M}"
         stamped = any(start.value <= moment <= end.value for moment in times)
         why = f"no whole interval of {step.total_seconds():g} s" if stamped else _span(times)
-        gathered.add("run-without-readings", row.place, f"{found}; {why}")
+        remedy = "compare the logging interval on the sheet Test with the times of the readings" if stamped else ""
+        gathered.add("run-without-readings", row.place, f"{found}; {why}", remedy=remedy)
 
 
 def _span(times: Sequence[datetime]) -> str:

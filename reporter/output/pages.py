@@ -97,7 +97,8 @@ def _environment(overlay: Path | None) -> Environment:
 
 
 def rich(text: str) -> str | Markup:
-    """A text with the letter of NOx lowered and powers of ten raised; everything else stays text."""
+    """A text with the letter of NOx lowered, powers of ten raised, and no break behind a paragraph sign."""
+    text = text.replace("§ ", "§\u00a0")
     if "NOx" not in text and "^" not in text:
         return text
     from markupsafe import Markup, escape

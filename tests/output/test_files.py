@@ -99,8 +99,8 @@ def test_where_one_of_several_cannot_be_written_all_places_are_as_they_were(
     monkeypatch.setattr(os, "replace", locked)
     if not linked:
         monkeypatch.setattr(os, "link", failing(errno.EPERM))
-    with pytest.raises(OutputError, match="a.pdf was not written.*another program has the file open"):
-        write_all({path: b"new" for path in paths})
+    with pytest.raises(OutputError, match="another program has the file open"):
+        write_all(dict.fromkeys(paths, b"new"))
     left = {path.name: path.read_bytes() for path in tmp_path.iterdir()}
     assert left == {"a.json": b"old json", "a.pdf": b"old pdf"}
 

@@ -173,7 +173,7 @@ def test_the_text_is_well_formed_and_leaves_nothing_undefined(boiler: Outcome) -
 def test_rich_text_marks_up_only_what_is_ours() -> None:
     assert str(rich("NOx & <b>")) == "NO<sub>x</sub> &amp; &lt;b&gt;"
     assert str(rich("1.2×10^−7 lb")) == "1.2×10<sup>−7</sup> lb"
-    assert rich("plain <text>") == "plain <text>"
+    assert rich("plain <text>, § 8") == "plain <text>, §\u00a08"
 
 
 def test_the_same_input_gives_the_same_bytes_in_another_process(boiler_pdf: bytes) -> None:

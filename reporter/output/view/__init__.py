@@ -12,7 +12,7 @@ from reporter.output.view.calibrations import calibrations
 from reporter.output.view.checklist import checklist
 from reporter.output.view.closing import cautions, references, statements
 from reporter.output.view.combustion import combustion
-from reporter.output.view.cover import cover, is_draft, issued, report_number, revision, signatures
+from reporter.output.view.cover import cover, is_draft, report_number, revision, signatures
 from reporter.output.view.desk import Desk
 from reporter.output.view.documents import Document, documents
 from reporter.output.view.inputs import inputs
@@ -74,7 +74,6 @@ def build_view(
         revision=revision(desk),
         input_hash=outcome.record.source.sha256[:_HASH_SHOWN],
         firm=test.testing_firm.value,
-        issued=issued(desk),
         headings=desk.headings(),
         cover=cover(desk),
         limits=compared,
@@ -89,7 +88,6 @@ def build_view(
         cautions=cautions(desk),
         statements=statements(desk, attached),
         places=dict(desk.places),
-        printed=frozenset(desk.printed),
     )
 
 

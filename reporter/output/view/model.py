@@ -323,7 +323,6 @@ class View:
     revision: str
     input_hash: str
     firm: str
-    issued: str
     headings: Mapping[str, Heading]
     cover: Cover
     limits: LimitsView
@@ -338,4 +337,3 @@ class View:
     cautions: tuple[str, ...]
     statements: tuple[str, ...]
     places: Mapping[str, str]
-    printed: frozenset[str]

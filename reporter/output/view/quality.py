@@ -55,16 +55,24 @@ def _overview(desk: Desk) -> Table:
     groups = _groups(desk.outcome.checks)
     gases = list(dict.fromkeys(check.gas for check in desk.outcome.checks if check.gas))
     columns = [Column("Criterion", width=3.6), Column("Paragraph", width=2.2)]
-    columns += [Column(gas_name(gas), width=1.1) for gas in gases]
+    columns += [Column(gas_name(gas), width=1.1) for gas in gases] or [Column("", width=1.1)]
     rows = []
     for title, checks in groups.items():
         cells: list[AnyCell] = [formulas(title), checks[0].citation.text()]
-        for gas in gases:
-            mine = [check.met for check in checks if check.gas == gas]
-            words = desk.words("criterion.met" if all(mine) else "criterion.not_met")
-            cells.append(Cell(words, strong=not all(mine)) if mine else desk.missing)
+        if any(check.gas for check in checks):
+            cells += [_answer(desk, [check.met for check in checks if check.gas == gas]) for gas in gases]
+        else:
+            cells.append(_answer(desk, [check.met for check in checks], span=max(len(gases), 1)))
         rows.append(Row(tuple(cells)))
     return Table(tuple(columns), tuple(rows), note=desk.words("criterion.overview"))
+
+
+def _answer(desk: Desk, met: Sequence[bool], *, span: int = 1) -> AnyCell:
+    """Whether all applications of a criterion are met; a dash where there is none."""
+    if not met:
+        return desk.missing
+    words = desk.words("criterion.met" if all(met) else "criterion.not_met")
+    return Cell(words, strong=not all(met), span=span)
 
 
 def _not_met(desk: Desk, check: Check) -> str:
