@@ -13,7 +13,7 @@ from __future__ import annotations
 from importlib import import_module
 from typing import TYPE_CHECKING, Any
 
-from reporter.version import VERSION as __version__
+from reporter.version import VERSION
 
 if TYPE_CHECKING:
     from reporter.api import Report as Report
@@ -34,6 +34,9 @@ if TYPE_CHECKING:
     from reporter.problems import Problem as Problem
     from reporter.record import Record as Record
     from reporter.units import quantity as quantity
+
+#: The version of the package.
+__version__ = VERSION
 
 _HOMES = {
     "Report": "api",

@@ -142,8 +142,8 @@ def _encodable(text: str, stream: TextIO) -> str:
 
 
 def _blank(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
-    from reporter.errors import FluebookError, OutputError
     from reporter.equation import System
+    from reporter.errors import FluebookError, OutputError
     from reporter.intake.blank import write_blank
 
     gases = [name.strip() for name in given.gases.split(",") if name.strip()]

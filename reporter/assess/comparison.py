@@ -8,6 +8,7 @@ from dataclasses import dataclass, replace
 from typing import Any
 
 from reporter.assess.averages import Average, order_of_averaging
+from reporter.assess.extremes import highest_of_valid, lowest_of_valid
 from reporter.assess.rounding import Rule, decimals_of, rounding_rule, significant_places
 from reporter.basis import NO_BASIS, NO_VOLUME, Basis, Moisture, Oxygen, OxygenKind
 from reporter.conversions import convert_entry
@@ -29,7 +30,7 @@ from reporter.record import Limit, MoistureBasis, text_of
 from reporter.reduction import plans as kinds
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
-from reporter.reduction.equations import carried, highest_of_valid, lowest_of_valid
+from reporter.reduction.equations import carried
 from reporter.reduction.plans import Plan
 from reporter.reduction.results import Missing
 

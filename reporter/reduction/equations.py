@@ -1,4 +1,4 @@
-"""The small equations between the methods: values taken over, heat from fuel meters, oxygen uncertainty."""
+"""The small equations between the methods: values taken over, diluents, shares, volumes from masses."""
 
 from __future__ import annotations
 
@@ -7,7 +7,7 @@ from typing import Any
 
 from reporter.basis import NEED_DRY, NO_VOLUME, Basis
 from reporter.equation import Citation, Value, constant, equation
-from reporter.functions import at_least, choose, higher, lower, total
+from reporter.functions import at_least, choose
 
 _PRACTICE = Citation("practice")
 _UNITS = Citation("units")
@@ -31,148 +31,6 @@ def carried(*, value: Value) -> Value:
         The same value [same unit and basis].
     """
     return value
-
-
-@equation(
-    "q",
-    ("ft3/h", "m3/h"),
-    {"end": ("ft3", "m3"), "start": ("ft3", "m3"), "factor": "1", "duration": "h"},
-    _PRACTICE,
-    symbols={"end": "M_end", "start": "M_start", "factor": "Y", "duration": "t"},
-)
-def metered_volume_rate(*, end: Value, start: Value, factor: Value, duration: Value) -> Value:
-    """Fuel rate by volume from a meter read at the start and the end of a run.
-
-    Parameters
-    ----------
-    end, start
-        Meter readings [ft3 or m3].
-    factor
-        Meter factor [1].
-    duration
-        Length of the run [h], not zero.
-
-    Returns
-    -------
-    float
-        Fuel rate [ft3/h or m3/h], at the meter's base conditions.
-    """
-    return (end - start) * factor / duration
-
-
-@equation(
-    "H",
-    _HEAT,
-    {"rate": ("ft3/h", "m3/h"), "heating_value": ("Btu/ft3", "MJ/m3")},
-    _PRACTICE,
-    symbols={"rate": "q", "heating_value": "GCV"},
-)
-def heat_from_volume(
-    *,
-    rate: Value,
-    heating_value: Value,
-    scale: Value = constant(1e-6, ("MMBtu/Btu", "GJ/MJ"), si=1e-3, cite=_UNITS),
-) -> Value:
-    """Heat input from a fuel rate by volume and a gross heating value at the same conditions.
-
-    Parameters
-    ----------
-    rate
-        Fuel rate [ft3/h or m3/h].
-    heating_value
-        Gross heating value [Btu/ft3 or MJ/m3].
-    scale
-        Factor between the units.
-
-    Returns
-    -------
-    float
-        Heat input, gross [MMBtu/h or GJ/h].
-    """
-    return rate * heating_value * scale
-
-
-@equation(
-    "H",
-    _HEAT,
-    {"rate": ("lb/h", "kg/h"), "heating_value": ("Btu/lb", "kJ/kg")},
-    _PRACTICE,
-    symbols={"rate": "q", "heating_value": "GCV"},
-)
-def heat_from_mass(
-    *,
-    rate: Value,
-    heating_value: Value,
-    scale: Value = constant(1e-6, ("MMBtu/Btu", "GJ/kJ"), cite=_UNITS),
-) -> Value:
-    """Heat input from a fuel rate by mass and a gross heating value.
-
-    Parameters
-    ----------
-    rate
-        Fuel rate [lb/h or kg/h].
-    heating_value
-        Gross heating value [Btu/lb or kJ/kg].
-    scale
-        Factor between the units.
-
-    Returns
-    -------
-    float
-        Heat input, gross [MMBtu/h or GJ/h].
-    """
-    return rate * heating_value * scale
-
-
-@equation(
-    "H",
-    _HEAT,
-    {"rate": ("gal/h", "L/h"), "heating_value": ("Btu/gal", "MJ/L")},
-    _PRACTICE,
-    symbols={"rate": "q", "heating_value": "GCV"},
-)
-def heat_from_liquid(
-    *,
-    rate: Value,
-    heating_value: Value,
-    scale: Value = constant(1e-6, ("MMBtu/Btu", "GJ/MJ"), si=1e-3, cite=_UNITS),
-) -> Value:
-    """Heat input from a liquid fuel's rate by volume and a gross heating value by volume.
-
-    Parameters
-    ----------
-    rate
-        Fuel rate [gal/h or L/h].
-    heating_value
-        Gross heating value [Btu/gal or MJ/L].
-    scale
-        Factor between the units.
-
-    Returns
-    -------
-    float
-        Heat input, gross [MMBtu/h or GJ/h].
-    """
-    return rate * heating_value * scale
-
-
-@equation("X", "1", {"part": "*h", "whole": "*h"}, _PRACTICE, symbols={"part": "H_k", "whole": "H"})
-def heat_share(*, part: Value, whole: Value) -> Value:
-    """Share of one fuel in the heat input.
-
-    Parameters
-    ----------
-    part
-        Heat input of the fuel [MMBtu/h or GJ/h].
-    whole
-        Heat input of all fuels [same unit], not zero.
-
-    Returns
-    -------
-    float
-        Share [1].
-    """
-    return part / whole
 
 
 @equation(
@@ -252,30 +110,6 @@ def diluent_uncertainty(
 
 
 @equation(
-    "H",
-    _HEAT,
-    {"parts": _HEAT},
-    _PRACTICE,
-    symbols={"parts": "H_k"},
-    series=("parts",),
-)
-def heat_total(*, parts: Value) -> Value:
-    """Heat input of all fuels of a run.
-
-    Parameters
-    ----------
-    parts
-        Heat input of each fuel [MMBtu/h or GJ/h], a series.
-
-    Returns
-    -------
-    float
-        Sum [same unit].
-    """
-    return total(parts)
-
-
-@equation(
     "F_o,bound",
     "1",
     {"expected": "1", "share": "%"},
@@ -300,60 +134,6 @@ def fuel_factor_bound(*, expected: Value, share: Value, hundred: Value = constan
         Bound [1].
     """
     return expected * (hundred + share) / hundred
-
-
-@equation(
-    "x_max",
-    "*v",
-    {"values": "*v", "flags": "1"},
-    Citation("record", "", "each run is compared"),
-    symbols={"values": "x", "flags": "v"},
-    gives="values",
-    series=("values", "flags"),
-)
-def highest_of_valid(*, values: Value, flags: Value) -> Value:
-    """The highest result among the runs that count.
-
-    Parameters
-    ----------
-    values
-        Result of each run [any unit], a series.
-    flags
-        1 where the run counts, else 0 [1], a series.
-
-    Returns
-    -------
-    float
-        Highest [same unit and basis]; the lowest of all where no run counts.
-    """
-    return higher(choose(flags, values, lower(values)))
-
-
-@equation(
-    "x_min",
-    "*v",
-    {"values": "*v", "flags": "1"},
-    Citation("record", "", "each run is compared"),
-    symbols={"values": "x", "flags": "v"},
-    gives="values",
-    series=("values", "flags"),
-)
-def lowest_of_valid(*, values: Value, flags: Value) -> Value:
-    """The lowest result among the runs that count.
-
-    Parameters
-    ----------
-    values
-        Result of each run [any unit], a series.
-    flags
-        1 where the run counts, else 0 [1], a series.
-
-    Returns
-    -------
-    float
-        Lowest [same unit and basis]; the highest of all where no run counts.
-    """
-    return lower(choose(flags, values, higher(values)))
 
 
 @equation(

@@ -14,7 +14,7 @@ from reporter.methods.tables import DEFAULT_TABLE, FuelFactor, fuel_factors
 from reporter.record import FuelRow, Real, text_of
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
-from reporter.reduction.equations import heat_share
+from reporter.reduction.fuel_heat import heat_share
 
 _ELEMENTS = ("hydrogen", "carbon", "sulfur", "nitrogen", "oxygen")
 #: How far shares of heat input as entered may be from 100 % [%].

@@ -13,8 +13,8 @@ from reporter.methods.averages import percent_difference
 from reporter.record import FuelUse, Real, text_of
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
-from reporter.reduction.equations import (
-    carried,
+from reporter.reduction.equations import carried
+from reporter.reduction.fuel_heat import (
     heat_from_liquid,
     heat_from_mass,
     heat_from_volume,

@@ -30,9 +30,29 @@ HELP = [PYTHON, "-m", "reporter", "--help"]
 CHECK = [PYTHON, "-m", "reporter", "check", str(SAMPLE)]
 
 
-def report_command(folder: str) -> list[str]:
-    """The main job on the sample."""
-    return [PYTHON, "-m", "reporter", "report", str(SAMPLE), "--out", folder]
+def report_command(source: Path, folder: str) -> list[str]:
+    """The main job on a workbook."""
+    return [PYTHON, "-m", "reporter", "report", str(source), "--out", folder]
+
+
+def short_test(folder: str) -> Path:
+    """The sample with NOx and O2 alone, no process log and no documents: a report of 12 to 15 pages."""
+    sys.path.insert(0, str(ROOT / "sample_inputs"))
+    from make_samples import scenario, sheets, workbook
+
+    data = scenario("gas_boiler_us")
+    kept = {}
+    for name, rows in sheets.all_sheets(data).items():
+        if name in {"Process", "Attachments", "Points"}:
+            continue
+        kept[name] = [
+            {column: value for column, value in row.items() if column not in {"CO", "CO2"}}
+            for row in rows
+            if not {row.get("Channel"), row.get("Gas"), row.get("Pollutant")} & {"CO", "CO2"}
+        ]
+    path = Path(folder) / "short_test.xlsx"
+    path.write_bytes(workbook.write(data["title"], kept))
+    return path
 
 
 def seconds(command: list[str]) -> float:
@@ -50,6 +70,13 @@ def pair(name: str, ours: list[str], floor: list[str], target: float, rounds: in
     mine = statistics.median(a for a, _ in times) * 1000
     base = statistics.median(b for _, b in times) * 1000
     print(f"{name:<44}{mine:9.0f} ms {base:9.0f} ms   ratio {ratio:5.2f}   target {target:g}")
+
+
+def pages(path: Path) -> int:
+    """Pages of a PDF."""
+    from pypdf import PdfReader
+
+    return len(PdfReader(path).pages)
 
 
 def inside() -> None:
@@ -89,7 +116,11 @@ def main() -> None:
     pair("--help / bare Python", HELP, BARE, 4, rounds)
     pair("check / import openpyxl and load the sample", CHECK, LOAD, 3, rounds)
     with tempfile.TemporaryDirectory() as folder:
-        pair("report / import the renderer, one line", report_command(folder), FLOOR, 4, rounds)
+        short = report_command(short_test(folder), f"{folder}/out")
+        pair("report of a short test / renderer, one line", short, FLOOR, 4, rounds)
+        print("   pages:", pages(Path(folder) / "out" / "short_test.pdf"))
+        pair("report of the sample / renderer, one line", report_command(SAMPLE, folder), FLOOR, 4, rounds)
+        print("   pages:", pages(Path(folder) / f"{SAMPLE.stem}.pdf"))
     inside()
 
 
