@@ -13,9 +13,7 @@ from reporter.units import factor, known
 _CITE = Citation("units")
 
 
-def convert_entry(
-    ledger: Ledger, key: str, entry: Entry, unit: str, *, label: str = "", symbol: str = ""
-) -> Entry:
+def convert_entry(ledger: Ledger, key: str, entry: Entry, unit: str, *, label: str = "", symbol: str = "") -> Entry:
     """A number in another unit of its dimension, recorded with the factor; the entry itself in its own unit.
 
     Parameters

@@ -338,9 +338,7 @@ def _finite(result: Any, name: str, values: Mapping[str, Any]) -> Any:
         return result
     number = getattr(result, "magnitude", result)
     if isinstance(number, np.ndarray):
-        numbers = (
-            [getattr(n, "nominal_value", n) for n in number.ravel()] if number.dtype == object else number
-        )
+        numbers = [getattr(n, "nominal_value", n) for n in number.ravel()] if number.dtype == object else number
         if np.iscomplexobj(numbers) or not np.all(np.isfinite(numbers)):
             raise EquationError(f"{name} has no finite real value", _shown(values))
         return float(result) if result is number and number.ndim == 0 else result

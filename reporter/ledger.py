@@ -212,9 +212,7 @@ class Ledger:
             raise EquationError(f"{key}: {error.message}", error.place) from error
         if not isinstance(value, float):
             raise LedgerError(f"{key}: {eq.name} gives a series, and an entry is computed as one number")
-        keys = tuple(
-            (n, v.key if isinstance(v, Entry) else tuple(e.key for e in v)) for n, v in given.items()
-        )
+        keys = tuple((n, v.key if isinstance(v, Entry) else tuple(e.key for e in v)) for n, v in given.items())
         origin = FromEquation(eq, keys)
         return self._add(
             Entry(key, value, unit, basis or result_basis, origin, label, symbol or eq.symbol, note, decimals)
@@ -239,9 +237,7 @@ class Ledger:
 
     def _add(self, entry: Entry) -> Entry:
         if not KEY.fullmatch(entry.key) or len(entry.key) > 200 or _CELL.fullmatch(entry.key):
-            raise LedgerError(
-                f"{entry.key!r} is not a key: lower-case segments joined by dots, no cell's name"
-            )
+            raise LedgerError(f"{entry.key!r} is not a key: lower-case segments joined by dots, no cell's name")
         if entry.key in self._entries:
             raise LedgerError(f"the key {entry.key!r} is taken")
         self._entries[entry.key] = entry

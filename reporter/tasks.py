@@ -43,12 +43,12 @@ def check_input(path: Path) -> Task:
 def report_input(path: Path, out: Path, issued: datetime, templates: Path | None, minute_data: bool) -> Task:
     """Write the three files of an input and say in a few lines what was found."""
     from reporter.api import report
-    from reporter.terminal import summary
+    from reporter.terminal_brief import brief
 
     try:
         made = report(path, out, issued=issued, templates=templates, minute_data=minute_data)
         files = ", ".join(file.name for file in made.files)
-        return _assessed(path, made.outcome, f"{summary(made.outcome)}\n\nWritten: {files}", "written")
+        return _assessed(path, made.outcome, f"{brief(made.outcome)}\n  Written: {files}", "written")
     except UnreadableError as error:
         return _unreadable(path, error.problems)
     except OutputError as error:

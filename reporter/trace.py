@@ -134,9 +134,7 @@ class Terms:
     def _with(self, other: Any, swap: bool, operator: str) -> Terms:
         others = other.items if isinstance(other, Terms) else (as_term(other),) * len(self.items)
         pairs = zip(self.items, others, strict=True)
-        return Terms(
-            tuple(Operation(operator, b, a) if swap else Operation(operator, a, b) for a, b in pairs)
-        )
+        return Terms(tuple(Operation(operator, b, a) if swap else Operation(operator, a, b) for a, b in pairs))
 
     def __add__(self, other: Any) -> Terms:
         return self._with(other, False, "+")

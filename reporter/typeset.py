@@ -228,9 +228,7 @@ def _constant_text(value: float) -> str:
 def symbol_html(symbol: str) -> str:
     """A symbol such as ``C_d`` or ``%O2_w`` with its subscript set; digits after a letter are lowered."""
     head, _, tail = symbol.partition("_")
-    text = (
-        f"<i>{_formula_digits(head)}</i>" if head[:1].isalpha() and len(head) <= 2 else _formula_digits(head)
-    )
+    text = f"<i>{_formula_digits(head)}</i>" if head[:1].isalpha() and len(head) <= 2 else _formula_digits(head)
     return f"{text}<sub>{_formula_digits(tail)}</sub>" if tail else text
 
 

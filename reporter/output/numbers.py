@@ -1,7 +1,8 @@
 """How numbers, units and moments are written for people: rounded once, here.
 
-Rounding for print is half to even on the decimal digits of the stored number.  A minus is a true minus, and
-groups of three digits are set apart by a narrow space from 10 000 on.
+Rounding for print is half to even on the decimal value of the number, taken with 15 significant digits, so that
+the binary residue of a mean decides nothing.  A minus is a true minus, and groups of three digits are set apart
+by a narrow space from 10 000 on.
 """
 
 from __future__ import annotations
@@ -12,12 +13,16 @@ from datetime import date, datetime
 from decimal import ROUND_HALF_EVEN, Decimal
 
 from reporter.errors import LedgerError
-from reporter.ledger import Entry
+from reporter.ledger import Entry, FromEquation
 from reporter.quantities import quantity_of
 
 #: Significant digits of a number whose quantity is not in the table.
 SIGNIFICANT = 4
 _SMALLEST, _GROUPED, _LARGEST = 1e-4, 10_000, 1e7
+#: Quantities that need other decimals in one unit than in the rest.
+_BY_UNIT = {("static_pressure", "kPa"): 3, ("load", "MW"): 2}
+#: The mean of two readings ends on a half: it is printed with one decimal more.
+_ONE_MORE = "mean_of_two"
 #: A space as wide as a digit (and as a minus), for numbers that are aligned as text.
 FIGURE_SPACE = "\u2007"
 _NARROW = "\u202f"
@@ -27,10 +32,15 @@ _POWER = re.compile(r"(?<=ft|in|[^a-zA-Z]m|cm|mm)[23](?![0-9A-Za-z])|(?<=^m)[23]
 _FORMULA = re.compile(r"(?<![A-Za-z])(in|mm)?(CO2|SO2|NO2|N2O|H2O|H2S|NH3|O2|N2|H2|C3H8|CH4|C2H6)(?![A-Za-z0-9])")
 
 
+def decimal_value(value: float) -> Decimal:
+    """The decimal value of a number: its first 15 significant digits, which a double holds without loss."""
+    return Decimal(f"{float(value):.15g}")
+
+
 def fixed(value: float, decimals: int) -> str:
     """A number with a fixed count of decimals, e.g. ``12.30``."""
     step = Decimal(1).scaleb(-decimals)
-    rounded = Decimal(repr(float(value))).quantize(step, rounding=ROUND_HALF_EVEN)
+    rounded = decimal_value(value).quantize(step, rounding=ROUND_HALF_EVEN)
     if rounded == 0:
         rounded = abs(rounded)
     text = f"{rounded:f}"
@@ -43,13 +53,13 @@ def significant(value: float, digits: int) -> str:
     if size == 0 or not math.isfinite(size):
         return fixed(value, 0)
     if size < _SMALLEST or size >= _LARGEST:
-        mantissa, power = f"{Decimal(repr(float(value))):.{digits - 1}e}".split("e")
+        mantissa, power = f"{decimal_value(value):.{digits - 1}e}".split("e")
         return f"{mantissa}×10^{int(power)}".replace("-", "−")
     decimals = digits - 1 - math.floor(math.log10(size))
     if decimals >= 0:
         return fixed(value, decimals)
     step = Decimal(1).scaleb(-decimals)
-    return _grouped(f"{Decimal(repr(float(value))).quantize(step, rounding=ROUND_HALF_EVEN):f}").replace("-", "−")
+    return _grouped(f"{decimal_value(value).quantize(step, rounding=ROUND_HALF_EVEN):f}").replace("-", "−")
 
 
 def shortest(value: float, digits: int) -> str:
@@ -62,7 +72,7 @@ def shortest(value: float, digits: int) -> str:
 
 
 def shown(entry: Entry) -> str:
-    """The printed text of an entry: its own decimals, else those of its quantity."""
+    """The printed text of an entry: its own decimals, else those of its quantity in its unit."""
     value = float(entry.value)
     if entry.decimals is not None:
         return fixed(value, max(entry.decimals, 0))
@@ -70,9 +80,11 @@ def shown(entry: Entry) -> str:
         found, _ = quantity_of(entry.key)
     except LedgerError:
         return significant(value, SIGNIFICANT)
-    if found.decimals is not None:
-        return fixed(value, found.decimals)
-    return significant(value, found.significant)
+    decimals = _BY_UNIT.get((found.segment, entry.unit), found.decimals)
+    if decimals is None:
+        return significant(value, found.significant)
+    origin = entry.origin
+    return fixed(value, decimals + (isinstance(origin, FromEquation) and origin.equation.name == _ONE_MORE))
 
 
 def decimals_in(text: str) -> int:

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from datetime import datetime
 
 import pytest
 
 from reporter.basis import NO_BASIS
 from reporter.ledger import Entry, Stated
+from reporter.outcome import Outcome
 from reporter.output.numbers import decimals_in, fixed, formulas, period, shortest, shown, significant, unit_text
 
 
@@ -15,7 +17,10 @@ from reporter.output.numbers import decimals_in, fixed, formulas, period, shorte
     ("value", "decimals", "text"),
     [
         (0.125, 2, "0.12"),  # half to even
-        (0.135, 2, "0.14"),  # the digits of the shortest decimal decide, not the binary value below it
+        (0.135, 2, "0.14"),  # the decimal value decides, not the binary value below it
+        ((25.04 + 25.25) / 2, 2, "25.14"),  # 25.145 and a residue: half to even
+        ((0.16 + 0.17) / 2, 2, "0.16"),
+        (9.134999999999, 2, "9.13"),  # twelve nines are below the half
         (-0.004, 2, "0.00"),  # no minus before a printed zero
         (-3.25, 1, "−3.2"),
         (12345.6, 0, "12\u202f346"),
@@ -53,6 +58,19 @@ def test_an_entry_is_rounded_by_its_own_decimals_else_by_its_quantity() -> None:
     assert shown(entry("run.1.nox.corrected")) == "24.06"
     assert shown(entry("run.1.nox.corrected", decimals=0)) == "24"
     assert shown(entry("run.1.nox.emission_rate")) == "24.06"
+
+
+def test_decimals_follow_the_unit_where_it_is_coarse() -> None:
+    static = Entry("run.1.static_pressure", -0.085, "kPa", NO_BASIS, Stated("test"))
+    assert (shown(static), shown(replace(static, unit="inH2O"))) == ("−0.085", "−0.08")
+    load = Entry("run.1.load", 4.71, "MW", NO_BASIS, Stated("test"))
+    assert (shown(load), shown(replace(load, unit="klb/h"))) == ("4.71", "4.7")
+
+
+def test_the_mean_of_two_readings_has_a_decimal_more(boiler: Outcome) -> None:
+    ledger = boiler.ledger
+    assert shown(ledger["run.1.nox.zero"]) == "0.165"
+    assert shown(ledger["calibration.nox.system_1.reading"]) == "0.16"
 
 
 def test_decimals_are_counted_for_alignment() -> None:
