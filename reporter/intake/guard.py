@@ -11,22 +11,25 @@ import io
 import re
 import zipfile
 import zlib
-from collections.abc import Iterator
+from collections import Counter
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 
 MEGABYTE = 1 << 20
 #: Caps on what a workbook may unpack to.
-MAX_TOTAL = 200 * MEGABYTE
+MAX_TOTAL = 100 * MEGABYTE
 MAX_RATIO = 200
 MAX_ENTRIES = 2000
 #: A part smaller than this may be packed at any ratio (repeated styles pack very well).
 SMALL_PART = MEGABYTE
-#: Caps on the cells of one sheet: outermost column and row, number of cells, area of merged cells and links.
+#: Caps on the cells of one sheet: outermost column and row, area of merged cells and links.
 MAX_COLUMN = 512
 MAX_ROW = 1_048_576
-MAX_CELLS = 2_500_000
-MAX_AREA = 200_000
-MAX_ROW_BYTES = 8 * MEGABYTE
+MAX_AREA = 20_000
+#: Caps on what all parts hold together, by the name of the element.
+MAX_ELEMENTS = {"c": 500_000, "si": 500_000, "row": 200_000, "xf": 65_490, "sheet": 255}
+_CALLED = {"c": "cells", "si": "texts", "row": "rows", "xf": "cell formats", "sheet": "sheets"}
+MAX_ROW_BYTES = 4 * MEGABYTE
 
 _WIDE_MARKS = (b"\xff\xfe", b"\xfe\xff")
 _OLE = b"\xd0\xcf\x11\xe0\xa1\xb1\x1a\xe1"
@@ -36,7 +39,8 @@ _ENCODING = re.compile(rb"^\s*<\?xml[^>]*?encoding\s*=\s*[\"']([^\"']*)[\"']")
 _PREFIX = rb"(?:[^\s<>/:!?]+:)?"
 _ATTRIBUTES = rb"((?:[^\"'<>]|\"[^\"]*\"|'[^']*')*+)"
 _FAR = re.compile(rb"<" + _PREFIX + rb"c\s[^<>]*?\br\s*=\s*[\"']((?:[A-Z]{3,}|S[S-Z]|[T-Z][A-Z])\d+|[A-Z]+\d{7,})[\"']")
-_CELL = re.compile(rb"<" + _PREFIX + rb"c[\s>/]")
+_PERHAPS_FAR = re.compile(rb"[\"'](?:[A-Z]{3,}|S[S-Z]|[T-Z][A-Z]|[A-Z]+\d{6})\d")
+_COUNTED = re.compile(rb"<" + _PREFIX + rb"(c|row|si|xf|sheet)[\s>/]")
 _AREA = re.compile(rb"<" + _PREFIX + rb"(?:mergeCell|hyperlink)\s" + _ATTRIBUTES + rb">")
 _REF = re.compile(rb"\bref\s*=\s*[\"']([^\"']*)[\"']")
 _RANGE = re.compile(rb"^\$?([A-Z]{1,3})\$?(\d{1,7})(?::\$?([A-Z]{1,3})\$?(\d{1,7}))?$")
@@ -66,6 +70,7 @@ class Look:
     findings: list[Finding] = field(default_factory=list)
     uncalculated: dict[str, frozenset[str]] = field(default_factory=dict)
     macros: bool = False
+    counts: Counter[bytes] = field(default_factory=Counter)
 
     @property
     def stops(self) -> bool:
@@ -113,6 +118,8 @@ def _container(archive: zipfile.ZipFile, look: Look) -> bool:
     tight = [i for i in infos if i.file_size > SMALL_PART and i.file_size > MAX_RATIO * max(i.compress_size, 1)]
     if any(info.flag_bits & 1 for info in infos):
         look.findings.append(Finding("encrypted", "parts of the file are encrypted"))
+    elif any(info.compress_type not in (zipfile.ZIP_STORED, zipfile.ZIP_DEFLATED) for info in infos):
+        look.findings.append(Finding("not-a-workbook", "parts packed in a way no spreadsheet program uses"))
     elif len(infos) > MAX_ENTRIES:
         look.findings.append(Finding("zip-bomb", f"{len(infos)} parts"))
     elif total > MAX_TOTAL:
@@ -127,7 +134,7 @@ def _container(archive: zipfile.ZipFile, look: Look) -> bool:
 
 def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look) -> None:
     """Look through one part, if it is XML: the name of a part says nothing about what a reader takes it for."""
-    name, cells, area = info.filename, 0, 0
+    name, area = info.filename, 0
     uncalculated: set[str] = set()
     for number, piece in enumerate(_pieces(archive, info)):
         if number == 0:
@@ -137,7 +144,7 @@ def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look) -> None:
             if kind:
                 look.findings.append(Finding("not-a-workbook", f"the part {name} is {kind}, not UTF-8 text"))
                 return
-        cells += sum(1 for _ in _CELL.finditer(piece))
+        look.counts.update(_COUNTED.findall(piece))
         area += sum(_areas(piece))
         if _DTD.search(piece):
             look.findings.append(Finding("dtd", f"in the part {name}"))
@@ -145,8 +152,8 @@ def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look) -> None:
             look.findings.append(Finding("far-cell", "", name, far))
         elif len(piece) > MAX_ROW_BYTES:
             look.findings.append(Finding("zip-bomb", f"a row of more than {MAX_ROW_BYTES // MEGABYTE} MB", name))
-        elif cells > MAX_CELLS:
-            look.findings.append(Finding("zip-bomb", f"more than {MAX_CELLS:,} cells", name))
+        elif many := _too_many(look.counts):
+            look.findings.append(Finding("zip-bomb", many, name))
         elif area > MAX_AREA:
             look.findings.append(Finding("far-cell", "merged cells or links over a vast area", name))
         if look.stops:
@@ -154,6 +161,14 @@ def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look) -> None:
         uncalculated.update(_uncalculated(piece))
     if uncalculated:
         look.uncalculated[name] = frozenset(uncalculated)
+
+
+def _too_many(counts: Mapping[bytes, int]) -> str:
+    """Which elements there are too many of; empty if there are none."""
+    for element, most in MAX_ELEMENTS.items():
+        if counts[element.encode()] > most:
+            return f"more than {most:,} {_CALLED[element]}"
+    return ""
 
 
 def _pieces(archive: zipfile.ZipFile, info: zipfile.ZipInfo) -> Iterator[bytes]:
@@ -197,6 +212,8 @@ def _kind(piece: bytes) -> str:
 
 def _far_cell(piece: bytes) -> str:
     """The address of a cell outside the allowed corner; empty if there is none."""
+    if _PERHAPS_FAR.search(piece) is None:
+        return ""
     for match in _FAR.finditer(piece):
         address = match[1].decode("ascii")
         letters = address.rstrip("0123456789")

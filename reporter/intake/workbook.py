@@ -211,8 +211,8 @@ def _hidden(sheet: Any, grid: Grid) -> tuple[str, ...]:
         column
         for dimension in sheet.column_dimensions.values()
         if dimension.hidden
-        for column in range(dimension.min or 1, (dimension.max or dimension.min or 1) + 1)
-        if column in used
+        for column in used
+        if (dimension.min or 1) <= column <= (dimension.max or dimension.min or 1)
     ]
     if columns:
         said.append("columns " + ", ".join(_letters(column) for column in sorted(columns)))

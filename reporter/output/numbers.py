@@ -29,6 +29,8 @@ _NARROW = "\u202f"
 _POWERS = str.maketrans("23", "²³")
 _LOWERED = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
 _POWER = re.compile(r"(?<=ft|in|[^a-zA-Z]m|cm|mm)[23](?![0-9A-Za-z])|(?<=^m)[23](?![0-9A-Za-z])")
+_COUNTED = re.compile(r"([0-9]+) ([a-z ]+?)\(s\)")
+_ONE = re.compile(r"(?<![0-9.])1 (decimal|digit|reading|minute|run|significant digit)s\b")
 _FORMULA = re.compile(r"(?<![A-Za-z])(in|mm)?(CO2|SO2|NO2|N2O|H2O|H2S|NH3|O2|N2|H2|C3H8|CH4|C2H6)(?![A-Za-z0-9])")
 
 
@@ -103,6 +105,12 @@ def unit_text(unit: str) -> str:
 def formulas(text: str) -> str:
     """A text of ours in which the digits of the usual gases' formulas are lowered."""
     return _FORMULA.sub(lambda m: (m.group(1) or "") + m.group(2).translate(_LOWERED), text)
+
+
+def counted(text: str) -> str:
+    """A sentence of ours with its counted words in the right number: ``3 minute(s)`` as ``3 minutes``."""
+    text = _COUNTED.sub(lambda m: f"{m[1]} {m[2]}{'' if m[1] == '1' else 's'}", text)
+    return _ONE.sub(lambda m: f"1 {m[1]}", text)
 
 
 def moment(value: datetime) -> str:

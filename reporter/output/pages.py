@@ -25,6 +25,8 @@ STYLE, OWN_STYLE = "style.css", "style_extra.css"
 ELEMENTS = "elements.css"
 #: Characters that no document may hold; a workbook's text may have them.
 _FORBIDDEN = re.compile("[^\t\n\r\x20-\ud7ff\ue000-\ufffd\U00010000-\U0010ffff]")
+#: Room behind a number [pt]: of the cell, for a digit, for the point, taken back for a closing bracket.
+_ROOM, _DIGIT, _POINT, _BRACKET, _MOST_DECIMALS = 7.0, 4.473, 2.237, 2.73, 9
 _POWER = re.compile(r"×10\^(−?[0-9]+)")
 
 
@@ -67,9 +69,20 @@ def well_formed(text: str) -> Element | None:
 
 
 def elements_text() -> str:
-    """The rules that make HTML elements blocks, tables or text, and the widths of columns in percent."""
+    """The rules that make HTML elements blocks, tables or text, the widths of columns in percent, and the room
+    behind a number for the decimals it lacks."""
     widths = "".join(f".w{percent} {{ width: {percent}% }}\n" for percent in range(1, 101))
-    return (templates_folder() / ELEMENTS).read_text(encoding="utf-8") + widths
+    return (templates_folder() / ELEMENTS).read_text(encoding="utf-8") + widths + _pads()
+
+
+def _pads() -> str:
+    rules = []
+    for digits in range(_MOST_DECIMALS):
+        for name, point in (("p", 0.0), ("q", _POINT)):
+            room = _ROOM + digits * _DIGIT + point
+            rules.append(f".{name}{digits} {{ padding-right: {room:.2f}pt }}\n")
+            rules.append(f".k{name}{digits} {{ padding-right: {room - _BRACKET:.2f}pt }}\n")
+    return "".join(rules)
 
 
 def _chosen(name: str, overlay: Path | None) -> Path:

@@ -2,30 +2,16 @@
 
 from __future__ import annotations
 
-from reporter.ledger import FromEquation, FromTable, Stated
 from reporter.output.view.cover import report_number
 from reporter.output.view.desk import Desk, said
 from reporter.output.view.model import Block, Column, Row, Table
+from reporter.output.view.standing import cited_documents
 from reporter.references import bibliography
 
 
 def references(desk: Desk) -> tuple[Block, ...]:
     """The documents that entries and criteria of this test cite, with their editions."""
-    cited: set[str] = set()
-    for entry in desk.outcome.ledger:
-        match entry.origin:
-            case FromEquation(equation=equation):
-                cited.add(equation.citation.document)
-                cited.update(
-                    p.constant.citation.document
-                    for p in equation.parameters.values()
-                    if p.constant is not None and p.constant.citation is not None
-                )
-            case FromTable(citation=citation):
-                cited.add(citation.document)
-            case Stated(citation=citation) if citation is not None:
-                cited.add(citation.document)
-    cited.update(check.citation.document for check in desk.outcome.checks)
+    cited = cited_documents(desk)
     rows = [
         Row((reference.short, ". ".join(part for part in (reference.title, reference.edition, reference.note) if part)))
         for reference in bibliography().values()

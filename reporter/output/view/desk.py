@@ -16,10 +16,10 @@ from reporter.errors import LedgerError
 from reporter.gases import find_gas
 from reporter.ledger import Entry, FromCells, FromEquation, FromTable
 from reporter.outcome import Outcome
-from reporter.output.numbers import decimals_in, formulas, shortest, shown, unit_text
+from reporter.output.numbers import decimals_in, fixed, formulas, shortest, shown, unit_text
 from reporter.output.phrases import Phrases
 from reporter.output.view.model import AnyCell, Cell, Column, Heading, Row, Shown, Table
-from reporter.quantities import label_of, quantity_of
+from reporter.quantities import label_of, quantity_of, table
 from reporter.record import Channel, Real, Record, Run, Text
 from reporter.typeset import text_formula
 
@@ -80,6 +80,34 @@ class Desk:
         name = unit_text(entry.unit)
         return Shown(entry.key, f"{text}\u00a0{name}".strip() if unit else text, name, decimals_in(text))
 
+    def row(self, entries: Sequence[Entry | None]) -> list[AnyCell]:
+        """The numbers of one row as cells, with one count of decimals where they are of like size."""
+        cells: list[AnyCell] = [self.missing if entry is None else self.shown(entry) for entry in entries]
+        numbers = [(at, cell) for at, cell in enumerate(cells) if isinstance(cell, Shown)]
+        decimals = [cell.decimals for _, cell in numbers]
+        if decimals and max(decimals) - min(decimals) == 1:
+            for at, cell in numbers:
+                text = fixed(float(self.outcome.ledger[cell.key].value), max(decimals))
+                cells[at] = replace(cell, text=text, decimals=max(decimals))
+        return cells
+
+    def averaged(self, key: str) -> tuple[str, ...]:
+        """The runs an average holds, by key segment; nothing for what is no average of runs."""
+        entry = self.outcome.ledger.get(key) if key else None
+        if entry is None or not isinstance(entry.origin, FromEquation):
+            return ()
+        inputs = dict(entry.origin.inputs)
+        values, flags = inputs.get("values", ()), inputs.get("flags", ())
+        if isinstance(values, str) or isinstance(flags, str) or len(values) != len(flags):
+            return ()
+        held = [value for value, flag in zip(values, flags, strict=True) if self.outcome.ledger[flag].value == 1.0]
+        return tuple(value.split(".")[1] for value in held)
+
+    def run_names(self, keys: Iterable[str]) -> str:
+        """Names of runs, as in ``runs 1, 3, 4``."""
+        names = [self.outcome.run(key).run.run.value for key in keys]
+        return f"run{'' if len(names) == 1 else 's'} {', '.join(names)}"
+
     def number_text(self, key: str, *, unit: bool = True) -> str:
         """The printed number of a key with its unit, for a sentence; remembered as printed."""
         cell = self.show(key, unit=unit)
@@ -112,8 +140,9 @@ class Desk:
             found, variants = quantity_of(key)
         except LedgerError:
             return key.rsplit(".", 1)[-1].replace("_", " ")
-        more = [segment.replace("_", " ") for segment in variants]
-        return ", ".join([found.label, *more])
+        own = self.phrases.all("row")
+        more = [own.get(segment) or _variant(segment) for segment in variants]
+        return ", ".join([own.get(found.segment, found.label), *more])
 
     def origin_words(self, entry: Entry) -> str:
         """Where an entry that is not computed comes from: cell, table or statement."""
@@ -126,6 +155,13 @@ class Desk:
             return origin.equation.citation.text()
         cited = f" ({origin.citation.text()})" if origin.citation is not None else ""
         return f"{origin.reason}{cited}"
+
+    def factor_words(self, entry: Entry) -> str:
+        """Where an F factor is from: table and fuel, equation, or what was entered."""
+        origin = entry.origin
+        if isinstance(origin, FromTable):
+            return f"{origin.citation.text()}{f', {origin.row}' if origin.row else ''}"
+        return self.origin_words(entry)
 
     def keys_under(self, stem: str) -> list[str]:
         """The keys below a stem, in the order they were made."""
@@ -184,6 +220,12 @@ class Desk:
         return key
 
 
+def _variant(segment: str) -> str:
+    """A variant of a quantity in words."""
+    words = table()
+    return words[segment].label if segment in words else segment.replace("_", " ").replace("limit ", "for limit ")
+
+
 def cell_words(origin: FromCells) -> str:
     """A place in the field workbook as ``Sheet!C5``."""
     place = origin.place
@@ -221,28 +263,30 @@ def said(value: Text | None, missing: str = "") -> str:
     return missing if value is None or not value.value.strip() else value.value
 
 
-def aligned(table: Table) -> Table:
+def aligned(made: Table) -> Table:
     """The table with each number padded to the most decimals of its column."""
-    most = [0] * len(table.columns)
-    for row in table.rows:
+    most = [0] * len(made.columns)
+    for row in made.rows:
         for index, cell in enumerate(row.cells):
             if isinstance(cell, Shown):
                 most[index] = max(most[index], cell.decimals)
-    rows = tuple(replace(row, cells=_padded(row.cells, most)) for row in table.rows)
-    return replace(table, rows=rows)
+    rows = tuple(replace(row, cells=_padded(row.cells, most)) for row in made.rows)
+    return replace(made, rows=rows)
 
 
 def _padded(cells: Sequence[AnyCell], most: Sequence[int]) -> tuple[AnyCell, ...]:
     return tuple(
-        replace(cell, pad=_pad(cell.decimals, most[index])) if isinstance(cell, Shown) else cell
+        replace(cell, pad=_pad(cell, most[index])) if isinstance(cell, Shown) else cell
         for index, cell in enumerate(cells)
     )
 
 
-def _pad(decimals: int, most: int) -> str:
-    if decimals == most:
-        return ""
-    return f"{'p' if decimals else 'q'}{most - decimals}"
+def _pad(cell: Shown, most: int) -> str:
+    """The class that makes up for missing decimals, and for a closing bracket (``k``)."""
+    bracket = "k" if cell.text.endswith("]") else ""
+    if cell.decimals == most:
+        return "kp0" if bracket else ""
+    return f"{bracket}{'p' if cell.decimals else 'q'}{most - cell.decimals}"
 
 
 def simple_table(titles: Sequence[str], rows: Sequence[Sequence[str]], widths: Sequence[float]) -> Table:
@@ -251,11 +295,11 @@ def simple_table(titles: Sequence[str], rows: Sequence[Sequence[str]], widths: S
     return Table(columns, tuple(Row(tuple(row)) for row in rows))
 
 
-def filled(table: Table) -> Table:
+def filled(made: Table) -> Table:
     """A table of texts without the columns in which nothing stands."""
-    kept = [at for at in range(len(table.columns)) if any(row.cells[at] for row in table.rows)]
-    rows = tuple(replace(row, cells=tuple(row.cells[at] for at in kept)) for row in table.rows)
-    return replace(table, columns=tuple(table.columns[at] for at in kept), rows=rows)
+    kept = [at for at in range(len(made.columns)) if any(row.cells[at] for row in made.rows)]
+    rows = tuple(replace(row, cells=tuple(row.cells[at] for at in kept)) for row in made.rows)
+    return replace(made, columns=tuple(made.columns[at] for at in kept), rows=rows)
 
 
 def group_row(text: str, span: int) -> Row:

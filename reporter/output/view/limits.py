@@ -5,11 +5,14 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import replace
 
+from reporter.gases import find_gas
+from reporter.ledger import FromEquation
 from reporter.outcome import Comparison, RunState
 from reporter.output.charts import Bar, ComparisonBars, comparison_strip
-from reporter.output.numbers import day, decimals_in, fixed, formulas, shortest, significant, unit_text
-from reporter.output.view.desk import Desk, aligned, entered, fuel_words, gas_name, said
+from reporter.output.numbers import counted, day, decimals_in, formulas, shortest, significant, unit_text
+from reporter.output.view.desk import CARRIED, Desk, aligned, entered, fuel_words, gas_name, said
 from reporter.output.view.model import AnyCell, Cell, Column, Item, LimitsView, LimitView, Picture, Row, Shown, Table
+from reporter.output.view.route import factor_route
 from reporter.record import Limit, Run, text_of
 
 _YES = "yes"
@@ -96,28 +99,34 @@ def _rows(desk: Desk, comparison: Comparison, columns: int) -> list[Row]:
     of_run = {segment: (key, at) for at, (segment, key, _) in enumerate(comparison.runs)}
     runs = [run.key for run in desk.outcome.runs]
     words = f"{limit.limit_id.value}: {relation_words(desk, comparison)}"
+    ledger = desk.outcome.ledger
     measured: list[AnyCell] = [f"{gas_name(limit.pollutant.value)} [{unit}]"]
-    measured += [desk.show(of_run[run][0]) if run in of_run else desk.missing for run in runs]
+    measured += desk.row([ledger.get(of_run[run][0]) if run in of_run else None for run in runs])
     measured += _compared(desk, comparison)
     rows = [Row((Cell(words, strong=True, span=columns),), style="group"), Row(tuple(measured))]
     counts = [_counts(desk, comparison, of_run[run][1]) if run in of_run else "" for run in runs]
     if any(count != _YES for count in counts):
-        rows.append(Row((desk.words("limit.counts"), *counts, Cell("", span=4))))
+        held = desk.averaged(comparison.value)
+        of = desk.words("limit.average_of", runs=desk.run_names(held)) if held else ""
+        rows.append(Row((desk.words("limit.counts"), *counts, Cell(of, span=4))))
     return rows
 
 
 def _compared(desk: Desk, comparison: Comparison) -> list[AnyCell]:
-    """Average with six significant digits, rounded, limit, and margin with the digits of the two before it."""
-    ledger = desk.outcome.ledger
+    """Average with six significant digits, rounded (in words where nothing is rounded), limit, margin."""
     margin_key = comparison.margin if comparison.compared else ""
     cells = [desk.show(key) for key in (comparison.value, comparison.rounded, comparison.limit_key, margin_key)]
-    average, rounded, limit, margin = cells
+    average, rounded = cells[:2]
     if isinstance(average, Shown):
-        cells[0] = _with_text(average, significant(float(ledger[average.key].value), _DIGITS))
-    if isinstance(rounded, Shown) and isinstance(limit, Shown) and isinstance(margin, Shown):
-        decimals = max(rounded.decimals, limit.decimals)
-        cells[3] = _with_text(margin, fixed(float(ledger[margin.key].value), decimals))
+        cells[0] = _with_text(average, significant(float(desk.outcome.ledger[average.key].value), _DIGITS))
+    if isinstance(rounded, Shown) and _is_not_rounded(desk, rounded.key):
+        cells[1] = Cell(desk.words("limit.not_rounded"))
     return cells
+
+
+def _is_not_rounded(desk: Desk, key: str) -> bool:
+    origin = desk.outcome.ledger[key].origin
+    return isinstance(origin, FromEquation) and origin.equation.name == CARRIED
 
 
 def _with_text(cell: Shown, text: str) -> Shown:
@@ -157,18 +166,52 @@ def _facts(desk: Desk, comparison: Comparison) -> tuple[Item, ...]:
     source = ", ".join(part for part in (said(limit.authority), said(limit.citation)) if part)
     rows = [
         ("Source", source or desk.words("limit.no_source")),
-        ("Basis", _full_basis(desk, comparison)),
+        ("Basis", basis_words(desk, comparison)),
         ("Applies", said(limit.applies_when)),
         ("Entered", _entered_by(desk, limit)),
         ("In force", _in_force(desk, limit)),
-        ("Averaging", f"{text_of(limit.averaging, 'mean of runs')}{_runs_required(desk, comparison)}"),
-        ("Rounding", formulas(comparison.rounding_words)),
+        ("Averaging", _averaging(desk, comparison)),
+        ("Rounding", _rounding(desk, comparison)),
     ]
     if comparison.with_excluded:
         rows.append(("With excluded runs", desk.number_text(comparison.with_excluded)))
     if comparison.cross:
-        rows.append(("Second route", desk.number_text(comparison.cross)))
+        rows.append(("Cross-check", _cross_words(desk, comparison)))
     return tuple(Item(label, text) for label, text in rows if text)
+
+
+def _averaging(desk: Desk, comparison: Comparison) -> str:
+    """How runs are averaged, how many count and are required, and how long each has to be."""
+    limit = comparison.limit
+    parts = [text_of(limit.averaging, "mean of runs")]
+    if comparison.count and comparison.required:
+        held = desk.averaged(comparison.value)
+        names = f" ({desk.run_names(held)})" if held and len(held) < len(desk.outcome.runs) else ""
+        count, required = desk.number_text(comparison.count), desk.number_text(comparison.required)
+        parts.append(f"{counted(f'{count} run(s)')} count{'s' if count == '1' else ''}{names}, {required} required")
+    if limit.minimum_run_length is not None:
+        parts.append(f"each at least {entered(limit.minimum_run_length, '')}")
+    return "; ".join(parts)
+
+
+def _rounding(desk: Desk, comparison: Comparison) -> str:
+    """The rule, and whether the limit's record names it."""
+    rule = formulas(counted(comparison.rounding_words))
+    if not rule or text_of(comparison.limit.rounding):
+        return rule and desk.words("limit.rounding_entered", rule=rule)
+    return desk.words("limit.rounding_default", rule=rule)
+
+
+def _cross_words(desk: Desk, comparison: Comparison) -> str:
+    """The second route by name, its average, and its difference from the limit's own route."""
+    ledger = desk.outcome.ledger
+    inputs = ledger[comparison.cross].origin
+    assert isinstance(inputs, FromEquation)
+    first = ledger[inputs.keys()[0]]
+    value = desk.number_text(comparison.cross)
+    of_runs = [f"run.{run.key}.{comparison.quantity}.route_difference" for run in desk.outcome.runs]
+    found = [desk.number_text(key) for key in of_runs if key in ledger]
+    return desk.words("limit.second_route", route=first.note or "second route", value=value, difference=", ".join(found))
 
 
 def _entered_by(desk: Desk, limit: Limit) -> str:
@@ -186,21 +229,26 @@ def _in_force(desk: Desk, limit: Limit) -> str:
     return f"from {day(limit.in_force_from.value)}{until}"
 
 
-def _full_basis(desk: Desk, comparison: Comparison) -> str:
-    entry = desk.outcome.ledger.get(comparison.value) if comparison.value else None
-    words = entry.basis.text() if entry is not None else _basis(comparison.limit)
-    route = said(comparison.limit.mass_rate_route)
-    return formulas(", ".join(part for part in (words, f"mass rate by {route}" if route else "") if part))
-
-
-def _runs_required(desk: Desk, comparison: Comparison) -> str:
-    if not comparison.count or not comparison.required:
-        return ""
-    return f"; {desk.number_text(comparison.count)} runs count, {desk.number_text(comparison.required)} required"
+def basis_words(desk: Desk, comparison: Comparison) -> str:
+    """On what the compared number rests: basis, route, form of Method 19, factor, heating value."""
+    ledger = desk.outcome.ledger
+    entry = ledger.get(comparison.value) if comparison.value else None
+    parts = [entry.basis.text() if entry is not None else _basis(comparison.limit)]
+    first = ledger.get(comparison.runs[0][1]) if comparison.runs else None
+    if first is not None and first.note.startswith("from "):
+        route = said(comparison.limit.mass_rate_route)
+        parts.append(f"mass rate {first.note}{'' if route else ', the route taken where the limit names none'}")
+    if first is not None:
+        parts += factor_route(desk, first.key)
+    gas = find_gas(comparison.limit.pollutant.value)
+    if gas is not None and gas.by_analogy and len(parts) > 1 and any("Method 19" in part for part in parts):
+        parts.append(desk.words("limit.by_analogy"))
+    return formulas("; ".join(part for part in parts if part))
 
 
 def _notes(desk: Desk, comparison: Comparison) -> Sequence[str]:
-    return tuple(dict.fromkeys(comparison.notes))
+    done = desk.words("limit.by_analogy")  # stands in the basis
+    return tuple(counted(note) for note in dict.fromkeys(comparison.notes) if note != done)
 
 
 def _picture(desk: Desk, comparison: Comparison) -> Picture | None:

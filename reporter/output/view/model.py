@@ -19,7 +19,7 @@ class Shown:
     """One printed number: entry key, rounded text, unit, digits behind the point.
 
     `pad` is the class of the style sheet that makes up for the decimals missing to the most of its column:
-    ``p2`` for two digits, ``q2`` for two digits and the point.
+    ``p2`` for two digits, ``q2`` for two digits and the point; a ``k`` before it for a closing bracket.
     """
 
     key: str
@@ -174,6 +174,7 @@ class QualityView:
     table: Table | None
     not_met: tuple[str, ...]
     runs: tuple[str, ...]
+    not_applied: tuple[str, ...]
     problems: tuple[ProblemView, ...]
     assumed: tuple[str, ...]
 

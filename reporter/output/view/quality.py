@@ -8,9 +8,11 @@ from itertools import zip_longest
 
 from reporter.ledger import Entry, FromEquation
 from reporter.outcome import Check, RunState
-from reporter.output.numbers import FIGURE_SPACE, formulas, unit_text
+from reporter.output.numbers import FIGURE_SPACE, counted, formulas, unit_text
 from reporter.output.view.desk import Desk, gas_name
 from reporter.output.view.model import AnyCell, Block, Cell, Column, ProblemView, QualityView, Row, Table
+from reporter.output.view.not_applied import not_applied
+from reporter.output.view.standing import dagger
 from reporter.problems import Grade, Problem
 
 #: A criterion with more bounds than this has each beside its value.
@@ -31,6 +33,7 @@ def quality(desk: Desk) -> QualityView:
         table=_overview(desk) if checks else None,
         not_met=tuple(_not_met(desk, check) for check in checks if not check.met),
         runs=tuple(_run_words(desk)),
+        not_applied=not_applied(desk),
         problems=tuple(_problems(desk)),
         assumed=tuple(formulas(sentence) for sentence in desk.outcome.stated),
     )
@@ -58,21 +61,45 @@ def _overview(desk: Desk) -> Table:
     columns += [Column(gas_name(gas), width=1.1) for gas in gases] or [Column("", width=1.1)]
     rows = []
     for title, checks in groups.items():
-        cells: list[AnyCell] = [formulas(title), checks[0].citation.text()]
+        cells: list[AnyCell] = [formulas(title), cited(checks)]
         if any(check.gas for check in checks):
-            cells += [_answer(desk, [check.met for check in checks if check.gas == gas]) for gas in gases]
+            cells += [_answer(desk, [check for check in checks if check.gas == gas]) for gas in gases]
         else:
-            cells.append(_answer(desk, [check.met for check in checks], span=max(len(gases), 1)))
+            cells.append(_answer(desk, checks, span=max(len(gases), 1)))
         rows.append(Row(tuple(cells)))
-    return Table(tuple(columns), tuple(rows), note=desk.words("criterion.overview"))
+    parts = [desk.words("criterion.overview"), _adoptions(desk)]
+    if any(dagger(desk, (check.bound, check.alternative)) for check in desk.outcome.checks):
+        parts.append(desk.words("criterion.recalled"))
+    return Table(tuple(columns), tuple(rows), note=" ".join(part for part in parts if part))
 
 
-def _answer(desk: Desk, met: Sequence[bool], *, span: int = 1) -> AnyCell:
-    """Whether all applications of a criterion are met; a dash where there is none."""
-    if not met:
+def cited(checks: Sequence[Check]) -> str:
+    """Where a criterion is printed, once, without the methods that adopt it."""
+    texts = [replace(check.citation, number="") if _adopts(check) else check.citation for check in checks]
+    return " and ".join(dict.fromkeys(citation.text() for citation in texts))
+
+
+def _adopts(check: Check) -> bool:
+    return check.citation.number.startswith("as adopted")
+
+
+def _adoptions(desk: Desk) -> str:
+    """Which method adopts the criteria for which gases."""
+    by_words: dict[str, dict[str, None]] = {}
+    for check in desk.outcome.checks:
+        if _adopts(check):
+            by_words.setdefault(check.citation.number, {})[gas_name(check.gas)] = None
+    parts = [f"{', '.join(gases)} {words}" for words, gases in by_words.items()]
+    return f"{desk.words('criterion.adopted')} {'; '.join(parts)}." if parts else ""
+
+
+def _answer(desk: Desk, checks: Sequence[Check], *, span: int = 1) -> AnyCell:
+    """Whether all applications of a criterion are met, with a dagger where its number is recalled; else a dash."""
+    if not checks:
         return desk.missing
-    words = desk.words("criterion.met" if all(met) else "criterion.not_met")
-    return Cell(words, strong=not all(met), span=span)
+    met = all(check.met for check in checks)
+    mark = dagger(desk, (key for check in checks for key in (check.bound, check.alternative)))
+    return Cell(desk.words("criterion.met" if met else "criterion.not_met") + mark, strong=not met, span=span)
 
 
 def _not_met(desk: Desk, check: Check) -> str:
@@ -113,21 +140,47 @@ def _paragraph(desk: Desk, run: str, gas: str) -> str:
 
 
 def _problems(desk: Desk) -> list[ProblemView]:
-    """Problems, the gravest first; those of one code together, in the order of the input."""
+    """Problems, the gravest first; those of one code and standing together, in the order of the input."""
     order = (Grade.UNREADABLE, Grade.BLOCKS, Grade.NOTE)
-    names = {Grade.UNREADABLE: "unreadable", Grade.BLOCKS: "blocks", Grade.NOTE: "note"}
-    by_code: dict[str, list[Problem]] = {}
+    alike: dict[tuple[str, str], list[Problem]] = {}
     for problem in sorted(desk.outcome.problems, key=lambda problem: order.index(problem.grade)):
-        by_code.setdefault(problem.code, []).append(problem)
+        alike.setdefault((problem.code, _standing(desk, problem)), []).append(problem)
     return [
         ProblemView(
-            grade=desk.words(f"grade.{names[some[0].grade]}"),
+            grade=standing,
             title=formulas(some[0].title),
-            found=formulas("; ".join(dict.fromkeys(problem.found for problem in some if problem.found))),
+            found=_found_words(desk, some),
             where=", ".join(dict.fromkeys(_where(problem) for problem in some)),
         )
-        for some in by_code.values()
+        for (_, standing), some in alike.items()
     ]
+
+
+def _found_words(desk: Desk, problems: Sequence[Problem]) -> str:
+    """What was found, once for the channels that share it; a minute without a reading is named by its beginning."""
+    names = {channel.channel.value for channel in desk.outcome.record.channels}
+    channels: dict[str, dict[str, None]] = {}
+    for found in dict.fromkeys(problem.found for problem in problems if problem.found):
+        name, comma, rest = found.partition(", ")
+        head, words = (name, rest) if comma and name in names else ("", found)
+        channels.setdefault(words.replace("minute(s): ", "minute(s) beginning "), {})[head] = None
+    texts = [", ".join(part for part in (*heads, words) if part) for words, heads in channels.items()]
+    return formulas(counted("; ".join(texts)))
+
+
+def _standing(desk: Desk, problem: Problem) -> str:
+    """What a problem does, in words: a result is said to be withheld only where it is."""
+    if problem.grade is not Grade.BLOCKS:
+        return desk.words("grade.note" if problem.grade is Grade.NOTE else "grade.unreadable")
+    made = {one.key: one.compared for one in desk.outcome.comparisons}
+    if any(not made.get(key, True) for key in problem.concerns):
+        return desk.words("grade.withheld")
+    if problem.concerns and not any(key in made or key in desk.outcome.ledger for key in problem.concerns):
+        return desk.words("grade.withheld")
+    invalid = [f"run.{run.key}.{gas.segment}." for run in desk.outcome.runs for gas in run.gases if not gas.is_valid]
+    if any(key.startswith(tuple(invalid)) for key in problem.concerns if invalid):
+        return desk.words("grade.not_counted")
+    return desk.words("grade.blocks")
 
 
 def _where(problem: Problem) -> str:
@@ -191,14 +244,25 @@ def _row_name(check: Check) -> str:
 
 def _common_bounds(desk: Desk, checks: Sequence[Check]) -> str:
     """The criterion in a sentence; its paragraph alone where the bounds stand beside the values."""
-    bounds = dict.fromkeys(f"{_relation(desk, check)} {desk.number_text(check.bound)}" for check in checks)
+    source = f"{cited(checks)}{_adopted_by(desk, checks)}"
     if not _share_bounds(desk, checks):
-        return f"{checks[0].citation.text()}. "
+        return f"{source}. "
+    bounds = dict.fromkeys(f"{_relation(desk, check)} {desk.number_text(check.bound)}" for check in checks)
     words = f" {desk.words('criterion.and')} ".join(bounds)
     others = dict.fromkeys(desk.number_text(check.alternative) for check in checks if check.alternative)
     if others:
         words += f", {desk.words('criterion.alternative')} {' / '.join(others)}"
-    return f"{words[:1].upper()}{words[1:]} ({checks[0].citation.text()}). "
+    return f"{words[:1].upper()}{words[1:]} ({source}). "
+
+
+def _adopted_by(desk: Desk, checks: Sequence[Check]) -> str:
+    """The methods that adopt a criterion, each with a dagger where its number is recalled."""
+    marks: dict[str, str] = {}
+    for check in checks:
+        words = check.citation.number if _adopts(check) else ""
+        marks[words] = marks.get(words, "") or dagger(desk, (check.bound, check.alternative))
+    own = marks.pop("", "")
+    return own + "".join(f"; {words}{mark}" for words, mark in marks.items())
 
 
 def _share_bounds(desk: Desk, checks: Sequence[Check]) -> bool:

@@ -3,15 +3,17 @@
 from __future__ import annotations
 
 import tomllib
+from collections import Counter
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cache
 
+from reporter.gases import find_gas
 from reporter.ledger import Entry
 from reporter.outcome import RunResult, RunState
 from reporter.output.numbers import day, formulas, moment, period, unit_text
-from reporter.output.view.desk import Desk, aligned, channel_name, gas_name, group_row
-from reporter.output.view.model import AnyCell, Block, Cell, Column, Row, Table
+from reporter.output.view.desk import Desk, aligned, channel_name, gas_name, group_row, said
+from reporter.output.view.model import AnyCell, Block, Cell, Column, Row, Shown, Table
 from reporter.resources import templates_folder
 
 #: Runs beside each other in one table.
@@ -60,9 +62,16 @@ def _results(desk: Desk, some: Sequence[RunResult], *, averages: bool) -> tuple[
             rows += [group_row(_gas_words(desk, some, segment), columns), *mine]
     tails = _tails(desk, [f"run.{run.key}" for run in some], layout().run)
     if tails:
-        rows.append(group_row("Stack gas, flow, heat input", columns))
+        rows.append(group_row(_stack_words(desk), columns))
         rows += [_row(desk, some, tail, averages) for tail in tails]
-    return _tables(some, rows, averages)
+    return _tables(desk, some, rows, averages)
+
+
+def _stack_words(desk: Desk) -> str:
+    """The heading of the run's own rows, with how its moisture was had."""
+    sources = dict.fromkeys(said(run.run.moisture_source) for run in desk.outcome.runs)
+    words = ", ".join(source for source in sources if source)
+    return f"Stack gas, flow, heat input{f'; moisture by: {words}' if words else ''}"
 
 
 def _times(desk: Desk) -> Block:
@@ -81,7 +90,7 @@ def _times(desk: Desk) -> Block:
                     day(start),
                     period(start, end),
                     desk.show(f"run.{run.key}.duration"),
-                    _counts(desk, result),
+                    _readings(desk, result),
                     _state(desk, result),
                 )
             )
@@ -89,7 +98,7 @@ def _times(desk: Desk) -> Block:
     return Block(tables=(aligned(Table(columns, tuple(rows))),))
 
 
-def _counts(desk: Desk, result: RunResult) -> AnyCell:
+def _readings(desk: Desk, result: RunResult) -> AnyCell:
     """The number of valid readings: once where all gases have the same, else for each."""
     keys = {
         gas.segment: f"run.{result.key}.{gas.segment}.count"
@@ -135,17 +144,30 @@ def _gas_words(desk: Desk, some: Sequence[RunResult], segment: str) -> str:
 def rows_table(desk: Desk, some: Sequence[RunResult], order: Sequence[str]) -> tuple[Table, ...]:
     """A table of the quantities of runs named in an order, with averages; none where the ledger has none."""
     tails = _tails(desk, [f"run.{run.key}" for run in some], order)
-    return _tables(some, [_row(desk, some, tail, averages=True) for tail in tails], averages=True)
+    return _tables(desk, some, [_row(desk, some, tail, averages=True) for tail in tails], averages=True)
 
 
-def _tables(some: Sequence[RunResult], rows: Sequence[Row], averages: bool) -> tuple[Table, ...]:
+def _tables(desk: Desk, some: Sequence[RunResult], rows: Sequence[Row], averages: bool) -> tuple[Table, ...]:
     if not rows:
         return ()
     columns = [Column("", width=4.6), Column("Unit and basis", width=2.4)]
     columns += [Column(f"Run {run.run.run.value}", number=True) for run in some]
     if averages:
-        columns.append(Column("Average", number=True))
-    return (aligned(Table(tuple(columns), tuple(rows))),)
+        columns.append(Column("Average", _usual_words(desk), number=True))
+    held = any(isinstance(cell, Shown) and cell.text.startswith("[") for row in rows for cell in row.cells)
+    return (aligned(Table(tuple(columns), tuple(rows), note=desk.words("lead.held") if held else "")),)
+
+
+def usual_runs(desk: Desk) -> tuple[str, ...]:
+    """The runs that most averages hold, by key."""
+    counted = Counter(desk.averaged(key) for key in desk.outcome.averages)
+    return counted.most_common(1)[0][0] if counted else ()
+
+
+def _usual_words(desk: Desk) -> str:
+    """Which runs the averages hold, where it is not all of them."""
+    usual = usual_runs(desk)
+    return desk.run_names(usual) if usual and len(usual) < len(desk.outcome.runs) else ""
 
 
 def _tails(desk: Desk, stems: Sequence[str], order: Sequence[str]) -> list[str]:
@@ -169,25 +191,59 @@ def _is_variant(tail: str, name: str, order: Sequence[str]) -> bool:
 
 
 def _row(desk: Desk, some: Sequence[RunResult], tail: str, averages: bool) -> Row:
-    keys = [f"run.{run.key}.{tail}" for run in some]
-    entries = [desk.outcome.ledger.get(key) for key in keys]
+    entries = [desk.outcome.ledger.get(f"run.{run.key}.{tail}") for run in some]
     found = next(entry for entry in entries if entry is not None)
-    cells: list[AnyCell] = [_label(desk, found), unit_and_basis(found)]
-    cells += [desk.missing if entry is None else desk.shown(entry) for entry in entries]
+    average = desk.outcome.ledger.get(f"average.{tail}")
+    held = desk.averaged(f"average.{tail}")
+    numbers = desk.row([*entries, average] if averages else entries)
+    cells: list[AnyCell] = [_label(desk, found, held), unit_and_basis(found)]
+    cells += [
+        cell if _counts(desk, run, tail, held) else _bracketed(cell)
+        for run, cell in zip(some, numbers, strict=False)
+    ]
     if averages:
-        average = desk.outcome.ledger.get(f"average.{tail}")
-        cells.append("" if average is None else desk.shown(average))
+        cells.append(numbers[-1] if average is not None else "")
     return Row(tuple(cells))
 
 
-def _label(desk: Desk, entry: Entry) -> str:
-    words = formulas(desk.quantity_label(entry.key))
-    return words[:1].upper() + words[1:]
+def _counts(desk: Desk, run: RunResult, tail: str, held: Sequence[str]) -> bool:
+    """Whether a run's number counts: as its average holds it, else as its gas and the run are valid."""
+    if held:
+        return run.key in held
+    gas = run.gas(tail.split(".")[0])
+    return run.state is not RunState.EXCLUDED and (gas is None or gas.is_valid)
+
+
+def _bracketed(cell: AnyCell) -> AnyCell:
+    return replace(cell, text=f"[{cell.text}]") if isinstance(cell, Shown) else cell
+
+
+def _label(desk: Desk, entry: Entry, held: Sequence[str]) -> str:
+    """The quantity, by which route, whether by analogy, and the runs of its average where others hold more."""
+    words = [desk.quantity_label(entry.key), entry.note if entry.note.startswith("from ") else "", _analogy(desk, entry)]
+    usual = usual_runs(desk)
+    if held and usual and held != usual:
+        words.append(desk.words("run.average_of", runs=desk.run_names(held)))
+    text = formulas(", ".join(word for word in words if word))
+    return text[:1].upper() + text[1:]
+
+
+def _analogy(desk: Desk, entry: Entry) -> str:
+    """That a rate of Method 19 is by analogy: the rate by heat input itself, or a mass rate that rests on it."""
+    parts = entry.key.split(".")
+    gas = find_gas(parts[2]) if len(parts) > 3 else None
+    if gas is None or not gas.by_analogy:
+        return ""
+    rests = parts[3] == "emission_rate" or (parts[3] == "mass_rate" and entry.note == "from heat input")
+    return desk.words("limit.by_analogy") if rests else ""
 
 
 def unit_and_basis(entry: Entry) -> str:
-    """Unit and basis of an entry in one text."""
-    return formulas(", ".join(part for part in (unit_text(entry.unit), entry.basis.text()) if part))
+    """Unit and basis of an entry in one text; a fraction by volume says so."""
+    unit = unit_text(entry.unit)
+    if not unit and "moisture" in entry.key:
+        unit = "fraction by volume"
+    return formulas(", ".join(part for part in (unit, entry.basis.text()) if part))
 
 
 def left_out(desk: Desk, numbers: Mapping[str, str]) -> tuple[Block, ...]:
@@ -218,7 +274,10 @@ def _missing_minutes(desk: Desk) -> Sequence[str]:
         by_times: dict[str, list[str]] = {}
         for gas in run.gases:
             if gas.series is not None and gas.series.missing_minutes:
-                times = " ".join(moment(minute) for minute in gas.series.missing_minutes)
+                times = ", ".join(moment(minute) for minute in gas.series.missing_minutes)
                 by_times.setdefault(times, []).append(gas_name(gas.gas))
-        lines += [f"Run {run.run.run.value}, {', '.join(names)}: {times}" for times, names in by_times.items()]
+        lines += [
+            f"Run {run.run.run.value}, {', '.join(names)}, minutes beginning {times}"
+            for times, names in by_times.items()
+        ]
     return lines

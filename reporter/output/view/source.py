@@ -3,33 +3,46 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 
-from reporter.ledger import Entry
+from reporter.ledger import Entry, FromCells, slug
 from reporter.methods.criteria import method_family
-from reporter.output.numbers import formulas, moment, shortest, unit_text
+from reporter.output.numbers import decimals_in, fixed, formulas, moment, shortest, unit_text
 from reporter.output.view.desk import Desk, aligned, entered, filled, fuel_words, gas_name, said, simple_table
-from reporter.output.view.model import AnyCell, Block, Column, Item, Row, Table
+from reporter.output.view.model import AnyCell, Block, Column, Item, Row, Shown, Table
+from reporter.output.view.standing import DAGGER, cited_documents, dagger
 from reporter.record import Channel, FuelRow, Point, Run
 from reporter.references import bibliography
 
-#: Keys of a run's operating conditions, printed where the ledger has them.
+#: Keys of a run's operating conditions, printed where the ledger has them, with the field of the run's sheet.
 _OPERATION = (
-    "load", "load.share", "output", "heat_input", "flow.entered", "stack_temperature", "barometric_pressure",
-    "static_pressure", "moisture.ambient",
-)  # fmt: skip
-#: Conditions that no computation needs are printed from the record.
-_RECORDED = (
-    ("load", "Load"),
-    ("output", "Output"),
-    ("heat_input", "Heat input"),
-    ("stack_flow", "Stack flow"),
-    ("stack_temperature", "Stack temperature"),
-    ("static_pressure", "Static pressure"),
-    ("barometric_pressure", "Barometric pressure"),
-    ("ambient_temperature", "Ambient temperature"),
-    ("relative_humidity", "Relative humidity"),
-    ("installed_monitor_mean", "Installed monitor, mean of the run"),
+    ("load", "load"),
+    ("load.permitted", ""),
+    ("load.share", ""),
+    ("output", "output"),
+    ("heat_input", "heat_input"),
+    ("flow.entered", "stack_flow"),
+    ("stack_temperature", "stack_temperature"),
+    ("barometric_pressure", "barometric_pressure"),
+    ("static_pressure", "static_pressure"),
+    ("ambient.temperature", "ambient_temperature"),
+    ("ambient.relative_humidity", "relative_humidity"),
+    ("moisture.ambient", ""),
+    ("installed_monitor", "installed_monitor_mean"),
 )
+#: Conditions that no computation needs are printed from the record.
+_RECORDED = {
+    "load": "Load",
+    "output": "Output",
+    "heat_input": "Heat input",
+    "stack_flow": "Stack flow",
+    "stack_temperature": "Stack temperature",
+    "static_pressure": "Static pressure",
+    "barometric_pressure": "Barometric pressure",
+    "ambient_temperature": "Ambient temperature",
+    "relative_humidity": "Relative humidity",
+    "installed_monitor_mean": "Installed monitor, mean of the run",
+}
 
 
 def process(desk: Desk) -> tuple[Block, ...]:
@@ -55,31 +68,64 @@ def _with_note(entry: str, note: str) -> str:
 
 
 def _operation(desk: Desk) -> Block:
-    """Conditions of each run, with the unit once per row."""
+    """Conditions of each run as they were entered, with the unit once per row."""
     runs = [run.run for run in desk.outcome.runs]
-    columns = (Column("Operating conditions", width=3), Column("Unit", width=1.4), *_run_columns(runs))
+    columns = (Column("Operating conditions", width=3.4), Column("Unit", width=1), *_run_columns(runs))
     rows: list[Row] = []
-    done: set[str] = set()
-    for name in _OPERATION:
-        entries = [desk.outcome.ledger.get(f"run.{run.key}.{name}") for run in runs]
+    for name, field in _OPERATION:
+        entries = [_as_entered(desk, f"run.{run.key}.{name}") for run in runs]
         found = next((entry for entry in entries if entry is not None), None)
-        if found is None:
-            continue
-        done.add(name.split(".")[0].replace("flow", "stack_flow"))
-        unit = unit_text(found.unit) or (said(runs[0].load_unit) if name == "load" else "")
-        label = _capital(formulas(desk.quantity_label(found.key)))
-        rows.append(Row((label, unit, *(_shown(desk, entry) for entry in entries))))
-    for name, label in _RECORDED:
-        values = [getattr(run, name) for run in runs]
-        if name not in done and any(value is not None for value in values):
-            texts = [entered(value, desk.missing) for value in values]
-            rows.append(Row((label, "", *texts)))
+        if found is not None:
+            unit = unit_text(found.unit) or (said(runs[0].load_unit) if name.startswith("load") else "")
+            if not unit and name.startswith("moisture"):
+                unit = "fraction"
+            label = _capital(formulas(desk.quantity_label(f"run.{runs[0].key}.{name}")))
+            rows.append(Row((f"{label}{_source_words(field, runs)}", unit, *_entered_row(desk, entries))))
+        elif field and any(getattr(run, field) is not None for run in runs):
+            texts = [entered(getattr(run, field), desk.missing) for run in runs]
+            rows.append(Row((f"{_RECORDED[field]}{_source_words(field, runs)}", "", *texts)))
     rows.append(Row(("Fuel", "", *(fuel_words(desk.outcome.record, run) or desk.missing for run in runs))))
     return Block(tables=(aligned(Table(columns, tuple(rows))),))
 
 
-def _shown(desk: Desk, entry: Entry | None) -> AnyCell:
-    return desk.missing if entry is None else desk.shown(entry)
+def _as_entered(desk: Desk, key: str) -> Entry | None:
+    """The entry of a key in the unit in which it was entered."""
+    ledger = desk.outcome.ledger
+    return ledger.get(f"{key}.as_entered") or ledger.get(key)
+
+
+def _entered_row(desk: Desk, entries: Sequence[Entry | None]) -> list[AnyCell]:
+    """Numbers of a row; those read from a cell with the decimals they were entered with, the most of the row."""
+    cells = desk.row(entries)
+    read = [one for one in entries if one is not None and isinstance(one.origin, FromCells)]
+    if not read or len(read) < sum(one is not None for one in entries):
+        return cells
+    decimals = max(decimals_in(shortest(float(one.value), 10)) for one in read)
+    return [
+        replace(cell, text=fixed(float(desk.outcome.ledger[cell.key].value), decimals), decimals=decimals)
+        if isinstance(cell, Shown)
+        else cell
+        for cell in cells
+    ]
+
+
+def _source_words(field: str, runs: Sequence[Run]) -> str:
+    """Where an entered heat input or flow comes from, and on which basis a flow was entered."""
+    if field == "heat_input":
+        return _of_runs([said(run.heat_input_source) for run in runs])
+    if field == "stack_flow":
+        return _of_runs([_flow_basis(run) for run in runs])
+    return ""
+
+
+def _flow_basis(run: Run) -> str:
+    at = (entered(run.flow_standard_temperature, ""), entered(run.flow_standard_pressure, ""))
+    return ", ".join(part for part in (said(run.flow_basis), *at) if part)
+
+
+def _of_runs(texts: Sequence[str]) -> str:
+    words = "; ".join(dict.fromkeys(text for text in texts if text))
+    return f" ({words})" if words else ""
 
 
 def _capital(text: str) -> str:
@@ -91,18 +137,46 @@ def _run_columns(runs: Sequence[Run]) -> tuple[Column, ...]:
 
 
 def _fuels(desk: Desk) -> Block:
+    titles = ("Fuel", "F factors", "Analysis", "Laboratory", "Sample")
     rows = [
-        (row.fuel.value, row.factor_source.value, _analysis(row), said(row.laboratory), said(row.sample))
+        (row.fuel.value, _factors(desk, row), _analysis(row), said(row.laboratory), said(row.sample))
         for row in desk.outcome.record.fuels
     ]
-    table = filled(
-        simple_table(("Fuel", "F factors from", "Analysis", "Laboratory", "Sample"), rows, (2, 1.4, 5, 2, 1.6))
-    )
+    tables = [filled(simple_table(titles, rows, (1.4, 4, 4, 1.6, 1.2)))]
+    if desk.outcome.record.fuel_use:
+        tables.append(_fuel_use(desk))
     components = [
         f"{part.component.value} {shortest(part.mole_fraction.value, 6)} %" for part in desk.outcome.record.fuel_gas
     ]
-    notes = (formulas(f"Composition of the gas by mole: {', '.join(components)}."),) if components else ()
-    return Block(title="Fuel", tables=(table,), notes=notes)
+    notes = [formulas(f"Composition of the gas by mole: {', '.join(components)}.")] if components else []
+    if any(DAGGER in cell for row in rows for cell in row):
+        notes.append(desk.words("criterion.recalled"))
+    return Block(title="Fuel", tables=tuple(tables), notes=tuple(notes))
+
+
+def _factors(desk: Desk, row: FuelRow) -> str:
+    """The F factors of a fuel: value, where it is from, with a dagger where it is recalled."""
+    stem = f"fuel.{slug(row.fuel.value)}"
+    by_source: dict[str, list[str]] = {}
+    for name, symbol in (("fd", "Fd"), ("fw", "Fw"), ("fc", "Fc")):
+        entry = desk.outcome.ledger.get(f"{stem}.{name}")
+        if entry is not None:
+            text = f"{symbol} {desk.number_text(entry.key)}{dagger(desk, (entry.key,))}"
+            by_source.setdefault(desk.factor_words(entry), []).append(text)
+    parts = [f"{', '.join(texts)} ({source})" for source, texts in by_source.items()]
+    return "; ".join(parts) or row.factor_source.value
+
+
+def _fuel_use(desk: Desk) -> Table:
+    """Fuel metered in each run, with the heating value, its kind and the conditions of the meter."""
+    rows = []
+    for use in desk.outcome.record.fuel_use:
+        metered = " to ".join(entered(value, "") for value in (use.meter_start, use.meter_end) if value is not None)
+        heat = f"{entered(use.heating_value, desk.missing)} {said(use.heating_value_kind)}".strip()
+        base = ", ".join(part for part in (entered(use.base_temperature, ""), entered(use.base_pressure, "")) if part)
+        rows.append((use.run.value, use.fuel.value, metered or entered(use.rate, desk.missing), heat, base))
+    titles = ("Run", "Fuel", "Meter, or rate", "Heating value", "Meter at")
+    return filled(simple_table(titles, rows, (0.7, 1.6, 3.4, 2.2, 2)))
 
 
 def _analysis(row: FuelRow) -> str:
@@ -127,7 +201,7 @@ def _process_log(desk: Desk) -> Block:
         entries = [ledger.get(f"run.{run.key}.process.{name}") for run in runs]
         found = next(entry for entry in entries if entry is not None)
         label = formulas(found.label.partition(", mean of")[0] or name.replace("_", " "))
-        rows.append(Row((label, unit_text(found.unit), *(_shown(desk, entry) for entry in entries))))
+        rows.append(Row((label, unit_text(found.unit), *desk.row(entries))))
     return Block(tables=(aligned(Table(columns, tuple(rows))),))
 
 
@@ -156,18 +230,37 @@ def location(desk: Desk) -> tuple[Block, ...]:
 
 
 def _methods(desk: Desk) -> Block:
-    """The methods named for the channels, each with the document and edition that is followed."""
+    """Every method and rule of measurement this test cites, with what it serves, document and edition."""
     documents = {reference.short: reference for reference in bibliography().values()}
-    by_method: dict[str, list[str]] = {}
+    serves: dict[str, dict[str, None]] = {}
     for channel in desk.outcome.record.channels:
         name = said(channel.method, desk.words("missing.text"))
-        by_method.setdefault(name, []).append(gas_name(channel.gas.value))
+        family = method_family(name)
+        serves.setdefault(f"Method {family}" if family else name, {})[gas_name(channel.gas.value)] = None
+    known = desk.phrases.all("method")
+    cited = cited_documents(desk)
+    for reference in bibliography().values():
+        if reference.id in cited and reference.id in known and reference.short not in serves:
+            serves[reference.short] = {known[reference.id]: None}
     rows = []
-    for name, gases in by_method.items():
-        found = documents.get(f"Method {method_family(name)}")
+    for name, what in serves.items():
+        found = documents.get(name)
         edition = f"{found.title}; {found.edition}" if found is not None else desk.words("missing.no_document")
-        rows.append((name, ", ".join(dict.fromkeys(gases)), edition))
-    return Block(title="Methods", tables=(simple_table(("Method", "For", "Document and edition"), rows, (1, 1.6, 7)),))
+        rows.append((name, formulas(", ".join(what)), edition))
+    table = simple_table(("Method", "For", "Document and edition"), rows, (1.1, 2.4, 6.5))
+    return Block(title="Methods", tables=(table,), notes=tuple(_entered_results(desk)))
+
+
+def _entered_results(desk: Desk) -> list[str]:
+    """What rests on a number entered as a result, whose own readings are not in this report."""
+    record = desk.outcome.record
+    words = []
+    if any(run.stack_flow is not None for run in record.runs) and not record.traverse:
+        words.append(desk.words("lead.flow_entered"))
+    if any(run.moisture is not None for run in record.runs) and not record.moisture:
+        sources = ", ".join(dict.fromkeys(said(run.moisture_source) for run in record.runs if run.moisture_source))
+        words.append(desk.words("lead.moisture_entered", source=sources or desk.words("missing.text")))
+    return words
 
 
 def _channels(desk: Desk) -> Block:
