@@ -167,6 +167,7 @@ class Test:
     status: Text | None = None
     clock_note: Text | None = None
     not_detected_counted_as: Text | None = None
+    synthetic: Text | None = None
     extra: tuple[ExtraItem, ...] = ()
 
     __test__ = False

@@ -59,6 +59,7 @@ class _Builder:
                 self.gathered.add("repeated-sheet", self.gathered.place(table.sheet), names)
                 continue
             found[table.spec.attr] = table
+            checks.text_lengths(table, self.gathered)
             if table.hidden:
                 self.gathered.add("hidden-read", self.gathered.place(table.sheet), ", ".join(table.hidden))
             if table.footers:

@@ -9,11 +9,27 @@ from itertools import pairwise
 from reporter.basis import ACTUAL, Moisture
 from reporter.intake.gather import Gathered
 from reporter.intake.rows import Filled, with_value
-from reporter.intake.sheets import Sheet, fold
+from reporter.intake.sheets import Kind, Sheet, fold
+from reporter.intake.table import MAX_TEXT, MAX_TEXTS, SheetTable
 from reporter.ledger import slug
 from reporter.record import Readings
 
 Rows = Sequence[Filled]
+
+
+def text_lengths(table: SheetTable, gathered: Gathered) -> None:
+    """No text is longer than a cell of a workbook holds, and a sheet holds a report's worth of text at most."""
+    total = 0
+    for row in table.rows:
+        for cell in row.cells:
+            length = len(cell.value) if isinstance(cell.value, str) else 0
+            total += length
+            if length > MAX_TEXT:
+                place, found = gathered.place(table.sheet, cell.cell), f"a text of {length:,} characters"
+                gathered.add("out-of-range", place, found, expected=f"at most {MAX_TEXT:,} characters")
+    if total > MAX_TEXTS and table.spec.kind in (Kind.ITEMS, Kind.TABLE):
+        expected = f"at most {MAX_TEXTS:,} characters of text on a sheet"
+        gathered.add("zip-bomb", gathered.place(table.sheet), f"{total:,} characters of text", expected=expected)
 
 
 def unique_names(spec: Sheet, rows: Rows, gathered: Gathered) -> None:

@@ -26,8 +26,9 @@ SMALL_PART = MEGABYTE
 MAX_COLUMN = 512
 MAX_ROW = 1_048_576
 MAX_AREA = 20_000
-#: Caps on what all parts hold together, by the name of the element.
-MAX_ELEMENTS = {"c": 500_000, "si": 500_000, "row": 200_000, "xf": 65_490, "sheet": 255}
+#: Caps on what all parts hold together: cells, and other elements by name.
+MAX_CELLS = 500_000
+MAX_ELEMENTS = {"c": MAX_CELLS, "si": MAX_CELLS, "row": 200_000, "xf": 65_490, "sheet": 255}
 _CALLED = {"c": "cells", "si": "texts", "row": "rows", "xf": "cell formats", "sheet": "sheets"}
 MAX_ROW_BYTES = 4 * MEGABYTE
 

@@ -11,16 +11,19 @@ pointers (RFC 6901).  The schema is `reporter.intake.schema.input_schema`.
 from __future__ import annotations
 
 import json
+from collections import Counter
 from collections.abc import Mapping
 from typing import Any
 
 from reporter.intake.gather import Gathered
 from reporter.intake.sheets import ITEM_COLUMNS, Kind, Sheet, find_sheet
-from reporter.intake.table import Cell, HeaderCell, Raw, Row, SheetTable, split_header
+from reporter.intake.table import Cell, HeaderCell, Raw, Row, SheetTable, split_header, too_large
 from reporter.intake.workbook import raw, unknown_sheet
 
 #: Larger texts are refused: a test of one day is well under a megabyte.
-MAX_BYTES = 50 << 20
+MAX_BYTES = 20 << 20
+#: Caps on the values, and on the objects and lists, of a text.
+MAX_VALUES, MAX_NESTS = 1_200_000, 300_000
 
 
 def looks_like_json(content: bytes) -> bool:
@@ -32,6 +35,9 @@ def read_json(content: bytes, gathered: Gathered) -> tuple[SheetTable, ...]:
     """All known sheets of a JSON record as tables; problems go to `gathered`."""
     if len(content) > MAX_BYTES:
         gathered.add("bad-json", gathered.place(), f"{len(content) >> 20} MB of text")
+        return ()
+    if content.count(b",") > MAX_VALUES or content.count(b"{") + content.count(b"[") > MAX_NESTS:
+        gathered.add("bad-json", gathered.place(), "far more values than a test has")
         return ()
     try:
         data = json.loads(content.decode("utf-8-sig"), object_pairs_hook=_object, parse_constant=_no_constant)
@@ -56,8 +62,7 @@ def read_json(content: bytes, gathered: Gathered) -> tuple[SheetTable, ...]:
 def _object(pairs: list[tuple[str, Any]]) -> dict[str, Any]:
     made = dict(pairs)
     if len(made) != len(pairs):
-        names = [name for name, _ in pairs]
-        twice = next(name for name in names if names.count(name) > 1)
+        twice = next(name for name, times in Counter(name for name, _ in pairs).items() if times > 1)
         raise ValueError(f"the name {twice!r} stands twice in one object")
     return made
 
@@ -74,6 +79,9 @@ def _table(spec: Sheet, name: str, value: Any, gathered: Gathered) -> SheetTable
         gathered.add("bad-json", gathered.place(name, pointer(name)), type(value).__name__, expected=wanted)
         return None
     keys = list(dict.fromkeys(key for row in value for key in row))
+    if large := too_large(len(value), len(keys)):
+        gathered.add("bad-json", gathered.place(name, pointer(name)), large, expected="rows of the same few names")
+        return None
     header = tuple(HeaderCell(pointer(name, 0, key), key, key, *split_header(key)) for key in keys)
     rows = tuple(
         Row(i, tuple(_cell(pointer(name, i, key), row.get(key), gathered, name) for key in keys))

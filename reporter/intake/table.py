@@ -9,6 +9,8 @@ from datetime import date, datetime, time, timedelta
 
 from reporter.intake.sheets import Sheet
 
+#: Caps on one table: its columns, its fields (rows by columns), the characters of one text and of all texts.
+MAX_COLUMNS, MAX_FIELDS, MAX_TEXT, MAX_TEXTS = 512, 1_200_000, 32_767, 1_000_000
 #: What a cell may hold once it is read.
 Raw = str | float | bool | datetime | date | time | timedelta | None
 
@@ -77,6 +79,13 @@ class SheetTable:
     footers: tuple[Row, ...] = ()
     hidden: tuple[str, ...] = ()
     header_found: bool = True
+
+
+def too_large(rows: int, columns: int) -> str:
+    """How a table is larger than any of a test; empty if it is not."""
+    if columns > MAX_COLUMNS:
+        return f"{columns:,} columns"
+    return f"{rows:,} rows of {columns:,} columns" if rows * columns > MAX_FIELDS else ""
 
 
 _BLANKS = str.maketrans({"\u00a0": " ", "\u2007": " ", "\u202f": " ", "\u200b": "", "\ufeff": ""})

@@ -7,6 +7,7 @@ Nothing is run, fetched or followed: formulas are their stored values, links and
 from __future__ import annotations
 
 import io
+import math
 import posixpath
 import warnings
 import zipfile
@@ -18,7 +19,7 @@ from reporter.intake.gather import Gathered
 from reporter.intake.guard import Look
 from reporter.intake.headers import HEADER_WITHIN, score, split_footers, unit_row
 from reporter.intake.sheets import Kind, Sheet, find_sheet, footer_words, near_sheet
-from reporter.intake.table import Cell, HeaderCell, Raw, Row, SheetTable, show, split_header
+from reporter.intake.table import MAX_COLUMNS, Cell, HeaderCell, Raw, Row, SheetTable, show, split_header, too_large
 
 #: One sheet's cells by row and column number.
 Grid = dict[int, dict[int, Cell]]
@@ -79,9 +80,13 @@ def sheet_parts(content: bytes) -> dict[str, str]:
 
 def _table(spec: Sheet, sheet: Any, uncalculated: frozenset[str], gathered: Gathered) -> SheetTable | None:
     grid = _grid(sheet, uncalculated)
-    if any(column > 512 for row in grid.values() for column in row):
+    used = {column for row in grid.values() for column in row}
+    if max(used, default=0) > MAX_COLUMNS:
         gathered.add("far-cell", gathered.place(sheet.title), "a filled cell right of column SR")
         return None
+    if large := too_large(len(grid), len(used)):
+        gathered.add("zip-bomb", gathered.place(sheet.title), large)
+        return SheetTable(spec, sheet.title, (), (), header_found=False)
     hidden = _hidden(sheet, grid)
     start = _header_row(spec, grid)
     if start is None:
@@ -121,9 +126,10 @@ def raw(value: object) -> Raw:
         return value
     if isinstance(value, (int, float)):
         try:
-            return float(value)
+            number = float(value)
         except OverflowError:
             return str(value)
+        return number if math.isfinite(number) else str(value)
     return str(value)
 
 

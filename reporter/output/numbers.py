@@ -14,7 +14,7 @@ from decimal import ROUND_HALF_EVEN, Decimal
 
 from reporter.errors import LedgerError
 from reporter.ledger import Entry, FromEquation
-from reporter.quantities import quantity_of
+from reporter.quantities import quantity_of, table
 
 #: Significant digits of a number whose quantity is not in the table.
 SIGNIFICANT = 4
@@ -79,9 +79,12 @@ def shown(entry: Entry) -> str:
     if entry.decimals is not None:
         return fixed(value, max(entry.decimals, 0))
     try:
-        found, _ = quantity_of(entry.key)
+        found, variants = quantity_of(entry.key)
     except LedgerError:
         return significant(value, SIGNIFICANT)
+    own = table().get(variants[-1]) if variants else None
+    if own is not None and own.decimals is not None:
+        found = own
     decimals = _BY_UNIT.get((found.segment, entry.unit), found.decimals)
     if decimals is None:
         return significant(value, found.significant)

@@ -34,6 +34,12 @@ def wood() -> Outcome:
 
 
 @pytest.fixture(scope="session")
+def invalid() -> Outcome:
+    """A test of four runs, the second made invalid for NOx by its bias."""
+    return opened(SAMPLES / "bias_invalid_run.xlsx")
+
+
+@pytest.fixture(scope="session")
 def changed() -> Callable[..., Outcome]:
     """The outcome of another's record with some sheets replaced."""
     return lambda outcome, **sheets: assess(replace(outcome.record, **sheets))

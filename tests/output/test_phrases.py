@@ -42,9 +42,9 @@ def test_every_phrase_that_is_asked_for_is_there() -> None:
 
 
 def _built(name: str, text: str) -> bool:
-    """Whether a name is put together in code: ``title.<section>``, ``limit.<relation>_met`` and the like."""
+    """Whether a name is put together in code: ``title.<section>``, ``limit.<relation>_met``, or a whole table."""
     table, entry = name.split(".", 1)
-    if table in {"title", "cautions"}:
+    if table == "title" or f'.all("{table}")' in text:
         return True
     stem = re.sub(r"(_not)?_met$|_role$", "", entry)
     if f'"{table}.{{' in text and f'"{stem}"' in text:

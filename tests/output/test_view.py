@@ -12,10 +12,13 @@ import pytest
 
 from reporter.ledger import FromEquation
 from reporter.outcome import Outcome
-from reporter.output.view import View, build_view
-from reporter.output.view.model import Shown, Source
+from reporter.output.phrases import load_phrases
+from reporter.output.view import Document, View, build_view
+from reporter.output.view.desk import Desk
+from reporter.output.view.model import CheckRow, Shown, Source
 from reporter.output.view.register import pattern
-from reporter.record import Given
+from reporter.output.view.standing import is_recalled as recalled
+from reporter.record import Given, ProcessLog
 from tests.output.conftest import ISSUED
 from tests.output.test_phrases import FORBIDDEN
 
@@ -139,7 +142,8 @@ def test_the_limit_table_shows_unrounded_rounded_limit_and_margin(boiler: Outcom
     assert average == pytest.approx(ledger[comparison.value].value, rel=1e-5)
     assert float(cells[-3]) == ledger[comparison.rounded].value
     assert float(cells[-2]) == ledger[comparison.limit_key].value
-    assert float(cells[-1]) == pytest.approx(float(cells[-2]) - float(cells[-3]), abs=1e-12)
+    # The margin is of the unrounded average, with two decimals more than the limit (30 ppm).
+    assert cells[-1] == f"{ledger[comparison.limit_key].value - ledger[comparison.value].value:.2f}"
     assert view.limits.limits[0].relation_words == "at or below the limit as entered"
 
 
@@ -198,12 +202,70 @@ def test_the_checklist_of_a_draft_says_what_is_missing_and_of_a_final_where_else
         return next(row.words for group in view.checklist for row in group.rows if row.number == number)
 
     test = replace(boiler.record.test, approvals=None, status=Given("draft"))
-    assert words(view_of(changed(boiler, test=test)), "12").startswith("missing: approvals")
+    draft = view_of(changed(boiler, test=test))
+    assert words(draft, "12") == "missing: deviations or that there were none, approvals"
+    assert words(draft, "32") == "in part: points visited; missing: test, result and decision"
+    assert words(draft, "13") == "missing"
     final = replace(test, status=Given("final"))
     view = view_of(changed(boiler, test=final))
-    assert words(view, "12") == "under separate cover"
+    assert words(view, "32") == "in part: points visited; under separate cover: test, result and decision"
+    assert words(view, "13") == "under separate cover"
     assert words(view, "41") == "not part of this test"
     assert view.draft_mark == ""
+
+
+def test_a_line_of_the_checklist_has_a_page_only_where_its_content_stands(
+    boiler: Outcome, changed: Callable[..., Outcome]
+) -> None:
+    def line(view: View, number: str) -> CheckRow:
+        return next(row for group in view.checklist for row in group.rows if row.number == number)
+
+    files = {"attachments/certificate_EX-101.pdf": Document(b"%PDF-1.4", 1)}
+    view = view_of(boiler, files=files)
+    certificates = line(view, "45")
+    assert "certificates bound in (1 of 5)" in certificates.words
+    assert certificates.anchors == ("section-calibrations", "document-A")
+    bare = changed(boiler, process=ProcessLog(), fuel_use=(), points=())
+    for number in ("17", "25", "53"):
+        assert line(view, number).anchors
+        assert line(view_of(bare), number).anchors == ()
+    assert line(view_of(bare), "26").anchors == ()
+
+
+def test_a_recalled_bound_has_a_dagger_and_a_footnote(boiler: Outcome) -> None:
+    """criteria.toml: Method 7E was read, the use of its limits by Methods 10 and 3A is recalled."""
+    table = view_of(boiler).quality.table
+    assert table is not None
+    assert [cell.text for cell in table.rows[0].cells[2:]] == ["is met", "is met†", "is met†", "is met†"]
+    assert "† recalled" in table.note
+    assert recalled(Desk(boiler, ISSUED, "0.1.0", load_phrases()), "fuel.natural_gas.fuel_factor.lowest")
+
+
+def test_criteria_held_and_not_applied_are_named_with_the_reason(boiler: Outcome) -> None:
+    words = view_of(boiler).quality.not_applied
+    assert any(line.startswith("Interference response (Method 7E, § 13.4), NOx, CO, O₂, CO₂: ") for line in words)
+    assert any("§ 8.1.2" in line for line in words)
+
+
+def test_an_average_of_some_runs_says_which(invalid: Outcome) -> None:
+    view = view_of(invalid)
+    table = next(t for block in view.sections["runs"] for t in block.tables if t.columns[-1].title == "Average")
+    assert table.columns[-1].unit == "runs 1, 3, 4"
+    labels = {getattr(row.cells[0], "text", row.cells[0]): row for row in table.rows}
+    assert any(label.endswith("average of runs 1, 2, 3, 4") for label in labels)  # oxygen is valid in run 2
+    run_2 = [row.cells[3].text for row in table.rows if len(row.cells) > 3 and isinstance(row.cells[3], Shown)]
+    assert any(text.startswith("[") for text in run_2)
+    limit = view.limits.limits[0]
+    averaging = next(fact.text for fact in limit.facts if fact.label == "Averaging")
+    assert "3 runs count (runs 1, 3, 4)" in averaging
+    assert [problem.grade for problem in view.quality.problems] == ["run not counted", "note"]
+
+
+def test_a_limit_says_route_factor_and_table(boiler: Outcome) -> None:
+    facts = {fact.label: fact.text for fact in view_of(boiler).limits.limits[2].facts}
+    assert "mass rate from heat input; Method 19, § 12.2.1, Eq. 19-1; F factor 8710 dscf/MMBtu of" in facts["Basis"]
+    assert "Table 19-2 (natural gas); gross heat; by analogy with Method 19" in facts["Basis"]
+    assert facts["Cross-check"].startswith("0.9959\u00a0lb/h from flow; ")
 
 
 def test_the_checklist_has_the_union_of_published_lines(boiler: Outcome) -> None:

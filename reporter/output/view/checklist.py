@@ -3,14 +3,24 @@
 from __future__ import annotations
 
 import tomllib
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
 from typing import Any
 
 from reporter.output.view.cover import is_draft
 from reporter.output.view.desk import Desk
 from reporter.output.view.model import BoundDocument, CheckGroup, CheckRow
-from reporter.record import Record
+from reporter.output.view.presence import count_of, is_there
 from reporter.resources import templates_folder
+
+
+@dataclass(frozen=True, slots=True)
+class _Part:
+    """One thing a line asks for: its name, where it stands (nothing: nowhere), and what the place lacks."""
+
+    name: str
+    anchors: tuple[str, ...]
+    lacks: str = ""
 
 
 def checklist(desk: Desk, documents: tuple[BoundDocument, ...]) -> tuple[CheckGroup, ...]:
@@ -23,50 +33,55 @@ def checklist(desk: Desk, documents: tuple[BoundDocument, ...]) -> tuple[CheckGr
 
 
 def _line(desk: Desk, row: Mapping[str, Any], documents: tuple[BoundDocument, ...]) -> CheckRow:
-    """One line: a bound document wins, then the section; else it is missing or does not apply."""
+    """One line: the pages of what is there, and in words what is not."""
     number, text = str(row["number"]), str(row["text"])
-    record = desk.outcome.record
-    bound = [document for document in documents if _bears(desk, document, row)]
-    if bound:
-        return CheckRow(number, text, bound[0].anchor, "" if bound[0].pages else bound[0].remark)
-    if "applies" in row and not any(_present(record, name) for name in row["applies"]):
-        return CheckRow(number, text, "", desk.words("checklist.not_applicable"))
-    needs = row.get("needs", ())
-    section = row.get("section", "")
-    if section and all(_present(record, name) for name in needs):
-        remark = desk.words("checklist.signed") if row.get("signed") and not is_draft(desk) else ""
-        return CheckRow(number, text, f"section-{section}" if section != "cover" else "cover", remark)
-    if is_draft(desk):
-        lacking = [_field_words(name) for name in needs if not _present(record, name)]
-        words = desk.words("checklist.missing")
-        return CheckRow(number, text, "", f"{words}: {', '.join(lacking)}" if lacking else words)
-    return CheckRow(number, text, "", desk.words("checklist.separate"))
+    if not _applies(desk, row):
+        return CheckRow(number, text, (), desk.words("checklist.not_applicable"))
+    asked = [part for part in row.get("parts", (row,)) if _applies(desk, part)]
+    parts = [_part(desk, part, number, text, documents) for part in asked]
+    listed = tuple(one.anchor for one in documents if one.sha256 and _line_of(desk, one) in {number, text.lower()})
+    there = [part for part in parts if part.anchors]
+    anchors = tuple(dict.fromkeys([*(at for part in there for at in part.anchors), *listed]))
+    open_ = [part for part in parts if not part.anchors and not (listed and not there)]
+    words = []
+    if there and (open_ or any(part.lacks for part in there)):
+        names = ", ".join(f"{part.name}{part.lacks}" for part in there)
+        words.append(desk.words("checklist.in_part", parts=names))
+    if open_:
+        phrase = desk.words("checklist.missing" if is_draft(desk) else "checklist.separate")
+        names = ", ".join(part.name for part in open_)
+        words.append(f"{phrase}: {names}" if len(parts) > 1 else phrase)
+    if row.get("signed") and not is_draft(desk):
+        words.append(desk.words("checklist.signed"))
+    return CheckRow(number, text, anchors, "; ".join(words))
 
 
-def _bears(desk: Desk, document: BoundDocument, row: Mapping[str, Any]) -> bool:
-    """Whether a document was listed for this line: by the line's number, or by words of it."""
+def _applies(desk: Desk, row: Mapping[str, Any]) -> bool:
+    return "applies" not in row or any(is_there(desk, name) for name in row["applies"])
+
+
+def _part(desk: Desk, part: Mapping[str, Any], number: str, text: str, documents: Sequence[BoundDocument]) -> _Part:
+    """Where one thing stands: in a section that has it, in documents bound in for it, or nowhere."""
+    name = str(part["text"])
+    anchors: list[str] = []
+    if "section" in part and all(is_there(desk, need) for need in part.get("needs", ())):
+        anchors.append("cover" if part["section"] == "cover" else f"section-{part['section']}")
+    bound = [one for one in documents if one.sha256 and _bears(desk, one, part, {number, text.lower()})]
+    lacks = ""
+    if "each" in part and bound and len(bound) < (asked := count_of(desk, part["each"])):
+        lacks = desk.words("checklist.some", count=len(bound), asked=asked)
+    return _Part(name, (*anchors, *(one.anchor for one in bound[:1])), lacks)
+
+
+def _bears(desk: Desk, document: BoundDocument, part: Mapping[str, Any], line: set[str]) -> bool:
+    """Whether a document holds what a part asks for: by its kind, unless it names another line."""
+    named = _line_of(desk, document)
+    return (not named or named in line) and document.what.strip().lower() in part.get("documents", ())
+
+
+def _line_of(desk: Desk, document: BoundDocument) -> str:
+    """The line of this list a document was entered for, in lower case; nothing where none was named."""
     for attachment in desk.outcome.record.attachments:
-        if attachment.file.value != document.file:
-            continue
-        line = attachment.content_line.value.strip().lower() if attachment.content_line is not None else ""
-        if line == str(row["number"]) or (line and line == str(row["text"]).lower()):
-            return True
-        if not line and attachment.what.value.strip().lower() in row.get("documents", ()):
-            return True
-    return False
-
-
-def _present(record: Record, name: str) -> bool:
-    """Whether a field is filled: ``test.client``, ``runs.load`` (in every run), ``cylinders`` (any row)."""
-    table, _, rest = name.partition(".")
-    value = getattr(record, table)
-    if not rest:
-        return bool(getattr(value, "times", value))
-    if isinstance(value, tuple):
-        return bool(value) and all(getattr(row, rest) is not None for row in value)
-    return getattr(value, rest) is not None
-
-
-def _field_words(name: str) -> str:
-    table, _, rest = name.partition(".")
-    return f"{rest.replace('_', ' ')} ({table})" if rest else f"sheet {table.replace('_', ' ').capitalize()}"
+        if attachment.file.value == document.file and attachment.content_line is not None:
+            return attachment.content_line.value.strip().lower()
+    return ""

@@ -23,7 +23,7 @@ def references(desk: Desk) -> tuple[Block, ...]:
 
 def statements(desk: Desk, attached: tuple[str, ...]) -> tuple[str, ...]:
     """The statements of every report; what is attached to this one."""
-    names = ("limits", "no_decision", "review", "items", "copy", "representative", "rounding", "methods")
+    names = ("limits", "no_decision", "review", "items", "copy", "corrections", "representative", "rounding", "methods")
     made = [desk.words(f"statements.{name}") for name in names]
     made.append(desk.words("statements.computed", version=desk.version))
     if attached:

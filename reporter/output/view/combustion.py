@@ -9,8 +9,9 @@ from reporter.outcome import RunResult
 from reporter.output.charts import DiagramPoint, FactorBand, FuelLine, OxygenDiagram, oxygen_diagram
 from reporter.output.numbers import formulas
 from reporter.output.view.desk import Desk, aligned
-from reporter.output.view.model import AnyCell, Block, Column, Picture, Row, Table
+from reporter.output.view.model import Block, Column, Picture, Row, Table
 from reporter.output.view.runs import layout, rows_table, unit_and_basis
+from reporter.output.view.standing import DAGGER, dagger
 
 #: Percent oxygen of dry air: in physics, and as the methods print it (the fuel factor's range).
 _OXYGEN_OF_AIR, _OXYGEN_PRINTED = 20.95, 20.9
@@ -40,20 +41,30 @@ def _findings(desk: Desk) -> tuple[str, ...]:
 
 def _balance(desk: Desk, runs: Sequence[RunResult]) -> Block:
     """Measured, expected and their difference below each other, a column per run."""
-    columns = [Column("", width=1.6), Column("", width=1.4), Column("Unit and basis", width=1.8)]
+    columns = [Column("", width=1.4), Column("", width=2.2), Column("Unit and basis", width=1.8)]
     columns += [Column(f"Run {run.run.run.value}", number=True) for run in runs]
     rows = []
     for label, tails in layout().balance:
+        name = formulas(label)
         for tail, word in zip(tails, ("measured", "expected", "difference"), strict=False):
             entries = [_of(desk, run, tail) for run in runs]
             found = next((entry for entry in entries if entry is not None), None)
             if found is not None:
-                name = formulas(label) if word == "measured" else ""
-                cells: list[AnyCell] = [name, word, unit_and_basis(found)]
-                cells += [desk.missing if entry is None else desk.shown(entry) for entry in entries]
-                rows.append(Row(tuple(cells)))
+                words = f"{word}{_range(desk, found.key) if tail.endswith('fuel_factor') else ''}"
+                rows.append(Row((name, words, unit_and_basis(found), *desk.row(entries))))
+                name = ""
+    notes = [desk.words("criterion.recalled")] if any(DAGGER in str(row.cells[1]) for row in rows) else []
     tables = (aligned(Table(tuple(columns), tuple(rows))),) if rows else ()
-    return Block(title="Measured against expected", tables=tables)
+    return Block(title="Measured against expected", tables=tables, notes=tuple(notes) if rows else ())
+
+
+def _range(desk: Desk, key: str) -> str:
+    """The range a measured fuel factor was checked against, with a dagger where it is recalled."""
+    checks = [check for check in desk.outcome.checks if check.value == key]
+    if not checks:
+        return ""
+    ends = " to ".join(f"{desk.number_text(check.bound)}{dagger(desk, (check.bound,))}" for check in checks)
+    return f"; expected range {ends}"
 
 
 def _of(desk: Desk, run: RunResult, tail: str) -> Entry | None:

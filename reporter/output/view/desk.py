@@ -43,8 +43,12 @@ class Desk:
     phrases: Phrases
     printed: dict[str, None] = field(default_factory=dict)
     places: dict[str, str] = field(default_factory=dict)
+    row_words: dict[str, str] = field(init=False)
     _lines: dict[tuple[str, Citation], str] = field(default_factory=dict)
     _below: dict[str, list[str]] = field(default_factory=dict)
+
+    def __post_init__(self) -> None:
+        self.row_words = self.phrases.all("row")
 
     def words(self, name: str, **values: object) -> str:
         """A fixed phrase."""
@@ -140,9 +144,11 @@ class Desk:
             found, variants = quantity_of(key)
         except LedgerError:
             return key.rsplit(".", 1)[-1].replace("_", " ")
-        own = self.phrases.all("row")
-        more = [own.get(segment) or _variant(segment) for segment in variants]
-        return ", ".join([own.get(found.segment, found.label), *more])
+        label = self.row_words.get(found.segment, found.label)
+        for segment in variants:
+            words = self.row_words.get(segment)
+            label = f"{label}, {_variant(segment)}" if words is None else words.replace("{of}", label)
+        return label
 
     def origin_words(self, entry: Entry) -> str:
         """Where an entry that is not computed comes from: cell, table or statement."""

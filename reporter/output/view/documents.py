@@ -58,3 +58,9 @@ def _bound(desk: Desk, letter: str, file: str, what: str, found: Document | None
         return BoundDocument(anchor, letter, file, what, digest, found.pages, "", "")
     remark = desk.words("missing.unreadable" if kind == "pdf" else "missing.other_kind")
     return BoundDocument(anchor, letter, file, what, digest, 0, "", remark)
+
+
+def certificate_cylinders(desk: Desk) -> tuple[str, ...]:
+    """Cylinders that have a certificate to bind in: all but those that hold zero gas alone."""
+    rows = desk.outcome.record.cylinders
+    return tuple(dict.fromkeys(row.cylinder.value for row in rows if row.certified_value.value != 0.0))

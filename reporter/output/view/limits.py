@@ -211,7 +211,9 @@ def _cross_words(desk: Desk, comparison: Comparison) -> str:
     value = desk.number_text(comparison.cross)
     of_runs = [f"run.{run.key}.{comparison.quantity}.route_difference" for run in desk.outcome.runs]
     found = [desk.number_text(key) for key in of_runs if key in ledger]
-    return desk.words("limit.second_route", route=first.note or "second route", value=value, difference=", ".join(found))
+    return desk.words(
+        "limit.second_route", route=first.note or "second route", value=value, difference=", ".join(found)
+    )
 
 
 def _entered_by(desk: Desk, limit: Limit) -> str:

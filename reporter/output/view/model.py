@@ -287,11 +287,11 @@ class BoundDocument:
 
 @dataclass(frozen=True, slots=True)
 class CheckRow:
-    """One line of the content checklist: `anchor` leads to the page where it stands, else `words` say more."""
+    """One line of the content checklist: `anchors` lead to the pages where it stands, `words` say what is not there."""
 
     number: str
     text: str
-    anchor: str
+    anchors: tuple[str, ...]
     words: str
 
 

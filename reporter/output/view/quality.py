@@ -214,7 +214,7 @@ def _cells(desk: Desk, checks: Sequence[Check], *, bound: bool) -> list[Cell]:
         name = _row_name(check)
         if bound:
             name += f", {_relation(desk, check)} {desk.number_text(check.bound)}"
-        if _needs_alternative(desk, check):
+        if needs_alternative(desk, check):
             name += f", {desk.words('criterion.difference')} {desk.number_text(check.difference)}"
         texts.append((name, desk.number_text(check.value, unit=False), check))
     widest = max(len(value) for _, value, _ in texts)
@@ -229,7 +229,7 @@ def _cells(desk: Desk, checks: Sequence[Check], *, bound: bool) -> list[Cell]:
     ]
 
 
-def _needs_alternative(desk: Desk, check: Check) -> bool:
+def needs_alternative(desk: Desk, check: Check) -> bool:
     """Whether a share beyond its bound makes the difference decide."""
     ledger = desk.outcome.ledger
     return bool(check.alternative) and abs(float(ledger[check.value].value)) > float(ledger[check.bound].value)

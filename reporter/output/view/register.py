@@ -74,21 +74,32 @@ def _computed(desk: Desk, entries: list[Entry]) -> Derivation:
     assert isinstance(first, FromEquation)
     inputs = []
     for at, (name, _) in enumerate(first.inputs):
-        keys: dict[str, None] = {}
+        keys: list[str] = []
         for origin in origins:
             assert isinstance(origin, FromEquation)
             given = origin.inputs[at][1]
-            keys.update(dict.fromkeys((given,) if isinstance(given, str) else given))
-        inputs.append(_input(desk, first.equation.parameters[name].symbol, list(keys)))
+            keys += (given,) if isinstance(given, str) else given
+        inputs.append(_input(desk, first.equation.parameters[name].symbol, keys))
     return Derivation(_placed(desk, entries), pattern(entries[0].key), _values(entries), tuple(inputs), "")
 
 
 def _input(desk: Desk, symbol: str, keys: list[str]) -> Source:
+    """One argument of all entries of a row: its values and cells in their order, once where they are all the same."""
     entries = [desk.outcome.ledger[key] for key in keys]
     if entries[0].is_indicator:
         return Source(symbol, ", ".join(dict.fromkeys(map(value_text, entries))), "", "", "section-criteria")
     here = all(isinstance(entry.origin, FromCells) and entry.key not in desk.printed for entry in entries)
-    return Source(symbol, ", ".join(_texts(entries)), "", desk.cells(keys), "" if here else keys[0])
+    return Source(symbol, ", ".join(_texts(entries)), "", _cells(desk, keys), "" if here else keys[0])
+
+
+def _cells(desk: Desk, keys: list[str]) -> str:
+    """The cells of an argument, one for each entry of the row, so that they pair with the values before."""
+    origins = [desk.outcome.ledger[key].origin for key in keys]
+    cells = [origin.place.cell for origin in origins if isinstance(origin, FromCells)]
+    sheets = {origin.place.sheet for origin in origins if isinstance(origin, FromCells)}
+    if len(cells) < len(keys) or len(sheets) != 1 or len(set(cells)) in {1, len(cells)}:
+        return desk.cells(keys)
+    return f"{sheets.pop()}!{' '.join(cells)}"
 
 
 def _leaf(desk: Desk, entries: list[Entry]) -> Derivation:

@@ -198,8 +198,7 @@ def _row(desk: Desk, some: Sequence[RunResult], tail: str, averages: bool) -> Ro
     numbers = desk.row([*entries, average] if averages else entries)
     cells: list[AnyCell] = [_label(desk, found, held), unit_and_basis(found)]
     cells += [
-        cell if _counts(desk, run, tail, held) else _bracketed(cell)
-        for run, cell in zip(some, numbers, strict=False)
+        cell if _counts(desk, run, tail, held) else _bracketed(cell) for run, cell in zip(some, numbers, strict=False)
     ]
     if averages:
         cells.append(numbers[-1] if average is not None else "")
@@ -220,7 +219,8 @@ def _bracketed(cell: AnyCell) -> AnyCell:
 
 def _label(desk: Desk, entry: Entry, held: Sequence[str]) -> str:
     """The quantity, by which route, whether by analogy, and the runs of its average where others hold more."""
-    words = [desk.quantity_label(entry.key), entry.note if entry.note.startswith("from ") else "", _analogy(desk, entry)]
+    route = entry.note if entry.note.startswith("from ") else ""
+    words = [desk.quantity_label(entry.key), route, _analogy(desk, entry)]
     usual = usual_runs(desk)
     if held and usual and held != usual:
         words.append(desk.words("run.average_of", runs=desk.run_names(held)))

@@ -2,22 +2,31 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable
 from dataclasses import dataclass, field
 from typing import Any
 
 from reporter.equation import Equation
 from reporter.ledger import Entry, FromCells, FromEquation, FromTable, Stated
-from reporter.outcome import Comparison, RunResult, RunState
+from reporter.outcome import Comparison, GasResult, RunResult, RunState
 from reporter.output.numbers import formulas, shortest, unit_text
 from reporter.output.view.desk import Desk, cell_words, gas_name
 from reporter.output.view.limits import limit_words
 from reporter.output.view.model import Chapter, Shown, Source, Step
+from reporter.output.view.quality import needs_alternative
 from reporter.trace import Name
 from reporter.typeset import html_formula, symbol_html, text_formula
 
 #: Significant digits of numbers put into equations.
 DIGITS = 6
+#: Chapters of the run as a whole: what each leads to.
+_OF_RUN = (
+    ("Moisture", ("moisture",)),
+    ("Stack pressure and flow", ("stack_pressure", "flow.dry_standard")),
+    ("Heat input", ("heat_input", "heat_input.metered", "heat_input.metered_difference")),
+)
+#: What a second route adds to a rate.
+_SECOND = ("by_flow", "by_heat_input", "route_difference")
 
 
 @dataclass
@@ -25,14 +34,19 @@ class _Writer:
     """Steps as they are written: each entry once, numbered from the first; each equation set out once."""
 
     desk: Desk
+    run: str
+    about: str = ""
     numbers: dict[str, int] = field(default_factory=dict)
     equations: set[str] = field(default_factory=set)
 
-    def chapter(self, title: str, keys: Sequence[str]) -> Chapter | None:
-        """The steps that lead to some entries and were not written before."""
+    def chapter(self, title: str, keys: Iterable[str], answer: str = "") -> Chapter | None:
+        """The steps that lead to some entries and were not written before; `answer` is that of a comparison."""
         ledger = self.desk.outcome.ledger
+        self.about = title
         needed = self.desk.needed(keys)
         steps = [self._step(entry) for entry in ledger if entry.key in needed and self._is_new(entry)]
+        if answer:
+            steps.append(self._step(ledger[answer]))
         return Chapter(title, tuple(steps)) if steps else None
 
     def _is_new(self, entry: Entry) -> bool:
@@ -50,15 +64,20 @@ class _Writer:
         self.equations.add(equation.name)
         return Step(
             number=self.numbers[entry.key],
-            title=desk.label(entry.key),
+            title=self._title(entry.key),
             formula=_formula(equation) if is_new else "",
             line=desk.equation_line(equation) if is_new else "",
             numbers=text_formula(desk.outcome.ledger.trace(entry), _number),
-            result=Shown(entry.key, shortest(float(entry.value), DIGITS), unit_text(entry.unit)),
+            result=Shown(entry.key, value_text(entry), unit_text(entry.unit)),
             basis=formulas(entry.basis.text()),
             citation=equation.citation.text(),
             sources=self._sources(entry),
         )
+
+    def _title(self, key: str) -> str:
+        """The words for an entry, without the gas of its chapter and the run of the calculation."""
+        words = self.desk.label(key).removesuffix(self.run)
+        return words.removeprefix(f"{self.about}, ")
 
     def _sources(self, entry: Entry) -> tuple[Source, ...]:
         """The inputs of an entry: symbol, number, and the place it comes from (a step where it has one)."""
@@ -74,9 +93,12 @@ class _Writer:
         return tuple(found)
 
     def _source(self, symbol: str, key: str) -> Source:
+        """A number put in; what was read from a cell is derived by naming the cell."""
         entry = self.desk.outcome.ledger[key]
         if entry.is_indicator:
             return Source(symbol, value_text(entry), "", "", "section-criteria")
+        if isinstance(entry.origin, FromCells):
+            return Source(symbol, value_text(entry), unit_text(entry.unit), cell_words(entry.origin), "")
         self.desk.printed[key] = None
         key = self.desk.source_of(key)
         if key in self.numbers:
@@ -88,8 +110,6 @@ class _Writer:
 def _where(entry: Entry) -> str:
     """A short place for a leaf; a computed entry is led to by its key alone."""
     match entry.origin:
-        case FromCells() as origin:
-            return cell_words(origin)
         case FromTable(citation=citation):
             return citation.text()
         case Stated(reason=reason):
@@ -141,18 +161,57 @@ def sample(desk: Desk, run: RunResult | None) -> tuple[Chapter, ...]:
     """A chapter per gas, then one per limit, then the average and the comparison of each."""
     if run is None:
         return ()
-    writer = _Writer(desk)
-    chapters = []
-    for gas in run.gases:
-        stem = f"run.{run.key}.{gas.segment}"
-        chapters.append(writer.chapter(gas_name(gas.gas), [f"{stem}.corrected", f"{stem}.dry"]))
+    writer = _Writer(desk, f", run {run.key}")
+    stem = f"run.{run.key}"
+    chapters = [
+        writer.chapter(gas_name(gas.gas), [*_judged(desk, run, gas), f"{stem}.{gas.segment}.dry"]) for gas in run.gases
+    ]
+    for title, names in _OF_RUN:
+        keys = [f"{stem}.{name}" for name in names]
+        chapters.append(writer.chapter(title, [key for key in keys if key in desk.outcome.ledger]))
     for comparison in desk.outcome.comparisons:
-        chapters.append(writer.chapter(_title(desk, comparison), _of_run(comparison, run)))
+        chapters.append(writer.chapter(_title(desk, comparison), _of_run(desk, comparison, run)))
+    for comparison in desk.outcome.comparisons:
+        title = desk.words("limit.calculated", limit=comparison.limit.limit_id.value)
+        keys = [comparison.value, comparison.rounded, comparison.margin]
+        answer = comparison.met if comparison.compared else ""
+        chapters.append(writer.chapter(title, [key for key in keys if key], answer))
     return tuple(chapter for chapter in chapters if chapter is not None)
 
 
-def _of_run(comparison: Comparison, run: RunResult) -> list[str]:
-    return [key for segment, key, _ in comparison.runs if segment == run.key]
+def _judged(desk: Desk, run: RunResult, gas: GasResult) -> list[str]:
+    """What the criteria behind a gas's validity in a run are applied to: errors, biases, drifts, converter.
+
+    The difference of an alternative is taken in where its share is beyond the bound.
+    """
+    ledger = desk.outcome.ledger
+    stem = f"run.{run.key}.{gas.segment}"
+    stack = [f"{stem}.{name}" for name in ("valid", "clean") if f"{stem}.{name}" in ledger]
+    flags: set[str] = set()
+    while stack:
+        key = stack.pop()
+        origin = ledger[key].origin
+        if key not in flags and ledger[key].is_indicator and isinstance(origin, FromEquation):
+            flags.add(key)
+            stack += origin.keys()
+    found = []
+    for check in desk.outcome.checks:
+        converter = not check.runs and gas_name(check.gas) == gas_name(gas.gas) and "converter" in check.value
+        if check.key in flags or converter:
+            found.append(check.value)
+            if needs_alternative(desk, check):
+                found.append(check.difference)
+    return found
+
+
+def _of_run(desk: Desk, comparison: Comparison, run: RunResult) -> list[str]:
+    """A run's result for a limit, by the limit's route and by the second one, with their difference."""
+    found = []
+    for segment, key, _ in comparison.runs:
+        if segment == run.key:
+            found.append(key)
+            found += [one for name in _SECOND if (one := f"{key}.{name}") in desk.outcome.ledger]
+    return found
 
 
 def _title(desk: Desk, comparison: Comparison) -> str:

@@ -161,7 +161,8 @@ def _factors(desk: Desk, row: FuelRow) -> str:
     for name, symbol in (("fd", "Fd"), ("fw", "Fw"), ("fc", "Fc")):
         entry = desk.outcome.ledger.get(f"{stem}.{name}")
         if entry is not None:
-            text = f"{symbol} {desk.number_text(entry.key)}{dagger(desk, (entry.key,))}"
+            desk.show(entry.key)
+            text = f"{symbol} {shortest(float(entry.value), 6)}{dagger(desk, (entry.key,))} {unit_text(entry.unit)}"
             by_source.setdefault(desk.factor_words(entry), []).append(text)
     parts = [f"{', '.join(texts)} ({source})" for source, texts in by_source.items()]
     return "; ".join(parts) or row.factor_source.value
@@ -247,7 +248,7 @@ def _methods(desk: Desk) -> Block:
         found = documents.get(name)
         edition = f"{found.title}; {found.edition}" if found is not None else desk.words("missing.no_document")
         rows.append((name, formulas(", ".join(what)), edition))
-    table = simple_table(("Method", "For", "Document and edition"), rows, (1.1, 2.4, 6.5))
+    table = simple_table(("Method", "For", "Document and edition"), rows, (1.1, 1.9, 8))
     return Block(title="Methods", tables=(table,), notes=tuple(_entered_results(desk)))
 
 

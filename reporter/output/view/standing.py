@@ -30,7 +30,7 @@ def is_recalled(desk: Desk, key: str) -> bool:
         return _criterion_recalled(desk, parts[1], parts[2])
     origin = desk.outcome.ledger[key].origin
     if isinstance(origin, FromTable):
-        return _table_recalled(parts[-1], origin)
+        return _table_recalled(parts, origin)
     if isinstance(origin, FromEquation):
         inputs = tuple(origin.keys())
         return any(isinstance(desk.outcome.ledger[one].origin, FromTable) and is_recalled(desk, one) for one in inputs)
@@ -44,20 +44,21 @@ def _criterion_recalled(desk: Desk, segment: str, name: str) -> bool:
     return held is not None and name in held and held[name].status != _FOUND
 
 
-def _table_recalled(quantity: str, origin: FromTable) -> bool:
-    """Table 3B-1 by its fuel; Method 19's F factors by table, fuel and column."""
+def _table_recalled(parts: list[str], origin: FromTable) -> bool:
+    """Table 3B-1 by its fuel; Method 19's F factors by table, fuel (as the key has it) and column."""
     document, number = origin.citation.document, origin.citation.number
+    fuel = parts[1].replace("_", " ")
     if document == "m3b":
-        found = fo_range(origin.row)
+        found = fo_range(origin.row or fuel)
         return found is not None and found.status != _FOUND
     named = [table for table in factor_tables() if number.endswith(table)]
-    if not named:
+    if not named or parts[0] != "fuel":
         return False
     try:
-        factors = fuel_factors(origin.row, named[0])
+        factors = fuel_factors(fuel, named[0])
     except RecordError:
         return False
-    factor = getattr(factors, quantity, None)
+    factor = getattr(factors, parts[-1], None)
     return factor is not None and factor.status_us != _FOUND
 
 

@@ -1,0 +1,227 @@
+"""What each column of a table is, with the evidence; what can be two things is asked."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+
+from reporter.gases import all_gases, gas
+from reporter.intake.foreign.corrected import corrected_words
+from reporter.intake.foreign.grid import Grid, letters
+from reporter.intake.foreign.mapping import AS_ENTERED, MappedColumn
+from reporter.intake.foreign.model import Desk, Option
+from reporter.intake.foreign.numbers import NumberStyle
+from reporter.intake.foreign.sort import number
+from reporter.intake.foreign.tables import Table, at, blank, is_numberlike
+from reporter.intake.foreign.words import (
+    basis_of,
+    basis_words_clash,
+    folded,
+    gases_in,
+    other_words,
+    units_in,
+    without_correction,
+)
+from reporter.intake.sheets import sentinels
+from reporter.intake.table import Raw, clean
+from reporter.problems import Place
+
+_SUFFIX = re.compile(r"^[<>]?\s*[+\-−]?[\d.,' ]*\d\s*([^\d\s.,].*)$")
+#: Units asked about where a header names none.
+_UNITS = ("ppm", "%", "mg/m3", "ppb")
+#: A percentage below this everywhere may be a fraction.
+_FRACTION_BELOW = 0.3
+
+
+@dataclass(frozen=True, slots=True)
+class Lane:
+    """A column of readings on its way: its column of the page, header, cells, and what is known of it."""
+
+    column: int
+    header: str
+    cells: tuple[Raw, ...]
+    gas: str = ""
+    unit: str = ""
+    basis: str = ""
+    correction: float | None = None
+    corrected: bool = False
+
+    @property
+    def name(self) -> str:
+        """The column as people name it."""
+        return f"column {letters(self.column)} ({self.header!r})"
+
+
+class Columns:
+    """The columns of one table being read."""
+
+    def __init__(self, grid: Grid, table: Table, rows: Sequence[int], desk: Desk) -> None:
+        self.grid, self.table, self.rows, self.desk = grid, table, rows, desk
+
+    def place(self, column: int) -> Place:
+        """The place of a header."""
+        return self.grid.place(self.table.page, self.table.header_rows[0], column)
+
+    def lanes(self, times: Sequence[int]) -> tuple[list[Lane], dict[int, str]]:
+        """The columns of readings, and why each other column is none."""
+        lanes: list[Lane] = []
+        ignored: dict[int, str] = {}
+        for column, header in zip(self.table.columns, self.table.headers, strict=True):
+            if column in times:
+                continue
+            cells = tuple(at(self.table.page.rows[row], column) for row in self.rows)
+            lane = Lane(column, header, cells)
+            why, key = self._gas(lane)
+            if key:
+                _, correction, corrected = without_correction(folded(header))
+                lanes.append(replace(lane, gas=key, correction=correction, corrected=corrected))
+            else:
+                ignored[column] = why
+        return lanes, ignored
+
+    def _gas(self, lane: Lane) -> tuple[str, str]:
+        """Why a column is no reading, or the gas it reads; both empty while that is open."""
+        filled = [cell for cell in lane.cells if not blank(cell)]
+        numbers = sum(1 for cell in filled if is_numberlike(cell) or _suffixed(cell))
+        named = gases_in(lane.header)
+        if not filled:
+            return "nothing stands in it", ""
+        if not numbers and not named:
+            return "words only", ""
+        if len(named) == 1 and not other_words(lane.header):
+            self.desk.say(f"{lane.name}: {gas(named[0]).label}, by its header")
+            return "", named[0]
+        if not named and lane.header and not units_in(lane.header):
+            return "no gas in its header", ""
+        reasons = f"the header {lane.header!r}" if lane.header else f"no header, and numbers such as {filled[0]!r}"
+        options = [Option("ignore", "it is no reading of a gas")]
+        options += [Option(found.label) for found in all_gases() if not named or found.key in named]
+        answer = self.desk.ask(
+            f"column.{letters(lane.column)}.gas", "Which gas does this column read?", reasons, options,
+            self.place(lane.column),
+        )  # fmt: skip
+        found = next((g.key for g in all_gases() if g.label == answer), "")
+        return ("as answered" if answer == "ignore" else ""), found
+
+    def with_units(self, lane: Lane, style: NumberStyle) -> Lane:
+        """The lane with its unit: of the header, else of its cells, else asked."""
+        units = [unit.unit for unit in units_in(lane.header)]
+        inside = {match[1].strip() for cell in lane.cells if isinstance(cell, str) and (match := _suffix(cell))}
+        own = {unit.unit for text in inside for unit in units_in(text)}
+        found = list(dict.fromkeys([*units, *sorted(own)]))
+        if len(found) == 1:
+            self.desk.say(f"{lane.name}: {found[0]}, by {'its header' if units else 'its cells'}")
+        elif not found and lane.gas in ("o2", "co2") and self._like_percent(lane, style):
+            found = ["%"]
+            self.desk.say(f"{lane.name}: %, for its readings lie between 1 and 25 and no other unit of {lane.gas} does")
+        elif len(found) != 1:
+            what = f"{' and '.join(found)} in one column" if found else f"no unit in {lane.header!r}"
+            options = [Option(unit) for unit in (found or _UNITS)]
+            key = f"column.{letters(lane.column)}.unit"
+            found = [self.desk.ask(key, "In which unit are the readings?", what, options, self.place(lane.column))]
+        return self._fraction(replace(lane, unit=found[0]), style)
+
+    def _like_percent(self, lane: Lane, style: NumberStyle) -> bool:
+        values = [v for cell in lane.cells if (v := number(cell, style)) is not None and v not in sentinels()]
+        middle = sorted(values)[len(values) // 2] if values else 0.0
+        return 1.0 <= middle <= 25.0
+
+    def _fraction(self, lane: Lane, style: NumberStyle) -> Lane:
+        """A percentage so small everywhere that it may be a fraction is asked about."""
+        values = [v for cell in lane.cells if (v := number(cell, style)) is not None and v not in sentinels()]
+        shown_percent = any((row, lane.column) in self.table.page.percent for row in self.rows)
+        if lane.unit != "%" or lane.gas not in ("o2", "co2") or shown_percent or not values:
+            return lane
+        if not 0.0 < max(values) < _FRACTION_BELOW:
+            return lane
+        options = (Option("%", f"{max(values):g} %"), Option("1", f"{max(values):g} of the gas, {max(values):.0%}"))
+        key = f"column.{letters(lane.column)}.fraction"
+        found = f"no reading above {max(values):g} in a column of percent"
+        unit = self.desk.ask(key, "Percent, or a fraction?", found, options, self.place(lane.column))
+        return replace(lane, unit=unit)
+
+    def with_basis(self, lane: Lane) -> Lane:
+        """The lane with its moisture basis, by its header or asked."""
+        basis = basis_of(lane.header)
+        if basis:
+            self.desk.say(f"{lane.name}: {basis}, by its header")
+            return replace(lane, basis=basis)
+        what = "both dry and wet" if basis_words_clash(lane.header) else "neither dry nor wet"
+        options = (Option("dry"), Option("wet"), Option(AS_ENTERED, "the sheet Channels decides"))
+        answer = self.desk.ask(
+            f"column.{letters(lane.column)}.basis", "Is the reading of the dry or of the wet gas?",
+            f"{lane.header!r} says {what}", options, self.place(lane.column),
+        )  # fmt: skip
+        return replace(lane, basis=answer)
+
+    def uncorrected(self, lanes: Sequence[Lane], style: NumberStyle) -> tuple[list[Lane], dict[int, str]]:
+        """The lanes as measured: columns already corrected and second columns of a gas go, or are asked about."""
+        ignored: dict[int, str] = {}
+        kept = list(lanes)
+        for lane in lanes:
+            if lane.corrected:
+                why = self._corrected(lane, lanes, style)
+                if why:
+                    ignored[lane.column] = why
+                    kept.remove(lane)
+        for key in dict.fromkeys(lane.gas for lane in kept):
+            same = [lane for lane in kept if lane.gas == key]
+            if len(same) > 1:
+                chosen = self._choose(same, lanes, style)
+                for lane in same:
+                    if lane not in chosen:
+                        ignored[lane.column] = "another column of this gas is read, as answered"
+                        kept.remove(lane)
+        return kept, ignored
+
+    def _corrected(self, lane: Lane, lanes: Sequence[Lane], style: NumberStyle) -> str:
+        """Why a column with words of correction is left out; empty while that is open, or where it is as measured."""
+        raw = [other for other in lanes if other.gas == lane.gas and not other.corrected]
+        oxygen = [other for other in lanes if other.gas == "o2" and not other.corrected]
+        words = corrected_words(lane, raw[0], oxygen[0], style) if len(raw) == 1 and len(oxygen) == 1 else ""
+        if words:
+            self.desk.say(f"{lane.name}: left out, {words}")
+            return f"already corrected: {words}"
+        found = f"{lane.header!r}" + (", and its ratio to the other column does not bear it out" if raw else "")
+        options = [Option("corrected", "leave it out; readings are needed as measured"), Option("as measured")]
+        key = f"column.{letters(lane.column)}.corrected"
+        asks = "Is this column already corrected to a reference oxygen?"
+        answer = self.desk.ask(key, asks, found, options, self.place(lane.column))
+        return "already corrected, as answered" if answer == "corrected" else ""
+
+    def _choose(self, same: Sequence[Lane], lanes: Sequence[Lane], style: NumberStyle) -> list[Lane]:
+        """Which of several columns of one gas are read: always asked, with what the numbers say."""
+        facts = []
+        oxygen = [lane for lane in lanes if lane.gas == "o2"]
+        for lane in same:
+            values = [v for cell in lane.cells if (v := number(cell, style)) is not None]
+            mean = f", mean {sum(values) / len(values):.4g}" if values else ""
+            ratio = [
+                words
+                for other in same
+                if other is not lane and len(oxygen) == 1 and (words := corrected_words(lane, other, oxygen[0], style))
+            ]
+            facts.append(f"{lane.name}{mean}{', ' + ratio[0] if ratio else ''}")
+        options = [Option(letters(lane.column), f"read {lane.name} alone") for lane in same]
+        options.append(Option("all", "read each as a channel of its own"))
+        asks = f"Several columns read {gas(same[0].gas).label}: which are the readings?"
+        answer = self.desk.ask(
+            f"gas.{same[0].gas}.columns", asks, "; ".join(facts), options, self.place(same[0].column)
+        )
+        return [lane for lane in same if answer in ("all", letters(lane.column))] if answer else list(same)
+
+
+def _suffix(cell: str) -> re.Match[str] | None:
+    return _SUFFIX.match(clean(cell))
+
+
+def _suffixed(cell: Raw) -> bool:
+    return isinstance(cell, str) and (match := _suffix(cell)) is not None and bool(units_in(match[1]))
+
+
+def mapped(lane: Lane, lanes: Sequence[Lane]) -> MappedColumn:
+    """The lane as a column of a mapping; its channel is the gas, or the header where several read it."""
+    alone = sum(1 for other in lanes if other.gas == lane.gas) == 1
+    channel = gas(lane.gas).label if alone else " ".join(lane.header.replace("|", " ").split())
+    return MappedColumn(lane.header, "reading", channel, lane.gas, lane.unit, lane.basis)

@@ -1,0 +1,129 @@
+"""Which rows below a header are readings, and why the others are not."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+from math import isclose
+from statistics import fmean
+
+from reporter.intake.foreign.numbers import NumberStyle
+from reporter.intake.foreign.tables import Table, at, blank, is_numberlike
+from reporter.intake.foreign.times import Stamp, read_stamp
+from reporter.intake.foreign.words import is_foot
+from reporter.intake.sheets import reading_words
+from reporter.intake.table import Raw, clean, show
+
+#: How near to a statistic of its column a number at the foot stands.
+NEAR = 5e-3
+
+
+@dataclass(frozen=True, slots=True)
+class Sorted:
+    """One row: its position, its stamps where it is a row of readings, else why not.
+
+    `fault` is True where the row holds numbers but no time: that is never left out quietly.
+    """
+
+    row: int
+    stamps: tuple[Stamp, ...] = ()
+    why: str = ""
+    fault: bool = False
+
+
+def sort_rows(
+    table: Table, times: Sequence[int], readings: Sequence[int], order: str, *, cut_off: bool = False
+) -> Iterator[Sorted]:
+    """Every filled row of a table, sorted; `times` and `readings` are columns of the page."""
+    width = table.columns[-1] + 1
+    late: list[int] = []
+    kept: list[int] = []
+    final = len(table.page.rows) - 1
+    for row in range(table.first, table.last):
+        cells = table.page.rows[row]
+        own = [at(cells, column) for column in table.columns]
+        if all(blank(cell) for cell in own) and not any((row, c) in table.page.uncalculated for c in table.columns):
+            continue
+        if cut_off and row == final and len(cells) < width and not _foot(own):
+            yield Sorted(row, why="the file ends inside this row")
+            continue
+        stamps = [read_stamp(at(cells, column), order) for column in times]
+        if all(stamp is not None for stamp in stamps) and not _foot(own):
+            if _text_row([at(cells, column) for column in readings]):
+                yield Sorted(row, why=f"a row of text: {_first_text(own, times, table)}")
+            else:
+                kept.append(row)
+                yield Sorted(row, tuple(stamp for stamp in stamps if stamp is not None))
+        elif _foot(own):
+            yield Sorted(row, why=f"an average or total, by its first word: {_label(own)}")
+        elif not any(is_numberlike(at(cells, c)) or _word(at(cells, c)) for c in readings):
+            yield Sorted(row, why=f"a row of text: {_label(own)}")
+        else:
+            late.append(row)
+    for row in late:
+        if row > max(kept, default=-1) and _is_statistic(table, row, kept, readings):
+            yield Sorted(row, why="each number is a statistic of its column")
+        else:
+            yield Sorted(row, why="numbers without a time that can be read", fault=True)
+
+
+def _foot(cells: Sequence[Raw]) -> bool:
+    first = next((cell for cell in cells if not blank(cell)), None)
+    return isinstance(first, str) and is_foot(first)
+
+
+def _label(cells: Sequence[Raw]) -> str:
+    return " ".join(show(next((cell for cell in cells if not blank(cell)), "")).split())[:60]
+
+
+def _word(cell: Raw) -> bool:
+    return isinstance(cell, str) and clean(cell).casefold() in reading_words()
+
+
+def _text_row(cells: Sequence[Raw]) -> bool:
+    """Whether the reading cells hold one text that is no reading, and nothing else."""
+    filled = [cell for cell in cells if not blank(cell)]
+    if not filled or any(not isinstance(cell, str) or is_numberlike(cell) or _word(cell) for cell in filled):
+        return False
+    text = show(filled[0])
+    return len(filled) == 1 and len(cells) > 1 and any(mark.isalpha() for mark in text) and " " in text
+
+
+def _first_text(cells: Sequence[Raw], times: Sequence[int], table: Table) -> str:
+    texts = [
+        show(cell)
+        for column, cell in zip(table.columns, cells, strict=True)
+        if column not in times and isinstance(cell, str) and not blank(cell)
+    ]
+    return texts[0][:60] if texts else ""
+
+
+def number(cell: Raw, style: NumberStyle) -> float | None:
+    """A cell's plain number; None for a word or nothing."""
+    if isinstance(cell, float):
+        return cell
+    if not isinstance(cell, str):
+        return None
+    try:
+        value = float(style.plain(cell))
+    except ValueError:
+        return None
+    return value if abs(value) < float("inf") else None
+
+
+def _is_statistic(table: Table, row: int, kept: Sequence[int], readings: Sequence[int]) -> bool:
+    """Whether every number of a row is mean, sum, lowest or highest of its column, whatever the decimal mark."""
+    for style in (NumberStyle("."), NumberStyle(",")):
+        hits, numbers = 0, 0
+        for column in readings:
+            value = number(at(table.page.rows[row], column), style)
+            if value is None:
+                continue
+            numbers += 1
+            values = [v for r in kept if (v := number(at(table.page.rows[r], column), style)) is not None]
+            if len(values) > 1:
+                known = (fmean(values), sum(values), min(values), max(values))
+                hits += any(isclose(value, k, rel_tol=NEAR, abs_tol=0.06) for k in known)
+        if numbers and hits == numbers:
+            return True
+    return False

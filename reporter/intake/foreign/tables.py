@@ -1,0 +1,195 @@
+"""Tables of readings in a grid: title blocks left aside, one to four header rows joined, tables side by side parted."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Sequence
+from dataclasses import dataclass
+from datetime import date, datetime, time, timedelta
+
+from reporter.intake.foreign.grid import Grid, Page, filled_rows
+from reporter.intake.foreign.words import gases_in, time_part, units_in
+from reporter.intake.table import Raw, clean, show
+
+#: A header has at most so many rows, and two of its words in one row.
+HEADER_ROWS = 4
+_TIMELIKE = re.compile(
+    r"\d{1,4}[-/.]\d{1,2}[-/.]\d{1,4}|\d{1,2}:\d{2}|\d{1,2}[\s.\-]*[^\W\d_]{3,9}\.?[\s.\-,]*\d{2,4}"
+    r"|[^\W\d_]{3,9}\.?\s+\d{1,2},?\s+\d{4}"
+)
+_NUMBER = re.compile(r"^[<>]?\s*[+\-−]?[\d.,'’ ]*\d[\d.,'’ ]*(?:[eE][+\-]?\d+)?\s*%?$")
+
+
+@dataclass(frozen=True, slots=True)
+class Table:
+    """One table of readings: its page, header rows, columns and rows of data (ends not included).
+
+    `headers` holds a text for each column of `columns`: its header cells from top to bottom, joined.
+    """
+
+    page: Page
+    header_rows: tuple[int, ...]
+    columns: tuple[int, ...]
+    headers: tuple[str, ...]
+    first: int
+    last: int
+
+    @property
+    def signature(self) -> tuple[str, ...]:
+        """The headers for comparison with those of another table."""
+        return tuple(" ".join(text.split()).casefold() for text in self.headers)
+
+    def words(self) -> str:
+        """The table in a few words."""
+        where = f"sheet {self.page.sheet!r}, " if self.page.sheet else ""
+        hidden = " (hidden)" if self.page.hidden else ""
+        lines = (
+            f"{self.page.number(self.header_rows[0])} to {self.page.number(max(self.last - 1, self.header_rows[0]))}"
+        )
+        named = [text for text in self.headers if text]
+        return f"{where}rows {lines}{hidden}: {', '.join(named[:12])}{', ...' if len(named) > 12 else ''}"
+
+
+def is_timelike(value: Raw) -> bool:
+    """Whether a cell looks like a date or a time."""
+    if isinstance(value, (datetime, date, time, timedelta)):
+        return True
+    return isinstance(value, str) and _TIMELIKE.search(clean(value)) is not None
+
+
+def is_numberlike(value: Raw) -> bool:
+    """Whether a cell is a number, or a text that looks like one."""
+    if isinstance(value, float):
+        return True
+    return isinstance(value, str) and _NUMBER.match(clean(value)) is not None
+
+
+def blank(value: Raw) -> bool:
+    """Whether nothing stands in a cell."""
+    return value is None or (isinstance(value, str) and not clean(value))
+
+
+def at(row: Sequence[Raw], column: int) -> Raw:
+    """The cell of a row, nothing where the row is short."""
+    return row[column] if column < len(row) else None
+
+
+def find_tables(grid: Grid) -> tuple[Table, ...]:
+    """Every table of readings: a header that names a gas, and rows below it."""
+    return tuple(table for page in grid.pages for table in _of_page(page))
+
+
+def _of_page(page: Page) -> list[Table]:
+    filled = list(filled_rows(page))
+    blocks: list[tuple[int, ...]] = []
+    taken: set[int] = set()
+    for row in filled:
+        if row not in taken and _is_header(_texts(page, row)):
+            block = _block(page, row)
+            taken.update(block)
+            blocks.append(block)
+    tables = []
+    for number, block in enumerate(blocks):
+        last = blocks[number + 1][0] if number + 1 < len(blocks) else (filled[-1] + 1 if filled else 0)
+        tables += _side_by_side(page, block, last)
+    return tables
+
+
+def _texts(page: Page, row: int) -> list[str]:
+    """The texts of a row, those of merged cells in each cell they cover; empty for what is no text."""
+    cells = page.rows[row] if row < len(page.rows) else ()
+    texts = [" ".join(clean(cell).split()) if isinstance(cell, str) else "" for cell in cells]
+    for top, left, bottom, right in page.merged:
+        if top <= row <= bottom:
+            value = at(page.rows[top], left)
+            if isinstance(value, str):
+                texts += [""] * (right + 1 - len(texts))
+                texts[left : right + 1] = [" ".join(clean(value).split())] * (right + 1 - left)
+    return texts
+
+
+def _is_header(texts: Sequence[str]) -> bool:
+    """Whether a row names a gas and, in another cell, a time or another gas."""
+    short = [text for text in texts if text and len(text) <= 80 and not _TIMELIKE.search(text)]
+    gases = [text for text in short if gases_in(text)]
+    times = [text for text in short if time_part(text)]
+    return len(set(gases)) + len(times) >= 2 and bool(gases) and len(short) >= 2
+
+
+def _block(page: Page, row: int) -> tuple[int, ...]:
+    """The header rows around the row found: groups above, names and units below."""
+    width = sum(1 for text in _texts(page, row) if text)
+    rows = [row]
+    above = row - 1
+    while above >= 0 and len(rows) < HEADER_ROWS and _words_only(page, above, max(2, (width + 1) // 2)):
+        rows.insert(0, above)
+        above -= 1
+    below = row + 1
+    while below < len(page.rows) and len(rows) < HEADER_ROWS and _below(page, below):
+        rows.append(below)
+        below += 1
+    return tuple(rows)
+
+
+def _words_only(page: Page, row: int, least: int) -> bool:
+    texts = _texts(page, row)
+    cells = page.rows[row]
+    if any(is_timelike(cell) or (is_numberlike(cell) and not gases_in(show(cell))) for cell in cells):
+        return False
+    return sum(1 for text in texts if text) >= least
+
+
+def _below(page: Page, row: int) -> bool:
+    """Whether a row below the header still belongs to it: units, or further words in several cells."""
+    texts = [text for text in _texts(page, row) if text]
+    if not texts or not _words_only(page, row, 1):
+        return False
+    units = sum(1 for text in texts if units_in(text))
+    merged = any(top < row <= bottom for top, _, bottom, _ in page.merged)
+    words = sum(1 for text in texts if units_in(text) or gases_in(text) or time_part(text) or len(text) <= 12)
+    return units >= 1 or (merged and words >= 1) or (len(texts) >= 2 and words >= 2 and not _reading_words(texts))
+
+
+def _reading_words(texts: Sequence[str]) -> bool:
+    from reporter.intake.sheets import reading_words
+
+    return any(text.casefold() in reading_words() for text in texts)
+
+
+def _side_by_side(page: Page, block: tuple[int, ...], last: int) -> list[Table]:
+    """The tables of one header block, parted at columns in which nothing stands."""
+    first = block[-1] + 1
+    width = max((len(page.rows[row]) for row in range(block[0], last)), default=0)
+    width = max(width, *(len(_texts(page, row)) for row in block))
+    used = [
+        column
+        for column in range(width)
+        if any(column < len(texts) and texts[column] for texts in (_texts(page, row) for row in block))
+        or any(not blank(at(page.rows[row], column)) for row in range(first, last))
+    ]
+    groups: list[list[int]] = []
+    for column in used:
+        if groups and column == groups[-1][-1] + 1:
+            groups[-1].append(column)
+        else:
+            groups.append([column])
+    with_time = [group for group in groups if any(time_part(_joined(page, block, c)) for c in group)]
+    if len(with_time) < 2:
+        groups = [used]
+    return [_table(page, block, tuple(group), (first, last)) for group in groups if group]
+
+
+def _joined(page: Page, block: tuple[int, ...], column: int) -> str:
+    """The header of one column: its texts from top to bottom, each once."""
+    parts = []
+    for row in block:
+        texts = _texts(page, row)
+        text = texts[column] if column < len(texts) else ""
+        if text and text not in parts:
+            parts.append(text)
+    return " | ".join(parts)
+
+
+def _table(page: Page, block: tuple[int, ...], columns: tuple[int, ...], span: tuple[int, int]) -> Table:
+    headers = tuple(_joined(page, block, column) for column in columns)
+    return Table(page, block, columns, headers, span[0], span[1])

@@ -1,0 +1,195 @@
+"""The time columns of a table, and what its stamps mean: asked where the file does not say."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from datetime import datetime
+
+from reporter.intake.foreign.grid import Grid, letters
+from reporter.intake.foreign.mapping import AS_ENTERED
+from reporter.intake.foreign.model import Desk, Option
+from reporter.intake.foreign.tables import Table, at, blank, is_timelike
+from reporter.intake.foreign.times import (
+    Stamp,
+    TimeStyle,
+    half_day_clock,
+    joined,
+    order_of,
+    read_stamp,
+    zone_of,
+)
+from reporter.intake.foreign.words import stamp_of, time_part
+from reporter.intake.table import Raw, show
+
+#: Stamps looked at where only their form matters.
+ENOUGH = 5000
+
+
+@dataclass(frozen=True, slots=True)
+class TimeBase:
+    """The columns of the page that hold the time, and how they are read; `order` is empty while it is open."""
+
+    columns: tuple[int, ...]
+    order: str
+    stamp: str
+    zone: str
+    day: str
+
+
+def time_columns(table: Table) -> dict[int, str]:
+    """The columns whose header names a part of the time and whose cells may be one."""
+    found = {}
+    for column, header in zip(table.columns, table.headers, strict=True):
+        part = time_part(header)
+        cells = [at(row, column) for row in table.page.rows[table.first : table.last]]
+        if part and any(is_timelike(cell) or _day_number(cell) for cell in cells):
+            found[column] = part
+    return found
+
+
+def _day_number(cell: Raw) -> bool:
+    if isinstance(cell, str):
+        return read_stamp(cell, "serial 1900") is not None
+    return isinstance(cell, float) and (0.0 <= cell < 1.0 or 30_000.0 < cell < 60_000.0)
+
+
+def time_base(grid: Grid, tables: Sequence[Table], desk: Desk) -> TimeBase | None:
+    """The time base of tables of one shape; None while its columns are open."""
+    table = tables[0]
+    columns = _columns(grid, table, desk)
+    if not columns:
+        return None
+    cells = [_cells(tables, column) for column in columns]
+    place = grid.place(table.page, table.first, columns[0])
+    epoch = "" if grid.kind == "text" else "serial 1904" if grid.epoch_1904 else "serial 1900"
+    orders = [order_of(values, desk, place, epoch=epoch) for values in cells if _dated(values)]
+    order = next((o for o in orders if o not in ("", "year first")), "" if "" in orders else "year first")
+    stamps = [[read_stamp(value, order or "year first") for value in values[:ENOUGH]] for values in cells]
+    stamp = _stamp(grid, table, columns, desk)
+    zone = _zone([s for part in stamps for s in part if s is not None], desk)
+    day = "" if not order else _day([s for part in stamps for s in part if s is not None], desk)
+    if order:
+        _half_days(cells, stamps, desk)
+    return TimeBase(columns, order, stamp, zone, day)
+
+
+def _columns(grid: Grid, table: Table, desk: Desk) -> tuple[int, ...]:
+    found = time_columns(table)
+    headers = dict(zip(table.columns, table.headers, strict=True))
+    by_part = {part: [column for column, own in found.items() if own == part] for part in ("both", "date", "time")}
+    candidates = by_part["both"] or by_part["time"] or by_part["date"]
+    if len(candidates) > 1:
+        starts = [column for column in candidates if stamp_of(headers[column]) == "interval start"]
+        ends = [column for column in candidates if stamp_of(headers[column]) == "interval end"]
+        if len(starts) == 1 and len(ends) == 1 and len(candidates) == 2:
+            desk.say(f"columns {letters(starts[0])} and {letters(ends[0])} hold start and end: the start is read")
+            candidates = starts
+        else:
+            options = [Option(letters(column), headers[column]) for column in candidates]
+            place = grid.place(table.page, table.header_rows[0], candidates[0])
+            words = ", ".join(repr(headers[column]) for column in candidates)
+            answer = desk.ask("time-column", "Which column is the time of a reading?", words, options, place)
+            candidates = [column for column in candidates if letters(column) == answer]
+    if not candidates:
+        return ()
+    if by_part["both"] or not by_part["time"] or len(by_part["date"]) != 1:
+        chosen: tuple[int, ...] = (candidates[0],)
+    elif _has_dates(table, candidates[0]):
+        chosen = (candidates[0],)
+    else:
+        chosen = (by_part["date"][0], candidates[0])
+    desk.say(f"time: {' and '.join(f'column {letters(c)} ({headers[c]!r})' for c in chosen)}")
+    return chosen
+
+
+def _has_dates(table: Table, column: int) -> bool:
+    """Whether the first cell of a column of times holds a date as well."""
+    for row in table.page.rows[table.first : table.last]:
+        cell = at(row, column)
+        if is_timelike(cell):
+            if isinstance(cell, datetime):
+                return cell.year > 1904
+            return isinstance(cell, str) and any(mark in cell for mark in "-/") and ":" in cell
+    return False
+
+
+def _cells(tables: Sequence[Table], column: int) -> list[Raw]:
+    position = tables[0].columns.index(column)
+    return [
+        cell
+        for table in tables
+        for row in table.page.rows[table.first : table.last]
+        if not blank(cell := at(row, table.columns[position])) and (is_timelike(cell) or _day_number(cell))
+    ]
+
+
+def _dated(values: Sequence[Raw]) -> bool:
+    """Whether the cells of a column hold dates, or numbers of days."""
+    return any(
+        isinstance(v, datetime)
+        or (isinstance(v, str) and (any(m in v for m in "-/") or "." in v or not v.strip()[:1].isdigit() or " " in v))
+        or (isinstance(v, float) and v > 1.0)
+        or (isinstance(v, str) and v.strip().isdigit())
+        for v in values[:ENOUGH]
+    )
+
+
+def _stamp(grid: Grid, table: Table, columns: Sequence[int], desk: Desk) -> str:
+    headers = dict(zip(table.columns, table.headers, strict=True))
+    text = " ".join(headers[column] for column in columns)
+    said = stamp_of(text)
+    if said:
+        desk.say(f"stamps are the {said.split()[1]} of the interval, by the header {text!r}")
+        return said
+    options = (
+        Option("interval start", "a stamp of 09:00 covers the time from 09:00"),
+        Option("interval end", "a stamp of 09:00 covers the time up to 09:00"),
+        Option(AS_ENTERED, "the item Reading stamp of the sheet Test decides"),
+    )
+    place = grid.place(table.page, table.header_rows[0], columns[-1])
+    asks = "Does a stamp stand for the start or for the end of its interval?"
+    return desk.ask("stamp", asks, f"the header {text!r} does not say", options, place)
+
+
+def _zone(stamps: Sequence[Stamp], desk: Desk) -> str:
+    offsets = {stamp.offset for stamp in stamps if stamp.offset is not None}
+    if not offsets:
+        return ""
+    found = ", ".join(sorted(str(offset) for offset in offsets)) + " h from UTC"
+    given = desk.answers.get("time-zone", "")
+    if given and given != "as written":
+        try:
+            zone_of(given)
+        except ValueError:
+            found += f"; {given!r} is no time zone"
+        else:
+            desk.say(f"stamps have their offset ({found}); they are converted to {given}, as answered")
+            return given
+    options = (
+        Option("as written", "the clock in the file is the clock of the test"),
+        Option("America/Denver", "convert to this zone; any name of a zone, or UTC-07:00"),
+    )
+    answer = desk.ask("time-zone", "The stamps say their offset: what is the clock of the test?", found, options)
+    return "" if answer == "as written" else answer
+
+
+def _day(stamps: Sequence[Stamp], desk: Desk) -> str:
+    if any(stamp.day is not None and stamp.day.year > 1904 for stamp in stamps):
+        return ""
+    options = (Option("test date", "the item Test date of the sheet Test"),)
+    return desk.ask("day", "The file holds times without a date: which day is it?", "no date in any row", options)
+
+
+def _half_days(cells: Sequence[Sequence[Raw]], stamps: Sequence[Sequence[Stamp | None]], desk: Desk) -> None:
+    """Ask about a clock that steps from 12 back to 1."""
+    style = TimeStyle()
+    rows = zip(*stamps, strict=False)
+    day = datetime(2000, 1, 1).date()
+    moments = [moment for row in rows if (moment := joined(row, day, style)) is not None]
+    halves = any("m" in show(value).casefold()[-3:] for value in cells[-1][:ENOUGH])
+    step = half_day_clock(moments, halves)
+    if step is not None:
+        found = f"{step[0]:%H:%M}, then {step[1]:%H:%M} on the same day, and no a.m. or p.m."
+        options = (Option("as written", "the rows really step back"),)
+        desk.ask("half-day-clock", "Is this a clock of twelve hours? Then export it with 24 hours", found, options)

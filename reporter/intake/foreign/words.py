@@ -1,0 +1,163 @@
+"""The vocabulary of headers: which gas, which part of the time, which basis, corrected or not."""
+
+from __future__ import annotations
+
+import re
+import tomllib
+import unicodedata
+from functools import cache
+from typing import Any
+
+from reporter.errors import UnitError
+from reporter.gases import find_gas
+from reporter.intake.table import clean
+from reporter.resources import table_text
+from reporter.units import ReadUnit, dimension, read_unit
+
+_LOWERED = str.maketrans("₀₁₂₃₄₅₆₇₈₉ₓ", "0123456789x")
+_GAP = re.compile(r"[\s_\-,;:.'’()\[\]{}|\"]+")
+_CORRECTED = re.compile(
+    r"(?:@|\bat\b|\bto\b|\bauf\b|\bref\b|\breference\b|\breferencia\b|\bbezug\b|\bal\b|\ba\b)\s*"
+    r"(\d{1,2}(?:[.,]\d+)?)\s*(?:%|vol|pct)?\s*(?:o2|02|oxygen|oxigeno|oxygene|sauerstoff)?"
+)
+_SHORT = re.compile(r"^(?:[a-z0-9]|in|cc|cf|gr)$", re.IGNORECASE)
+#: Dimensions of what an analyzer may read.
+READABLE = frozenset({"fraction", "mass_concentration"})
+
+
+@cache
+def _table() -> dict[str, Any]:
+    return tomllib.loads(table_text("foreign_words.toml"))
+
+
+def folded(text: str) -> str:
+    """Text for comparison: lower case, no accents, one blank for any gap; ``%``, ``@``, ``/``, ``+`` stay."""
+    plain = unicodedata.normalize("NFKD", clean(text).translate(_LOWERED))
+    plain = "".join(mark for mark in plain if not unicodedata.combining(mark)).casefold()
+    return _GAP.sub(" ", re.sub(r"\bno[\s_]x\b", "nox", plain)).strip()
+
+
+@cache
+def _spellings() -> tuple[tuple[str, str, re.Pattern[str]], ...]:
+    """Each spelling of a gas as a pattern of whole words, the longest first."""
+    found = [(spelling, key) for key, names in _table()["gases"].items() for spelling in names]
+    found.sort(key=lambda pair: -len(pair[0]))
+    return tuple((s, key, re.compile(rf"(?<![a-z0-9]){re.escape(s)}(?![a-z0-9])")) for s, key in found)
+
+
+def without_correction(text: str) -> tuple[str, float | None, bool]:
+    """A folded header without what it says of a correction; the reference in percent; whether it says one."""
+    dotted = re.sub(r"(?<=\d) (?=\d% ?o2)", ".", text)
+    words = any(re.search(rf"\b{re.escape(word)}\b", dotted) for word in _table()["corrected"]["words"])
+    match = next(
+        (m for m in _CORRECTED.finditer(dotted) if words or m[0].startswith("@") or re.search(r"o2|02|ox|sau", m[0])),
+        None,
+    )
+    if match is None:
+        return dotted, None, words
+    return (dotted[: match.start()] + " " + dotted[match.end() :]).strip(), float(match[1].replace(",", ".")), True
+
+
+def gases_in(text: str) -> tuple[str, ...]:
+    """The keys of the gases a header names, each once."""
+    rest, _, _ = without_correction(folded(text))
+    rest = re.sub(r"(?<=[a-z0-9])(?=%)|(?<=%)(?=[a-z0-9])", " ", rest)
+    found: list[str] = []
+    for _, key, pattern in _spellings():
+        rest, count = pattern.subn(" ", rest)
+        if count:
+            found.append(key)
+    if not found and (whole := find_gas(text)) is not None:
+        found.append(whole.key)
+    return tuple(dict.fromkeys(found))
+
+
+def time_part(text: str) -> str:
+    """Which part of the time a header names: ``both``, ``date``, ``time``, or empty."""
+    words = folded(text)
+    table = _table()["time"]
+    if not words or any(re.search(rf"\b{re.escape(word)}\b", words) for word in table["never"]) or gases_in(text):
+        return ""
+    named = {
+        part: any(re.search(rf"(?<![a-z]){re.escape(word)}(?![a-z])", words) for word in table[part])
+        for part in ("both", "date", "time")
+    }
+    if named["both"] or (named["date"] and named["time"]):
+        return "both"
+    return "date" if named["date"] else "time" if named["time"] else ""
+
+
+def stamp_of(text: str) -> str:
+    """Whether a time header says start or end of the interval; empty where it says neither, or both."""
+    words = set(folded(text).replace("/", " ").split())
+    said = [stamp for stamp, names in _table()["stamp"].items() if words & set(names)]
+    return said[0] if len(said) == 1 else ""
+
+
+def basis_of(text: str) -> str:
+    """``dry`` or ``wet`` as a header says it; empty where it says neither, or both."""
+    words = folded(without_correction(folded(text))[0]).replace("/", " ").split()
+    said = {basis for basis, names in _table()["basis"].items() for name in names if name in words}
+    said |= {unit.moisture.value for unit in units_in(text) if unit.moisture is not None}
+    return said.pop() if len(said) == 1 else ""
+
+
+def basis_words_clash(text: str) -> bool:
+    """Whether a header says both dry and wet."""
+    words = folded(text).replace("/", " ").split()
+    return all(any(name in words for name in names) for names in _table()["basis"].values())
+
+
+def units_in(text: str) -> tuple[ReadUnit, ...]:
+    """The units of a reading that a header names, each once: in brackets, in a part of its own, or as its words."""
+    plain = " ".join(clean(text).split())
+    pieces = [a or b for a, b in re.findall(r"\[([^\[\]]*)\]|\(([^()]*)\)", plain)]
+    pieces += [part.strip() for part in re.split(r"[|,;]", re.sub(r"\[[^\[\]]*\]|\([^()]*\)", "|", plain))]
+    found: dict[str, ReadUnit] = {}
+    for piece in pieces:
+        for unit in _units_of(piece):
+            known = found.get(unit.unit)
+            if known is None or known.moisture is None:
+                found[unit.unit] = unit
+    return tuple(found.values())
+
+
+def _units_of(piece: str) -> list[ReadUnit]:
+    rest = re.sub(r"@\s*\d+(?:[.,]\d+)?\s*%?\s*(?:O2|02)?", " ", piece, flags=re.IGNORECASE)
+    rest = re.sub(r"\d+(?:[.,]\d+)?\s*%\s*(?:O2|02|oxygen)?", " ", rest, flags=re.IGNORECASE)
+    words = re.sub(r"(?<=[A-Za-z0-9])%", " %", rest).replace("_", " ").split()
+    found = []
+    for length in (3, 2, 1):
+        at = 0
+        while at + length <= len(words):
+            unit = _reading_unit(" ".join(words[at : at + length]))
+            if unit is not None:
+                found.append(unit)
+                del words[at : at + length]
+            else:
+                at += 1
+    return found
+
+
+@cache
+def _reading_unit(text: str) -> ReadUnit | None:
+    """The unit a text is, if an analyzer can read in it; one letter alone, or a blank, is none."""
+    if not text or (_SHORT.match(text) and text != "%") or text in ("-", "1") or folded(text) in ("dry", "wet"):
+        return None
+    try:
+        unit = read_unit(text)
+    except UnitError:
+        return None
+    return unit if dimension(unit.unit) in READABLE and unit.unit != "1" else None
+
+
+def is_foot(text: str) -> bool:
+    """Whether a text is the first words of a row of averages, totals or the like."""
+    words = folded(text)
+    return any(words == name or (len(name) > 2 and words.startswith(f"{name} ")) for name in _table()["foot"]["words"])
+
+
+def other_words(text: str) -> bool:
+    """Whether a header has words of something that is no reading, such as a status or a range."""
+    rest = folded(text)
+    return any(re.search(rf"\b{re.escape(word)}\b", rest) for word in _table()["other"]["words"])
