@@ -21,7 +21,17 @@ from reporter.outcome import Outcome
 from reporter.problems import Grade, Problem
 from reporter.version import VERSION
 
-__all__ = ["ReadResult", "Report", "assess", "issue_time", "problems_of", "read", "report", "report_files"]
+__all__ = [
+    "ReadResult",
+    "Report",
+    "assess",
+    "issue_time",
+    "problems_of",
+    "read",
+    "read_input",
+    "report",
+    "report_files",
+]
 
 
 @dataclass(frozen=True, slots=True)
@@ -33,15 +43,32 @@ class Report:
     outcome: Outcome
 
 
+def read_input(path: str | Path, mapping: str | Path | None = None) -> ReadResult:
+    """Read a field workbook, a record in JSON, or a folder of one test with its logger files.
+
+    `mapping` reads the logger files of a folder, in place of the mappings that stand there.
+    """
+    if Path(path).is_dir():
+        from reporter.intake.foreign.folder import read_folder
+
+        return read_folder(path, mapping)
+    return read(path)
+
+
+def name_of(path: Path) -> str:
+    """The name that the results of an input get: of a file without its ending, of a folder as it is."""
+    return path.resolve().name if path.is_dir() else path.stem
+
+
 def problems_of(path: str | Path) -> tuple[Problem, ...]:
     """All problems of an input: those of reading it and, where it can be read, those of its assessment."""
-    found = read(path)
+    found = read_input(path)
     if found.record is None:
         return found.problems
     return found.problems + assess(found.record).problems
 
 
-def opened(path: str | Path) -> Outcome:
+def opened(path: str | Path, mapping: str | Path | None = None) -> Outcome:
     """Read and assess an input.
 
     Raises
@@ -49,7 +76,11 @@ def opened(path: str | Path) -> Outcome:
     UnreadableError
         The input cannot be read; the error carries every problem.
     """
-    found = read(path)
+    return assessed(path, read_input(path, mapping))
+
+
+def assessed(path: str | Path, found: ReadResult) -> Outcome:
+    """Assess what was read of an input (`UnreadableError` where it cannot be read)."""
     if found.record is None:
         raise UnreadableError(f"{Path(path).name} cannot be read", found.problems)
     return assess(found.record).after(found.problems)
@@ -134,6 +165,7 @@ def report(
     issued: datetime | None = None,
     templates: str | Path | None = None,
     minute_data: bool = False,
+    mapping: str | Path | None = None,
 ) -> Report:
     """Read, assess and write NAME.json, NAME.xlsx and NAME.pdf into a folder.
 
@@ -150,19 +182,22 @@ def report(
     from reporter.output.files import write_all
 
     source, target = Path(path), Path(out)
-    places = {suffix: target / f"{source.stem}{suffix}" for suffix in (".json", ".xlsx", ".pdf")}
-    if any(place.exists() and source.exists() and place.samefile(source) for place in places.values()):
+    folder = source if source.is_dir() else source.parent
+    places = {suffix: target / f"{name_of(source)}{suffix}" for suffix in (".json", ".xlsx", ".pdf")}
+    existing = [place for place in places.values() if place.exists()]
+    inputs = [file for file in source.iterdir() if file.is_file()] if source.is_dir() else [source]
+    if any(file.exists() and place.samefile(file) for place in existing for file in inputs):
         raise OutputError("the results would overwrite the input; choose another folder", source.name)
-    outcome = opened(source)
+    outcome = opened(source, mapping)
     files = report_files(
         outcome,
         issued or issue_time(),
-        folder=source.parent,
+        folder=folder,
         templates=None if templates is None else Path(templates),
         minute_data=minute_data,
     )
     write_all({places[suffix]: content for suffix, content in files.items()})
-    return Report(source.stem, tuple(places[suffix] for suffix in files), outcome)
+    return Report(name_of(source), tuple(places[suffix] for suffix in files), outcome)
 
 
 def grade_of(problems: tuple[Problem, ...]) -> Grade | None:

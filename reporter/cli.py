@@ -1,7 +1,7 @@
 """The command line: each command parses, makes one library call, prints, and gives an exit code.
 
-Exit codes: 0 nothing is withheld; 1 a result is withheld, for a reason said; 2 the command is wrong;
-3 an input cannot be read; 4 a file cannot be written.
+Exit codes: 0 nothing is withheld; 1 a result is withheld, for a reason said, or a question is open; 2 the command
+is wrong; 3 an input cannot be read; 4 a file cannot be written.
 """
 
 from __future__ import annotations
@@ -22,11 +22,15 @@ OK, WITHHELD, USAGE, UNREADABLE, UNWRITTEN = 0, 1, 2, 3, 4
 
 _EXIT_CODES = """exit codes:
   0  nothing is withheld (notes may be)
-  1  a result is withheld: a criterion is not met or a fact is missing
+  1  a result is withheld: a criterion is not met or a fact is missing; or a question of map is open
   2  the command is wrong
   3  an input cannot be read
   4  a file cannot be written
 """
+
+
+_INPUT = "field workbook, JSON record, or a folder of one test with its logger files"
+_MAPPING = "mapping to read the logger files of a folder by (default: those in the folder)"
 
 
 def parser() -> argparse.ArgumentParser:
@@ -41,7 +45,9 @@ def parser() -> argparse.ArgumentParser:
     commands = top.add_subparsers(dest="command", required=True, metavar="COMMAND")
     _report_parser(commands.add_parser("report", help="write PDF, workbook and JSON"))
     check = commands.add_parser("check", help="read, assess and print; write nothing")
-    check.add_argument("inputs", nargs="+", type=Path, metavar="INPUT", help="field workbook or JSON record")
+    check.add_argument("inputs", nargs="+", type=Path, metavar="INPUT", help=_INPUT)
+    check.add_argument("--mapping", type=Path, metavar="FILE", help=_MAPPING)
+    _map_parser(commands.add_parser("map", help="look at a logger's file and make the mapping it is read by"))
     blank = commands.add_parser("blank", help="write an empty field workbook")
     blank.add_argument("file", type=Path, help="where to write it (.xlsx)")
     blank.add_argument("--gases", default="NOx,CO,O2,CO2", help="gases measured, by comma (default: %(default)s)")
@@ -50,6 +56,7 @@ def parser() -> argparse.ArgumentParser:
     fuel = commands.add_parser("fuel", help="heating value, F factors, air, fuel factor, maximum CO2 of a fuel")
     fuel.add_argument("fuel", nargs="+", help="a published fuel name, or a composition such as CH4 94, C2H6 4, N2 2")
     fuel.add_argument("--units", choices=("US", "SI"), default="US", help="unit system (default: %(default)s)")
+    _rehearse_parser(commands.add_parser("rehearse", help="write a synthetic test of known truth"))
     schema = commands.add_parser("schema", help="print a JSON Schema")
     schema.add_argument(
         "which", nargs="?", choices=("record", "results"), default="record",
@@ -59,11 +66,39 @@ def parser() -> argparse.ArgumentParser:
 
 
 def _report_parser(command: argparse.ArgumentParser) -> None:
-    command.add_argument("inputs", nargs="+", type=Path, metavar="INPUT", help="field workbook or JSON record")
+    command.add_argument("inputs", nargs="+", type=Path, metavar="INPUT", help=_INPUT)
+    command.add_argument("--mapping", type=Path, metavar="FILE", help=_MAPPING)
     command.add_argument("--out", type=Path, required=True, metavar="DIR", help="folder for the results")
     command.add_argument("--templates", type=Path, metavar="DIR", help="letterhead, wording and style of a firm")
     command.add_argument("--issued", metavar="TIME", help="issue time, ISO 8601 (default: SOURCE_DATE_EPOCH, else now)")
     command.add_argument("--minute-data", action="store_true", help="print the logged readings too")
+
+
+_PROFILES = ("steady", "ramp", "swing")
+_FAULTS = ("air-leak", "drifting-analyzer", "wrong-cylinder", "wet-called-dry", "wrong-fuel", "clock-shift")
+
+
+def _rehearse_parser(command: argparse.ArgumentParser) -> None:
+    command.add_argument("file", type=Path, metavar="OUT.xlsx", help="where to write the field workbook")
+    command.add_argument("--fuel", default="natural gas", help="a published fuel name or a composition (%(default)s)")
+    command.add_argument("--gases", default="NOx,CO,O2,CO2", help="of NOx, CO, SO2, O2, CO2, by comma (%(default)s)")
+    command.add_argument("--runs", type=int, default=3, help="number of runs (%(default)s)")
+    command.add_argument("--run-minutes", type=int, default=60, metavar="MIN", help="length of a run (%(default)s)")
+    command.add_argument("--units", choices=("US", "SI"), default="US", help="unit system (%(default)s)")
+    command.add_argument("--oxygen", type=float, default=4.0, metavar="PERCENT", help="dry oxygen (%(default)s)")
+    command.add_argument("--load-profile", choices=_PROFILES, default="steady", help="load over the day (%(default)s)")
+    command.add_argument("--interval", type=int, default=60, metavar="SECONDS", help="logging interval (%(default)s)")
+    command.add_argument("--fault", choices=_FAULTS, help="the one thing that is wrong (default: nothing)")
+    command.add_argument("--seed", type=int, default=1, metavar="N", help="the same seed, the same test (%(default)s)")
+    command.add_argument("--truth", type=Path, metavar="TRUTH.json", help="write what is true, and the fault's signs")
+
+
+def _map_parser(command: argparse.ArgumentParser) -> None:
+    command.add_argument("file", type=Path, metavar="FILE", help="text table or workbook of a logger")
+    command.add_argument("--save", type=Path, metavar="MAPPING", help="where to write the mapping (NAME.map.toml)")
+    command.add_argument("--questions", type=Path, metavar="TOML", help="where to write the open questions")
+    command.add_argument("--answers", type=Path, metavar="TOML", help="that file with its answers filled in")
+    command.add_argument("--name", default="", metavar="TEXT", help="name of the mapping: the firm, client or logger")
 
 
 def main(arguments: Sequence[str] | None = None, out: TextIO | None = None, err: TextIO | None = None) -> int:
@@ -72,8 +107,10 @@ def main(arguments: Sequence[str] | None = None, out: TextIO | None = None, err:
     commands: dict[str, Callable[[argparse.Namespace, TextIO, TextIO], int]] = {
         "report": _report,
         "check": _check,
+        "map": _map,
         "blank": _blank,
         "fuel": _fuel,
+        "rehearse": _rehearse,
         "schema": _schema,
     }
     return commands[given.command](given, out or sys.stdout, err or sys.stderr)
@@ -91,19 +128,28 @@ def entry_point() -> None:
 def _check(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
     from reporter.tasks import check_input
 
-    return _each(given.inputs, check_input, out, err)
+    return _each(given.inputs, lambda path: check_input(path, given.mapping), out, err)
+
+
+def _map(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
+    from reporter.map_task import map_file
+
+    task = map_file(given.file, given.name, save=given.save, questions=given.questions, answers=given.answers)
+    stream = err if task.code in {USAGE, UNREADABLE, UNWRITTEN} else out
+    print(_encodable(task.text, stream), file=stream)
+    return task.code
 
 
 def _report(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
-    from reporter.api import issue_time
-    from reporter.tasks import report_input
+    from reporter.api import issue_time, name_of
+    from reporter.tasks import ReportOptions, report_input
 
     try:
         issued = issue_time(given.issued)
     except ValueError:
         print(f"fluebook: --issued {given.issued!r} is not an ISO date and time", file=err)
         return USAGE
-    names = [path.stem.lower() for path in given.inputs]
+    names = [name_of(path).lower() for path in given.inputs]
     twice = sorted({name for name in names if names.count(name) > 1})
     if twice:
         print(f"fluebook: two inputs of one name would overwrite each other: {', '.join(twice)}", file=err)
@@ -111,12 +157,8 @@ def _report(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
     if given.templates is not None and not given.templates.is_dir():
         print(f"fluebook: --templates: there is no folder {given.templates}", file=err)
         return USAGE
-    return _each(
-        given.inputs,
-        lambda path: report_input(path, given.out, issued, given.templates, given.minute_data),
-        out,
-        err,
-    )
+    options = ReportOptions(given.templates, given.minute_data, given.mapping)
+    return _each(given.inputs, lambda path: report_input(path, given.out, issued, options), out, err)
 
 
 def _each(inputs: Sequence[Path], work: Callable[[Path], Task], out: TextIO, err: TextIO) -> int:
@@ -170,6 +212,37 @@ def _fuel(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
     except FluebookError as error:
         print(f"fluebook: {error}", file=err)
         return USAGE
+    return OK
+
+
+def _rehearse(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
+    from reporter.equation import System
+    from reporter.errors import FluebookError, OutputError
+    from reporter.rehearse import Fault, Order, Profile, write_rehearsal
+
+    try:
+        order = Order(
+            fuel=given.fuel,
+            gases=tuple(name.strip() for name in given.gases.split(",") if name.strip()),
+            runs=given.runs,
+            run_minutes=given.run_minutes,
+            system=System(given.units),
+            oxygen=given.oxygen,
+            profile=Profile(given.load_profile),
+            interval=given.interval,
+            fault=None if given.fault is None else Fault(given.fault),
+            seed=given.seed,
+        )
+        write_rehearsal(order, given.file, given.truth)
+    except OutputError as error:
+        print(f"fluebook: {error}", file=err)
+        return UNWRITTEN
+    except FluebookError as error:
+        print(f"fluebook: {error}", file=err)
+        return USAGE
+    fault = given.fault or "no fault"
+    said = f"{given.file.name}: SYNTHETIC test of {given.runs} runs on {given.fuel}, {fault}, seed {given.seed}"
+    print(_encodable(said, out), file=out)
     return OK
 
 

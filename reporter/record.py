@@ -521,7 +521,7 @@ class SheetCopy:
 
 @dataclass(frozen=True, slots=True)
 class Record:
-    """The whole test as entered."""
+    """The whole test as entered; `source` is the field workbook or JSON record, `sources` all files of a folder."""
 
     test: Test
     channels: tuple[Channel, ...]
@@ -545,6 +545,7 @@ class Record:
     attachments: tuple[Attachment, ...] = ()
     source: SourceFile = field(default_factory=lambda: SourceFile("", "", 0))
     sheets: tuple[SheetCopy, ...] = ()
+    sources: tuple[SourceFile, ...] = ()
 
     @property
     def system(self) -> System:

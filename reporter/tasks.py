@@ -26,27 +26,53 @@ class Task:
     notes: int = 0
 
 
-def check_input(path: Path) -> Task:
+@dataclass(frozen=True, slots=True)
+class ReportOptions:
+    """How a report is made: a firm's templates, the logged readings too, the mapping of logger files."""
+
+    templates: Path | None = None
+    minute_data: bool = False
+    mapping: Path | None = None
+
+
+def check_input(path: Path, mapping: Path | None = None) -> Task:
     """Read and assess an input and say what was found."""
-    from reporter.api import opened
+    from reporter.api import assessed, read_input
     from reporter.terminal import summary
 
+    understood: Sequence[str] = ()
     try:
-        outcome = opened(path)
-        return _assessed(path, outcome, summary(outcome), "assessed")
+        found = read_input(path, mapping)
+        understood = found.understood
+        outcome = assessed(path, found)
+        return _assessed(path, outcome, _understood(understood) + summary(outcome), "assessed")
     except UnreadableError as error:
-        return _unreadable(path, error.problems)
+        return _unreadable(path, error.problems, _understood(understood))
     except Exception as error:  # a fault of the program must not stop the other inputs
         return _stopped(path, error)
 
 
-def report_input(path: Path, out: Path, issued: datetime, templates: Path | None, minute_data: bool) -> Task:
+def _understood(lines: Sequence[str]) -> str:
+    """What was understood of logger files, before what was found."""
+    from reporter.terminal_text import paragraph, section
+
+    return section("Logger files as understood", [paragraph(line) for line in lines]) + "\n\n" if lines else ""
+
+
+def report_input(path: Path, out: Path, issued: datetime, options: ReportOptions) -> Task:
     """Write the three files of an input and say in a few lines what was found."""
     from reporter.api import report
     from reporter.terminal_brief import brief
 
     try:
-        made = report(path, out, issued=issued, templates=templates, minute_data=minute_data)
+        made = report(
+            path,
+            out,
+            issued=issued,
+            templates=options.templates,
+            minute_data=options.minute_data,
+            mapping=options.mapping,
+        )
         files = ", ".join(file.name for file in made.files)
         return _assessed(path, made.outcome, f"{brief(made.outcome)}\n  Written: {files}", "written")
     except UnreadableError as error:
@@ -64,12 +90,12 @@ def _assessed(path: Path, outcome: Outcome, text: str, done: str) -> Task:
     return Task(path.name, text, code, words, withheld, _count(outcome.problems, Grade.NOTE))
 
 
-def _unreadable(path: Path, problems: Sequence[Problem]) -> Task:
+def _unreadable(path: Path, problems: Sequence[Problem], before: str = "") -> Task:
     from reporter.terminal import problems_text
 
     count = _count(problems, Grade.UNREADABLE)
     head = f"{path.name} cannot be read: {count} problem(s)\n"
-    return Task(path.name, head + problems_text(problems), UNREADABLE, "cannot be read", count)
+    return Task(path.name, before + head + problems_text(problems), UNREADABLE, "cannot be read", count)
 
 
 def _stopped(path: Path, error: Exception) -> Task:

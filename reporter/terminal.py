@@ -19,6 +19,7 @@ from reporter.output.phrases import Phrases, load_phrases
 from reporter.problems import Grade, Problem
 from reporter.quantities import quantity_of
 from reporter.record import text_of
+from reporter.synthetic import stamped
 from reporter.terminal_text import paragraph, section, table
 
 _GRADES = {
@@ -103,7 +104,8 @@ def _head(outcome: Outcome) -> str:
     rows = record.readings.rows
     if rows:
         facts.append(f"{len(rows)} logged intervals, {_span(rows[0].time, rows[-1].time)}")
-    lines = (record.source.name, f"{test.facility.value}, {test.unit_tested.value}", "; ".join(facts))
+    name = stamped(record, record.source.name)
+    lines = (name, f"{test.facility.value}, {test.unit_tested.value}", "; ".join(facts))
     return "\n".join(paragraph(line, indent=0, hang=2) for line in lines if line)
 
 

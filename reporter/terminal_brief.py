@@ -9,6 +9,7 @@ from reporter.output.numbers import shown, unit_text
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.problems import Grade
 from reporter.record import text_of
+from reporter.synthetic import stamped
 from reporter.terminal_text import paragraph, section
 
 
@@ -23,7 +24,7 @@ def brief(outcome: Outcome) -> str:
     notes = sum(1 for problem in outcome.problems if problem.grade is Grade.NOTE)
     if notes:
         lines.append(paragraph(f"{notes} notes: `fluebook check` lists them, and so does the report"))
-    return section(outcome.record.source.name, lines)
+    return section(stamped(outcome.record, outcome.record.source.name), lines)
 
 
 def _runs(outcome: Outcome) -> str:

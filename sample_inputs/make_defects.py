@@ -159,13 +159,37 @@ FILE_CHANGES: dict[str, Callable[[bytes], bytes]] = {
 }
 
 
+def build_folder(code: str) -> dict[str, bytes]:
+    """The files of the defect folder of a code, by name."""
+    from making import broken_folders
+
+    made = base("short")
+    readings = made.pop("Readings")
+    files = broken_folders.whole(make_samples.workbook.write(_whole()[0], made), readings)
+    return broken_folders.CHANGES[code](files, readings)
+
+
+def folder_codes() -> list[str]:
+    """The codes whose sample is a folder."""
+    from making import broken_folders
+
+    return list(broken_folders.CHANGES)
+
+
 def main() -> None:
-    """Write every defect file."""
+    """Write every defect file and every defect folder."""
     made = dict(build(code) for code in changes())
     for old in (*DEFECTS.glob("*.xlsx"), *DEFECTS.glob("*.json")):
         old.unlink()
     for name, content in made.items():
         (DEFECTS / name).write_bytes(content)
+    for code in folder_codes():
+        folder = DEFECTS / code
+        folder.mkdir(exist_ok=True)
+        for old in folder.iterdir():
+            old.unlink()
+        for name, content in build_folder(code).items():
+            (folder / name).write_bytes(content)
 
 
 if __name__ == "__main__":

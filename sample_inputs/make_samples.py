@@ -39,6 +39,17 @@ def build(name: str) -> bytes:
     return workbook.write(data["title"], sheets.all_sheets(data))
 
 
+def logger_day() -> dict[str, bytes]:
+    """The wood boiler's test as a folder: field workbook without readings, logger file, answers and mapping."""
+    from making import logger
+
+    data = scenario("wood_boiler_si")
+    made = sheets.all_sheets(data)
+    readings = made.pop("Readings")
+    kept = {name: (HERE / "making" / name).read_bytes() for name in ("logger.map.toml", "answers.toml")}
+    return {"field.xlsx": workbook.write(data["title"], made), "logger.csv": logger.write(readings), **kept}
+
+
 def main() -> None:
     """Write every sample and every attachment."""
     from making import papers
@@ -46,6 +57,9 @@ def main() -> None:
     VALID.mkdir(exist_ok=True)
     for name in SAMPLES:
         (VALID / f"{name}.xlsx").write_bytes(build(name))
+    (VALID / "logger_day").mkdir(exist_ok=True)
+    for name, content in logger_day().items():
+        (VALID / "logger_day" / name).write_bytes(content)
     papers.write_all(VALID / "attachments")
 
 

@@ -34,6 +34,7 @@ from reporter.reduction.readings import reduce_readings
 from reporter.reduction.results import Means, Missing, result
 from reporter.reduction.uncertainty import reading_uncertainty
 from reporter.reduction.window import window
+from reporter.synthetic import as_draft, is_synthetic
 
 #: Quantities averaged over the valid runs for the table of runs, whatever the limits ask.
 _SHOWN = ("mean", "corrected", "dry", "wet", "mass_concentration", "emission_rate", "mass_rate")
@@ -52,7 +53,9 @@ def assess(record: Record) -> Outcome:
     Outcome
         The filled ledger and everything found; problems never stop it.
     """
+    record = as_draft(record)
     book = Book(record, Ledger(record.system))
+    _say_synthetic(book)
     tracks = lanes(record)
     runs = runs_in_order(record)
     windows = {run.key: window(book, run) for run in runs}
@@ -80,6 +83,12 @@ def assess(record: Record) -> Outcome:
         averages=averages,
         stated=tuple(sentence for sentence in book.stated if sentence),
     )
+
+
+def _say_synthetic(book: Book) -> None:
+    said = book.record.test.synthetic
+    if said is not None and is_synthetic(book.record):
+        book.trouble("synthetic-test", said.place, said.value)
 
 
 def _correct(book: Book, tracks: Sequence[Lane], runs: Sequence[Run], abouts: Sequence[RunBook]) -> None:

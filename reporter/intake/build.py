@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from typing import Any
 
 from reporter import record as domain
@@ -39,10 +39,15 @@ ROW_CLASSES: dict[str, type[Any]] = {
 }
 
 
+#: Readings that come from elsewhere than the sheet Readings: made of channels, reader and items of Test.
+Series = Callable[[Sequence[Filled], RowReader, dict[str, Any]], Readings | None]
+
+
 class _Builder:
     """One file's tables on their way to a record."""
 
-    def __init__(self, tables: Sequence[SheetTable], gathered: Gathered) -> None:
+    def __init__(self, tables: Sequence[SheetTable], gathered: Gathered, series: Series | None) -> None:
+        self.series = series
         self.gathered = gathered
         self.tables = self._by_attr(tables)
         self.reader = RowReader(gathered)
@@ -71,7 +76,8 @@ class _Builder:
         """Read every sheet, those first that others need."""
         names = ", ".join(table.sheet for table in self.tables.values()) or "none of the field workbook"
         for spec in sheets():
-            if spec.required and spec.attr not in self.tables:
+            elsewhere = spec.attr == "readings" and self.series is not None
+            if spec.required and spec.attr not in self.tables and not elsewhere:
                 place = self.gathered.place(spec.name)
                 self.gathered.add("missing-sheet", place, f"the sheets {names}", expected=f"a sheet {spec.name!r}")
         for spec in sheets():
@@ -124,8 +130,14 @@ class _Builder:
 
     def _read_series(self) -> None:
         table = self.tables.get("readings")
-        if table is not None and table.header_found:
-            channels = self.rows.get("channels", [])
+        channels = self.rows.get("channels", [])
+        if self.series is not None:
+            if table is not None and table.rows:
+                found = f"readings on the sheet {table.sheet!r}, and logger files beside the workbook"
+                self.gathered.add("folder-inputs", self.gathered.place(table.sheet), found)
+            test = self.items["test"][0].values if "test" in self.items else {}
+            self.readings = self.series(channels, self.reader, test)
+        elif table is not None and table.header_found:
             self.readings = read_readings(table, channels, self.reader, _gas_key)
             if not table.rows:
                 self.gathered.add("no-rows", self.gathered.place(table.sheet))
@@ -193,9 +205,14 @@ class _Builder:
         ]
 
 
-def build(tables: Sequence[SheetTable], gathered: Gathered, source: SourceFile) -> Record | None:
-    """The record of a file's tables; None if any problem gathered makes it unreadable."""
-    builder = _Builder(tables, gathered)
+def build(
+    tables: Sequence[SheetTable], gathered: Gathered, source: SourceFile, series: Series | None = None
+) -> Record | None:
+    """The record of a file's tables; None if any problem gathered makes it unreadable.
+
+    `series` gives the readings where they do not stand on the sheet Readings.
+    """
+    builder = _Builder(tables, gathered, series)
     builder.read()
     builder.check()
     return builder.record(source)

@@ -17,7 +17,7 @@ from typing import Any
 
 from reporter.intake.gather import Gathered
 from reporter.intake.sheets import ITEM_COLUMNS, Kind, Sheet, find_sheet
-from reporter.intake.table import Cell, HeaderCell, Raw, Row, SheetTable, split_header, too_large
+from reporter.intake.table import Cell, HeaderCell, Raw, Row, SheetTable, split_header, too_large, whole_text
 from reporter.intake.workbook import raw, unknown_sheet
 
 #: Larger texts are refused: a test of one day is well under a megabyte.
@@ -60,7 +60,7 @@ def read_json(content: bytes, gathered: Gathered) -> tuple[SheetTable, ...]:
 
 
 def _object(pairs: list[tuple[str, Any]]) -> dict[str, Any]:
-    made = dict(pairs)
+    made = {whole_text(name): whole_text(value) if isinstance(value, str) else value for name, value in pairs}
     if len(made) != len(pairs):
         twice = next(name for name, times in Counter(name for name, _ in pairs).items() if times > 1)
         raise ValueError(f"the name {twice!r} stands twice in one object")

@@ -8,11 +8,11 @@ import os
 from dataclasses import dataclass
 from pathlib import Path, PurePosixPath, PureWindowsPath
 
-from reporter.intake.build import build
+from reporter.intake.build import Series, build
 from reporter.intake.gather import Gathered
 from reporter.intake.guard import Finding, look_at
 from reporter.intake.jsonrecord import looks_like_json, read_json
-from reporter.intake.table import SheetTable
+from reporter.intake.table import SheetTable, whole_text
 from reporter.intake.workbook import read_workbook, sheet_parts
 from reporter.problems import Problem
 from reporter.record import Record, SourceFile
@@ -31,19 +31,22 @@ _WHY = {
 
 @dataclass(frozen=True, slots=True)
 class ReadResult:
-    """What reading gave: the record (None where the file is unreadable) and every problem found."""
+    """What reading gave: record (None where unreadable), every problem, what was understood of logger files."""
 
     record: Record | None
     problems: tuple[Problem, ...]
+    understood: tuple[str, ...] = ()
 
 
-def read(path: str | Path) -> ReadResult:
+def read(path: str | Path, series: Series | None = None) -> ReadResult:
     """Read a field workbook or a JSON record from a file.
 
     Parameters
     ----------
     path
         A field workbook (.xlsx) or a record in JSON; what it is, is judged by its content.
+    series
+        Gives the readings where they stand in other files.
 
     Returns
     -------
@@ -51,7 +54,8 @@ def read(path: str | Path) -> ReadResult:
         Problems are values; nothing is raised for bad input.
     """
     file = Path(path)
-    gathered = Gathered(file.name)
+    name = whole_text(file.name)
+    gathered = Gathered(name)
     try:
         too_large = file.is_file() and file.stat().st_size > MAX_FILE
         with file.open("rb") as stream:
@@ -60,13 +64,12 @@ def read(path: str | Path) -> ReadResult:
             gathered.add("zip-bomb", gathered.place(), f"a file of more than {MAX_FILE >> 20} MB")
             return ReadResult(None, gathered.all())
     except (OSError, ValueError) as error:
-        found = (
-            _WHY.get(getattr(error, "errno", 0), "") or getattr(error, "strerror", "") or "a file that cannot be opened"
-        )
+        words = _WHY.get(getattr(error, "errno", 0), "") or getattr(error, "strerror", "")
+        found = words or "a file that cannot be opened"
         remedy = "look at the name and the folder, and whether the file may be read"
         gathered.add("not-a-workbook", gathered.place(), found, expected="a file that can be opened", remedy=remedy)
         return ReadResult(None, gathered.all())
-    return _read(file.name, content, gathered, folder=file.parent)
+    return _read(name, content, gathered, folder=file.parent, series=series)
 
 
 def read_bytes(name: str, content: bytes) -> ReadResult:
@@ -74,12 +77,14 @@ def read_bytes(name: str, content: bytes) -> ReadResult:
     return _read(name, content, Gathered(name))
 
 
-def _read(name: str, content: bytes, gathered: Gathered, folder: Path | None = None) -> ReadResult:
+def _read(
+    name: str, content: bytes, gathered: Gathered, *, folder: Path | None = None, series: Series | None = None
+) -> ReadResult:
     source = SourceFile(name, hashlib.sha256(content).hexdigest(), len(content), content)
     tables = read_json(content, gathered) if looks_like_json(content) else _workbook(content, gathered)
     if not tables and gathered.unreadable:
         return ReadResult(None, gathered.all())
-    record = build(tables, gathered, source)
+    record = build(tables, gathered, source, series)
     if record is not None and folder is not None:
         _look_for_attachments(record, folder, gathered)
     return ReadResult(record, gathered.all())

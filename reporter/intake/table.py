@@ -96,6 +96,11 @@ def clean(text: str) -> str:
     return text.translate(_BLANKS).strip()
 
 
+def whole_text(text: str) -> str:
+    """Text that can be written anywhere: halves of characters become question marks."""
+    return text.encode("utf-8", "replace").decode("utf-8")
+
+
 def plain_number(value: float) -> str:
     """A number as it would be typed: up to 15 digits, no exponent where it can be avoided."""
     if math.isfinite(value) and value == int(value) and abs(value) < 1e15:

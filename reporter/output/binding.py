@@ -7,7 +7,9 @@ its stamps and filled fields look like comes along.
 
 from __future__ import annotations
 
+import logging
 from collections.abc import Iterator, Mapping
+from contextlib import contextmanager
 from io import BytesIO
 from typing import Any
 
@@ -18,18 +20,42 @@ _SIDE, _BELOW, _ABOVE = 51.0, 57.0, 92.0
 #: Bit of an annotation's flags: hidden.  Links and pop-up notes have no look of their own on paper.
 _HIDDEN = 0b10
 _NOT_DRAWN = ("/Link", "/Popup")
+#: A document of more pages is not bound in; a page's side is at most this long [pt].
+MAX_PAGES, MAX_SIDE = 500, 20_000.0
 
 
 def page_count(content: bytes) -> int:
-    """The number of pages of a PDF; 0 where it is encrypted or cannot be read."""
-    from pypdf import PdfReader
-    from pypdf.errors import PyPdfError
+    """The number of pages of a PDF; 0 where it is encrypted, too long, or a page cannot be bound in.
 
+    Each page is put into a document that is thrown away, so that binding the pages cannot meet a surprise.
+    """
+    import pydyf
+    from pypdf import PdfReader
+
+    with _quiet():
+        try:
+            reader = PdfReader(BytesIO(content))
+            if reader.is_encrypted or len(reader.pages) > MAX_PAGES:
+                return 0
+            pdf = pydyf.PDF()
+            copier = Copier(pdf)
+            for page in reader.pages:
+                _form(pdf, copier, page, _box(page))
+            return len(reader.pages)
+        except Exception:  # whatever a damaged or hostile document raises means one thing
+            return 0
+
+
+@contextmanager
+def _quiet() -> Iterator[None]:
+    """The reader of PDF files tells its doubts to nobody: the remark in the report says what matters."""
+    log = logging.getLogger("pypdf")
+    level = log.level
+    log.setLevel(logging.CRITICAL + 1)
     try:
-        reader = PdfReader(BytesIO(content))
-        return 0 if reader.is_encrypted else len(reader.pages)
-    except (PyPdfError, ValueError, KeyError, TypeError, AttributeError, RecursionError):
-        return 0
+        yield
+    finally:
+        log.setLevel(level)
 
 
 def bind(document: Any, pdf: Any, contents: Mapping[str, tuple[bytes, int]]) -> None:
@@ -48,28 +74,29 @@ def bind(document: Any, pdf: Any, contents: Mapping[str, tuple[bytes, int]]) -> 
 
     places = {name: at for at, page in enumerate(document.pages) for name in page.anchors}
     numbers = pdf.pages["Kids"][::3]
-    for anchor, (content, count) in contents.items():
-        copier = Copier(pdf)
-        for at, page in enumerate(PdfReader(BytesIO(content)).pages[:count], 1):
-            name = anchor if at == 1 else f"{anchor}-{at}"
-            own = pdf.objects[numbers[places[name]]]
-            _place(pdf, own, copier, page, f"Bound-{name}")
+    with _quiet():
+        for anchor, (content, count) in contents.items():
+            copier = Copier(pdf)
+            for at, page in enumerate(PdfReader(BytesIO(content)).pages[:count], 1):
+                name = anchor if at == 1 else f"{anchor}-{at}"
+                own = pdf.objects[numbers[places[name]]]
+                _place(pdf, own, copier, page, f"Bound-{name}")
 
 
 def _place(pdf: Any, own: Any, copier: Copier, page: Any, name: str) -> None:
     """One foreign page as a form on one page of the report, scaled to the frame."""
     import pydyf
 
-    box = page.cropbox
-    left, bottom, width, height = (float(v) for v in (box.left, box.bottom, box.width, box.height))
-    turn = int(page.get("/Rotate", 0)) % 360
+    left, bottom, right, top = _box(page)
+    width, height = right - left, top - bottom
+    turn = _turn(page)
     shown_width, shown_height = (height, width) if turn in (90, 270) else (width, height)
     media = own["MediaBox"]
     frame_width, frame_height = media[2] - 2 * _SIDE, media[3] - _BELOW - _ABOVE
     scale = min(frame_width / shown_width, frame_height / shown_height, 1.0)
     x = (media[2] - scale * shown_width) / 2
     y = _BELOW + frame_height - scale * shown_height
-    form = _form(pdf, copier, page, (left, bottom, left + width, bottom + height))
+    form = _form(pdf, copier, page, (left, bottom, right, top))
     resources = next(one for one in pdf.objects if one.number and one.reference == own["Resources"])
     resources["XObject"][name] = form.reference
     a, b, c, d, e, f = _turned(turn, left, bottom, width, height)
@@ -79,6 +106,28 @@ def _place(pdf: Any, own: Any, copier: Copier, page: Any, name: str) -> None:
     pdf.add_object(before)
     pdf.add_object(after)
     own["Contents"] = pydyf.Array([before.reference, own["Contents"], after.reference])
+
+
+def _box(page: Any) -> tuple[float, float, float, float]:
+    """Left, bottom, right and top of what a page shows; a ValueError where that is no area of a page's size."""
+    box = page.cropbox
+    across = sorted((float(box.left), float(box.right)))
+    up = sorted((float(box.bottom), float(box.top)))
+    if not all(0.0 < high - low <= MAX_SIDE and abs(low) <= MAX_SIDE for low, high in (across, up)):
+        raise ValueError("the page has no area of a page's size")
+    return across[0], up[0], across[1], up[1]
+
+
+def _held(page: Any, key: str) -> Any:
+    """What a page holds under a key, itself or by reference; None where there is nothing."""
+    given = page.get(key)
+    return None if given is None else given.get_object()
+
+
+def _turn(page: Any) -> int:
+    """How far a page is turned clockwise, in degrees; 0 where that is no number."""
+    given = _held(page, "/Rotate")
+    return int(given) % 360 if isinstance(given, (int, float)) else 0
 
 
 def _turned(
@@ -97,20 +146,22 @@ def _turned(
 def _form(pdf: Any, copier: Copier, page: Any, box: tuple[float, float, float, float]) -> Any:
     """A foreign page as one form: its content, and the appearance of its stamps and filled fields."""
     import pydyf
+    from pypdf.generic import DictionaryObject
 
     content = page.get_contents()
     drawn = [b"q", content.get_data() if content is not None else b"", b"Q"]
-    resources = copier.direct(page.get("/Resources", {}))
+    own = _held(page, "/Resources")
+    resources = copier.direct(own if isinstance(own, DictionaryObject) else DictionaryObject())
     forms: Any = resources.setdefault("XObject", pydyf.Dictionary())
     if isinstance(forms, bytes):
-        forms = resources["XObject"] = copier.direct(page["/Resources"]["/XObject"].get_object())
+        forms = resources["XObject"] = copier.direct(own["/XObject"].get_object())
     for at, (annotation, look) in enumerate(_looks(page)):
         forms[f"Look{at}"] = copier.copied(look)
         matrix = _onto(annotation["/Rect"], look.get_object())
         drawn.append(f"q {matrix} cm /Look{at} Do Q".encode())
     extra = {"Type": "/XObject", "Subtype": "/Form", "BBox": pydyf.Array(box), "Resources": resources}
-    if "/Group" in page:
-        extra["Group"] = copier.copied(page["/Group"])
+    if isinstance(_held(page, "/Group"), DictionaryObject):
+        extra["Group"] = copier.copied(page.get("/Group"))
     form = pydyf.Stream(drawn, extra, compress=True)
     pdf.add_object(form)
     return form
@@ -118,9 +169,9 @@ def _form(pdf: Any, copier: Copier, page: Any, box: tuple[float, float, float, f
 
 def _looks(page: Any) -> Iterator[tuple[Any, Any]]:
     """Annotations that show something on paper, with the stream that draws it."""
-    for reference in page.get("/Annots") or ():
+    for reference in _held(page, "/Annots") or ():
         annotation = reference.get_object()
-        if annotation.get("/Subtype") in _NOT_DRAWN or int(annotation.get("/F", 0)) & _HIDDEN:
+        if annotation is None or annotation.get("/Subtype") in _NOT_DRAWN or int(annotation.get("/F", 0)) & _HIDDEN:
             continue
         normal = annotation.get("/AP", {}).get_object().get("/N") if "/AP" in annotation else None
         if normal is not None and not hasattr(normal.get_object(), "get_data"):

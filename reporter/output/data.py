@@ -51,12 +51,11 @@ def to_json(outcome: Outcome, issued: datetime, version: str) -> bytes:
         JSON in ASCII, one item of a section per line, with a newline at the end.
     """
     record = outcome.record
-    source = record.source
     document: dict[str, Any] = {
         "fluebook": {"version": version, "schema": SCHEMA_ID},
         "issued": issued.isoformat(timespec="seconds"),
         "unit_system": record.system.value,
-        "inputs": [{"name": source.name, "sha256": source.sha256, "size": source.size}],
+        "inputs": [{"name": s.name, "sha256": s.sha256, "size": s.size} for s in record.sources or (record.source,)],
         "versions": {"python": platform.python_version(), **{name: installed(name) for name in _PACKAGES}},
         "test": as_entered(record.test),
         "extra": [

@@ -2,10 +2,19 @@
 
 from __future__ import annotations
 
+from collections.abc import Collection
 from typing import Any
 
 #: Ties to the foreign document that a copied object must not keep.
 _LEFT_BEHIND = ("/Parent", "/StructParent", "/StructParents")
+#: What a stream may say of files elsewhere, of actions, and of the program that made it.
+_LEFT_BEHIND_OF_STREAMS = (
+    *_LEFT_BEHIND,
+    *("/F", "/FFilter", "/FDecodeParms", "/Ref", "/OPI", "/Alternates"),
+    *("/A", "/AA", "/OpenAction", "/JS", "/Metadata", "/PieceInfo", "/AF"),
+)
+#: How deep objects may lie in each other: no drawn page needs more.
+MAX_DEPTH = 100
 
 
 class Copier:
@@ -18,16 +27,29 @@ class Copier:
     def __init__(self, pdf: Any) -> None:
         self.pdf = pdf
         self.done: dict[int, Any] = {}
+        self.depth = 0
 
     def copied(self, value: Any) -> Any:
-        """A value as it stands inside another object: a reference where the foreign file has one."""
+        """A value as it stands inside another object: a reference where the foreign file has one.
+
+        Raises
+        ------
+        ValueError
+            The object holds others deeper than `MAX_DEPTH`.
+        """
         from pypdf.generic import IndirectObject
 
-        if not isinstance(value, IndirectObject):
-            return self.direct(value)
-        if value.idnum not in self.done:
-            self._copy(value.idnum, value.get_object())
-        return self.done[value.idnum]
+        self.depth += 1
+        if self.depth > MAX_DEPTH:
+            raise ValueError(f"objects more than {MAX_DEPTH} deep in each other")
+        try:
+            if not isinstance(value, IndirectObject):
+                return self.direct(value)
+            if value.idnum not in self.done:
+                self._copy(value.idnum, value.get_object())
+            return self.done[value.idnum]
+        finally:
+            self.depth -= 1
 
     def _copy(self, number: int, value: Any) -> None:
         """Copy an object that has a number; it is known before its content, which may lead back to it."""
@@ -37,7 +59,7 @@ class Copier:
         if isinstance(value, StreamObject):
             stream = pydyf.Stream([value._data])
             self._register(number, stream)
-            stream.extra.update(self._entries(value))
+            stream.extra.update(self._entries(value, _LEFT_BEHIND_OF_STREAMS))
         elif isinstance(value, DictionaryObject):
             table = pydyf.Dictionary()
             self._register(number, table)
@@ -66,17 +88,20 @@ class Copier:
             return pydyf.Array([self.copied(item) for item in list.__iter__(value)])
         return _written(value)
 
-    def _entries(self, value: Any) -> dict[str, Any]:
+    def _entries(self, value: Any, left_behind: Collection[str] = _LEFT_BEHIND) -> dict[str, Any]:
         return {
             _written(key).decode("latin-1")[1:]: self.copied(value.raw_get(key))
             for key in value
-            if key not in _LEFT_BEHIND and key != "/Length"
+            if key not in left_behind and key != "/Length"
         }
 
 
 def _written(value: Any) -> bytes:
-    """A name, number, string, truth value or nothing, as the foreign file writes it."""
+    """A name, number, string, truth value or nothing, as the foreign file writes it; what is not there is nothing."""
     from io import BytesIO
+
+    if value is None:
+        return b"null"
 
     stream = BytesIO()
     value.write_to_stream(stream)

@@ -26,6 +26,7 @@ from reporter.output.workbook_runs import write_runs
 from reporter.output.workbook_summary import write_summary
 from reporter.output.workbook_words import words
 from reporter.record import text_of
+from reporter.synthetic import stamped
 
 
 def write_workbook(outcome: Outcome, *, issued: datetime, version: str, phrases: Phrases | None = None) -> bytes:
@@ -85,4 +86,5 @@ def _report_name(outcome: Outcome, phrases: Phrases) -> str:
     test = outcome.record.test
     number = text_of(test.report_number) or phrases("status.no_number")
     status = text_of(test.status, "draft")
-    return f"{number}, {phrases(f'status.{status}')}, {test.facility.value}, {test.unit_tested.value}"
+    name = f"{number}, {phrases(f'status.{status}')}, {test.facility.value}, {test.unit_tested.value}"
+    return stamped(outcome.record, name)

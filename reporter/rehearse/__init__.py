@@ -84,6 +84,8 @@ def write_rehearsal(order: Order, path: str | Path, truth_path: str | Path | Non
     if target.suffix.lower() != ".xlsx":
         raise RecordError(f"the name {target.name!r} does not end in .xlsx")
     wanted = [target, *([Path(truth_path)] if truth_path is not None else [])]
+    if len(set(wanted)) < len(wanted):
+        raise RecordError("the workbook and its truth need names of their own")
     for one in wanted:
         if one.exists() or one.is_symlink():
             raise OutputError("a file of this name is there; choose another name", one.name)

@@ -58,7 +58,7 @@ def high_gases(order: Order, stack: Mapping[str, float]) -> dict[str, float]:
     """Certified value of the high gas of each channel [% or ppm], from what the stack is expected to show."""
     rule, found = settings()["cylinder"], {}
     for one in order.measured:
-        odd = 1 + 0.02 * order.random(f"high/{one.label}").random()
+        odd = 1 + rule["odd"] / 100 * order.random(f"high/{one.label}").random()
         value = max(rule["least"][one.label], rule["high"] * stack[one.label]) * odd
         found[one.label] = _three_digits(min(value, rule["most_oxygen"]) if one.key == "o2" else value)
     return found

@@ -4,8 +4,8 @@ The corrected mean is (mean - zero) x certified / (upscale - zero), so that erro
 system cancel.  What is left, each in the unit of the gas:
 
 certificate   the certificate's uncertainty, as a share of the concentration (its error lies within it)
-drift         the drift that a straight line between the two checks does not follow: rate x (middle of the run less
-              the middle of the checks), for the zero, and for the gain as a share of the concentration
+drift         the mean of two checks stands for their middle, not for that of the run: rate x the time between, for the
+              zero (the two gases in the parts in which they enter) and for the gain, a share of the concentration
 response      a first-order lag moves the mean by its time constant x (end - start) / length of the run
 rounding      half of the last digit stored, in the zero and in the upscale readings
 noise         four standard deviations of what the mean and the four check readings carry
@@ -44,7 +44,7 @@ def allowance(
     first, last = flue[0].dry[label], flue[-1].dry[label]
     parts = {
         "certificate": upscale.uncertainty / 100 * value,
-        "drift": _drift(stack, run, one, value),
+        "drift": _drift(stack, run, one, value=value, share=share),
         "response": one.seconds * abs(last - first) / (60 * len(flue)),
         "rounding": 0.5 * 10**-one.decimals * (abs(1 - share) + abs(share)),
         "noise": COVERAGE * _noise(order, one, run, share),
@@ -52,7 +52,7 @@ def allowance(
     return {**parts, "total": sum(parts.values())}
 
 
-def _drift(stack: Stack, run: RunTime, one: Analyzer, value: float) -> float:
+def _drift(stack: Stack, run: RunTime, one: Analyzer, *, value: float, share: float) -> float:
     rule = settings()["analyzer"]
     before, after = stack.day.checks_around(run)
     middle = (run.start + run.end) / 2
@@ -61,8 +61,9 @@ def _drift(stack: Stack, run: RunTime, one: Analyzer, value: float) -> float:
         ends = [_read(checks, one, level_is_zero) for checks in (before, after)]
         return abs(middle - sum(ends) / 2) / 60
 
-    zero = rule["zero_per_hour"] / 100 * one.span * apart(True)
-    return float(zero + rule["gain_per_hour"] / 100 * value * apart(False))
+    at_zero, at_upscale = apart(True), apart(False)
+    zero = rule["zero_per_hour"] / 100 * one.span * (abs(1 - share) * at_zero + share * at_upscale)
+    return float(zero + rule["gain_per_hour"] / 100 * value * at_upscale)
 
 
 def _read(checks: list[Injection], one: Analyzer, level_is_zero: bool) -> int:

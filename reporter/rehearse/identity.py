@@ -139,4 +139,3 @@ def events(stack: Stack) -> Rows:
         {"Time": moment(stack.day.on_stack), "What": "Synthetic probe on the stack"},
         {"Time": moment(stack.day.off_stack), "What": "Synthetic probe off the stack"},
     ]
-

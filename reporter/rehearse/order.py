@@ -17,6 +17,7 @@ from reporter.equation import System
 from reporter.errors import RecordError
 from reporter.gases import Gas, find_gas
 from reporter.resources import table_text
+from reporter.synthetic import MARK
 
 #: The gases a rehearsal knows.
 KNOWN = ("NOx", "CO", "SO2", "O2", "CO2")
@@ -124,7 +125,7 @@ class Order:
     @property
     def mark(self) -> str:
         """The entry of the item Synthetic."""
-        return f"yes, {settings()['mark']}, seed {self.seed}"
+        return f"yes, {MARK}, seed {self.seed}"
 
     @property
     def grid(self) -> int:

@@ -1,4 +1,4 @@
-"""The rows of the field workbook of a rehearsal that come from readings: channels, gases, calibrations, runs, trains."""
+"""The rows of a rehearsal that come from readings: channels, cylinders, calibrations, runs, trains, fuel."""
 
 from __future__ import annotations
 
@@ -208,7 +208,7 @@ def fuel_use(order: Order, stack: Stack) -> Rows:
 def _uses(order: Order, stack: Stack, fuel: Fuel) -> Iterator[Row]:
     pen, physics = Pen(order.system), settings()["physics"]
     standard = physics["standard_temperature"] - physics["zero_celsius"]
-    start = 152000.0
+    start = settings()["plant"]["fuel_meter"]
     for run in stack.day.runs:
         rate = fuel_rate(fuel, fmean(one.heat for one in stack.minutes(run.start, run.end)))
         rate *= 1 + settings()["measured"]["fuel"] / 100 * order.random(f"fuel/{run.number}").uniform(-1, 1)
@@ -237,10 +237,10 @@ def fuel_rate(fuel: Fuel, heat: float) -> float:
 
 
 def process(order: Order, stack: Stack) -> Rows:
-    """The plant's own log: steam, every quarter of an hour while the probe was on the stack."""
+    """The plant's own log: steam, at the interval of its log, while the probe was on the stack."""
     steam = Pen(order.system).choose("klb/h", "t/h")
     full = convert(settings()["plant"]["steam"], "t/h", steam)
-    minutes = range(stack.day.on_stack, stack.day.off_stack, 15)
+    minutes = range(stack.day.on_stack, stack.day.off_stack, settings()["plant"]["log_minutes"])
     return [
         {"Time": moment(minute), f"Steam flow [{steam}]": rounded(stack.load(minute) * full, 3)} for minute in minutes
     ]

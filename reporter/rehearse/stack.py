@@ -132,7 +132,7 @@ class Stack:
         plant = settings()["plant"]
         by_load = plant["oxygen_by_load"] * (self.load(minute) - plant["oxygen_load"])
         wander = self._oxygen_wander[minute - self.day.start]
-        return float(max(0.3, (self.order.oxygen + by_load) * wander))
+        return float(max(plant["least_oxygen"], (self.order.oxygen + by_load) * wander))
 
     def expected(self, oxygen: float | None = None) -> Flue:
         """What the stack is expected to show at full load: at the oxygen asked for, or at another one [% dry]."""
@@ -147,9 +147,7 @@ class Stack:
         diluted = 1 - oxygen / 100 / air_model("physical").oxygen
         known = settings()["pollutants"][self.fuel.kind.value]
         ppm = {label: level * diluted * wander.get(label, 1.0) for label, level in known.items()}
-        solved = balance(
-            self.fuel, {"o2": oxygen, "co": ppm["CO"], "no": ppm["NOx"], "air_moisture": self._air}
-        )
+        solved = balance(self.fuel, {"o2": oxygen, "co": ppm["CO"], "no": ppm["NOx"], "air_moisture": self._air})
         products, water = solved.value("dry_products"), solved.value("h2o")
         heat = settings()["plant"]["heat"] * load
         dry = {

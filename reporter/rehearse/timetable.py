@@ -5,7 +5,7 @@ Times are whole minutes after midnight.
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from itertools import pairwise
 
@@ -17,6 +17,8 @@ from reporter.rehearse.order import Order, settings
 ZERO, NO2 = "SYN-0", "SYN-5"
 POLLUTANTS = {"high": "SYN-1", "mid": "SYN-2"}
 DILUENTS = {"high": "SYN-3", "mid": "SYN-4"}
+#: Levels of the gases that flow, by gas label.
+Levels = Mapping[str, tuple[str, ...]]
 
 
 @dataclass(frozen=True, slots=True)
@@ -98,8 +100,8 @@ def timetable(order: Order, upscale: dict[str, str]) -> Timetable:
     end = _next(off_stack + day["tail"], order.grid)
     if end - day["start"] > day["longest"]:
         raise RecordError(
-            f"{order.runs} runs of {order.run_minutes} min with their calibrations take {(end - day['start']) / 60:.1f} h; "
-            f"one day holds {day['longest'] / 60:.0f} h"
+            f"{order.runs} runs of {order.run_minutes} min with their calibrations take "
+            f"{(end - day['start']) / 60:.1f} h; one day holds {day['longest'] / 60:.0f} h"
         )
     return Timetable(day["start"], end, on_stack, off_stack, tuple(injections), tuple(runs))
 
@@ -108,7 +110,7 @@ def _next(minute: int, grid: int) -> int:
     return -(-minute // grid) * grid
 
 
-def _steps(order: Order, levels: dict[str, tuple[str, ...]], route: str, start: int) -> list[Injection]:
+def _steps(order: Order, levels: Levels, route: str, start: int) -> list[Injection]:
     """Zero gas on all channels, then each cylinder on the channels whose gas it holds."""
     wanted: list[tuple[str, str]] = [(ZERO, "zero"), *_cylinders(order, levels)]
     edges = pairwise(range(start, start + len(wanted) * settings()["day"]["gas_minutes"] + 1, _minutes()))
@@ -127,7 +129,7 @@ def _minutes() -> int:
     return int(settings()["day"]["gas_minutes"])
 
 
-def _cylinders(order: Order, levels: dict[str, tuple[str, ...]]) -> Iterator[tuple[str, str]]:
+def _cylinders(order: Order, levels: Levels) -> Iterator[tuple[str, str]]:
     for family in (POLLUTANTS, DILUENTS):
         for level, cylinder in family.items():
             if any(level in levels[gas.label] and cylinder_of(gas, level) == cylinder for gas in order.measured):

@@ -134,4 +134,3 @@ def fault(order: Order, stack: Stack) -> dict[str, Any] | None:
         "runs": [str(number)] if of_one_run else [str(run.number) for run in stack.day.runs],
         "expected_signs": [sign.format(**names) for sign in rule["signs"]],
     }
-

@@ -109,6 +109,7 @@ MADE: dict[str, Callable[[], Outcome]] = {
     "no-criteria-held": lambda: assessed(
         channels=(channel("NOx", method="EN 14792"), *(channel(name) for name in ("CO", "O2", "CO2")))
     ),
+    "synthetic-test": lambda: assessed(test=identity(synthetic="yes, a rehearsal")),
     "span-differs": lambda: assessed(
         channels=(channel("NOx", calibration_span=number(90.0)), *(channel(name) for name in ("CO", "O2", "CO2")))
     ),

@@ -120,6 +120,56 @@ def test_the_sample_calculation_reaches_each_limit_in_computable_order(boiler: O
         assert all(int(key.removeprefix("step-")) < step.number for key in earlier)
 
 
+def test_the_sample_calculation_covers_one_whole_run(boiler: Outcome, wood: Outcome) -> None:
+    """What reviewers ask of a sample calculation: every formula of one run, through to the comparison."""
+    for outcome in (boiler, wood):
+        steps = {step.result.key: step for chapter in view_of(outcome).sample for step in chapter.steps}
+        for gas in outcome.runs[0].gases:
+            for name in ("direct_1.error", "direct_3.error", "system_1.bias", "system_4.bias"):
+                assert f"calibration.{gas.segment}.{name}" in steps
+            for name in ("mean", "zero", "upscale", "corrected", "drift.zero", "drift.upscale"):
+                assert f"run.1.{gas.segment}.{name}" in steps
+        for comparison in outcome.comparisons:
+            assert {comparison.value, comparison.rounded, comparison.margin, comparison.met} - steps.keys() <= {
+                comparison.rounded if "not rounded" in comparison.rounding_words else ""
+            }
+            if comparison.cross:
+                assert f"run.1.{comparison.quantity}.route_difference" in steps
+        # Half up and half even are two equations that read alike; the rule's words stand beside each.
+        equations = [step.line for step in steps.values() if step.line and not step.line.startswith("rounded")]
+        assert len(equations) == len(set(equations))
+        assert not any(key.startswith("run.2.") for key in steps)
+    steps = {step.result.key: step for chapter in view_of(boiler).sample for step in chapter.steps}
+    assert {"run.1.moisture.meter_volume_standard", "run.1.moisture.measured", "run.1.heat_input.metered"} <= set(steps)
+
+
+def test_every_method_that_is_followed_is_listed_with_its_edition(boiler: Outcome) -> None:
+    view = view_of(boiler)
+    block = next(block for block in view.sections["location"] if block.title == "Methods")
+    listed = {row.cells[0] for row in block.tables[0].rows}
+    assert listed == {
+        "Method 7E", "Method 10", "Method 3A", "Method 2", "Method 3", "Method 3B", "Method 4", "Method 19",
+        "40 CFR 60.8",
+    }  # fmt: skip
+    cited = {row.cells[0] for row in view.sections["references"][0].tables[0].rows}
+    assert listed <= cited
+    assert any("velocity traverse" in note for note in block.notes)
+
+
+def test_entered_numbers_are_printed_as_entered_with_their_source(boiler: Outcome, wood: Outcome) -> None:
+    def rows(outcome: Outcome) -> dict[str, list[str]]:
+        table = view_of(outcome).sections["process"][1].tables[0]
+        cells = [[cell if isinstance(cell, str) else cell.text for cell in row.cells] for row in table.rows]
+        return {row[0]: row[1:] for row in cells}
+
+    boiler_rows, wood_rows = rows(boiler), rows(wood)
+    assert boiler_rows["Heat input (gas meter and heating value)"][:2] == ["MMBtu/h", "55.67"]
+    flow = "Stack flow as entered (dry standard, 68 °F, 29.92 inHg)"
+    assert boiler_rows[flow][:2] == ["ft³/min", "10\u202f319"]
+    assert wood_rows["Static pressure"][:2] == ["Pa", "−85"]
+    assert wood_rows["Load"][:2] == ["MW", "4.71"]
+
+
 def test_the_sample_calculation_puts_in_the_numbers_it_names(boiler: Outcome) -> None:
     view = view_of(boiler)
     step = next(step for chapter in view.sample for step in chapter.steps if step.result.key == "run.1.nox.corrected")
@@ -250,14 +300,14 @@ def test_criteria_held_and_not_applied_are_named_with_the_reason(boiler: Outcome
 def test_an_average_of_some_runs_says_which(invalid: Outcome) -> None:
     view = view_of(invalid)
     table = next(t for block in view.sections["runs"] for t in block.tables if t.columns[-1].title == "Average")
-    assert table.columns[-1].unit == "runs 1, 3, 4"
+    assert table.columns[-1].unit == "runs\u00a01,\u00a03,\u00a04"
     labels = {getattr(row.cells[0], "text", row.cells[0]): row for row in table.rows}
-    assert any(label.endswith("average of runs 1, 2, 3, 4") for label in labels)  # oxygen is valid in run 2
+    assert any(label.endswith("average of all runs") for label in labels)  # oxygen is valid in run 2
     run_2 = [row.cells[3].text for row in table.rows if len(row.cells) > 3 and isinstance(row.cells[3], Shown)]
     assert any(text.startswith("[") for text in run_2)
     limit = view.limits.limits[0]
     averaging = next(fact.text for fact in limit.facts if fact.label == "Averaging")
-    assert "3 runs count (runs 1, 3, 4)" in averaging
+    assert "3 of 3 required (runs 1, 3, 4)" in averaging.replace("\u00a0", " ")
     assert [problem.grade for problem in view.quality.problems] == ["run not counted", "note"]
 
 

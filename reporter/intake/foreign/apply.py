@@ -10,13 +10,13 @@ from itertools import pairwise
 from pathlib import Path
 
 from reporter.intake.dates import Fault
-from reporter.intake.foreign.grid import Grid, letters, read_grid
+from reporter.intake.foreign.grid import Grid, Page, letters, read_grid
 from reporter.intake.foreign.mapping import MappedColumn, Mapping, differences
 from reporter.intake.foreign.model import Desk
 from reporter.intake.foreign.numbers import style_of
 from reporter.intake.foreign.sort import sort_rows
 from reporter.intake.foreign.tables import Table, at, find_tables
-from reporter.intake.foreign.times import joined, order_of
+from reporter.intake.foreign.times import TimeStyle, joined, order_of
 from reporter.intake.foreign.wording import read_cell
 from reporter.intake.gather import Gathered
 from reporter.intake.table import Raw
@@ -72,7 +72,7 @@ class ForeignReadings:
     report: Report
     problems: tuple[Problem, ...]
     columns: tuple[MappedColumn, ...] = ()
-    stamp: str = ""
+    time: TimeStyle = field(default_factory=TimeStyle)
     source: SourceFile = field(default_factory=lambda: SourceFile("", "", 0))
 
 
@@ -99,11 +99,13 @@ def apply(path: str | Path, mapping: Mapping, *, day: date | None = None) -> For
 def apply_to_grid(grid: Grid, mapping: Mapping, *, day: date | None = None) -> ForeignReadings:
     """The same for a grid already read."""
     gathered = Gathered(grid.source.name)
-    tables = [table for table in find_tables(grid) if mapping.fits(table)]
+    every = find_tables(grid)
+    tables = [table for table in every if mapping.fits(table)]
     tables = [table for table in tables if not (table.page.hidden and mapping.hidden == "leave out")]
     changed = differences(mapping, grid) if grid.pages else ()
     if grid.pages and (changed or not tables):
-        gathered.add("mapping-differs", gathered.place(), "; ".join(changed) or "only hidden sheets have the table")
+        code = "mapping-differs" if every else "no-readings-table"
+        gathered.add(code, gathered.place(), "; ".join(changed) or "only hidden sheets have the table")
     lanes = [(index, column) for index, column in enumerate(mapping.columns) if column.use == "reading"]
     empty = Readings(tuple(column.channel for _, column in lanes), (), (), Place(grid.source.name))
     if gathered.unreadable or not grid.pages:
@@ -121,11 +123,13 @@ def apply_to_grid(grid: Grid, mapping: Mapping, *, day: date | None = None) -> F
         counts = Counter(out.why.split(":")[0] for out in work.left_out)
         found = ", ".join(f"{count} ({why})" for why, count in counts.items())
         gathered.add("rows-left-out", first.place, found)
+    for count, place, lowest in work.negative.values():
+        gathered.add("negative-reading", place, f"{count} readings, the lowest {lowest:g}")
     if not rows and not gathered.unreadable:
         gathered.add("no-readings-table", readings.place, "a header and no row of readings")
     used = tuple(column for _, column in lanes)
     problems = (*grid.problems, *gathered.all())
-    return ForeignReadings(readings, report, problems, used, mapping.time.stamp, grid.source)
+    return ForeignReadings(readings, report, problems, used, mapping.time, grid.source)
 
 
 class _Reader:
@@ -137,6 +141,7 @@ class _Reader:
         self.rows: list[ReadingRow] = []
         self.places: dict[int, Place] = {}
         self.left_out: list[LeftOut] = []
+        self.negative: dict[str, tuple[int, Place, float]] = {}
         self.merged = 0
 
     def read(self, table: Table) -> None:
@@ -177,6 +182,7 @@ class _Reader:
             return Reading(ReadingKind.ERROR, None, "")
         percent = (row, column) in page.percent
         if not percent and (ready := known.get(value)) is not None:
+            self._see(page, (row, column), mapped.channel, ready)
             return ready
         if percent and isinstance(value, float) and mapped.unit == "%":
             value *= 100.0
@@ -192,7 +198,15 @@ class _Reader:
             return Reading(ReadingKind.ERROR, None, str(value))
         if not percent:
             known[value] = read
+        self._see(page, (row, column), mapped.channel, read)
         return read
+
+    def _see(self, page: Page, where: tuple[int, int], channel: str, reading: Reading) -> None:
+        """Count the negative readings of a channel; they are kept."""
+        if reading.kind is ReadingKind.NUMBER and reading.value is not None and reading.value < 0.0:
+            place = self.grid.place(page, *where, channel)
+            count, first, lowest = self.negative.get(channel, (0, place, 0.0))
+            self.negative[channel] = (count + 1, first, min(lowest, reading.value))
 
     def _still_so(self, table: Table, times: Sequence[int], lanes: Sequence[int]) -> None:
         """Hold the order of the dates and the decimal mark of the mapping against the file."""

@@ -181,7 +181,6 @@ class Columns:
         oxygen = [other for other in lanes if other.gas == "o2" and not other.corrected]
         words = corrected_words(lane, raw[0], oxygen[0], style) if len(raw) == 1 and len(oxygen) == 1 else ""
         if words:
-            self.desk.say(f"{lane.name}: left out, {words}")
             return f"already corrected: {words}"
         found = f"{lane.header!r}" + (", and its ratio to the other column does not bear it out" if raw else "")
         options = [Option("corrected", "leave it out; readings are needed as measured"), Option("as measured")]

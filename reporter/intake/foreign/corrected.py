@@ -41,17 +41,16 @@ def corrected_words(column: Column, raw: Column, oxygen: Column, style: NumberSt
     ]
     if len(rows) < _LEAST:
         return ""
-    for reference in _REFERENCES if column.correction is None else (column.correction,):
-        for air in _AIR:
-            if _explains(rows, reference, air):
-                return (
-                    f"the ratio to the other column is ({air:g} - {reference:g}) / ({air:g} - O2) "
-                    f"in {len(rows)} rows: corrected to {reference:g} % oxygen"
-                )
-    return ""
+    references = _REFERENCES if column.correction is None else (column.correction,)
+    error, reference, air = min((_error(rows, ref, air), ref, air) for ref in references for air in _AIR)
+    if error > _NEAR or median(abs(c / r - 1.0) for c, r, _ in rows) < _APART:
+        return ""
+    return (
+        f"the ratio to the other column is ({air:g} - {reference:g}) / ({air:g} - O2) "
+        f"in {len(rows)} rows: corrected to {reference:g} % oxygen"
+    )
 
 
-def _explains(rows: Sequence[tuple[float, float, float]], reference: float, air: float) -> bool:
-    errors = [abs(c / r * (air - o) / (air - reference) - 1.0) for c, r, o in rows]
-    apart = median(abs(c / r - 1.0) for c, r, _ in rows)
-    return median(errors) < _NEAR and apart > _APART
+def _error(rows: Sequence[tuple[float, float, float]], reference: float, air: float) -> float:
+    """The middle relative difference of the ratio of the columns from that of the correction."""
+    return median(abs(c / r * (air - o) / (air - reference) - 1.0) for c, r, o in rows)

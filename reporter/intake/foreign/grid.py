@@ -13,7 +13,7 @@ from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Any
 
-from reporter.intake.guard import MAX_CELLS, MAX_COLUMN, Look, look_at
+from reporter.intake.guard import MAX_COLUMN, Look, look_at
 from reporter.intake.table import Raw
 from reporter.intake.workbook import raw, sheet_parts
 from reporter.problems import Place, Problem, problem
@@ -21,6 +21,8 @@ from reporter.record import SourceFile
 
 #: A larger file is not read into memory.
 MAX_FILE = 100 << 20
+#: A text file with more cells is not read.
+MAX_CELLS = 4_000_000
 #: Lines and bytes that decide about delimiter and encoding.
 SAMPLE_LINES, SAMPLE_BYTES = 400, 65_536
 #: Delimiters, those first that seldom stand inside a cell.

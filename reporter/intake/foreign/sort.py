@@ -69,7 +69,7 @@ def sort_rows(
 
 def _foot(cells: Sequence[Raw]) -> bool:
     first = next((cell for cell in cells if not blank(cell)), None)
-    return isinstance(first, str) and is_foot(first)
+    return isinstance(first, str) and any(map(str.isalpha, first)) and is_foot(first)
 
 
 def _label(cells: Sequence[Raw]) -> str:

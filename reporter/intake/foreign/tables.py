@@ -84,7 +84,7 @@ def _of_page(page: Page) -> list[Table]:
     blocks: list[tuple[int, ...]] = []
     taken: set[int] = set()
     for row in filled:
-        if row not in taken and _is_header(_texts(page, row)):
+        if row not in taken and _perhaps_header(page.rows[row]) and _is_header(_texts(page, row)):
             block = _block(page, row)
             taken.update(block)
             blocks.append(block)
@@ -106,6 +106,18 @@ def _texts(page: Page, row: int) -> list[str]:
                 texts += [""] * (right + 1 - len(texts))
                 texts[left : right + 1] = [" ".join(clean(value).split())] * (right + 1 - left)
     return texts
+
+
+def _perhaps_header(cells: Sequence[Raw]) -> bool:
+    """Whether two cells of a row are texts that are neither numbers nor times: a quick look before a thorough one."""
+    words = 0
+    for cell in cells:
+        if not isinstance(cell, str):
+            continue
+        words += cell.strip() in ("02", "0 2") or (any(map(str.isalpha, cell)) and not _TIMELIKE.search(cell))
+        if words > 1:
+            return True
+    return False
 
 
 def _is_header(texts: Sequence[str]) -> bool:

@@ -22,7 +22,7 @@ _NAMED_DAY = re.compile(r"^(\d{1,2})(?:st|nd|rd|th)?[\s.\-/]*([^\W\d_]+)\.?[\s.,
 _NAMED_MONTH = re.compile(r"^([^\W\d_]+)\.?\s+(\d{1,2})(?:st|nd|rd|th)?,?\s+(\d{4})(?:,?\s+|$)")
 _COMPACT = re.compile(r"^((?:19|20)\d{2})(\d{2})(\d{2})(?:T|\s+|$)")
 _CLOCK = re.compile(
-    r"^(\d{1,2})[:.h](\d{2})(?:[:.m](\d{2})(?:[.,](\d{1,6}))?s?)?\s*(?:([ap])\.?\s?m\.?)?\s*(Z|UTC|[+\-]\d{2}:?\d{2})?$",
+    r"^(\d{1,2})[:h](\d{2})(?:[:m](\d{2})(?:[.,](\d{1,6}))?s?)?\s*(?:([ap])\.?\s?m\.?)?\s*(Z|UTC|[+\-]\d{2}:?\d{2})?$",
     re.IGNORECASE,
 )
 _YEARS = range(1990, 2080)

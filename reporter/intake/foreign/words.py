@@ -5,7 +5,7 @@ from __future__ import annotations
 import re
 import tomllib
 import unicodedata
-from functools import cache
+from functools import cache, lru_cache
 from typing import Any
 
 from reporter.errors import UnitError
@@ -58,6 +58,7 @@ def without_correction(text: str) -> tuple[str, float | None, bool]:
     return (dotted[: match.start()] + " " + dotted[match.end() :]).strip(), float(match[1].replace(",", ".")), True
 
 
+@lru_cache(4096)
 def gases_in(text: str) -> tuple[str, ...]:
     """The keys of the gases a header names, each once."""
     rest, _, _ = without_correction(folded(text))
@@ -72,6 +73,7 @@ def gases_in(text: str) -> tuple[str, ...]:
     return tuple(dict.fromkeys(found))
 
 
+@lru_cache(4096)
 def time_part(text: str) -> str:
     """Which part of the time a header names: ``both``, ``date``, ``time``, or empty."""
     words = folded(text)
@@ -151,6 +153,7 @@ def _reading_unit(text: str) -> ReadUnit | None:
     return unit if dimension(unit.unit) in READABLE and unit.unit != "1" else None
 
 
+@lru_cache(4096)
 def is_foot(text: str) -> bool:
     """Whether a text is the first words of a row of averages, totals or the like."""
     words = folded(text)

@@ -23,10 +23,21 @@ def combustion(desk: Desk) -> tuple[Block, ...]:
     blocks = [_diagram(desk)]
     tables = rows_table(desk, runs, layout().combustion)
     if tables:
-        blocks.append(Block(title="Air, fuel and products", tables=tables))
+        blocks.append(Block(title="Air, fuel and products", tables=tables, notes=_air(desk)))
     blocks.append(_balance(desk, runs))
     blocks.append(Block(title="Findings", notes=_findings(desk) or (desk.words("lead.no_findings"),)))
     return tuple(block for block in blocks if block.tables or block.pictures or block.notes)
+
+
+def _air(desk: Desk) -> tuple[str, ...]:
+    """The dry air the balance is made with."""
+    ledger = desk.outcome.ledger
+    oxygen, mass = ledger.get("air.physical.oxygen"), ledger.get("air.physical.molar_mass")
+    if oxygen is None or mass is None:
+        return ()
+    texts = {name: desk.number_text(entry.key) for name, entry in (("oxygen", oxygen), ("mass", mass))}
+    source = desk.origin_kind(oxygen).partition(", ")[0]
+    return (formulas(desk.words("lead.air", source=source, **texts)),)
 
 
 def _findings(desk: Desk) -> tuple[str, ...]:

@@ -6,7 +6,7 @@ is derived nowhere else.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Collection, Iterable, Sequence
 from dataclasses import dataclass, field, replace
 from datetime import datetime
 from typing import Any
@@ -108,9 +108,9 @@ class Desk:
         return tuple(value.split(".")[1] for value in held)
 
     def run_names(self, keys: Iterable[str]) -> str:
-        """Names of runs, as in ``runs 1, 3, 4``."""
+        """Names of runs, as in ``runs 1, 3, 4``, kept in one line."""
         names = [self.outcome.run(key).run.run.value for key in keys]
-        return f"run{'' if len(names) == 1 else 's'} {', '.join(names)}"
+        return f"run{'' if len(names) == 1 else 's'} {', '.join(names)}".replace(" ", "\u00a0")
 
     def number_text(self, key: str, *, unit: bool = True) -> str:
         """The printed number of a key with its unit, for a sentence; remembered as printed."""
@@ -186,15 +186,15 @@ class Desk:
             self._lines[known] = f"{equation.symbol} = {text_formula(term)}"
         return self._lines[known]
 
-    def needed(self, keys: Iterable[str]) -> set[str]:
-        """The keys some numbers rest on, themselves too; the answers of criteria are not followed."""
+    def needed(self, keys: Iterable[str], stop: Collection[str] = ()) -> set[str]:
+        """The keys some numbers rest on, themselves too; the answers of criteria, and `stop`, are not followed."""
         ledger = self.outcome.ledger
         found: set[str] = set()
         stack = [key for key in keys if key in ledger]
         while stack:
             key = stack.pop()
             entry = ledger[key]
-            if key in found or entry.is_indicator:
+            if key in found or key in stop or entry.is_indicator:
                 continue
             found.add(key)
             if isinstance(entry.origin, FromEquation):

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 
 from reporter.output.numbers import moment
@@ -14,6 +15,10 @@ _ELSEWHERE = frozenset({"Calibrations", "Cylinders", "Events", "Attachments", "R
 #: Lines with tabs: so wide is the text [mm], so wide a letter of it; a sheet of fewer rows has none.
 _WIDTH, _LETTER, _LONG = 175, 1.35, 6
 _ITEMS = ("Item", "Entry")
+#: Columns in which midnight is a time.
+_TIMES = frozenset({"Start", "End", "Time", "From", "Until"})
+_MIDNIGHT = " 00:00"
+_DAY = re.compile(r"[0-9]{4}-[0-9]{2}-[0-9]{2}" + _MIDNIGHT)
 
 
 def inputs(desk: Desk, *, minute_data: bool) -> tuple[Block, ...]:
@@ -33,7 +38,7 @@ def _sheet(sheet: SheetCopy) -> Block:
     title = f"{sheet.sheet} (hidden sheet)" if sheet.hidden else sheet.sheet
     filled = [index for index in range(len(sheet.header)) if any(index < len(row) and row[index] for row in sheet.rows)]
     header = [sheet.header[index] for index in filled]
-    rows = [[row[index] if index < len(row) else "" for index in filled] for row in sheet.rows]
+    rows = [[_cell(sheet, row, index) for index in filled] for row in sheet.rows]
     if tuple(header[:2]) == _ITEMS:
         return Block(title=title, lines=tuple(": ".join(part for part in row if part) for row in rows))
     longest = max((len(cell) for row in rows for cell in row), default=0)
@@ -44,6 +49,13 @@ def _sheet(sheet: SheetCopy) -> Block:
             title=title, text=(names,), lines=tuple("\t".join(row) for row in (marks, *rows)), tab=_tab(longest)
         )
     return Block(title=title, lines=tuple(_paragraph(header, row) for row in rows))
+
+
+def _cell(sheet: SheetCopy, row: Sequence[str], index: int) -> str:
+    """A cell as it was read; a day without the midnight a workbook gives it, except where times stand."""
+    text = row[index] if index < len(row) else ""
+    is_day = _DAY.fullmatch(text) and sheet.header[index] not in _TIMES
+    return text.removesuffix(_MIDNIGHT) if is_day else text
 
 
 def _tab(longest: int) -> int:

@@ -87,9 +87,9 @@ def _table(desk: Desk) -> Table:
         rows += _rows(desk, comparison, len(columns))
     load, fuel = Cell("Load", strong=True), Cell("Fuel", strong=True)
     rows.append(Row((load, *(_load(desk, run.run) for run in runs), Cell("", span=4)), style="foot"))
-    rows.append(
-        Row((fuel, *(fuel_words(desk.outcome.record, run.run) or desk.missing for run in runs), Cell("", span=4)))
-    )
+    fuels = [fuel_words(desk.outcome.record, run.run) or desk.missing for run in runs]
+    same = len(set(fuels)) == 1
+    rows.append(Row((fuel, Cell(fuels[0], span=len(runs) + 4)) if same else (fuel, *fuels, Cell("", span=4))))
     return aligned(Table(tuple(columns), tuple(rows)))
 
 
@@ -168,8 +168,7 @@ def _facts(desk: Desk, comparison: Comparison) -> tuple[Item, ...]:
         ("Source", source or desk.words("limit.no_source")),
         ("Basis", basis_words(desk, comparison)),
         ("Applies", said(limit.applies_when)),
-        ("Entered", _entered_by(desk, limit)),
-        ("In force", _in_force(desk, limit)),
+        ("Entered", f"{_entered_by(desk, limit)}; {_in_force(desk, limit)}"),
         ("Averaging", _averaging(desk, comparison)),
         ("Rounding", _rounding(desk, comparison)),
     ]
@@ -183,15 +182,15 @@ def _facts(desk: Desk, comparison: Comparison) -> tuple[Item, ...]:
 def _averaging(desk: Desk, comparison: Comparison) -> str:
     """How runs are averaged, how many count and are required, and how long each has to be."""
     limit = comparison.limit
-    parts = [text_of(limit.averaging, "mean of runs")]
+    words = text_of(limit.averaging, "mean of runs")
     if comparison.count and comparison.required:
         held = desk.averaged(comparison.value)
-        names = f" ({desk.run_names(held)})" if held and len(held) < len(desk.outcome.runs) else ""
         count, required = desk.number_text(comparison.count), desk.number_text(comparison.required)
-        parts.append(f"{counted(f'{count} run(s)')} count{'s' if count == '1' else ''}{names}, {required} required")
+        names = f" ({desk.run_names(held)})" if held and len(held) < len(desk.outcome.runs) else ""
+        words = f"{words}; {count} of {required} required{names}"
     if limit.minimum_run_length is not None:
-        parts.append(f"each at least {entered(limit.minimum_run_length, '')}")
-    return "; ".join(parts)
+        words = f"{words}, each at least {entered(limit.minimum_run_length, '')}"
+    return words
 
 
 def _rounding(desk: Desk, comparison: Comparison) -> str:
@@ -228,7 +227,7 @@ def _in_force(desk: Desk, limit: Limit) -> str:
     if limit.in_force_from is None:
         return desk.words("limit.no_effective_date")
     until = f" to {day(limit.in_force_until.value)}" if limit.in_force_until is not None else ""
-    return f"from {day(limit.in_force_from.value)}{until}"
+    return f"in force from {day(limit.in_force_from.value)}{until}"
 
 
 def basis_words(desk: Desk, comparison: Comparison) -> str:

@@ -84,6 +84,11 @@ class Table:
         return len(self.rows) <= KEPT
 
     @property
+    def is_grouped(self) -> bool:
+        """Whether rows name groups, each of which is kept on one page."""
+        return any(row.style == "group" for row in self.rows)
+
+    @property
     def widths(self) -> tuple[int, ...]:
         """The widths of the columns in whole percent, together 100."""
         whole = sum(column.width for column in self.columns)

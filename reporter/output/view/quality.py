@@ -35,8 +35,13 @@ def quality(desk: Desk) -> QualityView:
         runs=tuple(_run_words(desk)),
         not_applied=not_applied(desk),
         problems=tuple(_problems(desk)),
-        assumed=tuple(formulas(sentence) for sentence in desk.outcome.stated),
+        assumed=tuple(formulas(sentence) for sentence in desk.outcome.stated if not _said_before(sentence)),
     )
+
+
+def _said_before(sentence: str) -> bool:
+    """Whether a sentence only names criteria that are not applied: they have a list of their own."""
+    return sentence.endswith("their criteria are not applied here.")
 
 
 def _groups(checks: Sequence[Check]) -> dict[str, list[Check]]:
@@ -191,7 +196,10 @@ def _where(problem: Problem) -> str:
 def criteria(desk: Desk) -> tuple[Block, ...]:
     """One table for each criterion, grouped by the equation its value is computed by."""
     groups = _groups(desk.outcome.checks)
-    return tuple(_block(desk, title, checks) for title, checks in groups.items())
+    blocks = [_block(desk, title, checks) for title, checks in groups.items()]
+    if any(dagger(desk, (check.bound, check.alternative)) for check in desk.outcome.checks):
+        blocks.insert(0, Block(text=(desk.words("criterion.recalled"),)))
+    return tuple(blocks)
 
 
 def _block(desk: Desk, title: str, checks: Sequence[Check]) -> Block:
@@ -262,7 +270,9 @@ def _adopted_by(desk: Desk, checks: Sequence[Check]) -> str:
         words = check.citation.number if _adopts(check) else ""
         marks[words] = marks.get(words, "") or dagger(desk, (check.bound, check.alternative))
     own = marks.pop("", "")
-    return own + "".join(f"; {words}{mark}" for words, mark in marks.items())
+    stem = "as adopted by "
+    methods = ", ".join(f"{words.removeprefix(stem)}{mark}" for words, mark in marks.items())
+    return f"{own}; {stem}{methods}" if methods else own
 
 
 def _share_bounds(desk: Desk, checks: Sequence[Check]) -> bool:

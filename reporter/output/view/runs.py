@@ -153,7 +153,7 @@ def _tables(desk: Desk, some: Sequence[RunResult], rows: Sequence[Row], averages
     columns = [Column("", width=4.6), Column("Unit and basis", width=2.4)]
     columns += [Column(f"Run {run.run.run.value}", number=True) for run in some]
     if averages:
-        columns.append(Column("Average", _usual_words(desk), number=True))
+        columns.append(Column("Average", _usual_words(desk), width=1.15, number=True))
     held = any(isinstance(cell, Shown) and cell.text.startswith("[") for row in rows for cell in row.cells)
     return (aligned(Table(tuple(columns), tuple(rows), note=desk.words("lead.held") if held else "")),)
 
@@ -223,7 +223,8 @@ def _label(desk: Desk, entry: Entry, held: Sequence[str]) -> str:
     words = [desk.quantity_label(entry.key), route, _analogy(desk, entry)]
     usual = usual_runs(desk)
     if held and usual and held != usual:
-        words.append(desk.words("run.average_of", runs=desk.run_names(held)))
+        runs = desk.run_names(held) if len(held) < len(desk.outcome.runs) else desk.words("run.all")
+        words.append(desk.words("run.average_of", runs=runs))
     text = formulas(", ".join(word for word in words if word))
     return text[:1].upper() + text[1:]
 

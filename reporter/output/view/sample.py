@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Any
 
 from reporter.equation import Equation
@@ -11,7 +11,7 @@ from reporter.ledger import Entry, FromCells, FromEquation, FromTable, Stated
 from reporter.outcome import Comparison, GasResult, RunResult, RunState
 from reporter.output.numbers import formulas, shortest, unit_text
 from reporter.output.view.desk import Desk, cell_words, gas_name
-from reporter.output.view.limits import limit_words
+from reporter.output.view.limits import limit_words, relation_words
 from reporter.output.view.model import Chapter, Shown, Source, Step
 from reporter.output.view.quality import needs_alternative
 from reporter.trace import Name
@@ -39,14 +39,25 @@ class _Writer:
     numbers: dict[str, int] = field(default_factory=dict)
     equations: set[str] = field(default_factory=set)
 
-    def chapter(self, title: str, keys: Iterable[str], answer: str = "") -> Chapter | None:
-        """The steps that lead to some entries and were not written before; `answer` is that of a comparison."""
-        ledger = self.desk.outcome.ledger
-        self.about = title
+    def chapter(self, title: str, keys: Iterable[str], about: str = "") -> Chapter | None:
+        """The steps that lead to some entries and were not written before; `about` is what all their labels name."""
+        self.about = about or title
         needed = self.desk.needed(keys)
+        ledger = self.desk.outcome.ledger
         steps = [self._step(entry) for entry in ledger if entry.key in needed and self._is_new(entry)]
-        if answer:
-            steps.append(self._step(ledger[answer]))
+        return Chapter(title, tuple(steps)) if steps else None
+
+    def comparison(self, title: str, comparison: Comparison) -> Chapter | None:
+        """From the results of the runs to the comparison: average, rounding, margin, answer."""
+        ledger = self.desk.outcome.ledger
+        self.about = f"limit {comparison.limit.key}"
+        keys = [comparison.value, comparison.rounded, comparison.margin]
+        of_runs = {key for _, key, _ in comparison.runs}
+        needed = self.desk.needed((key for key in keys if key), stop=of_runs)
+        steps = [self._step(entry) for entry in ledger if entry.key in needed and self._is_new(entry)]
+        if comparison.compared:
+            words = relation_words(self.desk, comparison)
+            steps.append(replace(self._step(ledger[comparison.met]), title=words))
         return Chapter(title, tuple(steps)) if steps else None
 
     def _is_new(self, entry: Entry) -> bool:
@@ -170,12 +181,10 @@ def sample(desk: Desk, run: RunResult | None) -> tuple[Chapter, ...]:
         keys = [f"{stem}.{name}" for name in names]
         chapters.append(writer.chapter(title, [key for key in keys if key in desk.outcome.ledger]))
     for comparison in desk.outcome.comparisons:
-        chapters.append(writer.chapter(_title(desk, comparison), _of_run(desk, comparison, run)))
+        chapters.append(writer.chapter(_title(desk, comparison), _of_run(desk, comparison, run), _gas(comparison)))
     for comparison in desk.outcome.comparisons:
         title = desk.words("limit.calculated", limit=comparison.limit.limit_id.value)
-        keys = [comparison.value, comparison.rounded, comparison.margin]
-        answer = comparison.met if comparison.compared else ""
-        chapters.append(writer.chapter(title, [key for key in keys if key], answer))
+        chapters.append(writer.comparison(title, comparison))
     return tuple(chapter for chapter in chapters if chapter is not None)
 
 
@@ -214,6 +223,10 @@ def _of_run(desk: Desk, comparison: Comparison, run: RunResult) -> list[str]:
     return found
 
 
+def _gas(comparison: Comparison) -> str:
+    return gas_name(comparison.limit.pollutant.value)
+
+
 def _title(desk: Desk, comparison: Comparison) -> str:
     limit = comparison.limit
-    return f"{gas_name(limit.pollutant.value)}, for limit {limit.limit_id.value}: {limit_words(desk, limit)}"
+    return f"{_gas(comparison)}, for limit {limit.limit_id.value}: {limit_words(desk, limit)}"

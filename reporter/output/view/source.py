@@ -142,7 +142,7 @@ def _fuels(desk: Desk) -> Block:
         (row.fuel.value, _factors(desk, row), _analysis(row), said(row.laboratory), said(row.sample))
         for row in desk.outcome.record.fuels
     ]
-    tables = [filled(simple_table(titles, rows, (1.4, 4, 4, 1.6, 1.2)))]
+    tables = [filled(simple_table(titles, rows, (1.3, 3.6, 3.6, 1.8, 2)))]
     if desk.outcome.record.fuel_use:
         tables.append(_fuel_use(desk))
     components = [
@@ -248,7 +248,7 @@ def _methods(desk: Desk) -> Block:
         found = documents.get(name)
         edition = f"{found.title}; {found.edition}" if found is not None else desk.words("missing.no_document")
         rows.append((name, formulas(", ".join(what)), edition))
-    table = simple_table(("Method", "For", "Document and edition"), rows, (1.1, 1.9, 8))
+    table = simple_table(("Method", "For", "Document and edition"), rows, (1.25, 2, 7.8))
     return Block(title="Methods", tables=(table,), notes=tuple(_entered_results(desk)))
 
 

@@ -12,7 +12,7 @@ from typing import Any
 from reporter.equation import Citation, Equation
 from reporter.errors import RecordError
 from reporter.ledger import FromEquation, FromTable, Stated
-from reporter.methods.criteria import criteria
+from reporter.methods.criteria import criteria, method_family
 from reporter.methods.method_3b import fo_range
 from reporter.methods.tables import factor_tables, fuel_factors
 from reporter.output.view.desk import Desk, said
@@ -63,7 +63,7 @@ def _table_recalled(parts: list[str], origin: FromTable) -> bool:
 
 
 def cited_documents(desk: Desk) -> set[str]:
-    """The ids of the documents that entries and criteria of this test cite."""
+    """The ids of the documents that entries, criteria and channels of this test cite."""
     cited = {check.citation.document for check in desk.outcome.checks}
     equations: dict[str, Equation[Any]] = {}
     for entry in desk.outcome.ledger:
@@ -76,6 +76,8 @@ def cited_documents(desk: Desk) -> set[str]:
         cited.add(equation.citation.document)
         constants = (one.constant for one in equation.parameters.values() if one.constant is not None)
         cited.update(one.citation.document for one in constants if one.citation is not None)
+    families = {method_family(said(channel.method)) for channel in desk.outcome.record.channels}
+    cited.update(f"m{family.lower()}" for family in families if family)
     if any("60.8" in one.reason for one in _stated(desk)):
         cited.add("cfr60_8")
     return cited

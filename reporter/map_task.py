@@ -1,0 +1,97 @@
+"""What `fluebook map` does: look at a logger's file, say how it reads it and why, ask, and save the mapping."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from pathlib import Path
+
+from reporter.cli import OK, UNREADABLE, UNWRITTEN, USAGE, WITHHELD
+from reporter.errors import RecordError
+from reporter.intake.foreign.answers import questions_toml, read_answers
+from reporter.intake.foreign.apply import apply_to_grid
+from reporter.intake.foreign.look import Look, look, mapping_of
+from reporter.intake.foreign.mapping import save as save_mapping
+from reporter.intake.foreign.model import Question
+from reporter.problems import Grade
+from reporter.tasks import Task
+from reporter.terminal import problems_text
+from reporter.terminal_text import paragraph, section
+
+
+def map_file(
+    file: Path,
+    name: str = "",
+    *,
+    save: Path | None = None,
+    questions: Path | None = None,
+    answers: Path | None = None,
+) -> Task:
+    """Look at a file and say what it is.
+
+    Parameters
+    ----------
+    file
+        The logger's file.
+    name
+        Name of the mapping; the name of the file where it is empty.
+    save, questions
+        Where the mapping, and where the open questions are written.
+    answers
+        A file of questions with its answers filled in.
+
+    Returns
+    -------
+    Task
+        Code 0 where no question is open, 1 where one is, 2 where the answers cannot be read, 3 where the file
+        cannot be read, 4 where a file cannot be written.
+    """
+    try:
+        given = read_answers(answers) if answers is not None else {}
+    except RecordError as error:
+        return Task(file.name, f"fluebook: {error}", USAGE, "not looked at")
+    found = look(file, given)
+    if found.mapping is None and not found.questions:
+        text = f"{file.name} cannot be mapped\n{problems_text(found.problems)}"
+        return Task(file.name, text, UNREADABLE, "cannot be read", len(found.problems))
+    try:
+        return _said(file, found, name, save, questions)
+    except OSError as error:
+        return Task(file.name, f"fluebook: {error.filename}: {error.strerror}", UNWRITTEN, "not written")
+
+
+def _said(file: Path, found: Look, name: str, save: Path | None, questions: Path | None) -> Task:
+    parts = [file.name, section("As read", [paragraph(line) for line in found.evidence])]
+    if found.questions:
+        parts.append(section("Questions", [_asked(question) for question in found.questions]))
+        if questions is not None:
+            questions.write_text(questions_toml(file.name, found.questions), encoding="utf-8")
+            parts.append(f"Written: {questions.name}; fill it in and give it with --answers")
+        elif found.questions:
+            parts.append(
+                "To answer: write the questions with --questions FILE, fill it in, give it with --answers FILE"
+            )
+        return Task(file.name, "\n\n".join(parts), WITHHELD, "questions are open", len(found.questions))
+    mapping = mapping_of(found, name=name)
+    made = apply_to_grid(found.grid, mapping)
+    parts.append(section("By this mapping", [paragraph(line) for line in made.report.lines()]))
+    shown = [p for p in made.problems if not (p.code == "not-a-time" and mapping.time.day)]
+    if shown:
+        parts.append(problems_text(shown))
+    if save is not None:
+        save_mapping(mapping, save)
+        parts.append(f"Written: {save.name} (shape {mapping.fingerprint})")
+    stops = any(p.grade is Grade.UNREADABLE for p in shown)
+    return Task(file.name, "\n\n".join(parts), UNREADABLE if stops else OK, "mapped")
+
+
+def _asked(question: Question) -> str:
+    where = question.place.text()
+    lines: Sequence[str] = [
+        paragraph(f"{question.key}: {question.asks}"),
+        paragraph(f"Found:    {f'{where}: ' if where else ''}{question.found}", indent=4, hang=14),
+        *(
+            paragraph(f"Answer:   {option.answer}{f' ({option.meaning})' if option.meaning else ''}", indent=4, hang=14)
+            for option in question.options
+        ),
+    ]
+    return "\n".join(lines)
