@@ -92,14 +92,19 @@ def issue_time(given: str | None = None) -> datetime:
     Raises
     ------
     ValueError
-        The text is not a date and time.
+        The text is not a date and time, or SOURCE_DATE_EPOCH no count of seconds; the message says which.
     """
-    if given is not None:
-        moment = datetime.fromisoformat(given)
-        return (moment if moment.tzinfo is not None else moment.replace(tzinfo=UTC)).astimezone(UTC)
     epoch = os.environ.get("SOURCE_DATE_EPOCH")
-    if epoch is not None:
-        return datetime.fromtimestamp(int(epoch), UTC)
+    try:
+        if given is not None:
+            moment = datetime.fromisoformat(given)
+            return (moment if moment.tzinfo is not None else moment.replace(tzinfo=UTC)).astimezone(UTC)
+        if epoch is not None:
+            return datetime.fromtimestamp(int(epoch), UTC)
+    except (ValueError, OverflowError, OSError):
+        if given is not None:
+            raise ValueError(f"{given!r} is not an ISO date and time") from None
+        raise ValueError(f"SOURCE_DATE_EPOCH {epoch!r} is not a count of seconds") from None
     return datetime.now(UTC).replace(microsecond=0)
 
 

@@ -146,8 +146,8 @@ def _report(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
 
     try:
         issued = issue_time(given.issued)
-    except ValueError:
-        print(f"fluebook: --issued {given.issued!r} is not an ISO date and time", file=err)
+    except ValueError as error:
+        print(f"fluebook: {'' if given.issued is None else '--issued '}{error}", file=err)
         return USAGE
     names = [name_of(path).lower() for path in given.inputs]
     twice = sorted({name for name in names if names.count(name) > 1})

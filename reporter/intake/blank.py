@@ -100,8 +100,10 @@ def blank_bytes(gases: Sequence[str], runs: int, system: System) -> bytes:
 
 
 def _created() -> datetime:
-    epoch = os.environ.get("SOURCE_DATE_EPOCH", "")
-    return datetime.fromtimestamp(int(epoch), UTC).replace(tzinfo=None) if epoch.isdigit() else CREATED
+    try:
+        return datetime.fromtimestamp(int(os.environ.get("SOURCE_DATE_EPOCH", "")), UTC).replace(tzinfo=None)
+    except (ValueError, OverflowError, OSError):
+        return CREATED
 
 
 def _gases(names: Sequence[str]) -> tuple[Gas, ...]:

@@ -19,6 +19,10 @@ _WITH_UNIT = re.compile(r"^([+\-−]?(?:\d+\.?\d*|\.\d+)(?:[eE][+\-]?\d{1,3})?)\
 _ERROR = re.compile(r"^#[A-Z0-9/]+[!?]?$")
 
 
+#: No number of a test is larger, in whatever unit.
+LARGEST = 1e15
+
+
 @dataclass(frozen=True, slots=True)
 class NumberRead:
     """A number with the unit that stood in its own cell, and whether it was stored as text."""
@@ -107,6 +111,8 @@ def gas_of(cell: Cell) -> str | Fault:
 def out_of_range(value: float, unit: ReadUnit | None, column: Column) -> Fault | None:
     """Why a number cannot be right for its column, if it cannot; the bounds are said in the unit it stands in."""
     low, high = _bounds(unit, column)
+    if abs(value) > LARGEST:
+        return Fault("out-of-range", f"{value:g}", f"a number not beyond {LARGEST:g}")
     slack = 1e-9 * abs(value)
     if (low is None or value >= low - slack) and (high is None or value <= high + slack):
         return None

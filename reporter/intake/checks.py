@@ -15,6 +15,8 @@ from reporter.ledger import slug
 from reporter.record import Readings
 
 Rows = Sequence[Filled]
+#: No run is longer; a mistyped year or month makes one.
+LONGEST_RUN = timedelta(days=3)
 
 
 def text_lengths(table: SheetTable, gathered: Gathered) -> None:
@@ -112,7 +114,10 @@ def run_times(rows: Rows, gathered: Gathered, days: tuple[date | None, date | No
         if start is None or end is None:
             continue
         place, found = end.place, f"{start.text} to {end.text}"
-        if end.value > start.value:
+        if end.value - start.value > LONGEST_RUN:
+            expected = f"a run of at most {LONGEST_RUN.days} days: perhaps a date is mistyped"
+            gathered.add("out-of-range", place, found, expected=expected)
+        elif end.value > start.value:
             good.append(row)
             _within(row, gathered, days)
         elif {"start", "end"} <= row.bare and start.value.hour >= 12 > end.value.hour:

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 import re
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
@@ -11,7 +10,7 @@ from functools import cache
 from itertools import pairwise
 
 from reporter.errors import UnitError
-from reporter.intake.cells import number_text
+from reporter.intake.cells import LARGEST, number_text
 from reporter.intake.dates import Fault, MomentRead, OrderWatch, date_of, moment_of
 from reporter.intake.rows import Filled, RowReader
 from reporter.intake.sheets import fold, reading_words, sentinels
@@ -21,6 +20,8 @@ from reporter.record import Reading, ReadingKind, ReadingRow, Readings
 from reporter.units import ReadUnit, convert, dimension, read_unit
 
 _BOUND = re.compile(r"^([<>])\s*(.+)$")
+#: A gas of more mass in its volume [mg/m3] is in no stack.
+_DENSEST = 1e8
 _BLANK = Reading(ReadingKind.BLANK, None, "")
 
 
@@ -219,8 +220,10 @@ def reading_of(cell: Cell, unit: str) -> Reading | Fault:
 
 @cache
 def _most(unit: str) -> float:
-    """The largest reading in a unit: the whole gas, where the unit is a part of it."""
-    return convert(100.0, "%", unit) if unit and dimension(unit) == "fraction" else math.inf
+    """The largest reading in a unit: the whole gas, or more of it than fits its volume."""
+    if unit and dimension(unit) == "fraction":
+        return convert(100.0, "%", unit)
+    return convert(_DENSEST, "mg/m3", unit) if unit else LARGEST
 
 
 def _number(value: float, text: str, unit: str) -> Reading | Fault:
@@ -229,7 +232,7 @@ def _number(value: float, text: str, unit: str) -> Reading | Fault:
         found = f"{text}, as loggers write for a missing value"
         return Fault("out-of-range", found, "a measured number, an empty cell, or a word for what happened")
     most = _most(unit)
-    if value > most:
+    if abs(value) > most:
         return Fault("out-of-range", f"{text} {unit}", f"a reading of at most {most:g} {unit}, or a word such as OVER")
     return Reading(ReadingKind.NUMBER, value, text)
 

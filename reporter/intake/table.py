@@ -93,7 +93,7 @@ _BLANKS = str.maketrans({"\u00a0": " ", "\u2007": " ", "\u202f": " ", "\u200b": 
 
 def clean(text: str) -> str:
     """Text without the blanks that only look like blanks, and without blanks around it."""
-    return text.translate(_BLANKS).strip()
+    return text.strip() if text.isascii() else text.translate(_BLANKS).strip()
 
 
 def whole_text(text: str) -> str:

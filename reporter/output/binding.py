@@ -169,9 +169,13 @@ def _form(pdf: Any, copier: Copier, page: Any, box: tuple[float, float, float, f
 
 def _looks(page: Any) -> Iterator[tuple[Any, Any]]:
     """Annotations that show something on paper, with the stream that draws it."""
+    from pypdf.generic import DictionaryObject
+
     for reference in _held(page, "/Annots") or ():
         annotation = reference.get_object()
-        if annotation is None or annotation.get("/Subtype") in _NOT_DRAWN or int(annotation.get("/F", 0)) & _HIDDEN:
+        if not isinstance(annotation, DictionaryObject):
+            continue
+        if annotation.get("/Subtype") in _NOT_DRAWN or int(annotation.get("/F", 0)) & _HIDDEN:
             continue
         normal = annotation.get("/AP", {}).get_object().get("/N") if "/AP" in annotation else None
         if normal is not None and not hasattr(normal.get_object(), "get_data"):

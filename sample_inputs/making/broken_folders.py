@@ -82,6 +82,12 @@ def _two_days(files: Files, readings: Rows) -> Files:
     return files | {"later.csv": logger(other)}
 
 
+def _missing_comma(files: Files, readings: Rows) -> Files:
+    head, first, *rest = files["logger.csv"].decode().splitlines()
+    shorter = ",".join(first.split(",")[:-1])
+    return files | {"logger.csv": "\n".join([head, shorter, *rest, ""]).encode()}
+
+
 def _two_workbooks(files: Files, readings: Rows) -> Files:
     return files | {"field again.xlsx": files["field.xlsx"]}
 
@@ -98,6 +104,7 @@ CHANGES: dict[str, Callable[[Files, Rows], Files]] = {
     "mapping-differs": _new_header,
     "mapping-against-channels": _other_basis,
     "readings-contradict": _two_days,
+    "row-out-of-line": _missing_comma,
     "folder-inputs": _two_workbooks,
     "rows-left-out": _average,
 }

@@ -95,13 +95,16 @@ def found(result: ReadResult) -> list[tuple[str, str]]:
 
 
 def rezipped(
-    content: bytes, change: Callable[[str, bytes], bytes] | None = None, more: Mapping[str, bytes] | None = None
+    content: bytes,
+    change: Callable[[str, bytes], bytes] | None = None,
+    more: Mapping[str, bytes] | None = None,
+    packing: int = zipfile.ZIP_DEFLATED,
 ) -> bytes:
     """A container with its parts changed, and with parts added."""
     buffer = io.BytesIO()
     with (
         zipfile.ZipFile(io.BytesIO(content)) as old,
-        zipfile.ZipFile(buffer, "w", zipfile.ZIP_DEFLATED) as new,
+        zipfile.ZipFile(buffer, "w", packing) as new,
     ):
         for name in old.namelist():
             data = old.read(name)

@@ -6,7 +6,7 @@ from datetime import datetime, time
 from pathlib import Path
 
 import pytest
-from field_book import found, read_sheets, record_of, tiny, workbook
+from field_book import found, read_sheets, record_of, tiny, with_column, workbook
 
 from reporter.intake import attachment_path, read
 
@@ -140,3 +140,87 @@ def test_attachments_are_looked_for_beside_the_workbook_only(tmp_path: Path) -> 
     sheets["Attachments"] = [["File", "What"], *([name, "certificate"] for name in names[:3])]
     (folder / "field.xlsx").write_bytes(workbook(sheets))
     assert found(read(folder / "field.xlsx")) == [("attachment-missing", "Attachments!A4")]
+
+
+@pytest.mark.parametrize(
+    ("sheet", "name", "value", "expected"),
+    [
+        ("Runs", "Barometric pressure [kPa]", 1013, "a value from 50.8 to 111.8 kPa"),
+        ("Runs", "Ambient temperature [°C]", 291, "a value from -62.22 to 65.56 °C"),
+        ("Fuel", "Gross heating value [kJ/kg]", 44.8, "a value from 930.4 to 151200 kJ/kg"),
+        ("Fuel", "Gross heating value [MJ/m3]", -1, "a value from 0 MJ/m3"),
+    ],
+)
+def test_a_slip_of_the_unit_is_asked_about_in_the_unit_of_the_sheet(
+    sheet: str, name: str, value: float, expected: str
+) -> None:
+    sheets = tiny()
+    sheets["Fuel"] = [["Fuel", "Factor source"], ["natural gas", "published"]]
+    with_column(sheets[sheet], name, value)
+    assert [(p.code, p.expected) for p in read_sheets(sheets).problems] == [("out-of-range", expected)]
+
+
+def test_the_units_that_slip_are_read_where_they_are_right() -> None:
+    """1013 hPa, 291 K and 44.8 MJ/kg are usual (common practice), each in its own unit."""
+    sheets = tiny()
+    sheets["Fuel"] = [["Fuel", "Factor source"], ["natural gas", "published"]]
+    with_column(sheets["Runs"], "Barometric pressure [hPa]", 1013)
+    with_column(sheets["Runs"], "Ambient temperature [K]", 291)
+    with_column(sheets["Fuel"], "Gross heating value [MJ/kg]", 44.8)
+    assert found(read_sheets(sheets)) == []
+
+
+def test_readings_no_gas_can_have() -> None:
+    sheets = tiny()
+    sheets["Readings"][2][1], sheets["Readings"][3][2], sheets["Readings"][4][2] = -9999, 100.5, 100.0
+    assert found(read_sheets(sheets)) == [("out-of-range", "Readings!B3"), ("out-of-range", "Readings!C4")]
+
+
+def test_a_run_of_a_year_is_a_mistyped_date() -> None:
+    sheets = tiny()
+    sheets["Runs"][2][2] = sheets["Runs"][2][2].replace(year=2027)
+    assert found(read_sheets(sheets)) == [("out-of-range", "Runs!C3")]
+
+
+def test_the_interval_is_held_against_the_runs() -> None:
+    sheets = tiny()
+    sheets["Test"].append(["Logging interval [min]", 60, ""])
+    problems = read_sheets(sheets).problems
+    assert [p.code for p in problems] == ["run-without-readings", "run-without-readings", "interval-differs"]
+    assert "no whole interval of 3600 s" in problems[0].found
+    assert "logging interval" in problems[0].remedy
+
+
+def test_events_end_after_they_begin_and_exclude_for_a_reason() -> None:
+    sheets = tiny()
+    begin = sheets["Runs"][1][1]
+    sheets["Events"] = [
+        ["Time", "Until", "What", "Readings excluded", "Reason"],
+        [begin, begin.replace(hour=8), "port change", "no", None],
+        [begin, begin, "port change", "yes", None],
+        [begin, begin, "port change", "yes", "probe out"],
+    ]
+    assert found(read_sheets(sheets)) == [("out-of-range", "Events!B2"), ("missing-entry", "Events!D3")]
+
+
+def test_a_name_written_nearly_right_is_asked_about_where_the_right_one_is_missing() -> None:
+    sheets = tiny()
+    with_column(sheets["Runs"], "Heat inputs [MMBtu/h]", 12)
+    sheets["Limts"] = [["Limit id"], ["A"]]
+    sheets["Test"].append(["Reveiwer", "V. Checkwell", ""])
+    problems = read_sheets(sheets).problems
+    assert {(p.code, p.place.sheet, p.found) for p in problems} == {
+        ("misspelt-name", "Runs", "Heat inputs [MMBtu/h]"),
+        ("misspelt-name", "Limts", "Limts"),
+        ("misspelt-name", "Test", "Reveiwer"),
+    }
+    with_column(sheets["Runs"], "Heat input [MMBtu/h]", 12)
+    sheets["Limits"], sheets["Test"][-1][0] = [], "Weather"
+    assert {p.code for p in read_sheets(sheets).problems} == {"unknown-column", "unknown-sheet"}
+
+
+def test_a_certified_value_without_unit_is_said() -> None:
+    sheets = tiny()
+    sheets["Cylinders"] = [["Cylinder", "Gas", "Certified value"], ["A", "NOx", 0], ["B", "NOx", 50]]
+    problems = read_sheets(sheets).problems
+    assert [(p.code, p.found) for p in problems] == [("unit-assumed", "Certified value in the unit of the channel")]

@@ -80,6 +80,16 @@ HOSTILE = {
         rezipped(GOOD, lambda n, d: d.decode().encode("utf-16-be") if n == SHEET else d),
         "not-a-workbook",
     ),
+    "many sheets": (
+        rezipped(GOOD, lambda n, d: d.replace(b"</sheets>", b"<sheet/>" * 256 + b"</sheets>")),
+        "zip-bomb",
+    ),
+    "many rows": (in_runs(b"</sheetData>", b"<row></row>" * 200_001 + b"</sheetData>"), "zip-bomb"),
+    "many cell formats": (
+        rezipped(GOOD, lambda n, d: d.replace(b"</cellXfs>", b"<xf></xf>" * 66_000 + b"</cellXfs>")),
+        "zip-bomb",
+    ),
+    "packed in another way": (rezipped(GOOD, packing=zipfile.ZIP_LZMA), "not-a-workbook"),
     "other code page": (
         rezipped(GOOD, lambda n, d: b"<?xml version='1.0' encoding='cp037'?>" + d if n == SHEET else d),
         "not-a-workbook",
@@ -128,6 +138,24 @@ def test_a_stray_cell_in_the_last_allowed_row_costs_nothing() -> None:
     start = time.perf_counter()
     assert read_bytes("stray.xlsx", content).record is not None
     assert time.perf_counter() - start < 1.0
+
+
+def test_a_hidden_column_as_wide_as_a_number_can_say_costs_nothing() -> None:
+    columns = b'<cols><col min="1" max="2000000000" hidden="1" width="9"/></cols><sheetData>'
+    start = time.perf_counter()
+    result = read_bytes("wide.xlsx", in_runs(b"<sheetData>", columns))
+    assert time.perf_counter() - start < 1.0
+    assert [(p.code, p.found) for p in result.problems] == [("hidden-read", "columns A, B, C")]
+
+
+def test_a_table_of_many_empty_fields_is_refused_before_they_are_made() -> None:
+    """Few cells, but one wide row and many short ones: each short row would be filled up to the widest."""
+    letters = [a + b for a in ("", *"ABCDEFGHIJKLMNOPQR") for b in "ABCDEFGHIJKLMNOPQRSTUVWXYZ"][3:]
+    wide = "".join(f'<c r="{name}9"><v>1</v></c>' for name in letters)
+    tall = "".join(f'<row r="{n}"><c r="A{n}"><v>1</v></c></row>' for n in range(10, 3_000))
+    content = in_runs(b"</sheetData>", f'<row r="9">{wide}</row>{tall}</sheetData>'.encode())
+    problems = read_bytes("wide.xlsx", content).problems
+    assert [(p.code, p.place.sheet, p.found) for p in problems] == [("zip-bomb", "Runs", "2,994 rows of 494 columns")]
 
 
 def test_a_part_in_sixteen_bits_is_looked_through_and_read() -> None:

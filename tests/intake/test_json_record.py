@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import dataclasses
 import json
+import time
 from typing import Any
 
 import jsonschema
@@ -173,3 +174,40 @@ def test_a_huge_number_is_no_traceback() -> None:
     data = plain()
     data["Runs"][0]["Load"] = 10**400
     assert problems(data) == [("text-for-number", "/Runs/0/Load")]
+    data["Runs"][0]["Load"] = 1
+    data["Channels"][0]["Unit"] = "mg/m3"
+    data["Readings"][0]["NOx"] = 1e308
+    assert problems(data) == [("out-of-range", "/Readings/0/NOx")]
+    assert problems(json.dumps(data).replace("1e+308", "1e999").encode()) == [("text-for-number", "/Readings/0/NOx")]
+
+
+@pytest.mark.parametrize(
+    "content",
+    [
+        b'{"Test": {' + b",".join(b'"k%d": 1' % n for n in range(300_000)) + b', "z": 1, "z": 2}}',
+        b'{"Readings": [' + b",".join(b'{"k%d": 1}' % n for n in range(50_000)) + b"]}",
+        b'{"Readings": [' + b",".join([b"{}"] * 400_000) + b"]}",
+        b'{"Test": {"Facility": "' + b"," * 1_300_000 + b'"}}',
+    ],
+)
+def test_json_made_to_take_time_and_memory_is_refused_at_once(content: bytes) -> None:
+    start = time.perf_counter()
+    assert "bad-json" in {code for code, _ in problems(content)}
+    assert time.perf_counter() - start < 1.0
+
+
+def test_halves_of_characters_become_question_marks() -> None:
+    data = plain()
+    data["Test"]["Facility"] = "Alder\ud800 Creek"
+    record = read_bytes("record.json", json.dumps(data).encode()).record
+    assert record is not None
+    assert record.test.facility.value == "Alder? Creek"
+
+
+def test_texts_have_an_end() -> None:
+    data = plain()
+    data["Test"]["Purpose"] = "x" * 32_768
+    assert problems(data) == [("out-of-range", "/Test/Purpose")]
+    data["Test"]["Purpose"] = ""
+    data["Events"] = [{"Time": "9:00", "What": "x" * 30_000} for _ in range(40)]
+    assert problems(data) == [("zip-bomb", "")]

@@ -10,6 +10,7 @@ from dataclasses import replace
 from functools import cache
 from typing import Any
 
+import jsonschema
 import openpyxl
 import pytest
 from pypdf import PdfReader
@@ -17,6 +18,7 @@ from rehearsals import GAS, made, outcome_of
 
 from reporter.api import assess, issue_time, opened, report_files
 from reporter.outcome import Outcome
+from reporter.output.results_schema import results_schema
 from reporter.record import Given, Record
 from reporter.rehearse import Order
 from reporter.resources import table_text
@@ -112,7 +114,9 @@ def test_the_results_workbook_says_it_on_every_sheet_and_in_its_summary() -> Non
 
 
 def test_the_json_says_it() -> None:
-    test = json.loads(_files(_final_and_denied)[".json"])["test"]
+    document = json.loads(_files(_final_and_denied)[".json"])
+    jsonschema.validate(document, results_schema())
+    test = document["test"]
     assert "yes, entered as: no" in json.dumps(test["synthetic"])
     assert "draft" in json.dumps(test["status"])
     assert "final" not in json.dumps(test["status"])

@@ -11,7 +11,7 @@ from pathlib import Path
 
 from reporter.intake.dates import Fault
 from reporter.intake.foreign.grid import Grid, Page, letters, read_grid
-from reporter.intake.foreign.mapping import MappedColumn, Mapping, differences
+from reporter.intake.foreign.mapping import MappedColumn, Mapping, differences_of
 from reporter.intake.foreign.model import Desk
 from reporter.intake.foreign.numbers import style_of
 from reporter.intake.foreign.sort import sort_rows
@@ -20,6 +20,7 @@ from reporter.intake.foreign.times import TimeStyle, joined, order_of
 from reporter.intake.foreign.wording import read_cell
 from reporter.intake.gather import Gathered
 from reporter.intake.table import Raw
+from reporter.intake.workbook import ranges
 from reporter.problems import Place, Problem
 from reporter.record import Reading, ReadingKind, ReadingRow, Readings, SourceFile
 
@@ -102,7 +103,7 @@ def apply_to_grid(grid: Grid, mapping: Mapping, *, day: date | None = None) -> F
     every = find_tables(grid)
     tables = [table for table in every if mapping.fits(table)]
     tables = [table for table in tables if not (table.page.hidden and mapping.hidden == "leave out")]
-    changed = differences(mapping, grid) if grid.pages else ()
+    changed = differences_of(mapping, grid, every) if grid.pages else ()
     if grid.pages and (changed or not tables):
         code = "mapping-differs" if every else "no-readings-table"
         gathered.add(code, gathered.place(), "; ".join(changed) or "only hidden sheets have the table")
@@ -123,6 +124,10 @@ def apply_to_grid(grid: Grid, mapping: Mapping, *, day: date | None = None) -> F
         counts = Counter(out.why.split(":")[0] for out in work.left_out)
         found = ", ".join(f"{count} ({why})" for why, count in counts.items())
         gathered.add("rows-left-out", first.place, found)
+    for page in {id(table.page): table.page for table in tables}.values():
+        rows_hidden = f"rows {ranges(page.number(row) for row in page.hidden_rows)}" if page.hidden_rows else ""
+        if hidden := "the sheet" if page.hidden else rows_hidden:
+            gathered.add("hidden-read", gathered.place(page.sheet), hidden)
     for count, place, lowest in work.negative.values():
         gathered.add("negative-reading", place, f"{count} readings, the lowest {lowest:g}")
     if not rows and not gathered.unreadable:
@@ -155,8 +160,10 @@ class _Reader:
         for found in sort_rows(table, times, [c for c, _ in lanes], order, cut_off=self.grid.cut_off):
             place = self.grid.place(table.page, found.row, times[0], "Time")
             if found.fault:
-                shown = " ".join(str(at(table.page.rows[found.row], c) or "") for c in times)
-                self.gathered.add("not-a-time", place, repr(shown.strip()), expected=f"a time, {order}")
+                shown = " ".join(str(at(table.page.rows[found.row], c) or "") for c in times).strip()
+                untimed = found.fault == "not-a-time"
+                expected = f"a time, {order}" if untimed else ""
+                self.gathered.add(found.fault, place, repr(shown) if untimed else found.why, expected=expected)
                 continue
             if not found.stamps:
                 self.left_out.append(LeftOut(place, found.why))

@@ -94,6 +94,11 @@ class Columns:
             return "", named[0]
         if not named and lane.header and not units_in(lane.header):
             return "no gas in its header", ""
+        if not lane.header and self.table.page.lines and lane.column > self._last_named():
+            found = f"{filled[0]!r}, right of the last header"
+            asks = "Is the delimiter the decimal mark too? Export the file with another delimiter"
+            self.desk.ask("cells-without-header", asks, found, (), self.place(lane.column))
+            return "right of the last header", ""
         reasons = f"the header {lane.header!r}" if lane.header else f"no header, and numbers such as {filled[0]!r}"
         options = [Option("ignore", "it is no reading of a gas")]
         options += [Option(found.label) for found in all_gases() if not named or found.key in named]
@@ -103,6 +108,10 @@ class Columns:
         )  # fmt: skip
         found = next((g.key for g in all_gases() if g.label == answer), "")
         return ("as answered" if answer == "ignore" else ""), found
+
+    def _last_named(self) -> int:
+        pairs = zip(self.table.columns, self.table.headers, strict=True)
+        return max((column for column, header in pairs if header), default=-1)
 
     def with_units(self, lane: Lane, style: NumberStyle) -> Lane:
         """The lane with its unit: of the header, else of its cells, else asked."""

@@ -16,7 +16,7 @@ from reporter.gases import all_gases
 from reporter.intake.foreign.grid import Grid
 from reporter.intake.foreign.numbers import NumberStyle
 from reporter.intake.foreign.tables import Table, find_tables
-from reporter.intake.foreign.times import TimeStyle
+from reporter.intake.foreign.times import TimeStyle, zone_of
 from reporter.record import ReadingKind
 from reporter.units import read_unit
 
@@ -143,6 +143,8 @@ def parse(data: dict[str, Any]) -> Mapping:
         str(time.get("convert_to_zone", "")),
         _one_of("day", time.get("day", ""), ("", "test date")),
     )
+    if style.zone:
+        zone_of(style.zone)
     columns = tuple(_column(row) for row in data["column"])
     channels = [column.channel for column in columns if column.use == "reading"]
     if not channels or len(set(channels)) != len(channels):
@@ -193,7 +195,11 @@ def meaning_of(word: str) -> ReadingKind | None:
 
 def differences(mapping: Mapping, grid: Grid) -> tuple[str, ...]:
     """What of the shape of a file differs from that of the mapping, in words; empty where a table fits."""
-    tables = find_tables(grid)
+    return differences_of(mapping, grid, find_tables(grid))
+
+
+def differences_of(mapping: Mapping, grid: Grid, tables: Sequence[Table]) -> tuple[str, ...]:
+    """The same for the tables already found in the file."""
     said = [] if grid.kind == mapping.kind else [f"the file is a {grid.kind}, the mapping is for a {mapping.kind}"]
     if any(mapping.fits(table) for table in tables):
         return tuple(said)

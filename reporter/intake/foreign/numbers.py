@@ -78,10 +78,11 @@ def style_of(texts: Iterable[str], percents: Iterable[str], desk: Desk) -> Numbe
         return _asked(desk, found, grouped=False)
     for mark, own, other in ((".", point, comma), (",", comma, point)):
         if own.decimal or other.grouping:
-            if other.decimal or own.grouping:
+            doubtful = other.either and not other.grouping
+            if other.decimal or own.grouping or doubtful:
                 return _asked(desk, f"{(own.example or other.example)!r}", grouped=True)
             desk.say(f"decimal mark {mark!r}: {(own.example or other.example)!r}")
-            return NumberStyle(mark, bool(other.grouping or other.either))
+            return NumberStyle(mark, bool(other.grouping))
     if point.either or comma.either:
         return _asked(desk, f"{(comma.example or point.example)!r}, and no number that decides", grouped=True)
     return NumberStyle()

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+from collections import Counter
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from math import isclose
@@ -22,13 +24,13 @@ NEAR = 5e-3
 class Sorted:
     """One row: its position, its stamps where it is a row of readings, else why not.
 
-    `fault` is True where the row holds numbers but no time: that is never left out quietly.
+    `fault` is the code of a problem where the row holds numbers that cannot be placed: that is never left out quietly.
     """
 
     row: int
     stamps: tuple[Stamp, ...] = ()
     why: str = ""
-    fault: bool = False
+    fault: str = ""
 
 
 def sort_rows(
@@ -36,6 +38,7 @@ def sort_rows(
 ) -> Iterator[Sorted]:
     """Every filled row of a table, sorted; `times` and `readings` are columns of the page."""
     width = table.columns[-1] + 1
+    usual = _usual_length(table)
     late: list[int] = []
     kept: list[int] = []
     final = len(table.page.rows) - 1
@@ -44,13 +47,15 @@ def sort_rows(
         own = [at(cells, column) for column in table.columns]
         if all(blank(cell) for cell in own) and not any((row, c) in table.page.uncalculated for c in table.columns):
             continue
-        if cut_off and row == final and len(cells) < width and not _foot(own):
+        if cut_off and row == final and (len(cells) < width or _shorter(table, kept)) and not _foot(own):
             yield Sorted(row, why="the file ends inside this row")
             continue
         stamps = [read_stamp(at(cells, column), order) for column in times]
         if all(stamp is not None for stamp in stamps) and not _foot(own):
             if _text_row([at(cells, column) for column in readings]):
                 yield Sorted(row, why=f"a row of text: {_first_text(own, times, table)}")
+            elif usual and (words := _out_of_line(cells, usual)):
+                yield Sorted(row, why=words, fault="row-out-of-line")
             else:
                 kept.append(row)
                 yield Sorted(row, tuple(stamp for stamp in stamps if stamp is not None))
@@ -64,7 +69,34 @@ def sort_rows(
         if row > max(kept, default=-1) and _is_statistic(table, row, kept, readings):
             yield Sorted(row, why="each number is a statistic of its column")
         else:
-            yield Sorted(row, why="numbers without a time that can be read", fault=True)
+            yield Sorted(row, why="numbers without a time that can be read", fault="not-a-time")
+
+
+def _shorter(table: Table, kept: Sequence[int]) -> bool:
+    """Whether the last cell of the file has fewer decimals than it has in every other row, or is alone."""
+    tails = []
+    for row in (*kept, len(table.page.rows) - 1):
+        cells = table.page.rows[row]
+        text = clean(cells[-1]) if cells and isinstance(cells[-1], str) else ""
+        tails.append(len(re.split(r"[.,]", text)[-1]) if re.search(r"\d[.,]\d*$", text) else 0)
+    return tails[-1] < min(tails[:-1], default=1_000)
+
+
+def _usual_length(table: Table) -> int:
+    """The number of cells of most rows of a text table; 0 for a workbook, where no cell can shift."""
+    if not table.page.lines:
+        return 0
+    rows = table.page.rows[table.first : table.last]
+    lengths = Counter(len(cells) for cells in rows if len(cells) > 1 and not _foot(cells))
+    return lengths.most_common(1)[0][0] if lengths else 0
+
+
+def _out_of_line(cells: Sequence[Raw], usual: int) -> str:
+    """Why a row of readings is not in line with the others: a delimiter is missing or too many; else nothing."""
+    filled = max((number for number, cell in enumerate(cells, start=1) if not blank(cell)), default=0)
+    if len(cells) < usual or filled > usual:
+        return f"{max(filled, len(cells))} cells, {usual} in most rows"
+    return ""
 
 
 def _foot(cells: Sequence[Raw]) -> bool:

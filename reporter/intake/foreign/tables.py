@@ -66,7 +66,9 @@ def is_numberlike(value: Raw) -> bool:
 
 def blank(value: Raw) -> bool:
     """Whether nothing stands in a cell."""
-    return value is None or (isinstance(value, str) and not clean(value))
+    if isinstance(value, str):
+        return not value or not (value[0].isalnum() or clean(value))
+    return value is None
 
 
 def at(row: Sequence[Raw], column: int) -> Raw:

@@ -150,8 +150,11 @@ def _clock(text: str) -> Stamp | None:
         hour = hour % 12 + (12 if match[5].lower() == "p" else 0)
     if minute > 59 or second > 59 or hour > 24 or (hour == 24 and (minute or second)):
         return None
+    offset = _offset(match[6])
+    if offset is not None and abs(offset) > timedelta(hours=14):
+        return None
     parts = timedelta(hours=hour, minutes=minute, seconds=second, microseconds=int((match[4] or "0").ljust(6, "0")))
-    return Stamp(None, parts, _offset(match[6]))
+    return Stamp(None, parts, offset)
 
 
 def _offset(text: str | None) -> timedelta | None:

@@ -98,7 +98,7 @@ def stamp_of(text: str) -> str:
 
 def basis_of(text: str) -> str:
     """``dry`` or ``wet`` as a header says it; empty where it says neither, or both."""
-    words = folded(without_correction(folded(text))[0]).replace("/", " ").split()
+    words = re.sub(r"\d+ ?sec\b", " ", folded(without_correction(folded(text))[0])).replace("/", " ").split()
     said = {basis for basis, names in _table()["basis"].items() for name in names if name in words}
     said |= {unit.moisture.value for unit in units_in(text) if unit.moisture is not None}
     return said.pop() if len(said) == 1 else ""
@@ -126,7 +126,7 @@ def units_in(text: str) -> tuple[ReadUnit, ...]:
 
 def _units_of(piece: str) -> list[ReadUnit]:
     rest = re.sub(r"@\s*\d+(?:[.,]\d+)?\s*%?\s*(?:O2|02)?", " ", piece, flags=re.IGNORECASE)
-    rest = re.sub(r"\d+(?:[.,]\d+)?\s*%\s*(?:O2|02|oxygen)?", " ", rest, flags=re.IGNORECASE)
+    rest = re.sub(r"(?<![A-Za-z0-9])(?!02)\d+(?:[.,]\d+)?\s*%\s*(?:O2|02|oxygen)?", " ", rest, flags=re.IGNORECASE)
     words = re.sub(r"(?<=[A-Za-z0-9])%", " %", rest).replace("_", " ").split()
     found = []
     for length in (3, 2, 1):

@@ -12,7 +12,7 @@ from reporter.output.view.calibrations import calibrations
 from reporter.output.view.checklist import checklist
 from reporter.output.view.closing import cautions, references, statements
 from reporter.output.view.combustion import combustion
-from reporter.output.view.cover import cover, is_draft, report_number, revision, signatures
+from reporter.output.view.cover import cover, mark, report_number, revision, signatures
 from reporter.output.view.desk import Desk
 from reporter.output.view.documents import Document, documents
 from reporter.output.view.inputs import inputs
@@ -24,6 +24,7 @@ from reporter.output.view.runs import runs
 from reporter.output.view.sample import sample, sample_lead, sample_run
 from reporter.output.view.source import location, process
 from reporter.output.view.traces import traces
+from reporter.synthetic import stamped
 
 __all__ = ["Document", "View", "build_view"]
 
@@ -66,10 +67,10 @@ def build_view(
     rows = register(desk)
     test = outcome.record.test
     return View(
-        title=f"{desk.words('title.report')}, {test.unit_tested.value}, {test.facility.value}",
+        title=stamped(outcome.record, f"{desk.words('title.report')}, {test.unit_tested.value}, {test.facility.value}"),
         language="en",
         page="Letter" if outcome.record.system is System.US else "A4",
-        draft_mark=desk.words("status.draft_mark") if is_draft(desk) else "",
+        draft_mark=mark(desk),
         report_number=report_number(desk),
         revision=revision(desk),
         input_hash=outcome.record.source.sha256[:_HASH_SHOWN],

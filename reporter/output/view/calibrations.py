@@ -6,8 +6,9 @@ from collections.abc import Sequence
 
 from reporter.outcome import CalibrationPoint
 from reporter.output.numbers import day, formulas, moment, period, shortest, unit_text
-from reporter.output.view.desk import Desk, aligned, entered, gas_name, group_row, said
+from reporter.output.view.desk import Desk, entered, gas_name, said
 from reporter.output.view.model import AnyCell, Block, Column, Row, Table
+from reporter.output.view.tabular import aligned, group_row
 from reporter.record import Cylinder
 
 _LEVELS = ("zero", "low", "mid", "high", "NO2")

@@ -8,10 +8,11 @@ from reporter.ledger import Entry
 from reporter.outcome import RunResult
 from reporter.output.charts import DiagramPoint, FactorBand, FuelLine, OxygenDiagram, oxygen_diagram
 from reporter.output.numbers import formulas
-from reporter.output.view.desk import Desk, aligned
+from reporter.output.view.desk import Desk
 from reporter.output.view.model import Block, Column, Picture, Row, Table
 from reporter.output.view.runs import layout, rows_table, unit_and_basis
 from reporter.output.view.standing import DAGGER, dagger
+from reporter.output.view.tabular import aligned
 
 #: Percent oxygen of dry air: in physics, and as the methods print it (the fuel factor's range).
 _OXYGEN_OF_AIR, _OXYGEN_PRINTED = 20.95, 20.9

@@ -6,6 +6,7 @@ from reporter.output.numbers import day
 from reporter.output.view.desk import Desk, said
 from reporter.output.view.model import Cover, Item, Signature
 from reporter.record import Test
+from reporter.synthetic import STAMP, is_synthetic, stamped
 
 
 def cover(desk: Desk) -> Cover:
@@ -26,6 +27,7 @@ def cover(desk: Desk) -> Cover:
 
 def _items(desk: Desk, test: Test, missing: str) -> tuple[Item, ...]:
     rows = (
+        (STAMP.capitalize(), said(test.synthetic) if is_synthetic(desk.outcome.record) else ""),
         ("Stack", said(test.stack)),
         ("Permit", said(test.permit_number, missing)),
         ("Authority", test.authority.value),
@@ -74,6 +76,11 @@ def revision(desk: Desk) -> str:
 def is_draft(desk: Desk) -> bool:
     """Whether the report is a draft: unless its status was entered as final."""
     return said(desk.outcome.record.test.status, "draft") != "final"
+
+
+def mark(desk: Desk) -> str:
+    """What stands on every page: that the report is a draft, that the test is synthetic; nothing for neither."""
+    return stamped(desk.outcome.record, desk.words("status.draft_mark") if is_draft(desk) else "")
 
 
 def status(desk: Desk) -> str:

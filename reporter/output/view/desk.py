@@ -18,7 +18,7 @@ from reporter.ledger import Entry, FromCells, FromEquation, FromTable
 from reporter.outcome import Outcome
 from reporter.output.numbers import decimals_in, fixed, formulas, shortest, shown, unit_text
 from reporter.output.phrases import Phrases
-from reporter.output.view.model import AnyCell, Cell, Column, Heading, Row, Shown, Table
+from reporter.output.view.model import AnyCell, Heading, Shown
 from reporter.quantities import label_of, quantity_of, table
 from reporter.record import Channel, Real, Record, Run, Text
 from reporter.typeset import text_formula
@@ -267,47 +267,3 @@ def entered(value: Real | None, missing: str) -> str:
 def said(value: Text | None, missing: str = "") -> str:
     """An entered text, or what stands for a missing one."""
     return missing if value is None or not value.value.strip() else value.value
-
-
-def aligned(made: Table) -> Table:
-    """The table with each number padded to the most decimals of its column."""
-    most = [0] * len(made.columns)
-    for row in made.rows:
-        for index, cell in enumerate(row.cells):
-            if isinstance(cell, Shown):
-                most[index] = max(most[index], cell.decimals)
-    rows = tuple(replace(row, cells=_padded(row.cells, most)) for row in made.rows)
-    return replace(made, rows=rows)
-
-
-def _padded(cells: Sequence[AnyCell], most: Sequence[int]) -> tuple[AnyCell, ...]:
-    return tuple(
-        replace(cell, pad=_pad(cell, most[index])) if isinstance(cell, Shown) else cell
-        for index, cell in enumerate(cells)
-    )
-
-
-def _pad(cell: Shown, most: int) -> str:
-    """The class that makes up for missing decimals, and for a closing bracket (``k``)."""
-    bracket = "k" if cell.text.endswith("]") else ""
-    if cell.decimals == most:
-        return "kp0" if bracket else ""
-    return f"{bracket}{'p' if cell.decimals else 'q'}{most - cell.decimals}"
-
-
-def simple_table(titles: Sequence[str], rows: Sequence[Sequence[str]], widths: Sequence[float]) -> Table:
-    """A table of texts."""
-    columns = tuple(Column(title, width=width) for title, width in zip(titles, widths, strict=True))
-    return Table(columns, tuple(Row(tuple(row)) for row in rows))
-
-
-def filled(made: Table) -> Table:
-    """A table of texts without the columns in which nothing stands."""
-    kept = [at for at in range(len(made.columns)) if any(row.cells[at] for row in made.rows)]
-    rows = tuple(replace(row, cells=tuple(row.cells[at] for at in kept)) for row in made.rows)
-    return replace(made, columns=tuple(made.columns[at] for at in kept), rows=rows)
-
-
-def group_row(text: str, span: int) -> Row:
-    """A row that names the group of rows below it."""
-    return Row((Cell(text, strong=True, span=span),), style="group")

@@ -10,9 +10,10 @@ from reporter.ledger import FromEquation
 from reporter.outcome import Comparison, RunState
 from reporter.output.charts import Bar, ComparisonBars, comparison_strip
 from reporter.output.numbers import counted, day, decimals_in, formulas, shortest, significant, unit_text
-from reporter.output.view.desk import CARRIED, Desk, aligned, entered, fuel_words, gas_name, said
+from reporter.output.view.desk import CARRIED, Desk, entered, fuel_words, gas_name, said
 from reporter.output.view.model import AnyCell, Cell, Column, Item, LimitsView, LimitView, Picture, Row, Shown, Table
 from reporter.output.view.route import factor_route
+from reporter.output.view.tabular import aligned
 from reporter.record import Limit, Run, text_of
 
 _YES = "yes"

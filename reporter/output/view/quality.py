@@ -216,24 +216,25 @@ def _block(desk: Desk, title: str, checks: Sequence[Check]) -> Block:
 
 
 def _cells(desk: Desk, checks: Sequence[Check], *, bound: bool) -> list[Cell]:
-    """One cell per check: what was checked, a tab, its value and whether it is met."""
+    """One cell per check: what was checked, its value, whether it is met; below, a difference that decides."""
     texts = []
     for check in checks:
         name = _row_name(check)
         if bound:
             name += f", {_relation(desk, check)} {desk.number_text(check.bound)}"
+        more = ""
         if needs_alternative(desk, check):
-            name += f", {desk.words('criterion.difference')} {desk.number_text(check.difference)}"
-        texts.append((name, desk.number_text(check.value, unit=False), check))
-    widest = max(len(value) for _, value, _ in texts)
+            more = f"\n{desk.words('criterion.difference')} {desk.number_text(check.difference)}"
+        texts.append((name, desk.number_text(check.value, unit=False), check, more))
+    widest = max(len(value) for _, value, *_ in texts)
     return [
         Cell(
             f"{name}\t{value.rjust(widest, FIGURE_SPACE)}\u2002"
-            f"{desk.words('criterion.met' if check.met else 'criterion.not_met')}",
+            f"{desk.words('criterion.met' if check.met else 'criterion.not_met')}{more}",
             to=check.value,
             strong=not check.met,
         )
-        for name, value, check in texts
+        for name, value, check, more in texts
     ]
 
 
@@ -246,7 +247,7 @@ def needs_alternative(desk: Desk, check: Check) -> bool:
 def _row_name(check: Check) -> str:
     particulars = check.title.partition(",")[2].strip()
     if len(check.runs) > 1:
-        particulars = f"{particulars.rpartition(', ')[0]}, between runs {' and '.join(check.runs)}"
+        particulars = f"{particulars.rpartition(', ')[0]}, between runs {'–'.join(check.runs)}"
     return formulas(", ".join(part for part in (gas_name(check.gas), particulars) if part))
 
 

@@ -12,8 +12,9 @@ from reporter.gases import find_gas
 from reporter.ledger import Entry
 from reporter.outcome import RunResult, RunState
 from reporter.output.numbers import day, formulas, moment, period, unit_text
-from reporter.output.view.desk import Desk, aligned, channel_name, gas_name, group_row, said
+from reporter.output.view.desk import Desk, channel_name, gas_name, said
 from reporter.output.view.model import AnyCell, Block, Cell, Column, Row, Shown, Table
+from reporter.output.view.tabular import aligned, group_row
 from reporter.resources import templates_folder
 
 #: Runs beside each other in one table.

@@ -78,6 +78,10 @@ def summary_too(made: Any) -> None:
     made["Summary"].append(["1", START, 24.6, 4.5])
 
 
+def typed_parts(made: Any) -> None:
+    rows_on(made.active, ("Date", "Time", *HEADERS[1:]), rows=[(t.date(), t.time(), *v) for t, *v in TRUTH])
+
+
 def percent_cells(made: Any) -> None:
     rows_on(made.active, rows=[(t, n, c, o / 100) for t, n, c, o in TRUTH])
     for row in range(2, 14):
@@ -160,7 +164,7 @@ SHAPES: dict[str, Shape] = {
     "workbook": book(lambda made: rows_on(made.active)),
     "workbook with title": book(lambda made: rows_on(made.active, top=4)),
     "merged headers": book(merged),
-    "hidden row": book(hidden_row),
+    "hidden row": book(hidden_row, notes=frozenset({"hidden-read"})),
     "hidden sheet": book(hidden_sheet, {**END, "hidden-sheets": "leave out"}),
     "runs stacked": book(stacked),
     "runs side by side": book(beside),
@@ -169,6 +173,11 @@ SHAPES: dict[str, Shape] = {
     "serials 1900": book(serials),
     "serials 1904": book(serials_1904),
     "numbers as text": book(lambda made: rows_on(made.active, rows=[(t, *map(str, v)) for t, *v in TRUTH])),
+    "date and time cells": book(typed_parts),
+    "header on each page": Shape(
+        changed("\n2026-04-20 10:01", "\n" + ",".join(HEADERS) + "\n2026-04-20 10:01"),
+    ),
+    "quoted decimal comma": csv(show=lambda v: '"' + comma(v) + '"'),
     "no gas": Shape(b"Time,Load\n2026-04-20 09:55,3\n", problem="no-readings-table"),
     "empty": Shape(b"  \n", problem="no-readings-table"),
     "old workbook": Shape(b"\xd0\xcf\x11\xe0\xa1\xb1\x1a\xe1" + bytes(504), "a.xls", problem="old-workbook"),

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import importlib
 import io
 import json
 import shutil
@@ -41,6 +42,15 @@ def test_the_results_are_those_of_the_workbook() -> None:
         assert second[key] == pytest.approx(value, rel=1e-12, abs=0.0), key
     assert [c.is_met for c in one.comparisons] == [c.is_met for c in two.comparisons]
     assert one.comparisons
+
+
+def test_the_committed_folder_is_what_the_script_makes(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.syspath_prepend(str(ROOT / "sample_inputs"))
+    made = importlib.import_module("make_samples").logger_day()
+    assert set(made) == {path.name for path in DAY.iterdir()}
+    for name, content in made.items():
+        if not name.endswith(".xlsx"):
+            assert (DAY / name).read_bytes() == content
 
 
 def test_every_input_is_named_with_its_hash() -> None:
