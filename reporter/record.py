@@ -548,6 +548,11 @@ class Record:
     sources: tuple[SourceFile, ...] = ()
 
     @property
+    def inputs(self) -> tuple[SourceFile, ...]:
+        """Every file the test was read from: the field workbook, and the loggers' files of a folder."""
+        return self.sources or (self.source,)
+
+    @property
     def system(self) -> System:
         """The unit system of the test (US unless entered otherwise)."""
         return System(text_of(self.test.unit_system, "US"))

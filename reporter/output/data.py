@@ -55,7 +55,7 @@ def to_json(outcome: Outcome, issued: datetime, version: str) -> bytes:
         "fluebook": {"version": version, "schema": SCHEMA_ID},
         "issued": issued.isoformat(timespec="seconds"),
         "unit_system": record.system.value,
-        "inputs": [{"name": s.name, "sha256": s.sha256, "size": s.size} for s in record.sources or (record.source,)],
+        "inputs": [{"name": s.name, "sha256": s.sha256, "size": s.size} for s in record.inputs],
         "versions": {"python": platform.python_version(), **{name: installed(name) for name in _PACKAGES}},
         "test": as_entered(record.test),
         "extra": [

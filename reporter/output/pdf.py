@@ -99,8 +99,9 @@ def _attached(
     outcome: Outcome, enclosed: Mapping[str, bytes], phrases: Phrases
 ) -> tuple[tuple[str, bytes, str, str], ...]:
     """Name, content, relationship and description of each attached file."""
-    source = outcome.record.source
-    files = [(source.name, source.content, "Source", phrases("files.source"))] if source.content else []
+    files = [
+        (one.name, one.content, "Source", phrases("files.source")) for one in outcome.record.inputs if one.content
+    ]
     files += [(name, content, "Data", phrases("files.data")) for name, content in enclosed.items()]
     return tuple(files)
 

@@ -144,16 +144,17 @@ def _lines(sheet: Sheet, title: str, lines: Sequence[str], width: int) -> None:
 def write_about(sheet: Sheet, outcome: Outcome, version: str, phrases: Phrases) -> None:
     """How to read the workbook, what it was made from and by, and the statements."""
     said = words("about")
-    source = outcome.record.source
     sheet.title(said["title"])
     sheet.widths([Column("", said["width"])])
-    line = said["input_line"].format(name=source.name, size=source.size, sha256=source.sha256)
+    lines_of_inputs = [
+        said["input_line"].format(name=one.name, size=one.size, sha256=one.sha256) for one in outcome.record.inputs
+    ]
     packages = ", ".join(f"{name} {installed(name)}" for name in _PACKAGES)
     versions = f"fluebook {version}, Python {platform.python_version()}, {packages}"
     statements = ("limits", "no_decision", "review", "items", "representative", "methods")
     for title, lines in (
         (said["reading"], said["how"]),
-        (said["input"], [line]),
+        (said["input"], lines_of_inputs),
         (said["versions"], [versions]),
         (said["issued"], [sheet.book.issued.isoformat(timespec="seconds")]),
         (said["statements"], [phrases(f"statements.{name}") for name in statements]),

@@ -158,8 +158,16 @@ def _place(book: Book, lane: Lane, series: Series) -> Place:
     letter = readings.columns[readings.index(lane.name)]
     used = {time for time, _ in series.used}
     numbers = [row.row for row in readings.rows if row.time in used]
-    cells = cell_ranges(letter, numbers, book.record.source.name)
-    return Place(book.record.source.name, readings.place.sheet or "Readings", cells, lane.name)
+    whole = readings_place(book)
+    return Place(whole.file, whole.sheet, cell_ranges(letter, numbers, whole.file), lane.name)
+
+
+def readings_place(book: Book) -> Place:
+    """The file and sheet the readings came from: the field workbook's, or a logger's file of the folder."""
+    place = book.record.readings.place
+    if place.file and place.file != book.record.source.name:
+        return Place(place.file, place.sheet)
+    return Place(book.record.source.name, place.sheet or "Readings")
 
 
 def cell_ranges(letter: str, rows: Sequence[int], file: str) -> str:
@@ -220,7 +228,7 @@ def _undecided(book: Book, found: _Sorted) -> str:
 
 def _show_policies(book: Book, lane: Lane, span: Window, values: Sequence[float], found: _Sorted) -> None:
     """The mean with readings below detection at zero, half and full value, as far as their bounds are known."""
-    place = Place(book.record.source.name, book.record.readings.place.sheet or "Readings", "", lane.name)
+    place = replace(readings_place(book), field=lane.name)
     known = all(bound is not None for _, bound in found.below)
     for name, share in POLICIES.items():
         if share == 0.0 or known:
@@ -231,7 +239,7 @@ def _show_policies(book: Book, lane: Lane, span: Window, values: Sequence[float]
 
 def _lower_bound(book: Book, lane: Lane, span: Window, values: Sequence[float], over: Sequence[float | None]) -> None:
     """The mean with each reading over range at its bound, or at the highest reading where none was logged."""
-    place = Place(book.record.source.name, book.record.readings.place.sheet or "Readings", "", lane.name)
+    place = replace(readings_place(book), field=lane.name)
     known = [bound if bound is not None else max(values) for bound in over]
     whole = _enter(book, lane, lane.key(span.run, "readings.with_over_range"), [*values, *known], place)
     book.apply(run_mean, lane.key(span.run, "mean.lower_bound"), {"readings": whole})

@@ -44,7 +44,7 @@ def _items(desk: Desk, test: Test, missing: str) -> tuple[Item, ...]:
         ("Report number", report_number(desk)),
         ("Revision and status", f"{revision(desk)}, {status(desk)}"),
         ("Issued", issued(desk)),
-        ("Field workbook", f"{desk.outcome.record.source.name}, SHA-256 {desk.outcome.record.source.sha256}"),
+        *(("Input", f"{one.name}, SHA-256 {one.sha256}") for one in desk.outcome.record.inputs),
     )
     return tuple(Item(label, text) for label, text in rows if text)
 
