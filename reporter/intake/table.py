@@ -10,7 +10,7 @@ from datetime import date, datetime, time, timedelta
 from reporter.intake.sheets import Sheet
 
 #: Caps on one table: its columns, its fields (rows by columns), the characters of one text and of all texts.
-MAX_COLUMNS, MAX_FIELDS, MAX_TEXT, MAX_TEXTS = 512, 1_200_000, 32_767, 1_000_000
+MAX_COLUMNS, MAX_FIELDS, MAX_TEXT, MAX_TEXTS = 512, 1_200_000, 32_767, 500_000
 #: What a cell may hold once it is read.
 Raw = str | float | bool | datetime | date | time | timedelta | None
 

@@ -99,9 +99,7 @@ def _attached(
     outcome: Outcome, enclosed: Mapping[str, bytes], phrases: Phrases
 ) -> tuple[tuple[str, bytes, str, str], ...]:
     """Name, content, relationship and description of each attached file."""
-    files = [
-        (one.name, one.content, "Source", phrases("files.source")) for one in outcome.record.inputs if one.content
-    ]
+    files = [(one.name, one.content, "Source", phrases("files.source")) for one in outcome.record.inputs if one.content]
     files += [(name, content, "Data", phrases("files.data")) for name, content in enclosed.items()]
     return tuple(files)
 

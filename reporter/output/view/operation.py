@@ -109,4 +109,5 @@ def _capital(text: str) -> str:
 
 
 def run_columns(runs: Sequence[Run]) -> tuple[Column, ...]:
+    """A column of numbers for each run."""
     return tuple(Column(f"Run {run.run.value}", number=True) for run in runs)
