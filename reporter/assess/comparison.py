@@ -176,6 +176,10 @@ def _measured(book: Book, made: Made, blank: Comparison, reason: str = "") -> tu
     cross = book.ledger.get(f"{made.average.entry.key}.cross_check")
     shown = replace(
         blank,
+        runs=tuple(
+            (about.run.key, entry.key, flag.key)
+            for (about, _, _), (entry, flag) in zip(made.average.runs, parts, strict=True)
+        ),
         value=value.key,
         rounded=rounded.key,
         limit_key=bound.key,

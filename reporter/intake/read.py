@@ -4,9 +4,8 @@ from __future__ import annotations
 
 import errno
 import hashlib
-import os
 from dataclasses import dataclass
-from pathlib import Path, PurePosixPath, PureWindowsPath
+from pathlib import Path
 
 from reporter.intake.build import Series, build
 from reporter.intake.gather import Gathered
@@ -14,6 +13,7 @@ from reporter.intake.guard import Finding, look_at
 from reporter.intake.jsonrecord import looks_like_json, read_json
 from reporter.intake.table import SheetTable, whole_text
 from reporter.intake.workbook import read_workbook, sheet_parts
+from reporter.paths import attachment_path
 from reporter.problems import Problem
 from reporter.record import Record, SourceFile
 
@@ -117,19 +117,3 @@ def _look_for_attachments(record: Record, folder: Path, gathered: Gathered) -> N
         name = attachment.file.value
         if attachment_path(folder, name) is None:
             gathered.add("attachment-missing", attachment.file.place, name)
-
-
-def attachment_path(folder: Path, name: str) -> Path | None:
-    """The file of an attachment beside the workbook or in a folder below it; None if there is none.
-
-    A path that leads elsewhere (absolute, upwards, or through a link) is none.
-    """
-    plain = name.replace("\\", "/")
-    if PurePosixPath(plain).is_absolute() or PureWindowsPath(name).drive or "\x00" in name:
-        return None
-    try:
-        found = (folder / plain).resolve()
-        inside = os.path.commonpath([found, folder.resolve()]) == str(folder.resolve())
-        return found if inside and found.is_file() else None
-    except (OSError, ValueError):
-        return None

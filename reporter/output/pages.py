@@ -91,13 +91,24 @@ def _chosen(name: str, overlay: Path | None) -> Path:
     return templates_folder() / name
 
 
+def _refuse_links(overlay: Path) -> None:
+    """A link in a firm's folder that leads out of it is refused: nothing outside the folder is read."""
+    whole = overlay.resolve()
+    for path in overlay.rglob("*"):
+        if path.is_symlink() and not path.resolve().is_relative_to(whole):
+            raise OutputError("a link in the templates' folder leads out of it", path.name)
+
+
 def _environment(overlay: Path | None) -> Environment:
     """Templates of the two folders alone; text is escaped; an unknown name is an error."""
-    from jinja2 import Environment, FileSystemLoader, StrictUndefined
+    from jinja2 import FileSystemLoader, StrictUndefined
+    from jinja2.sandbox import ImmutableSandboxedEnvironment
     from markupsafe import Markup
 
     folders = [templates_folder()] if overlay is None else [overlay, templates_folder()]
-    made = Environment(
+    if overlay is not None:
+        _refuse_links(overlay)
+    made = ImmutableSandboxedEnvironment(
         loader=FileSystemLoader(folders),
         autoescape=True,
         undefined=StrictUndefined,

@@ -21,9 +21,13 @@ from reporter.output.pages import elements_text, page_text, style_text, well_for
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.output.view import Document, View, build_view
 from reporter.output.view.documents import kind_of
+from reporter.paths import attachment_path
 from reporter.resources import templates_folder
 
 _BASE = "https://templates.invalid/"
+#: Largest document bound in [bytes], and picture [pixels].
+_LARGEST = 100_000_000
+_MOST_PIXELS = 60_000_000
 _VARIANT = "pdf/a-3u"
 _SHELL = "<html><head><title></title></head><body></body></html>"
 
@@ -108,15 +112,32 @@ def _document(folder: Path | None, name: str) -> Document | None:
     """A file of the Attachments sheet, only from below the folder of the field workbook."""
     if folder is None:
         return None
-    path = (folder / name).resolve()
-    if not path.is_relative_to(folder.resolve()) or not path.is_file():
+    path = attachment_path(folder, name)
+    if path is None or path.stat().st_size > _LARGEST:
         return None
     content = path.read_bytes()
-    if kind_of(content) != "pdf":
-        return Document(content, 0)
+    kind = kind_of(content)
+    if kind != "pdf":
+        return Document(content, 1 if kind and _sound_picture(content) else 0)
     from reporter.output.binding import page_count
 
     return Document(content, page_count(content))
+
+
+def _sound_picture(content: bytes) -> bool:
+    """Whether a picture can be read whole and is not larger than a page could show."""
+    from io import BytesIO
+
+    from PIL import Image
+
+    try:
+        with Image.open(BytesIO(content)) as picture:
+            if picture.width * picture.height > _MOST_PIXELS:
+                return False
+            picture.load()
+    except Exception:  # whatever a damaged picture does to its reader
+        return False
+    return True
 
 
 def _fetcher(view: View, documents: Mapping[str, Document], overlay: Path | None) -> Callable[[str], Any]:

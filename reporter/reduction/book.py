@@ -24,6 +24,7 @@ class Book:
     record: Record
     ledger: Ledger
     problems: list[Problem] = field(default_factory=list)
+    known: set[Problem] = field(default_factory=set)
     checks: list[Check] = field(default_factory=list)
     stated: list[str] = field(default_factory=list)
     findings: list[Finding] = field(default_factory=list)
@@ -107,7 +108,8 @@ class Book:
     ) -> Problem:
         """Note a problem, once."""
         made = problem(code, place, found, expected=expected, remedy=remedy, concerns=concerns)
-        if made not in self.problems:
+        if made not in self.known:
+            self.known.add(made)
             self.problems.append(made)
         return made
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from reporter.combustion.air import air_model
 from reporter.combustion.findings import FindingKind, findings
 from reporter.combustion.fuel_entries import spreads
 from reporter.combustion.run import balance_run
@@ -26,7 +27,7 @@ def balance(book: Book, about: RunBook, share: dict[str, Entry]) -> State | None
     rows = {row.fuel.value: row for row in book.record.fuels}
     burned = [rows[name] for name in share if name in rows]
     measured = about.measured
-    if not burned or not ({"o2", "co2"} & measured.keys()):
+    if not burned or not ({"o2", "co2"} & measured.keys()) or _nothing_burned(book, about):
         return None
     try:
         stem = _fuel(book, about, burned, share)
@@ -39,6 +40,18 @@ def balance(book: Book, about: RunBook, share: dict[str, Entry]) -> State | None
     _differences(book, about)
     _say(book, about, state, burned)
     return state
+
+
+def _nothing_burned(book: Book, about: RunBook) -> bool:
+    """Whether oxygen at or above that of air leaves no combustion gas to balance; said as a finding."""
+    oxygen = about.dry.get("o2") or about.measured.get("o2")
+    if oxygen is None or oxygen.value < 100.0 * air_model("physical").oxygen:
+        return False
+    name = about.run.run.value
+    words = "Oxygen at or above that of air: no combustion gas is left to balance."
+    book.findings.append(Finding(name, words, (oxygen.key,)))
+    book.trouble("impossible-balance", about.run.place, f"run {name}: oxygen {oxygen.value:.4g} %")
+    return True
 
 
 def _fuel(book: Book, about: RunBook, burned: list[FuelRow], share: dict[str, Entry]) -> str | None:

@@ -26,6 +26,8 @@ from reporter.reduction.equations import (
 )
 from reporter.reduction.fuels import Factors
 
+#: Percent oxygen of dry air in Methods 3B and 19.
+_AIR = 20.9
 _RANGE = Citation("m3b", "12.3", "Table 3B-1")
 _MIXED = Citation("m3b", "12.3.3")
 
@@ -34,6 +36,9 @@ def reduce_diluents(book: Book, about: RunBook, fuels: tuple[str, ...], factors:
     """Enter what dry oxygen and carbon dioxide give together; silent where one of them is missing."""
     oxygen, dioxide = about.dry.get("o2"), about.dry.get("co2")
     if oxygen is None or dioxide is None:
+        return
+    if oxygen.value >= _AIR:
+        book.say(f"Run {about.run.run.value}: oxygen is not below that of air; no excess air or fuel factor is stated.")
         return
     monoxide = _monoxide(book, about)
     gases = {"o2": oxygen, "co2": dioxide, "co": monoxide}

@@ -158,6 +158,8 @@ def _of_limit(book: Book, lane: Lane, limit: Limit, usual: str) -> Plan:
         )
     referenced = referenced and concentration
     by_rate = not concentration
+    if concentration and referenced and moisture is None:
+        book.say(f"Limit {limit.limit_id.value}: dry or wet is not entered; the reference correction makes it dry.")
     diluent = text_of(limit.diluent).upper()
     if not diluent:
         diluent = "CO2" if referenced and limit.reference_oxygen is None else usual if by_rate else "O2"

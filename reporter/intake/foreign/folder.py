@@ -16,10 +16,11 @@ from reporter.intake.foreign.join import join
 from reporter.intake.foreign.mapping import ENDING, Mapping, differences, load
 from reporter.intake.guard import look_at
 from reporter.intake.jsonrecord import looks_like_json
-from reporter.intake.read import ReadResult, attachment_path, read
+from reporter.intake.read import ReadResult, read
 from reporter.intake.rows import Filled, RowReader
 from reporter.intake.sheets import find_sheet
 from reporter.intake.workbook import sheet_parts
+from reporter.paths import attachment_path
 from reporter.problems import Grade, Place, Problem, problem
 from reporter.record import Readings, SourceFile
 

@@ -15,7 +15,7 @@ _PDF = b"%PDF-"
 
 @dataclass(frozen=True, slots=True)
 class Document:
-    """A file to bind in: its bytes, and its pages where it is a PDF that can be read (else 0)."""
+    """A file to bind in: its bytes, and its pages where it can be read (one for a picture, else 0)."""
 
     content: bytes
     pages: int
@@ -52,11 +52,11 @@ def _bound(desk: Desk, letter: str, file: str, what: str, found: Document | None
         return BoundDocument(anchor, letter, file, what, "", 0, "", desk.words("missing.file"))
     digest = hashlib.sha256(found.content).hexdigest()
     kind = kind_of(found.content)
-    if kind in _PICTURES.values():
+    if kind in _PICTURES.values() and found.pages:
         return BoundDocument(anchor, letter, file, what, digest, 1, f"bound/{letter}.{kind}", "")
     if kind == "pdf" and found.pages:
         return BoundDocument(anchor, letter, file, what, digest, found.pages, "", "")
-    remark = desk.words("missing.unreadable" if kind == "pdf" else "missing.other_kind")
+    remark = desk.words("missing.unreadable" if kind else "missing.other_kind")
     return BoundDocument(anchor, letter, file, what, digest, 0, "", remark)
 
 
