@@ -7,7 +7,7 @@ from dataclasses import replace
 
 from reporter.gases import find_gas
 from reporter.ledger import FromEquation
-from reporter.outcome import Comparison, RunState
+from reporter.outcome import Comparison, RunResult, RunState
 from reporter.output.charts import Bar, ComparisonBars, comparison_strip
 from reporter.output.numbers import counted, day, decimals_in, formulas, shortest, significant, unit_text
 from reporter.output.view.desk import CARRIED, Desk, entered, fuel_words, gas_name, said
@@ -19,6 +19,8 @@ from reporter.record import Limit, Run, text_of
 _YES = "yes"
 #: Significant digits of an average before it is rounded.
 _DIGITS = 6
+#: Runs beside each other in one table.
+_ACROSS = 5
 _RELATIONS = {"at most": "at_most", "less than": "less_than", "at least": "at_least"}
 
 
@@ -27,7 +29,11 @@ def limits(desk: Desk) -> LimitsView:
     made = desk.outcome.comparisons
     if not made:
         return LimitsView(None, (), desk.words("lead.no_limits"))
-    return LimitsView(_table(desk), tuple(_limit(desk, comparison) for comparison in made), desk.words("lead.summary"))
+    runs = desk.outcome.runs
+    groups = [runs[start : start + _ACROSS] for start in range(0, len(runs), _ACROSS)] or [runs]
+    first, *rest = [_table(desk, some, with_average=at == 0) for at, some in enumerate(groups)]
+    views = tuple(_limit(desk, comparison) for comparison in made)
+    return LimitsView(first, views, desk.words("lead.summary"), tuple(rest))
 
 
 def relation_words(desk: Desk, comparison: Comparison) -> str:
@@ -77,39 +83,42 @@ def _limit(desk: Desk, comparison: Comparison) -> LimitView:
     )
 
 
-def _table(desk: Desk) -> Table:
+def _table(desk: Desk, runs: Sequence[RunResult], *, with_average: bool) -> Table:
     """One column per run, then average, rounded, limit, margin; load and fuel of the runs at the foot."""
-    runs = desk.outcome.runs
     columns = [Column("", width=2.6)]
     columns += [Column(f"Run {run.run.run.value}", number=True) for run in runs]
-    columns += [Column(title, number=True) for title in ("Average", "Rounded", "Limit", "Margin")]
+    ends = ("Average", "Rounded", "Limit", "Margin") if with_average else ()
+    columns += [Column(title, number=True) for title in ends]
     rows: list[Row] = []
     for comparison in desk.outcome.comparisons:
-        rows += _rows(desk, comparison, len(columns))
+        rows += _rows(desk, comparison, runs, with_average=with_average)
     load, fuel = Cell("Load", strong=True), Cell("Fuel", strong=True)
-    rows.append(Row((load, *(_load(desk, run.run) for run in runs), Cell("", span=4)), style="foot"))
+    rest = (Cell("", span=len(ends)),) if ends else ()
+    rows.append(Row((load, *(_load(desk, run.run) for run in runs), *rest), style="foot"))
     fuels = [fuel_words(desk.outcome.record, run.run) or desk.missing for run in runs]
     same = len(set(fuels)) == 1
-    rows.append(Row((fuel, Cell(fuels[0], span=len(runs) + 4)) if same else (fuel, *fuels, Cell("", span=4))))
+    rows.append(Row((fuel, Cell(fuels[0], span=len(runs) + len(ends))) if same else (fuel, *fuels, *rest)))
     return aligned(Table(tuple(columns), tuple(rows)))
 
 
-def _rows(desk: Desk, comparison: Comparison, columns: int) -> list[Row]:
+def _rows(desk: Desk, comparison: Comparison, some: Sequence[RunResult], *, with_average: bool) -> list[Row]:
     limit = comparison.limit
     unit = unit_text(limit.unit.value.unit)
     of_run = {segment: (key, at) for at, (segment, key, _) in enumerate(comparison.runs)}
-    runs = [run.key for run in desk.outcome.runs]
+    runs = [run.key for run in some]
+    columns = 1 + len(runs) + (4 if with_average else 0)
     words = f"{limit.limit_id.value}: {relation_words(desk, comparison)}"
     ledger = desk.outcome.ledger
     measured: list[AnyCell] = [f"{gas_name(limit.pollutant.value)} [{unit}]"]
     measured += desk.row([ledger.get(of_run[run][0]) if run in of_run else None for run in runs])
-    measured += _compared(desk, comparison)
+    measured += _compared(desk, comparison) if with_average else []
     rows = [Row((Cell(words, strong=True, span=columns),), style="group"), Row(tuple(measured))]
     counts = [_counts(desk, comparison, of_run[run][1]) if run in of_run else "" for run in runs]
     if any(count != _YES for count in counts):
         held = desk.averaged(comparison.value)
         of = desk.words("limit.average_of", runs=desk.run_names(held)) if held else ""
-        rows.append(Row((desk.words("limit.counts"), *counts, Cell(of, span=4))))
+        rest = (Cell(of, span=4),) if with_average else ()
+        rows.append(Row((desk.words("limit.counts"), *counts, *rest)))
     return rows
 
 

@@ -154,11 +154,12 @@ class LimitView:
 
 @dataclass(frozen=True, slots=True)
 class LimitsView:
-    """All limits: one table of runs, averages and margins, and what was entered for each."""
+    """All limits: a table of runs, averages and margins, more for many runs, and what was entered for each."""
 
     table: Table | None
     limits: tuple[LimitView, ...]
     lead: str
+    more: tuple[Table, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
