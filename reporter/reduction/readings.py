@@ -122,7 +122,8 @@ def reduce_readings(book: Book, lane: Lane, span: Window) -> Series:
         return _with_mean(book, lane, span, series, found)
     if found.over:
         words = f"run {span.run.run.value}: all readings are over range"
-        book.trouble("over-range-in-run", place, words, concerns=(lane.key(span.run, "mean"),))
+        where = _over_place(book, lane, found)
+        book.trouble("over-range-in-run", where, words, concerns=(lane.key(span.run, "mean"),))
     return series
 
 
@@ -162,6 +163,16 @@ def _place(book: Book, lane: Lane, series: Series) -> Place:
     return Place(whole.file, whole.sheet, cell_ranges(letter, numbers, whole.file), lane.name)
 
 
+def _over_place(book: Book, lane: Lane, found: _Sorted) -> Place:
+    """The cells of the readings over range."""
+    readings = book.record.readings
+    times = {time for time, reading, _ in found.left if reading.kind is ReadingKind.OVER}
+    rows = [row.row for row in readings.rows if row.time in times]
+    whole = readings_place(book)
+    cells = cell_ranges(readings.columns[readings.index(lane.name)], rows, whole.file)
+    return Place(whole.file, whole.sheet, cells, lane.name)
+
+
 def readings_place(book: Book) -> Place:
     """The file and sheet the readings came from: the field workbook's, or a logger's file of the folder."""
     place = book.record.readings.place
@@ -180,7 +191,8 @@ def cell_ranges(letter: str, rows: Sequence[int], file: str) -> str:
             parts.append((row, row))
     if file.lower().endswith(".json"):
         return ";".join(f"/{first}/{letter} to /{last}/{letter}" for first, last in parts)
-    return ";".join(f"{letter}{first}:{letter}{last}" for first, last in parts) or letter
+    ranges = (f"{letter}{a}" if a == b else f"{letter}{a}:{letter}{b}" for a, b in parts)
+    return ";".join(ranges) or letter
 
 
 def _implausible(book: Book, lane: Lane, span: Window, place: Place, found: _Sorted) -> None:
@@ -210,7 +222,8 @@ def _with_mean(book: Book, lane: Lane, span: Window, series: Series, found: _Sor
     if found.over:
         _lower_bound(book, lane, span, _counted(values, found.below, 0.0) if undecided else values, found.over)
         words = f"run {run.run.value}: {len(found.over)} reading(s) over range; the mean is a lower bound"
-        book.trouble("over-range-in-run", place, words, concerns=(lane.key(run, "mean"),))
+        where = _over_place(book, lane, found)
+        book.trouble("over-range-in-run", where, words, concerns=(lane.key(run, "mean"),))
     elif not undecided:
         book.apply(run_mean, lane.key(run, "mean"), {"readings": entry})
     return series
