@@ -18,7 +18,7 @@ from reporter.assess.pipeline import assess
 from reporter.errors import UnreadableError
 from reporter.intake import ReadResult, read
 from reporter.outcome import Outcome
-from reporter.problems import Grade, Problem
+from reporter.problems import Problem
 from reporter.version import VERSION
 
 __all__ = [
@@ -203,9 +203,3 @@ def report(
     )
     write_all({places[suffix]: content for suffix, content in files.items()})
     return Report(name_of(source), tuple(places[suffix] for suffix in files), outcome)
-
-
-def grade_of(problems: tuple[Problem, ...]) -> Grade | None:
-    """The gravest grade among problems."""
-    order = (Grade.UNREADABLE, Grade.BLOCKS, Grade.NOTE)
-    return next((grade for grade in order if any(p.grade is grade for p in problems)), None)
