@@ -13,6 +13,7 @@ from contextlib import contextmanager
 from dataclasses import dataclass
 from datetime import UTC, datetime
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from reporter.assess.pipeline import assess
 from reporter.errors import UnreadableError
@@ -20,6 +21,9 @@ from reporter.intake import ReadResult, read
 from reporter.outcome import Outcome
 from reporter.problems import Problem
 from reporter.version import VERSION
+
+if TYPE_CHECKING:
+    from reporter.output.renderer import PageRenderer
 
 __all__ = [
     "ReadResult",
@@ -115,6 +119,7 @@ def report_files(
     folder: Path | None = None,
     templates: Path | None = None,
     minute_data: bool = False,
+    renderer: PageRenderer | None = None,
 ) -> dict[str, bytes]:
     """The three result files in memory, by suffix: ``.json``, ``.xlsx``, ``.pdf``, in this order.
 
@@ -130,27 +135,35 @@ def report_files(
         A firm's folder that overlays the shipped templates.
     minute_data
         Print the minute readings too.
+    renderer
+        Lays the pages out; in this process where none is given.
     """
     from reporter.output.data import to_json
-    from reporter.output.pdf import PdfOptions, render_pdf
+    from reporter.output.pdf import PdfOptions, enclosures, pages_of
     from reporter.output.phrases import load_phrases
+    from reporter.output.renderer import Renderer
     from reporter.output.workbook import write_workbook
 
     stem = Path(outcome.record.source.name).stem
+    own = ".results.json" if outcome.record.source.name.lower().endswith(".json") else ".json"
+    names = f"{stem}{own}", f"{stem}.results.xlsx"
     options = PdfOptions(templates=templates, folder=folder, minute_data=minute_data)
-    with _collector_paused():
-        data = to_json(outcome, issued, VERSION)
+    with _collector_paused(at_end=renderer is None):
+        desk = Renderer() if renderer is None else renderer
+        desk.lay_out(pages_of(outcome, names, issued=issued, version=VERSION, options=options), templates)
         phrases = load_phrases(templates)
+        data = to_json(outcome, issued, VERSION)
         workbook = write_workbook(outcome, issued=issued, version=VERSION, phrases=phrases)
-        own = ".results.json" if outcome.record.source.name.lower().endswith(".json") else ".json"
-        enclosed = {f"{stem}{own}": data, f"{stem}.results.xlsx": workbook}
-        pdf = render_pdf(outcome, issued=issued, version=VERSION, enclosed=enclosed, options=options)
+        pdf = desk.finish(enclosures(outcome, dict(zip(names, (data, workbook), strict=True)), phrases))
     return {".json": data, ".xlsx": workbook, ".pdf": pdf}
 
 
 @contextmanager
-def _collector_paused() -> Iterator[None]:
-    """No garbage collection while a document is laid out: a fifth of the time for nothing found."""
+def _collector_paused(*, at_end: bool) -> Iterator[None]:
+    """No garbage collection while a document is made: a fifth of the time for nothing found.
+
+    It is made up for at the end where the boxes of the document were laid out here.
+    """
     import gc
 
     was_on = gc.isenabled()
@@ -160,7 +173,8 @@ def _collector_paused() -> Iterator[None]:
     finally:
         if was_on:
             gc.enable()
-            gc.collect()
+            if at_end:
+                gc.collect()
 
 
 def report(
@@ -171,6 +185,7 @@ def report(
     templates: str | Path | None = None,
     minute_data: bool = False,
     mapping: str | Path | None = None,
+    renderer: PageRenderer | None = None,
 ) -> Report:
     """Read, assess and write NAME.json, NAME.xlsx and NAME.pdf into a folder.
 
@@ -200,6 +215,7 @@ def report(
         folder=folder,
         templates=None if templates is None else Path(templates),
         minute_data=minute_data,
+        renderer=renderer,
     )
     write_all({places[suffix]: content for suffix, content in files.items()})
     return Report(name_of(source), tuple(places[suffix] for suffix in files), outcome)

@@ -16,6 +16,7 @@ from typing import TYPE_CHECKING, TextIO
 from reporter.version import VERSION
 
 if TYPE_CHECKING:
+    from reporter.output.renderer import PageRenderer
     from reporter.tasks import Task
 
 OK, WITHHELD, USAGE, UNREADABLE, UNWRITTEN = 0, 1, 2, 3, 4
@@ -141,6 +142,16 @@ def _map(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
 
 
 def _report(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
+    from reporter.output.renderer_process import renderer_beside
+
+    if given.templates is not None and not given.templates.is_dir():
+        print(f"fluebook: --templates: there is no folder {given.templates}", file=err)
+        return USAGE
+    with renderer_beside() as renderer:
+        return _reported(given, renderer, out, err)
+
+
+def _reported(given: argparse.Namespace, renderer: PageRenderer | None, out: TextIO, err: TextIO) -> int:
     from reporter.api import issue_time, name_of
     from reporter.tasks import ReportOptions, report_input
 
@@ -154,10 +165,7 @@ def _report(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
     if twice:
         print(f"fluebook: two inputs of one name would overwrite each other: {', '.join(twice)}", file=err)
         return USAGE
-    if given.templates is not None and not given.templates.is_dir():
-        print(f"fluebook: --templates: there is no folder {given.templates}", file=err)
-        return USAGE
-    options = ReportOptions(given.templates, given.minute_data, given.mapping)
+    options = ReportOptions(given.templates, given.minute_data, given.mapping, renderer)
     return _each(given.inputs, lambda path: report_input(path, given.out, issued, options), out, err)
 
 

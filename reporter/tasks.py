@@ -7,11 +7,15 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import datetime
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from reporter.cli import OK, UNREADABLE, UNWRITTEN, WITHHELD
 from reporter.errors import OutputError, UnreadableError
 from reporter.outcome import Outcome
 from reporter.problems import Grade, Problem
+
+if TYPE_CHECKING:
+    from reporter.output.renderer import PageRenderer
 
 
 @dataclass(frozen=True, slots=True)
@@ -28,11 +32,13 @@ class Task:
 
 @dataclass(frozen=True, slots=True)
 class ReportOptions:
-    """How a report is made: a firm's templates, the logged readings too, the mapping of logger files."""
+    """How a report is made: a firm's templates, the logged readings too, the mapping of logger files, what lays
+    the pages out."""
 
     templates: Path | None = None
     minute_data: bool = False
     mapping: Path | None = None
+    renderer: PageRenderer | None = None
 
 
 def check_input(path: Path, mapping: Path | None = None) -> Task:
@@ -72,6 +78,7 @@ def report_input(path: Path, out: Path, issued: datetime, options: ReportOptions
             templates=options.templates,
             minute_data=options.minute_data,
             mapping=options.mapping,
+            renderer=options.renderer,
         )
         files = ", ".join(file.name for file in made.files)
         return _assessed(path, made.outcome, f"{brief(made.outcome)}\n  Written: {files}", "written")

@@ -1,8 +1,11 @@
-"""Links of table cells and anchors of rows, put into the laid-out report without a box or style of their own.
+"""Links of table cells, anchors of rows and numbers of pages, put into the laid-out report.
 
 Each element with an ``id`` has a style of its own, and so has everything in it: in a report with hundreds of
 keys that is most of the time of the layout.  Elements carry ``data-key`` (an anchor) and ``data-to`` (a link)
 instead; where they came to stand is read from the laid-out pages.
+
+The number of the page of an anchor is known when all pages are laid out.  An element with ``data-page`` (that anchor)
+keeps room for it by figure spaces at its end, so that no page is laid out a second and a third time for its numbers.
 """
 
 from __future__ import annotations
@@ -13,13 +16,16 @@ from typing import Any
 #: One CSS pixel in points.
 _POINT = 0.75
 
+#: The room kept for one digit of the number of a page.
+_DIGIT = "\u2007"
+
 Rectangle = tuple[float, float, float, float]
 #: Page number, key and rectangle of each linked cell.
 CellLinks = list[tuple[int, str, Rectangle]]
 
 
 def settle(document: Any, places: Mapping[str, str]) -> CellLinks:
-    """Make every key an anchor of its page, and tell where the linked cells are.
+    """Make every key an anchor of its page, write the numbers of pages, and tell where the linked cells are.
 
     Parameters
     ----------
@@ -39,7 +45,22 @@ def settle(document: Any, places: Mapping[str, str]) -> CellLinks:
                 page.anchors.update(dict.fromkeys((anchor, *sharing.get(anchor, ())), rectangle))
             if target:
                 links.append((number, target, rectangle))
+    _number(document)
     return links
+
+
+def _number(document: Any) -> None:
+    """Write the numbers of pages into the room kept for them; the texts are set in type when they are painted."""
+    pages = {anchor: number for number, page in enumerate(document.pages, start=1) for anchor in page.anchors}
+    for page in document.pages:
+        for box in page._page_box.descendants():
+            layout = getattr(box, "pango_layout", None)
+            if layout is None or not layout.text.endswith(_DIGIT):
+                continue
+            number = pages.get(box.element.get("data-page") or "")
+            if number is not None:
+                before = layout.text.rstrip(_DIGIT)
+                layout.text = box.text = before + str(number).rjust(len(layout.text) - len(before), _DIGIT)
 
 
 def _carriers(page: Any) -> Iterator[tuple[Any, Rectangle]]:

@@ -7,6 +7,7 @@ from datetime import datetime
 
 from reporter.equation import System
 from reporter.outcome import Outcome
+from reporter.output.numbers import FIGURE_SPACE
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.output.view.calibrations import calibrations
 from reporter.output.view.checklist import checklist
@@ -29,6 +30,8 @@ from reporter.synthetic import stamped
 __all__ = ["Document", "View", "build_view"]
 
 _HASH_SHOWN = 12
+#: With so many pages of documents and readings, a page number may have three digits; rows of readings on a page.
+_MANY_PAGES, _ROWS_A_PAGE = 40, 50
 
 
 def build_view(
@@ -66,6 +69,7 @@ def build_view(
     calculation = sample(desk, run)
     rows = register(desk)
     test = outcome.record.test
+    more = sum(one.pages for one in bound) + len(outcome.record.readings.rows) // _ROWS_A_PAGE * minute_data
     return View(
         title=stamped(outcome.record, f"{desk.words('title.report')}, {test.unit_tested.value}, {test.facility.value}"),
         language="en",
@@ -89,6 +93,7 @@ def build_view(
         cautions=cautions(desk),
         statements=statements(desk, attached),
         places=dict(desk.places),
+        page_room=FIGURE_SPACE * (2 if more < _MANY_PAGES else 3),
     )
 
 

@@ -320,7 +320,7 @@ class Signature:
 
 @dataclass(frozen=True, slots=True)
 class View:
-    """Everything the report shows."""
+    """Everything the report shows.  `page_room` is the white space that is kept for the number of a page."""
 
     title: str
     language: str
@@ -344,3 +344,4 @@ class View:
     cautions: tuple[str, ...]
     statements: tuple[str, ...]
     places: Mapping[str, str]
+    page_room: str
