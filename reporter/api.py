@@ -138,11 +138,9 @@ def report_files(
     renderer
         Lays the pages out; in this process where none is given.
     """
-    from reporter.output.data import to_json
     from reporter.output.pdf import PdfOptions, enclosures, pages_of
     from reporter.output.phrases import load_phrases
     from reporter.output.renderer import Renderer
-    from reporter.output.workbook import write_workbook
 
     stem = Path(outcome.record.source.name).stem
     own = ".results.json" if outcome.record.source.name.lower().endswith(".json") else ".json"
@@ -151,6 +149,9 @@ def report_files(
     with _collector_paused(at_end=renderer is None):
         desk = Renderer() if renderer is None else renderer
         desk.lay_out(pages_of(outcome, names, issued=issued, version=VERSION, options=options), templates)
+        from reporter.output.data import to_json  # loaded while another process lays the pages out
+        from reporter.output.workbook import write_workbook
+
         phrases = load_phrases(templates)
         data = to_json(outcome, issued, VERSION)
         workbook = write_workbook(outcome, issued=issued, version=VERSION, phrases=phrases)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 from datetime import datetime
+from functools import cache
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -47,6 +48,13 @@ def page_text(view: View, phrases: Phrases, issued: datetime, overlay: Path | No
         where = f"{getattr(error, 'name', '') or 'template'}, line {getattr(error, 'lineno', '?')}"
         raise OutputError(f"the templates cannot be filled in: {error}", where) from None
     return _FORBIDDEN.sub("\ufffd", text)
+
+
+def load_templates() -> None:
+    """Compile the shipped templates, which is most of the time of filling them in."""
+    environment = _environment(None)
+    for name in environment.list_templates(["html"]):
+        environment.get_template(name)
 
 
 def style_text(overlay: Path | None) -> str:
@@ -99,8 +107,17 @@ def _refuse_links(overlay: Path) -> None:
             raise OutputError("a link in the templates' folder leads out of it", path.name)
 
 
+@cache
+def _shipped() -> Environment:
+    return _made(None)
+
+
 def _environment(overlay: Path | None) -> Environment:
     """Templates of the two folders alone; text is escaped; an unknown name is an error."""
+    return _shipped() if overlay is None else _made(overlay)
+
+
+def _made(overlay: Path | None) -> Environment:
     from jinja2 import FileSystemLoader, StrictUndefined
     from jinja2.sandbox import ImmutableSandboxedEnvironment
     from markupsafe import Markup

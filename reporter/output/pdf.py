@@ -11,10 +11,9 @@ from datetime import datetime
 from pathlib import Path
 
 from reporter.outcome import Outcome
-from reporter.output.pages import page_text
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.output.renderer import Enclosure, Pages, Renderer
-from reporter.output.view import Document, build_view
+from reporter.output.view.build import Document, build_view
 from reporter.output.view.documents import kind_of
 from reporter.paths import attachment_path
 
@@ -84,8 +83,8 @@ def pages_of(outcome: Outcome, results: Sequence[str], *, issued: datetime, vers
         minute_data=options.minute_data,
     )
     return Pages(
-        page_text(view, phrases, issued, options.templates),
-        view.places,
+        view,
+        phrases,
         issued,
         {one.picture: documents[one.file].content for one in view.documents if one.picture},
         {

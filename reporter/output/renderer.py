@@ -17,7 +17,9 @@ from typing import Any, Protocol
 from reporter.errors import OutputError
 from reporter.output.linking import CellLinks, add_links, settle
 from reporter.output.packing import pack
-from reporter.output.pages import elements_text, style_text, well_formed
+from reporter.output.pages import elements_text, load_templates, page_text, style_text, well_formed
+from reporter.output.phrases import Phrases
+from reporter.output.view.model import View
 from reporter.resources import templates_folder
 
 _BASE = "https://templates.invalid/"
@@ -39,11 +41,11 @@ class Enclosure:
 
 @dataclass(frozen=True, slots=True)
 class Pages:
-    """All that is laid out: the HTML, the anchor of each key, pictures by name, and the PDF documents bound in
+    """All that is laid out: the view and the fixed phrases, pictures by name, and the PDF documents bound in
     (content and number of pages) by anchor."""
 
-    text: str
-    places: Mapping[str, str]
+    view: View
+    phrases: Phrases
     issued: datetime
     pictures: Mapping[str, bytes] = field(default_factory=dict)
     bound: Mapping[str, tuple[bytes, int]] = field(default_factory=dict)
@@ -60,19 +62,32 @@ class PageRenderer(Protocol):
 
 
 class Renderer:
-    """The renderer in this process."""
+    """The renderer in this process.  Style sheets and fonts are read once and serve every document."""
 
     def __init__(self) -> None:
+        self._styles: dict[Path | None, _Style] = {}
         self._pages: Pages | None = None
         self._document: Any = None
         self._links: CellLinks = []
 
+    def warm_up(self) -> None:
+        """Load the renderer, the fonts and the templates."""
+        load_templates()
+        self._laid_out(_FIRST, {}, None).write_pdf(pdf_variant=_VARIANT, pdf_tags=True)
+
     def lay_out(self, pages: Pages, overlay: Path | None) -> None:
         """Lay the pages out."""
-        with _said_plainly():
-            self._document = _laid_out(pages.text, style_text(overlay), _reader(pages.pictures, overlay))
-        self._links = settle(self._document, pages.places)
+        text = page_text(pages.view, pages.phrases, pages.issued, overlay)
+        self._document = self._laid_out(text, pages.pictures, overlay)
+        self._links = settle(self._document, pages.view.places)
         self._pages = pages
+
+    def _laid_out(self, text: str, pictures: Mapping[str, bytes], overlay: Path | None) -> Any:
+        with _said_plainly():
+            style = self._styles.get(overlay)
+            if style is None:
+                style = self._styles[overlay] = _Style(overlay)
+            return style.lay_out(text, pictures)
 
     def finish(self, enclosed: Sequence[Enclosure]) -> bytes:
         """Paint the pages."""
@@ -106,11 +121,6 @@ class Renderer:
         with _said_plainly():
             made = document.write_pdf(finisher=last, pdf_variant=_VARIANT, pdf_tags=True, attachments=attachments)
         return bytes(made)
-
-
-def warm_up() -> None:
-    """Load the renderer and the fonts."""
-    _laid_out(_FIRST, style_text(None), _reader({}, None)).write_pdf(pdf_variant=_VARIANT, pdf_tags=True)
 
 
 def _reader(pictures: Mapping[str, bytes], overlay: Path | None) -> Callable[[str], bytes]:
@@ -159,30 +169,49 @@ def _said_plainly() -> Iterator[None]:
         raise OutputError(str(cause or error), getattr(cause, "place", "")) from None
 
 
-def _laid_out(text: str, style: str, read: Callable[[str], bytes]) -> Any:
-    from cssselect2 import ElementWrapper
-    from weasyprint import CSS, HTML
-    from weasyprint.text.fonts import FontConfiguration
+def _fetcher(pictures: Mapping[str, bytes], overlay: Path | None) -> Any:
     from weasyprint.urls import URLFetcher, URLFetcherResponse
+
+    read = _reader(pictures, overlay)
 
     class TemplatesOnly(URLFetcher):  # type: ignore[misc]
         def fetch(self, url: str, headers: Any = None) -> Any:
             kind = mimetypes.guess_type(url)[0] or "application/octet-stream"
             return URLFetcherResponse(url, read(url), {"Content-Type": kind})
 
-    class Report(HTML):  # type: ignore[misc]
-        def __init__(self) -> None:
-            super().__init__(string=text if root is None else _SHELL, base_url=_BASE, url_fetcher=fetcher)
-            if root is not None:
-                self.wrapper_element = ElementWrapper.from_html_root(root)
-                self.etree_element = root
+    return TemplatesOnly(fail_on_errors=True)
 
-        def _ua_stylesheets(self, forms: bool = False) -> list[Any]:
-            """The few rules the templates need; the usual ones style six pseudo-elements of every element."""
-            return [CSS(string=elements_text(), base_url=_BASE, url_fetcher=fetcher)]
 
-    root = well_formed(text)
-    fetcher = TemplatesOnly(fail_on_errors=True)
-    fonts = FontConfiguration()
-    sheet = CSS(string=style, base_url=_BASE, url_fetcher=fetcher, font_config=fonts)
-    return Report().render(stylesheets=[sheet], font_config=fonts, pdf_variant=_VARIANT, pdf_tags=True)
+class _Style:
+    """The style sheets of a template folder and the fonts they name, read once."""
+
+    def __init__(self, overlay: Path | None) -> None:
+        from weasyprint import CSS
+        from weasyprint.text.fonts import FontConfiguration
+
+        fetcher = _fetcher({}, overlay)
+        self._overlay = overlay
+        self._fonts = FontConfiguration()
+        self._sheet = CSS(string=style_text(overlay), base_url=_BASE, url_fetcher=fetcher, font_config=self._fonts)
+        self._elements = CSS(string=elements_text(), base_url=_BASE, url_fetcher=fetcher)
+
+    def lay_out(self, text: str, pictures: Mapping[str, bytes]) -> Any:
+        """The laid-out pages of an HTML text."""
+        from cssselect2 import ElementWrapper
+        from weasyprint import HTML
+
+        root, elements = well_formed(text), self._elements
+        fetcher = _fetcher(pictures, self._overlay)
+
+        class Report(HTML):  # type: ignore[misc]
+            def __init__(self) -> None:
+                super().__init__(string=text if root is None else _SHELL, base_url=_BASE, url_fetcher=fetcher)
+                if root is not None:
+                    self.wrapper_element = ElementWrapper.from_html_root(root)
+                    self.etree_element = root
+
+            def _ua_stylesheets(self, forms: bool = False) -> list[Any]:
+                """The few rules the templates need; the usual ones style six pseudo-elements of every element."""
+                return [elements]
+
+        return Report().render(stylesheets=[self._sheet], font_config=self._fonts, pdf_variant=_VARIANT, pdf_tags=True)

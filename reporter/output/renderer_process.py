@@ -119,12 +119,12 @@ def _serve(messages: IO[bytes], answers: IO[bytes]) -> None:
     """Answer messages until there are no more."""
     import gc
 
-    from reporter.output.renderer import Renderer, warm_up
+    from reporter.output.renderer import Renderer
 
     gc.disable()
     _answer(answers, _READY)
-    warm_up()
     renderer, fault = Renderer(), None
+    renderer.warm_up()
     while True:
         kind, *values = pickle.load(messages)
         try:

@@ -20,7 +20,7 @@ from reporter.outcome import Outcome
 from reporter.output.pages import page_text, rich, well_formed
 from reporter.output.pdf import PdfOptions, render_pdf
 from reporter.output.phrases import load_phrases
-from reporter.output.view import build_view
+from reporter.output.view.build import build_view
 from reporter.record import Given
 from tests.output.conftest import ENCLOSED, ISSUED
 from tests.output.test_phrases import FORBIDDEN

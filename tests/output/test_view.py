@@ -13,7 +13,7 @@ import pytest
 from reporter.ledger import FromEquation
 from reporter.outcome import Outcome
 from reporter.output.phrases import load_phrases
-from reporter.output.view import Document, View, build_view
+from reporter.output.view.build import Document, View, build_view
 from reporter.output.view.desk import Desk
 from reporter.output.view.model import CheckRow, Shown, Source
 from reporter.output.view.register import pattern
