@@ -153,6 +153,10 @@ class LoggedColumn:
             rows=self.rows[where], source=source,
         )  # fmt: skip
 
+    def numbers(self, where: Where) -> list[float | None]:
+        """The numbers and bounds at some positions, None where a reading has none."""
+        return [None if value != value else value for value in self.values[where].tolist()]
+
     def reading(self, index: int) -> Reading:
         """One reading."""
         value = float(self.values[index])

@@ -121,6 +121,11 @@ class Readings:
         """The readings of a channel as arrays."""
         return self.logged.columns[self.index(channel)]
 
+    def sources(self, index: int) -> tuple[Place, ...]:
+        """Where the readings of the column of an index stand: file, sheet, and the letter of its column."""
+        letter = self.columns[index] if self.columns else ""
+        return self.logged.columns[index].sources or (Place(self.place.file, self.place.sheet, letter),)
+
 
 @dataclass(frozen=True, slots=True)
 class ExtraItem:
