@@ -7,6 +7,7 @@ ledger takes them up, so that each conversion is an entry of its own.  A value t
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass, field
 from datetime import date, datetime
 from enum import Enum
@@ -15,6 +16,10 @@ from typing import Generic, TypeVar
 from reporter.equation import System
 from reporter.errors import RecordError
 from reporter.ledger import slug
+from reporter.logged import LoggedColumn, LoggedRows, Moments
+from reporter.logged import Reading as Reading
+from reporter.logged import ReadingKind as ReadingKind
+from reporter.logged import ReadingRow as ReadingRow
 from reporter.problems import Place
 from reporter.units import ReadUnit
 
@@ -81,48 +86,45 @@ class When(Enum):
     AFTER = "after"
 
 
-class ReadingKind(Enum):
-    """What one cell of the Readings sheet holds."""
-
-    NUMBER = "number"
-    BLANK = "blank"
-    NOT_DETECTED = "not detected"
-    BELOW = "below a stated value"
-    OVER = "over range"
-    CALIBRATION = "calibration"
-    ERROR = "error value"
-
-
-@dataclass(frozen=True, slots=True)
-class Reading:
-    """One logged value: its kind, the number (or the bound of ``<x`` and ``>x``), and the raw text."""
-
-    kind: ReadingKind
-    value: float | None
-    text: str
-
-
-@dataclass(frozen=True, slots=True)
-class ReadingRow:
-    """One logged interval: its time stamp, the row it stands in, one reading per channel."""
-
-    time: datetime
-    row: int
-    readings: tuple[Reading, ...]
-
-
 @dataclass(frozen=True, slots=True)
 class Readings:
-    """The logged series: channel names, their columns' letters, and rows in time order."""
+    """The logged series: channel names, their columns' letters, and rows in time order.
+
+    `rows` may be given as plain rows; they are kept by column (`reporter.logged`).
+    """
 
     channels: tuple[str, ...]
     columns: tuple[str, ...]
-    rows: tuple[ReadingRow, ...]
+    rows: Sequence[ReadingRow]
     place: Place = field(default_factory=Place)
+
+    def __post_init__(self) -> None:
+        if not isinstance(self.rows, LoggedRows):
+            object.__setattr__(self, "rows", LoggedRows.of(self.rows, len(self.channels)))
 
     def index(self, channel: str) -> int:
         """The column index of a channel."""
         return self.channels.index(channel)
+
+    @property
+    def logged(self) -> LoggedRows:
+        """The rows as they are kept: by column."""
+        assert isinstance(self.rows, LoggedRows)
+        return self.rows
+
+    @property
+    def times(self) -> Moments:
+        """The time stamps, ascending."""
+        return self.logged.times
+
+    def column(self, channel: str) -> LoggedColumn:
+        """The readings of a channel as arrays."""
+        return self.logged.columns[self.index(channel)]
+
+    def sources(self, index: int) -> tuple[Place, ...]:
+        """Where the readings of the column of an index stand: file, sheet, and the letter of its column."""
+        letter = self.columns[index] if self.columns else ""
+        return self.logged.columns[index].sources or (Place(self.place.file, self.place.sheet, letter),)
 
 
 @dataclass(frozen=True, slots=True)

@@ -6,12 +6,15 @@ from collections.abc import Mapping, Sequence
 from datetime import date, datetime, timedelta
 from itertools import pairwise
 
+import numpy as np
+
 from reporter.basis import ACTUAL, Moisture
 from reporter.intake.gather import Gathered
 from reporter.intake.rows import Filled, with_value
 from reporter.intake.sheets import Kind, Sheet, fold
 from reporter.intake.table import MAX_TEXT, MAX_TEXTS, SheetTable
 from reporter.ledger import slug
+from reporter.logged import Moments
 from reporter.record import Readings
 
 Rows = Sequence[Filled]
@@ -158,32 +161,37 @@ def runs_with_readings(
     `seconds` is the logging interval (the usual step between readings if None), `at_start` whether a stamp names
     its start.
     """
-    times = [row.time for row in readings.rows]
+    times = readings.times
     step = timedelta(seconds=seconds if seconds is not None else usual_step(readings) or 60.0)
     lead, tail = (timedelta(0), step) if at_start else (step, timedelta(0))
     for row in rows:
         start, end = row.values.get("start"), row.values.get("end")
         if start is None or end is None or end.value <= start.value:
             continue
-        if any(start.value + lead <= moment <= end.value - tail for moment in times):
+        if _any_within(times, start.value + lead, end.value - tail):
             continue
         found = f"run {row.text('run')} from {start.value:%Y-%m-%d %H:%M} to {end.value:%Y-%m-%d %H:%M}"
-        stamped = any(start.value <= moment <= end.value for moment in times)
+        stamped = _any_within(times, start.value, end.value)
         why = f"no whole interval of {step.total_seconds():g} s" if stamped else _span(times)
         remedy = "compare the logging interval on the sheet Test with the times of the readings" if stamped else ""
         gathered.add("run-without-readings", row.place, f"{found}; {why}", remedy=remedy)
 
 
-def _span(times: Sequence[datetime]) -> str:
-    if not times:
+def _any_within(times: Moments, first: datetime, last: datetime) -> bool:
+    """Whether a time stamp lies in a span, its ends included."""
+    return bool(np.any((times >= np.datetime64(first, "us")) & (times <= np.datetime64(last, "us"))))
+
+
+def _span(times: Moments) -> str:
+    if not len(times):
         return "no readings"
-    return f"readings from {times[0]:%Y-%m-%d %H:%M} to {times[-1]:%Y-%m-%d %H:%M}"
+    return f"readings from {times[0].item():%Y-%m-%d %H:%M} to {times[-1].item():%Y-%m-%d %H:%M}"
 
 
 def usual_step(readings: Readings) -> float | None:
     """The usual step between readings in seconds; None where there are not two."""
-    steps = sorted((b.time - a.time).total_seconds() for a, b in pairwise(readings.rows))
-    return steps[len(steps) // 2] if steps else None
+    steps = np.sort(np.diff(readings.times)).astype(np.int64) / 1e6
+    return float(steps[len(steps) // 2]) if len(steps) else None
 
 
 def logging_interval(readings: Readings, seconds: float | None, gathered: Gathered) -> None:

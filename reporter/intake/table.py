@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-import math
 import re
 from dataclasses import dataclass
 from datetime import date, datetime, time, timedelta
 
 from reporter.intake.sheets import Sheet
+from reporter.logged import plain_number as plain_number
 
 #: Caps on one table: its columns, its fields (rows by columns), the characters of one text and of all texts.
 MAX_COLUMNS, MAX_FIELDS, MAX_TEXT, MAX_TEXTS = 512, 1_200_000, 32_767, 500_000
@@ -99,13 +99,6 @@ def clean(text: str) -> str:
 def whole_text(text: str) -> str:
     """Text that can be written anywhere: halves of characters become question marks."""
     return text.encode("utf-8", "replace").decode("utf-8")
-
-
-def plain_number(value: float) -> str:
-    """A number as it would be typed: up to 15 digits, no exponent where it can be avoided."""
-    if math.isfinite(value) and value == int(value) and abs(value) < 1e15:
-        return str(int(value))
-    return f"{value:.15g}"
 
 
 def show(value: Raw) -> str:

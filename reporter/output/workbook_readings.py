@@ -10,6 +10,7 @@ from datetime import datetime
 from xlsxwriter.utility import xl_range_abs
 
 from reporter.ledger import Entry
+from reporter.logged import KINDS
 from reporter.outcome import Outcome, Series
 from reporter.output.numbers import unit_text
 from reporter.output.workbook_book import Book, Column, Sheet
@@ -75,7 +76,7 @@ def write_readings(book: Book, sheet: Sheet, outcome: Outcome) -> None:
 
 def _shape(outcome: Outcome, lane: Lane) -> str:
     """A number format with as many decimals as the logger wrote, at most six."""
-    texts = (row.readings[lane.index].text for row in outcome.record.readings.rows)
+    texts = outcome.record.readings.column(lane.name).texts
     decimals = max((len(text.partition(".")[2]) for text in texts if _NUMBER.fullmatch(text)), default=0)
     return "0." + "0" * min(decimals, 6) if decimals else "0"
 
@@ -103,7 +104,7 @@ def _lane(outcome: Outcome, name: str) -> Lane:
     channel = outcome.record.channel(name)
     readings = outcome.record.readings
     lane = Lane(name, channel.unit.value.unit, readings.index(name))
-    rows = {row.time: number for number, row in enumerate(readings.rows)}
+    rows = {time: number for number, time in enumerate(readings.times.tolist())}
     for series in _series(outcome):
         if series.channel == name and series.used and series.key in outcome.ledger:
             lane.place(series.key, _window(outcome.ledger[series.key], series, rows))
@@ -146,17 +147,19 @@ def _runs(outcome: Outcome) -> dict[datetime, dict[str, None]]:
 def _reasons(outcome: Outcome) -> dict[datetime, tuple[str, ...]]:
     """By time: what was left out of a mean and why, and what was counted as another number than logged."""
     said = words("readings")
-    rows = {row.time: row for row in outcome.record.readings.rows}
+    readings = outcome.record.readings
+    rows = {time: number for number, time in enumerate(readings.times.tolist())}
     found: dict[datetime, dict[str, None]] = {}
     for series in _series(outcome):
-        index = outcome.record.readings.index(series.channel)
+        column = readings.column(series.channel)
+        counted = {number for number, kind in enumerate(column.kinds.tolist()) if KINDS[kind] is not ReadingKind.NUMBER}
         for time, _, reason in series.left_out:
             text = said["left_out"].format(channel=series.channel, reason=reason)
             found.setdefault(time, {})[text] = None
         for time, value in series.used:
-            reading = rows[time].readings[index]
-            if reading.kind is not ReadingKind.NUMBER:
-                text = said["counted"].format(channel=series.channel, text=reading.text, value=value)
+            if rows[time] in counted:
+                written = column.texts[rows[time]]
+                text = said["counted"].format(channel=series.channel, text=written, value=value)
                 found.setdefault(time, {})[text] = None
     return {time: tuple(texts) for time, texts in found.items()}
 

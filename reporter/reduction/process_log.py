@@ -10,7 +10,7 @@ from reporter.ledger import FromCells, slug
 from reporter.problems import Place
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
-from reporter.reduction.readings import cell_ranges
+from reporter.reduction.places import cell_ranges
 
 
 @equation(

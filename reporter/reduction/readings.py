@@ -2,21 +2,25 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field, replace
 from datetime import datetime
+
+import numpy as np
 
 from reporter.basis import AS_MEASURED, NO_VOLUME, Basis, Moisture
 from reporter.conversions import converted
 from reporter.equation import Citation, Value, constant, equation
 from reporter.functions import count
 from reporter.ledger import Entry, FromCells
+from reporter.logged import KINDS, Counts, Moments, Where
 from reporter.methods.method_7e import run_mean
 from reporter.outcome import Series
 from reporter.problems import Place
 from reporter.record import MoistureBasis, Reading, ReadingKind, text_of
 from reporter.reduction.book import Book, Lane
 from reporter.reduction.channel_units import channel_standard, is_mass
+from reporter.reduction.places import cells_of, readings_place
 from reporter.reduction.window import Window, missing_minutes
 from reporter.units import dimension
 
@@ -88,13 +92,15 @@ class _Sorted:
     """The readings of a window by what they are.
 
     `below` holds position and bound of each reading below detection (None: no bound is known), `over` the bound
-    of each reading over range (None: none was logged).
+    of each reading over range (None: none was logged); `used_at` and `over_at` are positions in the series.
     """
 
     used: list[tuple[datetime, float]] = field(default_factory=list)
     left: list[tuple[datetime, Reading, str]] = field(default_factory=list)
     below: list[tuple[int, float | None]] = field(default_factory=list)
     over: list[float | None] = field(default_factory=list)
+    used_at: Counts = field(default_factory=lambda: np.zeros(0, dtype=np.int64))
+    over_at: Counts = field(default_factory=lambda: np.zeros(0, dtype=np.int64))
 
 
 def reduce_readings(book: Book, lane: Lane, span: Window) -> Series:
@@ -104,95 +110,62 @@ def reduce_readings(book: Book, lane: Lane, span: Window) -> Series:
     reading below detection needs an entered policy, else the mean at zero, half and full value is shown.
     """
     found = _sort(book, lane, span)
-    readings = book.record.readings
-    rows = [readings.rows[index].row for index, *_ in span.rows]
+    rows = book.record.readings.column(lane.name).rows[span.at]
     series = Series(
         key=lane.key(span.run, "readings"),
         channel=lane.name,
         used=tuple(found.used),
         left_out=tuple(found.left),
-        missing_minutes=missing_minutes(span, {time for time, _ in found.used}, readings),
+        missing_minutes=missing_minutes(span, found.used_at),
         interval=span.interval,
-        first_row=min(rows, default=0),
-        last_row=max(rows, default=0),
+        first_row=int(rows.min(initial=rows[0])) if len(rows) else 0,
+        last_row=int(rows.max(initial=0)),
     )
-    place = _place(book, lane, series)
+    place = cells_of(book, lane.name, found.used_at)
     _implausible(book, lane, span, place, found)
     if found.used:
         return _with_mean(book, lane, span, series, found)
     if found.over:
         words = f"run {span.run.run.value}: all readings are over range"
-        where = _over_place(book, lane, found)
+        where = cells_of(book, lane.name, found.over_at)
         book.trouble("over-range-in-run", where, words, concerns=(lane.key(span.run, "mean"),))
     return series
 
 
 def _sort(book: Book, lane: Lane, span: Window) -> _Sorted:
-    readings = book.record.readings
-    column = readings.index(lane.name)
-    found = _Sorted()
-    for index, _begin, _end, reason in span.rows:
-        row = readings.rows[index]
-        reading = row.readings[column]
-        if reason:
-            found.left.append((row.time, reading, reason))
-        elif reading.kind is ReadingKind.NUMBER and reading.value is not None:
-            found.used.append((row.time, reading.value))
-        elif reading.kind in {ReadingKind.NOT_DETECTED, ReadingKind.BELOW}:
-            bound = reading.value if reading.value is not None else _detection_limit(lane)
-            found.below.append((len(found.used), bound))
-            found.used.append((row.time, bound or 0.0))
-        else:
-            if reading.kind is ReadingKind.OVER:
-                found.over.append(reading.value)
-            found.left.append((row.time, reading, reading.kind.value))
-    return found
+    column = book.record.readings.column(lane.name).take(span.at)
+    times, kept = book.record.readings.times[span.at], span.excluded == 0
+    numbers = column.is_kind(ReadingKind.NUMBER) & ~np.isnan(column.values)
+    below = column.is_kind(ReadingKind.NOT_DETECTED, ReadingKind.BELOW)
+    used = np.flatnonzero(kept & (numbers | below))
+    over = np.flatnonzero(kept & column.is_kind(ReadingKind.OVER))
+    limit = _detection_limit(lane)
+    bounds = [limit if value is None else value for value in column.numbers(used[below[used]])]
+    values = column.values[used]
+    values[below[used]] = [bound or 0.0 for bound in bounds]
+    left = [
+        (time, column.reading(at), span.reasons[span.excluded[at]] or KINDS[column.kinds[at]].value)
+        for at, time in _timed(times, ~(kept & (numbers | below)))
+    ]
+    return _Sorted(
+        used=list(zip(times[used].tolist(), values.tolist(), strict=True)),
+        left=left,
+        below=list(zip(np.flatnonzero(below[used]).tolist(), bounds, strict=True)),
+        over=column.numbers(over),
+        used_at=span.at[used],
+        over_at=span.at[over],
+    )
+
+
+def _timed(times: Moments, where: Where) -> Iterator[tuple[int, datetime]]:
+    """Positions and time stamps where a condition holds."""
+    at = np.flatnonzero(where)
+    return zip(at.tolist(), times[at].tolist(), strict=True)
 
 
 def _detection_limit(lane: Lane) -> float | None:
     limit = lane.channel.detection_limit
     return None if limit is None else limit.value
-
-
-def _place(book: Book, lane: Lane, series: Series) -> Place:
-    readings = book.record.readings
-    letter = readings.columns[readings.index(lane.name)]
-    used = {time for time, _ in series.used}
-    numbers = [row.row for row in readings.rows if row.time in used]
-    whole = readings_place(book)
-    return Place(whole.file, whole.sheet, cell_ranges(letter, numbers, whole.file), lane.name)
-
-
-def _over_place(book: Book, lane: Lane, found: _Sorted) -> Place:
-    """The cells of the readings over range."""
-    readings = book.record.readings
-    times = {time for time, reading, _ in found.left if reading.kind is ReadingKind.OVER}
-    rows = [row.row for row in readings.rows if row.time in times]
-    whole = readings_place(book)
-    cells = cell_ranges(readings.columns[readings.index(lane.name)], rows, whole.file)
-    return Place(whole.file, whole.sheet, cells, lane.name)
-
-
-def readings_place(book: Book) -> Place:
-    """The file and sheet the readings came from: the field workbook's, or a logger's file of the folder."""
-    place = book.record.readings.place
-    if place.file and place.file != book.record.source.name:
-        return Place(place.file, place.sheet)
-    return Place(book.record.source.name, place.sheet or "Readings")
-
-
-def cell_ranges(letter: str, rows: Sequence[int], file: str) -> str:
-    """The cells of some rows of a column as ranges, e.g. ``B149:B175;B179:B211``; JSON pointers in a JSON record."""
-    parts: list[tuple[int, int]] = []
-    for row in rows:
-        if parts and row == parts[-1][1] + 1:
-            parts[-1] = (parts[-1][0], row)
-        else:
-            parts.append((row, row))
-    if file.lower().endswith(".json"):
-        return ";".join(f"/{first}/{letter} to /{last}/{letter}" for first, last in parts)
-    ranges = (f"{letter}{a}" if a == b else f"{letter}{a}:{letter}{b}" for a, b in parts)
-    return ";".join(ranges) or letter
 
 
 def _implausible(book: Book, lane: Lane, span: Window, place: Place, found: _Sorted) -> None:
@@ -205,7 +178,7 @@ def _implausible(book: Book, lane: Lane, span: Window, place: Place, found: _Sor
 
 
 def _with_mean(book: Book, lane: Lane, span: Window, series: Series, found: _Sorted) -> Series:
-    run, place = span.run, _place(book, lane, series)
+    run, place = span.run, cells_of(book, lane.name, found.used_at)
     values = [value for _, value in series.used]
     undecided = _undecided(book, found)
     if found.below and not undecided:
@@ -222,7 +195,7 @@ def _with_mean(book: Book, lane: Lane, span: Window, series: Series, found: _Sor
     if found.over:
         _lower_bound(book, lane, span, _counted(values, found.below, 0.0) if undecided else values, found.over)
         words = f"run {run.run.value}: {len(found.over)} reading(s) over range; the mean is a lower bound"
-        where = _over_place(book, lane, found)
+        where = cells_of(book, lane.name, found.over_at)
         book.trouble("over-range-in-run", where, words, concerns=(lane.key(run, "mean"),))
     elif not undecided:
         book.apply(run_mean, lane.key(run, "mean"), {"readings": entry})

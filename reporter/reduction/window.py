@@ -2,17 +2,17 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from dataclasses import dataclass
 from datetime import datetime, timedelta
-from itertools import pairwise
-from statistics import median
 
+import numpy as np
+
+from reporter.logged import Counts, Moments, Where
 from reporter.outcome import Exclusion
-from reporter.record import Event, Readings, Run, text_of
+from reporter.record import Event, Run, text_of
 from reporter.reduction.book import Book
 
-_MINUTE = timedelta(minutes=1)
+_MINUTE, _MICROSECOND = timedelta(minutes=1), timedelta(microseconds=1)
 
 
 def logging_interval(book: Book) -> timedelta:
@@ -21,9 +21,8 @@ def logging_interval(book: Book) -> timedelta:
     if entered is not None:
         unit = entered.unit.unit if entered.unit is not None else "min"
         return timedelta(seconds=entered.value * {"s": 1.0, "min": 60.0, "h": 3600.0}[unit])
-    rows = book.record.readings.rows
-    steps = [(b.time - a.time).total_seconds() for a, b in pairwise(rows)]
-    step = median(steps) if steps else 60.0
+    steps = np.diff(book.record.readings.times).astype(np.int64) / 1e6
+    step = float(np.median(steps)) if len(steps) else 60.0
     book.say(f"The logging interval was not entered; {step:g} s is the median step of the time stamps.")
     return timedelta(seconds=step)
 
@@ -38,10 +37,17 @@ def stamps_interval_start(book: Book) -> bool:
 
 @dataclass(frozen=True, slots=True)
 class Window:
-    """The rows of one run, each with the interval it covers and the reason it is excluded ('' if it is not)."""
+    """The readings of one run.
+
+    `at` are their positions in the series, `begin` where the interval of each begins, `excluded` the position in
+    `reasons` of why it is left out (0, the empty reason, where it is not).
+    """
 
     run: Run
-    rows: tuple[tuple[int, datetime, datetime, str], ...]
+    at: Counts
+    begin: Moments
+    excluded: Counts
+    reasons: tuple[str, ...]
     exclusions: tuple[Exclusion, ...]
     interval: timedelta
 
@@ -49,22 +55,17 @@ class Window:
 def window(book: Book, run: Run) -> Window:
     """The rows of the readings that lie in a run, with the events that exclude some of them."""
     interval = logging_interval(book)
-    at_start = stamps_interval_start(book)
+    times, length = book.record.readings.times, np.timedelta64(interval, "us")
+    begin = times if stamps_interval_start(book) else times - length
+    at = np.flatnonzero((begin >= _stamp(run.start.value)) & (begin + length <= _stamp(run.end.value)))
+    begin = begin[at]
     excluding = [event for event in book.record.events if _excludes(event, run)]
-    tally = {id(event): 0 for event in excluding}
-    rows: list[tuple[int, datetime, datetime, str]] = []
-    for index, row in enumerate(book.record.readings.rows):
-        begin = row.time if at_start else row.time - interval
-        end = begin + interval
-        if begin < run.start.value or end > run.end.value:
-            continue
-        reason = ""
-        for event in excluding:
-            if begin < _until(event, interval) and end > event.time.value:
-                reason = text_of(event.reason) or event.what.value
-                tally[id(event)] += 1
-                break
-        rows.append((index, begin, end, reason))
+    excluded = np.zeros(len(at), dtype=np.int64)
+    for number, event in enumerate(excluding, start=1):
+        inside = (begin < _stamp(_until(event, interval))) & (begin + length > _stamp(event.time.value))
+        excluded[inside & (excluded == 0)] = number
+    tally = {id(event): int(np.count_nonzero(excluded == n)) for n, event in enumerate(excluding, start=1)}
+    reasons = ("", *(text_of(event.reason) or event.what.value for event in excluding))
     exclusions = tuple(
         Exclusion(
             run=run.key,
@@ -80,7 +81,7 @@ def window(book: Book, run: Run) -> Window:
         if event.until is None and tally[id(event)]:
             moment = f"{event.time.value:%H:%M}"
             book.say(f"The event at {moment} ({event.what.value}) has no end; one logging interval is left out.")
-    return Window(run, tuple(rows), exclusions, interval)
+    return Window(run, at, begin, excluded, reasons, exclusions, interval)
 
 
 def _until(event: Event, interval: timedelta) -> datetime:
@@ -96,32 +97,41 @@ def _excludes(event: Event, run: Run) -> bool:
     return inside and (event.run is None or event.run.value == run.run.value)
 
 
-def missing_minutes(span: Window, used: set[datetime], readings: Readings) -> tuple[datetime, ...]:
+def missing_minutes(span: Window, used: Counts) -> tuple[datetime, ...]:
     """Each clock minute of the run without a valid reading, excluded periods counted too.
 
     A reading of up to a minute belongs to the minute its middle lies in, a longer one to every minute whose
-    middle it covers; a minute only partly in the run is content with any reading that touches it.
+    middle it covers; a minute only partly in the run is content with any reading that touches it.  `used` are
+    positions in the series.
     """
     start, stop = span.run.start.value, span.run.end.value
-    valid = [(begin, end) for index, begin, end, _ in span.rows if readings.rows[index].time in used]
-    owned = {minute for begin, end in valid for minute in _minutes_of(begin, end)}
-    touched = {minute for begin, end in valid for minute in _minutes(begin, end)}
-    return tuple(
-        minute
-        for minute in _minutes(start, stop)
-        if minute not in (owned if start <= minute and minute + _MINUTE <= stop else touched)
-    )
+    origin = start.replace(second=0, microsecond=0)
+    count = -((origin - stop) // _MINUTE)
+    begin = (span.begin[np.isin(span.at, used)] - _stamp(origin)).astype(np.int64)
+    end = begin + span.interval // _MICROSECOND
+    minute = _MINUTE // _MICROSECOND
+    if span.interval <= _MINUTE:
+        middle = (begin + (span.interval / 2) // _MICROSECOND) // minute
+        owned = _covered(middle, middle + 1, count)
+    else:
+        owned = _covered(-((minute // 2 - begin) // minute), -((minute // 2 - end) // minute), count)
+    touched = _covered(begin // minute, -(-end // minute), count)
+    found = []
+    for number in range(count):
+        at = origin + number * _MINUTE
+        whole = start <= at and at + _MINUTE <= stop
+        if not (owned if whole else touched)[number]:
+            found.append(at)
+    return tuple(found)
 
 
-def _minutes(begin: datetime, end: datetime) -> Iterator[datetime]:
-    minute = begin.replace(second=0, microsecond=0)
-    while minute < end:
-        yield minute
-        minute += _MINUTE
+def _covered(first: Counts, last: Counts, count: int) -> Where:
+    """Which of a number of minutes lie in any of some spans of minutes, ends not included."""
+    edges = np.zeros(count + 1, dtype=np.int64)
+    np.add.at(edges, np.clip(first, 0, count), 1)
+    np.add.at(edges, np.clip(last, 0, count), -1)
+    return np.cumsum(edges)[:count] > 0
 
 
-def _minutes_of(begin: datetime, end: datetime) -> Iterator[datetime]:
-    if end - begin <= _MINUTE:
-        yield (begin + (end - begin) / 2).replace(second=0, microsecond=0)
-        return
-    yield from (minute for minute in _minutes(begin, end) if begin <= minute + _MINUTE / 2 < end)
+def _stamp(moment: datetime) -> np.datetime64:
+    return np.datetime64(moment, "us")

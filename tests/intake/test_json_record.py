@@ -19,6 +19,7 @@ from reporter.intake.schema import input_schema
 from reporter.intake.sheets import Kind
 from reporter.intake.table import Cell, SheetTable, show
 from reporter.intake.workbook import read_workbook
+from reporter.logged import LoggedRows
 from reporter.problems import Place
 from reporter.record import Given
 
@@ -67,7 +68,7 @@ def values_only(thing: Any) -> Any:
         return {
             f.name: values_only(getattr(thing, f.name)) for f in dataclasses.fields(thing) if f.name not in left_out
         }
-    if isinstance(thing, tuple):
+    if isinstance(thing, (tuple, LoggedRows)):
         return tuple(values_only(part) for part in thing)
     return thing
 

@@ -3,18 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from datetime import datetime
 from typing import Any
 
 from reporter.intake.foreign.apply import ForeignReadings
 from reporter.intake.foreign.mapping import AS_ENTERED, MappedColumn
+from reporter.intake.foreign.merge import merged
 from reporter.intake.foreign.times import zone_of
 from reporter.intake.rows import Filled
 from reporter.intake.sheets import fold
 from reporter.problems import Place, Problem, problem
-from reporter.record import Given, Reading, ReadingKind, ReadingRow, Readings
-
-_BLANK = Reading(ReadingKind.BLANK, None, "")
+from reporter.record import Given, Readings
 
 
 def join(
@@ -45,30 +43,16 @@ def join(
             words = f"no column for the channel {name!r}"
             problems.append(problem("mapping-against-channels", files[0].readings.place, words))
     _stamps(files, test, problems)
-    rows: dict[datetime, tuple[int, dict[str, Reading]]] = {}
-    clashes: dict[str, tuple[int, datetime]] = {}
-    for found, own in zip(files, taken, strict=True):
-        for row in found.readings.rows:
-            known = rows.setdefault(row.time, (row.row, {}))[1]
-            for index, name in own.items():
-                reading = row.readings[index]
-                other = known.setdefault(name, reading)
-                if (other.kind, other.value) != (reading.kind, reading.value):
-                    count, first = clashes.get(found.report.file, (0, row.time))
-                    clashes[found.report.file] = (count + 1, first)
-    for file, (count, first) in clashes.items():
-        words = f"{count} readings, the first at {first:%Y-%m-%d %H:%M:%S}"
-        problems.append(problem("readings-contradict", Place(file), words))
+    rows, clashes = merged([(found.readings, own) for found, own in zip(files, taken, strict=True)], names)
+    for number, clash in clashes.items():
+        words = f"{clash.count} readings, the first at {clash.first:%Y-%m-%d %H:%M:%S}"
+        problems.append(problem("readings-contradict", Place(files[number].report.file), words))
     letters: dict[str, str] = {}
     for found, own in zip(files, taken, strict=True):
         letters |= {name: found.readings.columns[i] for i, name in own.items() if found.readings.columns}
-    series = tuple(
-        ReadingRow(moment, number, tuple(known.get(name, _BLANK) for name in names))
-        for moment, (number, known) in sorted(rows.items())
-    )
     file = ", ".join(found.report.file for found in files)
     place = Place(file, files[0].readings.place.sheet)
-    return Readings(tuple(names), tuple(letters.get(name, "") for name in names), series, place), problems
+    return Readings(tuple(names), tuple(letters.get(name, "") for name in names), rows, place), problems
 
 
 def _match(found: ForeignReadings, channels: Sequence[Filled], problems: list[Problem]) -> dict[int, str]:
@@ -120,8 +104,8 @@ def _stamps(files: Sequence[ForeignReadings], test: dict[str, Any], problems: li
                 words = f"{found.time.stamp} in the mapping, {entered.value} on the sheet Test"
                 problems.append(problem("mapping-against-channels", place, words))
         zone = test.get("time_zone")
-        if found.time.zone and zone is not None and found.readings.rows:
-            moment = found.readings.rows[0].time
+        if found.time.zone and zone is not None and len(found.readings.times):
+            moment = found.readings.times[0].item()
             try:
                 same = zone_of(zone.value).utcoffset(moment) == zone_of(found.time.zone).utcoffset(moment)
             except ValueError:

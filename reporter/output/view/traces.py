@@ -39,12 +39,9 @@ def _trace(desk: Desk, channel: Channel) -> Trace | None:
     name = channel.channel.value
     if name not in readings.channels:
         return None
-    column = readings.index(name)
-    values = tuple(
-        (row.time, value)
-        for row in readings.rows
-        if row.readings[column].kind is ReadingKind.NUMBER and (value := row.readings[column].value) is not None
-    )
+    column = readings.column(name)
+    where = column.is_kind(ReadingKind.NUMBER)
+    values = tuple(zip(readings.times[where].tolist(), column.values[where].tolist(), strict=True))
     results = [(run, gas) for run in desk.outcome.runs for gas in run.gases if gas.channel is channel]
     series = next((gas.series for _, gas in results if gas.series is not None), None)
     if series is None or not values:
