@@ -84,3 +84,10 @@ def render() -> Callable[..., bytes]:
 def boiler_pdf(boiler: Outcome, render: Callable[..., bytes]) -> bytes:
     """The report of the gas-fired boiler with its documents bound in."""
     return render(boiler, folder=SAMPLES)
+
+
+def overlay(folder: Path, **files: str) -> Path:
+    """A firm's template folder with the files given, a point in a name written as two underscores."""
+    for name, text in files.items():
+        (folder / name.replace("__", ".")).write_text(text, encoding="utf-8")
+    return folder

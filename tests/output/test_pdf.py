@@ -22,7 +22,7 @@ from reporter.output.pdf import PdfOptions, render_pdf
 from reporter.output.phrases import load_phrases
 from reporter.output.view.build import build_view
 from reporter.record import Given
-from tests.output.conftest import ENCLOSED, ISSUED
+from tests.output.conftest import ENCLOSED, ISSUED, overlay
 from tests.output.test_phrases import FORBIDDEN
 
 
@@ -187,12 +187,6 @@ def test_the_same_input_gives_the_same_bytes_in_another_process(boiler_pdf: byte
         [sys.executable, "-c", code], capture_output=True, check=True, env={"PYTHONHASHSEED": "7", "PATH": ""}
     )
     assert made.stdout == boiler_pdf
-
-
-def overlay(folder: Path, **files: str) -> Path:
-    for name, text in files.items():
-        (folder / name.replace("__", ".")).write_text(text, encoding="utf-8")
-    return folder
 
 
 def test_a_firms_letterhead_picture_style_and_words_are_laid_over(
