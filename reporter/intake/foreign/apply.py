@@ -13,7 +13,7 @@ from reporter.intake.dates import Fault
 from reporter.intake.foreign.grid import Grid, Page, letters, read_grid
 from reporter.intake.foreign.mapping import MappedColumn, Mapping, differences_of
 from reporter.intake.foreign.model import Desk
-from reporter.intake.foreign.numbers import style_of
+from reporter.intake.foreign.numbers import hundredfold, style_of
 from reporter.intake.foreign.sort import sort_rows
 from reporter.intake.foreign.tables import Table, at, find_tables
 from reporter.intake.foreign.times import TimeStyle, joined, order_of
@@ -192,7 +192,7 @@ class _Reader:
             self._see(page, (row, column), mapped.channel, ready)
             return ready
         if percent and isinstance(value, float) and mapped.unit == "%":
-            value *= 100.0
+            value = hundredfold(value)
         read = read_cell(value, mapped.unit, self.mapping.numbers, self.words)
         wrong = percent and mapped.unit not in ("%", "1")
         fault = Fault("wrong-dimension", f"{value} as a percentage", f"a number in {mapped.unit}") if wrong else None

@@ -20,6 +20,7 @@ from reporter.intake.foreign.words import (
     folded,
     gases_in,
     other_words,
+    signal_in,
     units_in,
     without_correction,
 )
@@ -89,6 +90,8 @@ class Columns:
             return "nothing stands in it", ""
         if not numbers and not named:
             return "words only", ""
+        if named and (signal := signal_in(lane.header)) and not units_in(lane.header):
+            return self._signal(lane, signal), ""
         if len(named) == 1 and not other_words(lane.header):
             self.desk.say(f"{lane.name}: {gas(named[0]).label}, by its header")
             return "", named[0]
@@ -108,6 +111,14 @@ class Columns:
         )  # fmt: skip
         found = next((g.key for g in all_gases() if g.label == answer), "")
         return ("as answered" if answer == "ignore" else ""), found
+
+    def _signal(self, lane: Lane, signal: str) -> str:
+        """Why a column of an analyzer's output is left out; empty while that is open."""
+        asks = "An output is no concentration: export this column in the unit of its gas, or leave it out"
+        options = [Option("ignore", "leave the column out")]
+        key = f"column.{letters(lane.column)}.signal"
+        answer = self.desk.ask(key, asks, f"{signal} in {lane.header!r}", options, self.place(lane.column))
+        return "an analyzer's output, as answered" if answer else ""
 
     def _last_named(self) -> int:
         pairs = zip(self.table.columns, self.table.headers, strict=True)

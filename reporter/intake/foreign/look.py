@@ -14,7 +14,7 @@ from reporter.intake.foreign.mapping import MappedColumn, Mapping
 from reporter.intake.foreign.model import Desk, Option, Question
 from reporter.intake.foreign.numbers import NumberStyle, style_of
 from reporter.intake.foreign.sort import sort_rows
-from reporter.intake.foreign.tables import Table, find_tables, is_timelike
+from reporter.intake.foreign.tables import Table, find_tables, is_timelike, timed_rows
 from reporter.intake.foreign.timebase import TimeBase, time_base, time_columns
 from reporter.intake.foreign.times import TimeStyle
 from reporter.intake.foreign.wording import words_of
@@ -66,6 +66,8 @@ def look_at_grid(grid: Grid, answers: Answers[str, str]) -> Look:
         desk.say(f"text in {grid.encoding}, cells parted by {named}")
     tables = tuple(table for table in find_tables(grid) if table.last > table.first)
     candidates = [table for table in tables if time_columns(table)]
+    if candidates:
+        candidates = [table for table in tables if table in candidates or timed_rows(table)]
     if not candidates:
         place = grid.place(grid.pages[0], 0, 0)
         found = "; ".join(table.words() for table in tables) or "no header that names a gas above rows with times"
@@ -118,6 +120,9 @@ def _chosen(candidates: Sequence[Table], desk: Desk) -> tuple[list[Table], str]:
         options = [Option("read"), Option("leave out")]
         hidden = desk.ask("hidden-sheets", "Are the hidden sheets part of the readings?", found, options)
         group = [table for table in group if not table.page.hidden or hidden == "read"]
+    for table in candidates:
+        if table not in group:
+            desk.say(f"left aside: {table.words()}")
     for table in group:
         desk.say(f"readings: {table.words()}")
         if table.page.hidden:

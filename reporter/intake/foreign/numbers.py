@@ -27,7 +27,7 @@ class NumberStyle:
 
         A text that holds the other mark where none is expected keeps it, so that its reader refuses it.
         """
-        text = _GROUPS.sub("", clean(text))
+        text = _GROUPS.sub("", unquoted(text))
         if not _MARKED.match(text):
             return text
         other = "," if self.decimal == "." else "."
@@ -53,6 +53,17 @@ class _Counts:
     grouping: int = 0
     either: int = 0
     example: str = ""
+
+
+def unquoted(text: str) -> str:
+    """A cell's text without the apostrophe that keeps a number from being one in a spreadsheet program."""
+    plain = clean(text)
+    return plain[1:] if plain[:1] in ("'", "’") and _MARKED.match(plain[1:]) else plain
+
+
+def hundredfold(value: float) -> float:
+    """The percentage of a cell that is shown as one: 15 digits, as it was typed."""
+    return float(f"{value * 100.0:.15g}")
 
 
 def style_of(texts: Iterable[str], percents: Iterable[str], desk: Desk) -> NumberStyle:
@@ -95,7 +106,7 @@ def _asked(desk: Desk, found: str, *, grouped: bool) -> NumberStyle:
 
 
 def _count(text: str, counts: dict[str, _Counts]) -> None:
-    plain = clean(text)
+    plain = unquoted(text)
     if not _MARKED.match(plain):
         return
     digits = re.sub(r"[^\d.,].*$", "", _GROUPS.sub("", plain).lstrip("<>+-− "))
@@ -127,7 +138,7 @@ def _count(text: str, counts: dict[str, _Counts]) -> None:
 
 def _bound(text: str, counts: dict[str, _Counts]) -> None:
     """A percentage that would be above 100 if its mark grouped thousands: the mark is a decimal mark."""
-    plain = clean(text).lstrip("+-− ")
+    plain = unquoted(text).lstrip("+-− ")
     match = re.match(r"^(\d{1,3})([.,])(\d{3})(?!\d)", plain)
     if match and int(match[1] + match[3]) > 100:
         counts[match[2]].decimal += 1

@@ -10,7 +10,7 @@ from math import isclose
 from statistics import fmean
 
 from reporter.intake.foreign.numbers import NumberStyle
-from reporter.intake.foreign.tables import Table, at, blank, is_numberlike
+from reporter.intake.foreign.tables import Table, at, blank, is_numberlike, is_timelike
 from reporter.intake.foreign.times import Stamp, read_stamp
 from reporter.intake.foreign.words import is_foot
 from reporter.intake.sheets import reading_words
@@ -18,6 +18,8 @@ from reporter.intake.table import Raw, clean, show
 
 #: How near to a statistic of its column a number at the foot stands.
 NEAR = 5e-3
+#: Code of a row whose cells stand in the wrong columns.
+OUT = "row-out-of-line"
 
 
 @dataclass(frozen=True, slots=True)
@@ -50,12 +52,17 @@ def sort_rows(
         if cut_off and row == final and (len(cells) < width or _shorter(table, kept)) and not _foot(own):
             yield Sorted(row, why="the file ends inside this row")
             continue
+        if swallowed := _swallowed(own):
+            yield Sorted(
+                row, why=f"one cell over {swallowed} lines with times: a quotation mark is not closed", fault=OUT
+            )
+            continue
         stamps = [read_stamp(at(cells, column), order) for column in times]
         if all(stamp is not None for stamp in stamps) and not _foot(own):
             if _text_row([at(cells, column) for column in readings]):
                 yield Sorted(row, why=f"a row of text: {_first_text(own, times, table)}")
             elif usual and (words := _out_of_line(cells, usual)):
-                yield Sorted(row, why=words, fault="row-out-of-line")
+                yield Sorted(row, why=words, fault=OUT)
             else:
                 kept.append(row)
                 yield Sorted(row, tuple(stamp for stamp in stamps if stamp is not None))
@@ -70,6 +77,14 @@ def sort_rows(
             yield Sorted(row, why="each number is a statistic of its column")
         else:
             yield Sorted(row, why="numbers without a time that can be read", fault="not-a-time")
+
+
+def _swallowed(cells: Sequence[Raw]) -> int:
+    """The lines of a cell that holds further rows of the file; 0 where none does."""
+    for cell in cells:
+        if isinstance(cell, str) and "\n" in cell and any(is_timelike(line[:32]) for line in cell.splitlines()[1:]):
+            return len(cell.splitlines())
+    return 0
 
 
 def _shorter(table: Table, kept: Sequence[int]) -> bool:

@@ -57,6 +57,13 @@ def is_timelike(value: Raw) -> bool:
     return isinstance(value, str) and _TIMELIKE.search(clean(value)) is not None
 
 
+def timed_rows(table: Table) -> bool:
+    """Whether most rows of a table hold a date or a time, in whatever column."""
+    rows = [row for row in table.page.rows[table.first : table.last] if any(not blank(cell) for cell in row)]
+    timed = sum(1 for row in rows if any(is_timelike(at(row, column)) for column in table.columns))
+    return bool(rows) and 2 * timed > len(rows)
+
+
 def is_numberlike(value: Raw) -> bool:
     """Whether a cell is a number, or a text that looks like one."""
     if isinstance(value, float):

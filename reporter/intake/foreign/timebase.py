@@ -66,6 +66,9 @@ def time_base(grid: Grid, tables: Sequence[Table], desk: Desk) -> TimeBase | Non
     orders = [order_of(values, desk, place, epoch=epoch) for values in cells if _dated(values)]
     order = next((o for o in orders if o not in ("", "year first")), "" if "" in orders else "year first")
     stamps = [[read_stamp(value, order or "year first") for value in values[:ENOUGH]] for values in cells]
+    if order and all(stamp is None for part in stamps[-1:] for stamp in part):
+        asks = "These times cannot be read. Export the file with dates as 2026-04-20 and times as 09:50"
+        desk.ask("time-form", asks, repr(show(cells[-1][0])) if cells[-1] else "no time", (), place)
     stamp = _stamp(grid, table, columns, desk)
     zone = _zone([s for part in stamps for s in part if s is not None], desk)
     day = "" if not order else _day([s for part in stamps for s in part if s is not None], desk)
@@ -92,6 +95,9 @@ def _columns(grid: Grid, table: Table, desk: Desk) -> tuple[int, ...]:
             answer = desk.ask("time-column", "Which column is the time of a reading?", words, options, place)
             candidates = [column for column in candidates if letters(column) == answer]
     if not candidates:
+        if all(question.key != "time-column" for question in desk.open):
+            asks = "No column of this table is named as its time: type Time above it, or leave the table out"
+            desk.ask("time-column", asks, ", ".join(map(repr, table.headers)), ())
         return ()
     if by_part["both"] or not by_part["time"] or len(by_part["date"]) != 1:
         chosen: tuple[int, ...] = (candidates[0],)

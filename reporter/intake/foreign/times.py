@@ -13,6 +13,7 @@ from itertools import pairwise
 
 from reporter.intake.dates import whole
 from reporter.intake.foreign.model import Desk, Option
+from reporter.intake.foreign.words import zone_letters
 from reporter.intake.sheets import months
 from reporter.intake.table import Raw, clean
 from reporter.problems import Place
@@ -22,7 +23,7 @@ _NAMED_DAY = re.compile(r"^(\d{1,2})(?:st|nd|rd|th)?[\s.\-/]*([^\W\d_]+)\.?[\s.,
 _NAMED_MONTH = re.compile(r"^([^\W\d_]+)\.?\s+(\d{1,2})(?:st|nd|rd|th)?,?\s+(\d{4})(?:,?\s+|$)")
 _COMPACT = re.compile(r"^((?:19|20)\d{2})(\d{2})(\d{2})(?:T|\s+|$)")
 _CLOCK = re.compile(
-    r"^(\d{1,2})[:h](\d{2})(?:[:m](\d{2})(?:[.,](\d{1,6}))?s?)?\s*(?:([ap])\.?\s?m\.?)?\s*(Z|UTC|[+\-]\d{2}:?\d{2})?$",
+    r"^(\d{1,2})[:h](\d{2})(?:[:m](\d{2})(?:[.,](\d{1,6}))?s?)?\s*(?:([ap])\.?\s?m\.?)?\s*(Z|[A-Z]{2,4}|[+\-]\d{2}:?\d{2})?$",
     re.IGNORECASE,
 )
 _YEARS = range(1990, 2080)
@@ -151,6 +152,8 @@ def _clock(text: str) -> Stamp | None:
     if minute > 59 or second > 59 or hour > 24 or (hour == 24 and (minute or second)):
         return None
     offset = _offset(match[6])
+    if match[6] and offset is None:
+        return None
     if offset is not None and abs(offset) > timedelta(hours=14):
         return None
     parts = timedelta(hours=hour, minutes=minute, seconds=second, microseconds=int((match[4] or "0").ljust(6, "0")))
@@ -161,7 +164,8 @@ def _offset(text: str | None) -> timedelta | None:
     if not text:
         return None
     if text[0] not in "+-":
-        return timedelta(0)
+        hours = zone_letters().get(text.upper())
+        return None if hours is None else timedelta(hours=hours)
     digits = text[1:].replace(":", "")
     size = timedelta(hours=int(digits[:2]), minutes=int(digits[2:]))
     return -size if text[0] == "-" else size
@@ -174,9 +178,10 @@ def order_of(values: Sequence[Raw], desk: Desk, place: Place, *, epoch: str) -> 
     """
     texts = [clean(v) for v in values if isinstance(v, str) and clean(v)]
     numeric = [text for text in texts if (m := _THREE.match(text)) and len(m[1]) < 4]
-    if numeric and any(isinstance(v, datetime) for v in values):
+    others = any(isinstance(v, datetime) for v in values) or len(numeric) < sum(1 for t in texts if _THREE.match(t))
+    if numeric and others:
         found = (
-            f"dates beside the text {numeric[0]!r}: a program may have exchanged day and month in part of the column"
+            f"dates of another form beside {numeric[0]!r}: a program may have exchanged day and month in part of them"
         )
         desk.ask("date-order", "Which cells are right? Export the file again, with all dates as text", found, (), place)
         return ""

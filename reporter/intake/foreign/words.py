@@ -30,6 +30,18 @@ def _table() -> dict[str, Any]:
     return tomllib.loads(table_text("foreign_words.toml"))
 
 
+@cache
+def zone_letters() -> dict[str, float]:
+    """Letters behind a time, such as MDT, with the hours they stand ahead of UTC."""
+    return {str(letters): float(hours) for letters, hours in _table()["zones"].items()}
+
+
+@lru_cache(4096)
+def signal_in(text: str) -> str:
+    """The unit of an analyzer's output, such as mA or V, that a header names; empty where it names none."""
+    return next((part for part in re.split(r"[^\w%.]+", clean(text)) if part in _table()["signal"]["units"]), "")
+
+
 def folded(text: str) -> str:
     """Text for comparison: lower case, no accents, one blank for any gap; ``%``, ``@``, ``/``, ``+`` stay."""
     plain = unicodedata.normalize("NFKD", clean(text).translate(_LOWERED))

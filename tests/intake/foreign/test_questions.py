@@ -2,16 +2,12 @@
 
 from __future__ import annotations
 
-import sys
 from collections.abc import Mapping
 from datetime import date, datetime
 from pathlib import Path
+from typing import Any
 
 import pytest
-
-sys.path.insert(0, str(Path(__file__).parent))
-
-from shapes import END, HEADERS, TRUTH, Shape, book, number, rows_on, text
 
 from reporter.errors import RecordError
 from reporter.intake.foreign import ForeignReadings, apply, load, look, mapping_of, save
@@ -22,6 +18,17 @@ from reporter.intake.foreign.look import Look, look_at_grid
 from reporter.intake.foreign.mapping import differences
 from reporter.intake.foreign.words import basis_of, gases_in, stamp_of, time_part, units_in
 from reporter.record import ReadingKind
+from tests.corpus.case import END, HEADERS, book, number, rows_on
+from tests.corpus.case import text as table
+from tests.corpus.truth import TRUTH as WHOLE
+
+TRUTH = WHOLE[8:20]
+
+
+def text(**how: Any) -> str:
+    """Twelve minutes of the truth, 09:58 to 10:09."""
+    return table(rows=TRUTH, **how)
+
 
 LINES = text().splitlines()
 
@@ -95,7 +102,7 @@ def test_the_words_of_a_time_header(header: str, part: str, stamp: str) -> None:
         (text(clock=lambda t: f"46132.{int(t.minute * 694.4444) + 41319:05d}"), "date-order"),
         (text(clock=lambda t: f"{t:%H:%M}"), "day"),
         (text(delimiter=";", show=lambda v: f"{v * 1000:,.0f}"), "decimal-mark"),
-        (text(delimiter=";").replace("24.10", "24,10"), "decimal-mark"),
+        (text(delimiter=";").replace(f"{TRUTH[0][1]:.2f}", "24,10"), "decimal-mark"),
         (text(headers=(("Time", "NOx ppm dry", "CO dry", "O2 % dry"),)), "column.C.unit"),
         (text(headers=(("Time", "NOx ppm dry", "CO ppm", "O2 % dry"),)), "column.C.basis"),
         (text(headers=(("Time", "NOx ppm dry", "ppm dry", "O2 % dry"),)), "column.C.gas"),
@@ -138,7 +145,7 @@ def test_words_in_cells_stay_what_they_are(written: str, kind: ReadingKind, valu
         (replaced(4, 0, "soon"), "not-a-time"),
         (replaced(4, 0, ""), "not-a-time"),
         (replaced(4, 2, "3.1,7"), "row-out-of-line"),
-        ("\n".join([*LINES, "2026-04-20 09:58:00,99,99,4"]) + "\n", "duplicate-time"),
+        ("\n".join([*LINES, "2026-04-20 09:58:00,99,99,4,9"]) + "\n", "duplicate-time"),
     ],
 )
 def test_it_stops(content: str, code: str) -> None:
@@ -157,7 +164,7 @@ def test_a_row_cut_off_at_the_end_is_left_out_and_said() -> None:
 def test_gaps_and_the_time_base_are_reported() -> None:
     found = made("\n".join([*LINES[:5], *LINES[8:]]) + "\n")
     assert found.report.step == 60.0
-    assert found.report.gaps == ((datetime(2026, 4, 20, 9, 58), datetime(2026, 4, 20, 10, 2)),)
+    assert found.report.gaps == ((datetime(2026, 4, 20, 10, 1), datetime(2026, 4, 20, 10, 5)),)
 
 
 def test_midnight_as_24_00_is_the_end_of_the_day() -> None:
@@ -234,8 +241,7 @@ def test_hidden_parts_of_a_workbook_are_said() -> None:
         rows_on(made.active)  # type: ignore[attr-defined]
         made.active.row_dimensions[4].hidden = True  # type: ignore[attr-defined]
 
-    shape: Shape = book(hide)
-    found = seen(shape.content, name=shape.name)
+    found = seen(book(hide), name="logger.xlsx")
     assert any("1 hidden rows" in line for line in found.evidence)
 
 

@@ -1,0 +1,5 @@
+"""Cases of whole folders (to come)."""
+
+
+def readme() -> str:
+    return ""
