@@ -9,13 +9,15 @@ from __future__ import annotations
 import argparse
 import os
 import sys
-from collections.abc import Callable, Sequence
-from pathlib import Path
-from typing import TYPE_CHECKING, TextIO
 
 from reporter.version import VERSION
 
+TYPE_CHECKING = False  # known to type checkers; what help does not need is not imported for it
 if TYPE_CHECKING:
+    from collections.abc import Callable, Sequence
+    from pathlib import Path
+    from typing import TextIO
+
     from reporter.output.renderer import PageRenderer
     from reporter.tasks import Task
 
@@ -34,6 +36,12 @@ _INPUT = "field workbook, JSON record, or a folder of one test with its logger f
 _MAPPING = "mapping to read the logger files of a folder by (default: those in the folder)"
 
 
+def _path(text: str) -> Path:
+    from pathlib import Path
+
+    return Path(text)
+
+
 def parser() -> argparse.ArgumentParser:
     """The whole command line."""
     top = argparse.ArgumentParser(
@@ -46,11 +54,11 @@ def parser() -> argparse.ArgumentParser:
     commands = top.add_subparsers(dest="command", required=True, metavar="COMMAND")
     _report_parser(commands.add_parser("report", help="write PDF, workbook and JSON"))
     check = commands.add_parser("check", help="read, assess and print; write nothing")
-    check.add_argument("inputs", nargs="+", type=Path, metavar="INPUT", help=_INPUT)
-    check.add_argument("--mapping", type=Path, metavar="FILE", help=_MAPPING)
+    check.add_argument("inputs", nargs="+", type=_path, metavar="INPUT", help=_INPUT)
+    check.add_argument("--mapping", type=_path, metavar="FILE", help=_MAPPING)
     _map_parser(commands.add_parser("map", help="look at a logger's file and make the mapping it is read by"))
     blank = commands.add_parser("blank", help="write an empty field workbook")
-    blank.add_argument("file", type=Path, help="where to write it (.xlsx)")
+    blank.add_argument("file", type=_path, help="where to write it (.xlsx)")
     blank.add_argument("--gases", default="NOx,CO,O2,CO2", help="gases measured, by comma (default: %(default)s)")
     blank.add_argument("--runs", type=int, default=3, help="number of runs (default: %(default)s)")
     blank.add_argument("--units", choices=("US", "SI"), default="US", help="unit system (default: %(default)s)")
@@ -67,10 +75,10 @@ def parser() -> argparse.ArgumentParser:
 
 
 def _report_parser(command: argparse.ArgumentParser) -> None:
-    command.add_argument("inputs", nargs="+", type=Path, metavar="INPUT", help=_INPUT)
-    command.add_argument("--mapping", type=Path, metavar="FILE", help=_MAPPING)
-    command.add_argument("--out", type=Path, required=True, metavar="DIR", help="folder for the results")
-    command.add_argument("--templates", type=Path, metavar="DIR", help="letterhead, wording and style of a firm")
+    command.add_argument("inputs", nargs="+", type=_path, metavar="INPUT", help=_INPUT)
+    command.add_argument("--mapping", type=_path, metavar="FILE", help=_MAPPING)
+    command.add_argument("--out", type=_path, required=True, metavar="DIR", help="folder for the results")
+    command.add_argument("--templates", type=_path, metavar="DIR", help="letterhead, wording and style of a firm")
     command.add_argument("--issued", metavar="TIME", help="issue time, ISO 8601 (default: SOURCE_DATE_EPOCH, else now)")
     command.add_argument("--minute-data", action="store_true", help="print the logged readings too")
 
@@ -80,7 +88,7 @@ _FAULTS = ("air-leak", "drifting-analyzer", "wrong-cylinder", "wet-called-dry", 
 
 
 def _rehearse_parser(command: argparse.ArgumentParser) -> None:
-    command.add_argument("file", type=Path, metavar="OUT.xlsx", help="where to write the field workbook")
+    command.add_argument("file", type=_path, metavar="OUT.xlsx", help="where to write the field workbook")
     command.add_argument("--fuel", default="natural gas", help="a published fuel name or a composition (%(default)s)")
     command.add_argument("--gases", default="NOx,CO,O2,CO2", help="of NOx, CO, SO2, O2, CO2, by comma (%(default)s)")
     command.add_argument("--runs", type=int, default=3, help="number of runs (%(default)s)")
@@ -91,14 +99,14 @@ def _rehearse_parser(command: argparse.ArgumentParser) -> None:
     command.add_argument("--interval", type=int, default=60, metavar="SECONDS", help="logging interval (%(default)s)")
     command.add_argument("--fault", choices=_FAULTS, help="the one thing that is wrong (default: nothing)")
     command.add_argument("--seed", type=int, default=1, metavar="N", help="the same seed, the same test (%(default)s)")
-    command.add_argument("--truth", type=Path, metavar="TRUTH.json", help="write what is true, and the fault's signs")
+    command.add_argument("--truth", type=_path, metavar="TRUTH.json", help="write what is true, and the fault's signs")
 
 
 def _map_parser(command: argparse.ArgumentParser) -> None:
-    command.add_argument("file", type=Path, metavar="FILE", help="text table or workbook of a logger")
-    command.add_argument("--save", type=Path, metavar="MAPPING", help="where to write the mapping (NAME.map.toml)")
-    command.add_argument("--questions", type=Path, metavar="TOML", help="where to write the open questions")
-    command.add_argument("--answers", type=Path, metavar="TOML", help="that file with its answers filled in")
+    command.add_argument("file", type=_path, metavar="FILE", help="text table or workbook of a logger")
+    command.add_argument("--save", type=_path, metavar="MAPPING", help="where to write the mapping (NAME.map.toml)")
+    command.add_argument("--questions", type=_path, metavar="TOML", help="where to write the open questions")
+    command.add_argument("--answers", type=_path, metavar="TOML", help="that file with its answers filled in")
     command.add_argument("--name", default="", metavar="TEXT", help="name of the mapping: the firm, client or logger")
 
 
