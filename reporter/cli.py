@@ -22,6 +22,8 @@ if TYPE_CHECKING:
     from reporter.tasks import Task
 
 OK, WITHHELD, USAGE, UNREADABLE, UNWRITTEN = 0, 1, 2, 3, 4
+#: What a shell gives for a command stopped by the keyboard.
+_STOPPED = 130
 
 _EXIT_CODES = """exit codes:
   0  nothing is withheld (notes may be)
@@ -126,9 +128,12 @@ def main(arguments: Sequence[str] | None = None, out: TextIO | None = None, err:
 
 
 def entry_point() -> None:
-    """The installed command; a reader that closes the pipe early is no fault."""
+    """The installed command; a reader that closes the pipe early is no fault, nor is a person who stops it."""
     try:
         sys.exit(main())
+    except KeyboardInterrupt:
+        print("fluebook: stopped; an unfinished report leaves no file", file=sys.stderr)
+        sys.exit(_STOPPED)
     except BrokenPipeError:
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         sys.exit(OK)

@@ -151,3 +151,10 @@ def test_heavy_libraries_are_imported_where_used(arguments: list[str], absent: s
     done = subprocess.run([sys.executable, "-c", code], cwd=ROOT, capture_output=True, text=True, check=True)
     loaded = set(done.stdout.split("LOADED ")[1].split())
     assert not loaded & absent
+
+
+def test_a_person_who_stops_a_command_meets_one_line() -> None:
+    code = "import reporter.cli as cli\ndef stopped(): raise KeyboardInterrupt\ncli.main = stopped\ncli.entry_point()\n"
+    made = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=False)
+    assert made.returncode == 130
+    assert made.stderr.splitlines() == ["fluebook: stopped; an unfinished report leaves no file"]
