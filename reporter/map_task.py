@@ -12,6 +12,7 @@ from reporter.intake.foreign.apply import apply_to_grid
 from reporter.intake.foreign.look import Look, look, mapping_of
 from reporter.intake.foreign.mapping import save as save_mapping
 from reporter.intake.foreign.model import Question
+from reporter.intake.foreign.series_notes import notes_of_file
 from reporter.problems import Grade
 from reporter.tasks import Task
 from reporter.terminal import problems_text
@@ -74,7 +75,8 @@ def _said(file: Path, found: Look, name: str, save: Path | None, questions: Path
     mapping = mapping_of(found, name=name)
     made = apply_to_grid(found.grid, mapping)
     parts.append(section("By this mapping", [paragraph(line) for line in made.report.lines()]))
-    shown = [p for p in made.problems if not (p.code == "not-a-time" and mapping.time.day)]
+    problems = (*made.problems, *notes_of_file(made))
+    shown = [p for p in problems if not (p.code == "not-a-time" and mapping.time.day)]
     if shown:
         parts.append(problems_text(shown))
     if save is not None:
