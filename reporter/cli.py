@@ -109,6 +109,7 @@ def _map_parser(command: argparse.ArgumentParser) -> None:
     command.add_argument("--save", type=_path, metavar="MAPPING", help="where to write the mapping (NAME.map.toml)")
     command.add_argument("--questions", type=_path, metavar="TOML", help="where to write the open questions")
     command.add_argument("--answers", type=_path, metavar="TOML", help="that file with its answers filled in")
+    command.add_argument("--against", type=_path, metavar="OLD", help="the file as sent before: say what changed")
     command.add_argument("--name", default="", metavar="TEXT", help="name of the mapping: the firm, client or logger")
 
 
@@ -148,7 +149,10 @@ def _check(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
 def _map(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
     from reporter.map_task import map_file
 
-    task = map_file(given.file, given.name, save=given.save, questions=given.questions, answers=given.answers)
+    task = map_file(
+        given.file, given.name,
+        save=given.save, questions=given.questions, answers=given.answers, against=given.against,
+    )  # fmt: skip
     stream = err if task.code in {USAGE, UNREADABLE, UNWRITTEN} else out
     print(_encodable(task.text, stream), file=stream)
     return task.code

@@ -9,9 +9,12 @@ from reporter.cli import OK, UNREADABLE, UNWRITTEN, USAGE, WITHHELD
 from reporter.errors import RecordError
 from reporter.intake.foreign.answers import questions_toml, read_answers
 from reporter.intake.foreign.apply import apply_to_grid
+from reporter.intake.foreign.grid import read_grid
 from reporter.intake.foreign.look import Look, look, mapping_of
 from reporter.intake.foreign.mapping import save as save_mapping
 from reporter.intake.foreign.model import Question
+from reporter.intake.foreign.resent import difference
+from reporter.intake.foreign.series_notes import notes_of_file
 from reporter.problems import Grade
 from reporter.tasks import Task
 from reporter.terminal import problems_text
@@ -25,6 +28,7 @@ def map_file(
     save: Path | None = None,
     questions: Path | None = None,
     answers: Path | None = None,
+    against: Path | None = None,
 ) -> Task:
     """Look at a file and say what it is.
 
@@ -38,6 +42,8 @@ def map_file(
         Where the mapping, and where the open questions are written.
     answers
         A file of questions with its answers filled in.
+    against
+        The file as it was sent before: what changed is said first.
 
     Returns
     -------
@@ -50,17 +56,30 @@ def map_file(
     except RecordError as error:
         return Task(file.name, f"fluebook: {error}", USAGE, "not looked at")
     found = look(file, given)
+    if against is not None and not (before := read_grid(against)).pages:
+        text = f"{against.name} cannot be read\n{problems_text(before.problems)}"
+        return Task(file.name, text, UNREADABLE, "cannot be read", len(before.problems))
     if found.mapping is None and not found.questions:
         text = f"{file.name} cannot be mapped\n{problems_text(found.problems)}"
         return Task(file.name, text, UNREADABLE, "cannot be read", len(found.problems))
     try:
-        return _said(file, found, name, save, questions)
+        return _said(found, name, save, questions, _changes(found, against))
     except OSError as error:
         return Task(file.name, f"fluebook: {error.filename}: {error.strerror}", UNWRITTEN, "not written")
 
 
-def _said(file: Path, found: Look, name: str, save: Path | None, questions: Path | None) -> Task:
-    parts = [file.name, section("As read", [paragraph(line) for line in found.evidence])]
+def _changes(found: Look, against: Path | None) -> str:
+    """What changed since a file was sent before; nothing where none is given."""
+    if against is None:
+        return ""
+    lines = difference(read_grid(against), found.grid).lines()
+    return section(f"Against {against.name}", [paragraph(line) for line in lines])
+
+
+def _said(found: Look, name: str, save: Path | None, questions: Path | None, changes: str) -> Task:
+    file = found.grid.source
+    parts = [part for part in (file.name, changes) if part]
+    parts.append(section("As read", [paragraph(line) for line in found.evidence]))
     if found.questions:
         parts.append(section("Questions", [_asked(question) for question in found.questions]))
         if questions is not None:
@@ -74,7 +93,8 @@ def _said(file: Path, found: Look, name: str, save: Path | None, questions: Path
     mapping = mapping_of(found, name=name)
     made = apply_to_grid(found.grid, mapping)
     parts.append(section("By this mapping", [paragraph(line) for line in made.report.lines()]))
-    shown = [p for p in made.problems if not (p.code == "not-a-time" and mapping.time.day)]
+    problems = (*made.problems, *notes_of_file(made))
+    shown = [p for p in problems if not (p.code == "not-a-time" and mapping.time.day)]
     if shown:
         parts.append(problems_text(shown))
     if save is not None:

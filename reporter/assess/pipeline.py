@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from reporter.assess.averages import Average, average
+from reporter.assess.barometer import look_at_barometer
 from reporter.assess.comparison import Made, compare, not_measured
 from reporter.assess.findings import look_at_balance, look_at_record
 from reporter.assess.gaps import say_gaps
@@ -58,6 +59,7 @@ def assess(record: Record) -> Outcome:
     _say_synthetic(book)
     tracks = lanes(record)
     runs = runs_in_order(record)
+    look_at_barometer(book, runs)
     windows = {run.key: window(book, run) for run in runs}
     series = {(lane.segment, run.key): reduce_readings(book, lane, windows[run.key]) for lane in tracks for run in runs}
     abouts = [RunBook(run) for run in runs]

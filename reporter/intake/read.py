@@ -87,7 +87,11 @@ def _read(
     record = build(tables, gathered, source, series)
     if record is not None and folder is not None:
         _look_for_attachments(record, folder, gathered)
-    return ReadResult(record, gathered.all())
+    if record is None:
+        return ReadResult(None, gathered.all())
+    from reporter.intake.foreign.series_notes import notes_of_record
+
+    return ReadResult(record, (*gathered.all(), *notes_of_record(record)))
 
 
 def _workbook(content: bytes, gathered: Gathered) -> tuple[SheetTable, ...]:

@@ -16,6 +16,7 @@ from reporter.functions import mean
 
 _CITE = Citation("m2", "12")
 _UNITS = Citation("units")
+_BAROMETER = Citation("m2", "6.5", "barometer")
 _VELOCITY = Citation("m2", "12", "average stack gas velocity")
 _FLOW = Citation("m2", "12", "average stack gas dry volumetric flow rate")
 _DRY_STANDARD = Basis(moisture=Moisture.DRY, standard=EPA_STANDARD)
@@ -46,6 +47,38 @@ def absolute_temperature(
         Absolute temperature [°R or K].
     """
     return zero + temperature
+
+
+@equation(
+    "P_bar",
+    ("inHg", "kPa"),
+    {"station": ("inHg", "kPa"), "rise": ("ft", "m")},
+    _BAROMETER,
+    symbols={"station": "P_st", "rise": "z"},
+)
+def barometer_at(
+    *,
+    station: Value,
+    rise: Value,
+    rate: Value = constant(0.001, ("inHg/ft", "kPa/m"), si=0.0111, cite=_BAROMETER),
+) -> Value:
+    """Barometric pressure at a site, from that of a station lower down.
+
+    Parameters
+    ----------
+    station
+        Absolute pressure at the station [inHg or kPa].
+    rise
+        Height of the site above the station [ft or m]; negative where it lies below.
+    rate
+        Printed 0.1 in. Hg in 100 ft, or 2.5 mm Hg in 30 m (0.0111 kPa/m).
+
+    Returns
+    -------
+    float
+        Pressure at the site [inHg or kPa].
+    """
+    return station - rate * rise
 
 
 @equation(

@@ -96,6 +96,14 @@ def _average(files: Files, readings: Rows) -> Files:
     return files | {"logger.csv": logger(readings, "Average,24.0,3.0,4.0,9.6\n")}
 
 
+def _other_unit(files: Files, readings: Rows) -> Files:
+    return files | {"logger.csv": b"Unit: Boiler 7\n" + files["logger.csv"]}
+
+
+def _wrong_average(files: Files, readings: Rows) -> Files:
+    return files | {"logger.csv": logger(readings, "Average,99.0,3.0,4.0,9.6\n")}
+
+
 #: What is wrong, by the code of the problem.
 CHANGES: dict[str, Callable[[Files, Rows], Files]] = {
     "no-readings-table": _without_gases,
@@ -107,4 +115,6 @@ CHANGES: dict[str, Callable[[Files, Rows], Files]] = {
     "row-out-of-line": _missing_comma,
     "folder-inputs": _two_workbooks,
     "rows-left-out": _average,
+    "file-of-another-test": _other_unit,
+    "foot-differs": _wrong_average,
 }

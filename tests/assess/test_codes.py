@@ -13,7 +13,7 @@ import pytest
 import reporter
 from reporter.outcome import Outcome
 from reporter.problems import Grade, Problem, catalogue
-from reporter.record import Given
+from reporter.record import Given, Location
 from tests.record_factory import (
     HERE,
     added,
@@ -130,6 +130,9 @@ MADE: dict[str, Callable[[], Outcome]] = {
     "near-oxygen-constant": lambda: assessed(readings=_values(O2=19.5, CO2=0.8), limits=(limit(**AT_3),)),
     "order-of-averaging": lambda: assessed(
         readings=_values(O2=in_run((3.0, 5.0, 12.0)), CO2=in_run((10.2, 9.0, 5.0))), limits=(limit(**AT_3),)
+    ),
+    "barometer-at-sea-level": lambda: assessed(
+        location=Location(elevation=number(5280.0, "ft")), runs=runs(barometric_pressure=number(29.95, "inHg"))
     ),
     "fuel-factor-out-of-range": lambda: assessed(readings=_values(CO2=12.0), fuels=(fuel(),)),
 }

@@ -171,9 +171,10 @@ ORDER = [
          plain(before={30: [",".join(HEADERS)]})),
     Case("gaps", "seven minutes missing", plain(order=[*range(5), *range(12, 60)]), rows=without(*range(5, 12)),
          says=("nothing between",)),
-    Case("interval changes", "a reading each minute, then each ten seconds", plain(rows=mixed(10)), rows=mixed(10)),
+    Case("interval changes", "a reading each minute, then each ten seconds", plain(rows=mixed(10)), rows=mixed(10),
+         notes=frozenset({"interval-changes"})),
     Case("interval changes to fifteen minutes", "a reading each minute, then each quarter of an hour",
-         plain(rows=mixed(900)), rows=mixed(900)),
+         plain(rows=mixed(900)), rows=mixed(900), notes=frozenset({"interval-changes"})),
     Case("a row without its time", "numbers, and no time before them", plain(put={(9, 0): ""}), stops="not-a-time"),
     Case("a time that is none", "`soon` in the column of times", plain(put={(9, 0): "soon"}), stops="not-a-time"),
 ]  # fmt: skip

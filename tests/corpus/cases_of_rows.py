@@ -46,7 +46,7 @@ NO_READINGS = [
          says=("Average",)),
     Case("totals at the foot", "`Total`, as it is", plain(below=["", TOTAL]), notes=LEFT, says=("Total",)),
     Case("an average that is none", "`Average` of NOx that is not the average of the column", plain(below=[WRONG]),
-         notes=LEFT, says=("Average",)),
+         notes=frozenset({"foot-differs"}), says=("Average",)),
     Case("averages without a word", "the means alone below the table", plain(below=[AVERAGE.replace("Average", "")]),
          notes=LEFT, says=("statistic",)),
     Case("numbers at the foot that are no average", "numbers without a time below the table", plain(
@@ -73,7 +73,7 @@ def held(column: int, values: dict[int, float], code: str, name: str, arrives: s
     channel = ("NOx", "CO", "O2", "CO2")[column - 1]
     cells: dict[tuple[int, str], Held] = {(k, channel): ("number", v) for k, v in values.items()}
     put = {(k, column): f"{v:.2f}" for k, v in values.items()}
-    return Case(name, arrives, plain(put=put), cells=cells, notes=frozenset())
+    return Case(name, arrives, plain(put=put), cells=cells, notes=frozenset({code}))
 
 
 def gases(at: range, values: tuple[float, ...], code: str, name: str, arrives: str) -> Case:
@@ -81,7 +81,7 @@ def gases(at: range, values: tuple[float, ...], code: str, name: str, arrives: s
     names = ("NOx", "CO", "O2", "CO2")
     cells: dict[tuple[int, str], Held] = {(k, n): ("number", v) for k in at for n, v in zip(names, values, strict=True)}
     put = {(k, c): f"{v:.2f}" for k in at for c, v in enumerate(values, start=1)}
-    return Case(name, arrives, plain(put=put), cells=cells, notes=frozenset())
+    return Case(name, arrives, plain(put=put), cells=cells, notes=frozenset({code}))
 
 
 SERIES = [
@@ -92,9 +92,9 @@ SERIES = [
          "NOx at exactly 50 for eight minutes, and never above"),
     held(1, {k: float(round(TRUTH[k][1])) * 10 for k in range(30, 60)}, "range-switch", "range switching",
          "NOx ten times as high from one minute to the next, and without decimals"),
-    gases(range(24, 30), (0.02, 0.4, 20.91, 0.03), "ambient-air", "ambient air inside a run",
+    gases(range(24, 30), (0.02, 0.4, 20.91, 0.03), "gas-in-run", "ambient air inside a run",
           "six minutes of air: oxygen 20.9 %, the others near zero"),
-    gases(range(44, 49), (0.05, 0.3, 0.02, 0.01), "zero-gas", "zero gas inside a run",
+    gases(range(44, 49), (0.05, 0.3, 0.02, 0.01), "gas-in-run", "zero gas inside a run",
           "five minutes of zero gas: all channels near zero"),
 ]  # fmt: skip
 

@@ -35,7 +35,7 @@ it by `cases_of_*.py`. For every file the readings, times, units and bases equal
 file is stopped by the question or the problem named. `test_corpus.py` holds each case to that; `test_together.py` does
 the same for three disturbances at once, `test_never_breaks.py` for damage. This page is written by
 `python -m tests.corpus.corpus` and a test keeps it current; `python -m tests.corpus.corpus FOLDER` writes the
-{count} files, to try with `fluebook map`.
+{count} files and {folders} folders, to try with `fluebook map` and `fluebook check`.
 
 Where nothing else is said, the one question is `stamp`: whether a stamp is the start or the end of its interval. A
 question is open until it is answered; the answers in the tables are those with which the truth comes out. *Stops* means
@@ -76,7 +76,7 @@ def _cell(text: str) -> str:
 
 def readme() -> str:
     """The README of the corpus."""
-    parts = [_HEAD.format(count=len(CASES))]
+    parts = [_HEAD.format(count=len(CASES), folders=len(cases_of_folders.FOLDERS))]
     for group, cases in GROUPS.items():
         lines = [f"## {group}\n", "| Case | What arrives | What fluebook does |", "|---|---|---|"]
         lines += [f"| {_cell(c.name)} | {_cell(c.arrives)} | {_cell(_done(c))} |" for c in cases]
@@ -86,11 +86,13 @@ def readme() -> str:
 
 
 def write(folder: Path) -> None:
-    """Every file of the corpus, each in a folder of the name of its case."""
-    for case in CASES.values():
-        place = folder / "".join(mark if mark.isalnum() or mark in "-. " else "_" for mark in case.name)
+    """Every file and folder of the corpus, each in a folder of the name of its case."""
+    files = {name: {case.file: case.content} for name, case in CASES.items()}
+    for name, contents in (files | {f"folder {case.name}": case.files for case in cases_of_folders.FOLDERS}).items():
+        place = folder / "".join(mark if mark.isalnum() or mark in "-. " else "_" for mark in name)
         place.mkdir(parents=True, exist_ok=True)
-        (place / case.file).write_bytes(case.content)
+        for file, content in contents.items():
+            (place / file).write_bytes(content)
 
 
 if __name__ == "__main__":

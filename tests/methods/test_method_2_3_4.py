@@ -112,6 +112,12 @@ def test_static_pressure_is_signed() -> None:
     assert m2.absolute_pressure.in_system(SI)(barometric=101.0, static=-0.5) == 100.5
 
 
+def test_a_barometer_is_lower_by_a_tenth_of_an_inch_in_a_hundred_feet() -> None:
+    """Method 2, section 6.5: minus 0.1 in. Hg in 100 ft, minus 2.5 mm Hg in 30 m; in millimetres and metres here."""
+    assert m2.barometer_at(station=29.92, rise=1000.0) == pytest.approx(28.92, rel=1e-14)
+    assert m2.barometer_at.in_system(SI)(station=101.3, rise=30.0) == pytest.approx(101.3 - 2.5 * 0.13332, abs=5e-4)
+
+
 def test_areas() -> None:
     assert m2.area_round(diameter=2.0) == pytest.approx(math.pi, rel=1e-15)
     assert m2.area_rectangular(width=2.0, depth=3.0) == 6.0

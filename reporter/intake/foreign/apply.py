@@ -167,6 +167,8 @@ class _Reader:
                 continue
             if not found.stamps:
                 self.left_out.append(LeftOut(place, found.why))
+                if found.note:
+                    self.gathered.add(found.note, place, found.why)
                 continue
             moment = joined(found.stamps, self.day if self.mapping.time.day else None, self.mapping.time)
             if moment is None:

@@ -11,8 +11,7 @@ from reporter.intake.foreign.corrected import corrected_words
 from reporter.intake.foreign.grid import Grid, letters
 from reporter.intake.foreign.mapping import AS_ENTERED, MappedColumn
 from reporter.intake.foreign.model import Desk, Option
-from reporter.intake.foreign.numbers import NumberStyle
-from reporter.intake.foreign.sort import number
+from reporter.intake.foreign.numbers import NumberStyle, number
 from reporter.intake.foreign.tables import Table, at, blank, is_numberlike
 from reporter.intake.foreign.words import (
     basis_of,

@@ -6,8 +6,7 @@ from collections.abc import Sequence
 from statistics import median
 from typing import Protocol
 
-from reporter.intake.foreign.numbers import NumberStyle
-from reporter.intake.foreign.sort import number
+from reporter.intake.foreign.numbers import NumberStyle, number
 from reporter.intake.table import Raw
 
 #: Oxygen of air as corrections count it, and reference oxygens in use [%].

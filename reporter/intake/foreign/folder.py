@@ -14,6 +14,8 @@ from reporter.intake.foreign.apply import ForeignReadings, apply_to_grid
 from reporter.intake.foreign.grid import Grid, read_grid
 from reporter.intake.foreign.join import join
 from reporter.intake.foreign.mapping import ENDING, Mapping, differences, load
+from reporter.intake.foreign.tables import find_tables
+from reporter.intake.foreign.titles import strangers
 from reporter.intake.guard import look_at
 from reporter.intake.jsonrecord import looks_like_json
 from reporter.intake.read import ReadResult, read
@@ -57,7 +59,7 @@ class _Loggers:
                 mapping = fitting[0] if fitting else self.mappings[0]
                 found = apply_to_grid(grid, mapping, day=reader.day)
                 self.read.append(found)
-                self.problems += found.problems
+                self.problems += [*found.problems, *strangers(grid, find_tables(grid), test, mapping.titles)]
             elif not grid.pages:
                 self.problems += grid.problems
             else:

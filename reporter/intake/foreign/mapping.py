@@ -47,7 +47,10 @@ class MappedColumn:
 
 @dataclass(frozen=True, slots=True)
 class Mapping:
-    """How the files of one shape are read.  `words` are texts of cells with their meaning."""
+    """How the files of one shape are read.
+
+    `words` are texts of cells with their meaning, `titles` names of the unit or facility that mean those of the test.
+    """
 
     name: str
     kind: str
@@ -57,6 +60,7 @@ class Mapping:
     words: tuple[tuple[str, str], ...] = ()
     hidden: str = "read"
     version: int = 1
+    titles: tuple[str, ...] = ()
 
     @property
     def signature(self) -> tuple[str, ...]:
@@ -84,6 +88,7 @@ def dump(mapping: Mapping) -> str:
         f"kind = {_quoted(mapping.kind)}",
         f"shape = {_quoted(mapping.fingerprint)}  # follows from kind and headers",
         f"hidden_sheets = {_quoted(mapping.hidden)}",
+        *([f"titles = [{', '.join(map(_quoted, mapping.titles))}]"] if mapping.titles else []),
         "",
         "[numbers]",
         f"decimal_mark = {_quoted(numbers.decimal)}",
@@ -161,6 +166,7 @@ def parse(data: dict[str, Any]) -> Mapping:
         tuple((str(word), str(meaning)) for word, meaning in data.get("words", {}).items()),
         _one_of("hidden_sheets", data.get("hidden_sheets", "read"), ("read", "leave out")),
         int(data.get("version", 1)),
+        tuple(str(title) for title in data.get("titles", ())),
     )  # fmt: skip
 
 

@@ -7,7 +7,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 
 from reporter.intake.foreign.model import Desk, Option
-from reporter.intake.table import clean
+from reporter.intake.table import Raw, clean
 
 _MARKED = re.compile(r"^[<>]?\s*[+\-−]?(\d[\d.,'’\u2019 ]*|[.,]\d+)(?:[eE][+\-]?\d{1,3})?\s*(?:%|[^\W\d_].*)?$")
 _GROUPS = re.compile(r"(?<=\d)[ '’](?=\d{3}(?!\d))")
@@ -64,6 +64,19 @@ def unquoted(text: str) -> str:
 def hundredfold(value: float) -> float:
     """The percentage of a cell that is shown as one: 15 digits, as it was typed."""
     return float(f"{value * 100.0:.15g}")
+
+
+def number(cell: Raw, style: NumberStyle) -> float | None:
+    """A cell's plain number; None for a word or nothing."""
+    if isinstance(cell, float):
+        return cell
+    if not isinstance(cell, str):
+        return None
+    try:
+        value = float(style.plain(cell))
+    except ValueError:
+        return None
+    return value if abs(value) < float("inf") else None
 
 
 def style_of(texts: Iterable[str], percents: Iterable[str], desk: Desk) -> NumberStyle:

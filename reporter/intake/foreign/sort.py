@@ -9,7 +9,8 @@ from dataclasses import dataclass
 from math import isclose
 from statistics import fmean
 
-from reporter.intake.foreign.numbers import NumberStyle
+from reporter.intake.foreign.feet import Feet
+from reporter.intake.foreign.numbers import NumberStyle, number
 from reporter.intake.foreign.tables import Table, at, blank, is_numberlike, is_timelike
 from reporter.intake.foreign.times import Stamp, read_stamp
 from reporter.intake.foreign.words import is_foot
@@ -27,12 +28,14 @@ class Sorted:
     """One row: its position, its stamps where it is a row of readings, else why not.
 
     `fault` is the code of a problem where the row holds numbers that cannot be placed: that is never left out quietly.
+    `note` is the code of a note where a row at the foot is not what its label says.
     """
 
     row: int
     stamps: tuple[Stamp, ...] = ()
     why: str = ""
     fault: str = ""
+    note: str = ""
 
 
 def sort_rows(
@@ -40,7 +43,7 @@ def sort_rows(
 ) -> Iterator[Sorted]:
     """Every filled row of a table, sorted; `times` and `readings` are columns of the page."""
     width = table.columns[-1] + 1
-    usual = _usual_length(table)
+    usual, feet = _usual_length(table), Feet(table, readings)
     late: list[int] = []
     kept: list[int] = []
     final = len(table.page.rows) - 1
@@ -67,7 +70,9 @@ def sort_rows(
                 kept.append(row)
                 yield Sorted(row, tuple(stamp for stamp in stamps if stamp is not None))
         elif _foot(own):
-            yield Sorted(row, why=f"an average or total, by its first word: {_label(own)}")
+            differs = feet.differs(row, kept, _label(own))
+            why = f"an average or total, by its first word: {_label(own)}"
+            yield Sorted(row, why=f"{why}; {differs}" if differs else why, note="foot-differs" if differs else "")
         elif not any(is_numberlike(at(cells, c)) or _word(at(cells, c)) for c in readings):
             yield Sorted(row, why=f"a row of text: {_label(own)}")
         else:
@@ -143,19 +148,6 @@ def _first_text(cells: Sequence[Raw], times: Sequence[int], table: Table) -> str
         if column not in times and isinstance(cell, str) and not blank(cell)
     ]
     return texts[0][:60] if texts else ""
-
-
-def number(cell: Raw, style: NumberStyle) -> float | None:
-    """A cell's plain number; None for a word or nothing."""
-    if isinstance(cell, float):
-        return cell
-    if not isinstance(cell, str):
-        return None
-    try:
-        value = float(style.plain(cell))
-    except ValueError:
-        return None
-    return value if abs(value) < float("inf") else None
 
 
 def _is_statistic(table: Table, row: int, kept: Sequence[int], readings: Sequence[int]) -> bool:

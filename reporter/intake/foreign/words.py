@@ -172,6 +172,21 @@ def is_foot(text: str) -> bool:
     return any(words == name or (len(name) > 2 and words.startswith(f"{name} ")) for name in _table()["foot"]["words"])
 
 
+@lru_cache(4096)
+def statistic_of(text: str) -> str:
+    """Which statistic the label of a row at the foot names: ``mean``, ``sum``, ``highest``, ``lowest``, or empty."""
+    words = set(folded(text).split())
+    said = [name for name, labels in _table()["foot"]["statistics"].items() if words & set(labels)]
+    return said[0] if len(said) == 1 else ""
+
+
+@lru_cache(4096)
+def title_kind(text: str) -> str:
+    """What a label above a table names: ``unit``, ``facility``, or empty."""
+    words = folded(text)
+    return next((kind for kind, labels in _table()["titles"].items() if words in labels), "")
+
+
 def other_words(text: str) -> bool:
     """Whether a header has words of something that is no reading, such as a status or a range."""
     rest = folded(text)

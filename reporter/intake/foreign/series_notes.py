@@ -1,0 +1,101 @@
+"""Findings of a series as notes with their cells: of a record, within its runs, or of a logger's file as a whole."""
+
+from __future__ import annotations
+
+from bisect import bisect_left, bisect_right
+from collections.abc import Mapping, Sequence
+from datetime import datetime
+
+import numpy as np
+
+from reporter.errors import UnitError
+from reporter.intake.foreign.apply import ForeignReadings
+from reporter.intake.foreign.series_findings import Finding, Trace, Values, findings
+from reporter.problems import Place, Problem, problem
+from reporter.record import Channel, ReadingKind, Readings, Record
+from reporter.units import convert
+
+#: Notes of one kind in one channel that are said.
+LISTED = 5
+
+
+def notes_of_file(made: ForeignReadings) -> tuple[Problem, ...]:
+    """What the whole series of a logger's file shows; no run is known yet."""
+    gases = {column.channel: column.gas for column in made.columns}
+    traces = _traces(made.readings, gases, {})
+    return _said(made.readings, findings(_times(made.readings), traces, [(0, len(made.readings.rows))]))
+
+
+def notes_of_record(record: Record) -> tuple[Problem, ...]:
+    """What the readings of each run show; readings that an event excludes are not looked at."""
+    times = _times(record.readings)
+    gases = {channel.channel.value: channel.gas.value for channel in record.channels}
+    cylinders = {channel.channel.value: _cylinders(record, channel) for channel in record.channels}
+    traces = _traces(record.readings, gases, cylinders)
+    for event in record.events:
+        if event.readings_excluded is not None and event.readings_excluded.value:
+            until = event.time if event.until is None else event.until
+            for trace in traces:
+                trace.values[bisect_left(times, event.time.value) : bisect_right(times, until.value)] = np.nan
+    spans = [(bisect_right(times, run.start.value), bisect_right(times, run.end.value)) for run in record.runs]
+    return _said(record.readings, findings(times, traces, spans))
+
+
+def _times(readings: Readings) -> list[datetime]:
+    return [row.time for row in readings.rows]
+
+
+def _traces(readings: Readings, gases: Mapping[str, str], cylinders: Mapping[str, Sequence[float]]) -> list[Trace]:
+    """The channels as columns of numbers."""
+    return [
+        Trace(name, gases.get(name, ""), _numbers(readings, index), tuple(cylinders.get(name, ())))
+        for index, name in enumerate(readings.channels)
+    ]
+
+
+def _numbers(readings: Readings, index: int) -> Values:
+    cells = (row.readings[index] for row in readings.rows)
+    return np.array([r.value if r.kind is ReadingKind.NUMBER else np.nan for r in cells], dtype=np.float64)
+
+
+def _cylinders(record: Record, channel: Channel) -> list[float]:
+    """The certified values of the gas of a channel, in its unit."""
+    values = []
+    for cylinder in record.cylinders:
+        if cylinder.gas.value == channel.gas.value:
+            unit = channel.unit.value.unit if cylinder.unit is None else cylinder.unit.value.unit
+            try:
+                values.append(convert(cylinder.certified_value.value, unit, channel.unit.value.unit))
+            except UnitError:
+                continue
+    return sorted(set(values))
+
+
+def _said(readings: Readings, found: Sequence[Finding]) -> tuple[Problem, ...]:
+    """Findings as notes: the cell of the first reading, and the times."""
+    notes = []
+    for code, name in dict.fromkeys((f.code, f.channel) for f in found):
+        same = [f for f in found if (f.code, f.channel) == (code, name)]
+        for number, one in enumerate(same[:LISTED], start=1):
+            more = f"; and {len(same) - LISTED} more" if number == LISTED < len(same) else ""
+            place = _place(readings, one)
+            notes.append(problem(code, place, f"{_span(readings, one)}: {one.words}{more}"))
+    return tuple(notes)
+
+
+def _place(readings: Readings, one: Finding) -> Place:
+    index = readings.channels.index(one.channel) if one.channel else 0
+    column = readings.columns[index] if index < len(readings.columns) else ""
+    row = readings.rows[one.first].row
+    where = readings.place
+    return Place(where.file, where.sheet, f"{column}{row}", one.channel)
+
+
+def _span(readings: Readings, one: Finding) -> str:
+    first, last = readings.rows[one.first].time, readings.rows[one.last].time
+    form = "%H:%M" if not (first.second or last.second) else "%H:%M:%S"
+    start = f"{first:%Y-%m-%d} {first.strftime(form)}"
+    if one.first == one.last:
+        return start
+    same = first.date() == last.date()
+    return f"{start} to {last.strftime(form) if same else last.strftime(f'%Y-%m-%d {form}')}"
