@@ -276,5 +276,6 @@ def _too_few(
 
 def not_measured(limit: Limit) -> Comparison:
     """A limit whose pollutant no channel measures."""
-    reason = f"no channel measures {limit.pollutant.value}"
+    named = find_gas(limit.pollutant.value)
+    reason = f"no channel measures {limit.pollutant.value if named is None else named.label}"
     return Comparison(limit=limit, key=f"comparison.{limit.key}", quantity="", runs=(), reason=reason)

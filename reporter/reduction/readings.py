@@ -21,7 +21,7 @@ from reporter.record import MoistureBasis, Reading, ReadingKind, text_of
 from reporter.reduction.book import Book, Lane
 from reporter.reduction.channel_units import channel_standard, is_mass
 from reporter.reduction.places import cells_of, readings_place
-from reporter.reduction.window import Window, missing_minutes
+from reporter.reduction.window import Window, clock_minutes, missing_minutes
 from reporter.units import dimension
 
 #: Share a value below detection is counted at, by the policy entered in the Test sheet.
@@ -117,6 +117,7 @@ def reduce_readings(book: Book, lane: Lane, span: Window) -> Series:
         used=tuple(found.used),
         left_out=tuple(found.left),
         missing_minutes=missing_minutes(span, found.used_at),
+        minutes=clock_minutes(span),
         interval=span.interval,
         first_row=int(rows.min(initial=rows[0])) if len(rows) else 0,
         last_row=int(rows.max(initial=0)),

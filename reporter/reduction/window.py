@@ -106,7 +106,7 @@ def missing_minutes(span: Window, used: Counts) -> tuple[datetime, ...]:
     """
     start, stop = span.run.start.value, span.run.end.value
     origin = start.replace(second=0, microsecond=0)
-    count = -((origin - stop) // _MINUTE)
+    count = clock_minutes(span)
     begin = (span.begin[np.isin(span.at, used)] - _stamp(origin)).astype(np.int64)
     end = begin + span.interval // _MICROSECOND
     minute = _MINUTE // _MICROSECOND
@@ -123,6 +123,12 @@ def missing_minutes(span: Window, used: Counts) -> tuple[datetime, ...]:
         if not (owned if whole else touched)[number]:
             found.append(at)
     return tuple(found)
+
+
+def clock_minutes(span: Window) -> int:
+    """How many clock minutes a run touches."""
+    origin = span.run.start.value.replace(second=0, microsecond=0)
+    return -((origin - span.run.end.value) // _MINUTE)
 
 
 def _covered(first: Counts, last: Counts, count: int) -> Where:

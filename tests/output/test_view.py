@@ -308,7 +308,7 @@ def test_an_average_of_some_runs_says_which(invalid: Outcome) -> None:
     limit = view.limits.limits[0]
     averaging = next(fact.text for fact in limit.facts if fact.label == "Averaging")
     assert "3 of 3 required (runs 1, 3, 4)" in averaging.replace("\u00a0", " ")
-    assert [problem.grade for problem in view.quality.problems] == ["run not counted", "note"]
+    assert [problem.grade for problem in view.quality.problems] == ["Run not counted", "Note"]
 
 
 def test_a_limit_says_route_factor_and_table(boiler: Outcome) -> None:

@@ -7,13 +7,13 @@ from dataclasses import replace
 from itertools import zip_longest
 
 from reporter.ledger import Entry, FromEquation
-from reporter.outcome import Check, RunState
-from reporter.output.numbers import FIGURE_SPACE, counted, formulas, unit_text
+from reporter.outcome import Bearing, Check, RunState
+from reporter.output.numbers import FIGURE_SPACE, capital, counted, formulas, unit_text
 from reporter.output.view.desk import Desk, gas_name
 from reporter.output.view.model import AnyCell, Block, Cell, Column, ProblemView, QualityView, Row, Table
 from reporter.output.view.not_applied import not_applied
 from reporter.output.view.standing import dagger
-from reporter.problems import Grade, Problem
+from reporter.problems import Problem
 
 #: A criterion with more bounds than this has each beside its value.
 _MOST_BOUNDS = 2
@@ -35,7 +35,7 @@ def quality(desk: Desk) -> QualityView:
         runs=tuple(_run_words(desk)),
         not_applied=not_applied(desk),
         problems=tuple(_problems(desk)),
-        assumed=tuple(formulas(sentence) for sentence in desk.outcome.stated if not _said_before(sentence)),
+        assumed=tuple(capital(formulas(sentence)) for sentence in desk.outcome.stated if not _said_before(sentence)),
     )
 
 
@@ -145,47 +145,33 @@ def _paragraph(desk: Desk, run: str, gas: str) -> str:
 
 
 def _problems(desk: Desk) -> list[ProblemView]:
-    """Problems, the gravest first; those of one code and standing together, in the order of the input."""
-    order = (Grade.UNREADABLE, Grade.BLOCKS, Grade.NOTE)
-    alike: dict[tuple[str, str], list[Problem]] = {}
-    for problem in sorted(desk.outcome.problems, key=lambda problem: order.index(problem.grade)):
-        alike.setdefault((problem.code, _standing(desk, problem)), []).append(problem)
+    """Problems, the gravest first; those of one code and bearing together, in the order of the input."""
+    order = list(Bearing)
+    bearings = [(problem, desk.outcome.bearing(problem)) for problem in desk.outcome.problems]
+    alike: dict[tuple[str, Bearing], list[Problem]] = {}
+    for problem, bearing in sorted(bearings, key=lambda one: order.index(one[1])):
+        alike.setdefault((problem.code, bearing), []).append(problem)
     return [
         ProblemView(
-            grade=standing,
+            grade=capital(desk.words(f"grade.{bearing.value}")),
             title=formulas(some[0].title),
             found=_found_words(desk, some),
             where=", ".join(dict.fromkeys(_where(problem) for problem in some)),
         )
-        for (_, standing), some in alike.items()
+        for (_, bearing), some in alike.items()
     ]
 
 
 def _found_words(desk: Desk, problems: Sequence[Problem]) -> str:
-    """What was found, once for the channels that share it; a minute without a reading is named by its beginning."""
+    """What was found, once for the channels that share it."""
     names = {channel.channel.value for channel in desk.outcome.record.channels}
     channels: dict[str, dict[str, None]] = {}
     for found in dict.fromkeys(problem.found for problem in problems if problem.found):
         name, comma, rest = found.partition(", ")
         head, words = (name, rest) if comma and name in names else ("", found)
-        channels.setdefault(words.replace("minute(s): ", "minute(s) beginning "), {})[head] = None
+        channels.setdefault(words, {})[head] = None
     texts = [", ".join(part for part in (*heads, words) if part) for words, heads in channels.items()]
     return formulas(counted("; ".join(texts)))
-
-
-def _standing(desk: Desk, problem: Problem) -> str:
-    """What a problem does, in words: a result is said to be withheld only where it is."""
-    if problem.grade is not Grade.BLOCKS:
-        return desk.words("grade.note" if problem.grade is Grade.NOTE else "grade.unreadable")
-    made = {one.key: one.compared for one in desk.outcome.comparisons}
-    if any(not made.get(key, True) for key in problem.concerns):
-        return desk.words("grade.withheld")
-    if problem.concerns and not any(key in made or key in desk.outcome.ledger for key in problem.concerns):
-        return desk.words("grade.withheld")
-    invalid = [f"run.{run.key}.{gas.segment}." for run in desk.outcome.runs for gas in run.gases if not gas.is_valid]
-    if any(key.startswith(tuple(invalid)) for key in problem.concerns if invalid):
-        return desk.words("grade.not_counted")
-    return desk.words("grade.blocks")
 
 
 def _where(problem: Problem) -> str:

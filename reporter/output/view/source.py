@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 from reporter.ledger import slug
 from reporter.methods.criteria import method_family
 from reporter.output.numbers import formulas, moment, shortest, unit_text
@@ -9,8 +11,8 @@ from reporter.output.view.desk import Desk, entered, gas_name, said
 from reporter.output.view.model import Block, Column, Item, Row, Table
 from reporter.output.view.operation import operation, run_columns
 from reporter.output.view.standing import DAGGER, cited_documents, dagger
-from reporter.output.view.tabular import aligned, filled, simple_table
-from reporter.record import Channel, FuelRow, Point
+from reporter.output.view.tabular import aligned, filled, side_by_side, simple_table
+from reporter.record import Channel, FuelRow, Point, Run
 from reporter.references import bibliography
 
 
@@ -91,11 +93,18 @@ def _analysis(row: FuelRow) -> str:
 
 def _process_log(desk: Desk) -> Block:
     """Means of the process log over each run, where the ledger holds them; else where the log is printed."""
-    runs = [run.run for run in desk.outcome.runs]
+    groups = side_by_side([run.run for run in desk.outcome.runs])
+    tables = [made for runs in groups if (made := _process_means(desk, runs)) is not None]
+    if not tables:
+        return Block(notes=(desk.words("lead.process_log", inputs=desk.section_number("inputs")),))
+    return Block(tables=tuple(tables))
+
+
+def _process_means(desk: Desk, runs: Sequence[Run]) -> Table | None:
     ledger = desk.outcome.ledger
     names = dict.fromkeys(entry.key.split(".")[3] for run in runs for entry in ledger.under(f"run.{run.key}.process"))
     if not names:
-        return Block(notes=(desk.words("lead.process_log", inputs=desk.section_number("inputs")),))
+        return None
     columns = (Column("Process log, mean over the run", width=3), Column("Unit", width=1.4), *run_columns(runs))
     rows = []
     for name in names:
@@ -103,7 +112,7 @@ def _process_log(desk: Desk) -> Block:
         found = next(entry for entry in entries if entry is not None)
         label = formulas(found.label.partition(", mean of")[0] or name.replace("_", " "))
         rows.append(Row((label, unit_text(found.unit), *desk.row(entries))))
-    return Block(tables=(aligned(Table(columns, tuple(rows))),))
+    return aligned(Table(columns, tuple(rows)))
 
 
 def location(desk: Desk) -> tuple[Block, ...]:
