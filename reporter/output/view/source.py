@@ -10,6 +10,7 @@ from reporter.output.numbers import formulas, moment, shortest, unit_text
 from reporter.output.view.desk import Desk, entered, gas_name, said
 from reporter.output.view.model import Block, Column, Item, Row, Table
 from reporter.output.view.operation import operation, run_columns
+from reporter.output.view.plane import plane_words, with_diameters
 from reporter.output.view.standing import DAGGER, cited_documents, dagger
 from reporter.output.view.tabular import aligned, filled, side_by_side, simple_table
 from reporter.record import Channel, FuelRow, Point, Run
@@ -118,13 +119,15 @@ def _process_means(desk: Desk, runs: Sequence[Run]) -> Table | None:
 def location(desk: Desk) -> tuple[Block, ...]:
     """Sampling plane, methods with editions, channels, points."""
     place = desk.outcome.record.location
+    equivalent = "location.equivalent_diameter"
     rows = (
         ("Duct", said(place.duct_shape)),
         ("Diameter", entered(place.diameter, "")),
         ("Width", entered(place.width, "")),
         ("Depth", entered(place.depth, "")),
-        ("Disturbance upstream", entered(place.disturbance_upstream, "")),
-        ("Disturbance downstream", entered(place.disturbance_downstream, "")),
+        ("Equivalent diameter", desk.number_text(equivalent) if equivalent in desk.outcome.ledger else ""),
+        ("Disturbance upstream", with_diameters(desk, "upstream", entered(place.disturbance_upstream, ""))),
+        ("Disturbance downstream", with_diameters(desk, "downstream", entered(place.disturbance_downstream, ""))),
         ("Ports", said(place.ports)),
         ("Elevation", entered(place.elevation, "")),
         ("Barometer height", entered(place.barometer_height, "")),
@@ -132,7 +135,7 @@ def location(desk: Desk) -> tuple[Block, ...]:
     )
     facts = [Item(label, text) for label, text in rows if text]
     facts += [Item(extra.item, _with_note(extra.entry, extra.note)) for extra in place.extra]
-    notes = () if facts else (desk.words("lead.no_location"),)
+    notes = plane_words(desk) if facts else (desk.words("lead.no_location"),)
     blocks = [Block(facts=tuple(facts), notes=notes), _methods(desk), _channels(desk)]
     if desk.outcome.record.points:
         blocks.append(_points(desk))
@@ -215,6 +218,6 @@ def _points(desk: Desk) -> Block:
 
 def _point(point: Point) -> str:
     times = [moment(time.value) for time in (point.from_time, point.until) if time is not None]
-    at = f" {'–'.join(times)}" if times else ""
+    at = f", {'–'.join(times)}" if times else ""
     distance = f" at {entered(point.distance, '')}" if point.distance is not None else ""
     return f"{point.point.value}{distance}{at}"
