@@ -12,7 +12,8 @@ from datetime import datetime
 from reporter.errors import LedgerError
 from reporter.gases import gas
 from reporter.ledger import Entry
-from reporter.outcome import Check, Comparison, GasResult, Outcome, RunResult, RunState
+from reporter.outcome import Comparison, GasResult, Outcome, RunResult, RunState
+from reporter.output.applied import Applied, applied
 from reporter.output.numbers import capital, day, moment, runs_text, shortest, shown, unit_text
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.quantities import quantity_of
@@ -229,20 +230,22 @@ def _criteria(outcome: Outcome, words: Phrases) -> list[str]:
     if not missed:
         return [paragraph(words("lead.quality_all_met", count=len(checks)))]
     lead = words("lead.quality_some", met=len(checks) - len(missed), count=len(checks))
-    return [paragraph(lead), *(_missed(outcome, check, words) for check in missed)]
+    return [paragraph(lead), *(_missed(outcome, line, words) for line in applied(outcome, missed))]
 
 
-def _missed(outcome: Outcome, check: Check, words: Phrases) -> str:
-    ledger = outcome.ledger
+def _missed(outcome: Outcome, line: Applied, words: Phrases) -> str:
+    ledger, check = outcome.ledger, line.check
     value, bound = ledger.get(check.value), ledger.get(check.bound)
     numbers = ""
     if value is not None and bound is not None:
-        numbers = f": {_number(value)}, {check.relation} {_number(bound)}"
+        within = words("criterion.within", bound=_number(bound))
+        numbers = f": {_number(value)}, {within if check.difference else f'{check.relation} {_number(bound)}'}"
     difference, alternative = ledger.get(check.difference), ledger.get(check.alternative)
     if difference is not None and alternative is not None:
-        numbers += f" ({_number(difference)}, {words('criterion.alternative')} {_number(alternative)})"
+        said = words("criterion.instead", difference=_number(difference), most=_number(alternative))
+        numbers += f"; {said}"
     about = f"{check.gas}: " if check.gas else ""
-    said = f"{about}{check.title} {words('criterion.not_met')} ({check.citation.text()}){numbers}"
+    said = f"{about}{line.title} {words('criterion.not_met')} ({check.citation.text()}){numbers}"
     lines = [paragraph(said)]
     if check.consequence:
         lines.append(paragraph(check.consequence, indent=4, hang=4))
