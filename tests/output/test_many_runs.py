@@ -8,7 +8,7 @@ import pytest
 from conftest import ISSUED
 
 from reporter.outcome import Outcome
-from reporter.output.view import build_view
+from reporter.output.view.build import build_view
 from reporter.output.view.model import Table, View
 from reporter.output.view.tabular import ACROSS, side_by_side
 from reporter.record import ProcessLog

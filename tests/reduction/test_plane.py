@@ -11,7 +11,7 @@ from hypothesis import strategies as st
 
 from reporter.methods.method_1 import equivalent_diameter
 from reporter.outcome import Outcome
-from reporter.output.view import build_view
+from reporter.output.view.build import build_view
 from reporter.record import Location
 from tests.record_factory import assessed, number, text, value
 

@@ -13,8 +13,8 @@ from reporter.output.view.calibrations import calibrations
 from reporter.output.view.checklist import checklist
 from reporter.output.view.closing import cautions, references, statements
 from reporter.output.view.combustion import combustion
-from reporter.output.view.criteria import criteria
 from reporter.output.view.cover import cover, mark, report_number, revision, signatures
+from reporter.output.view.criteria import criteria
 from reporter.output.view.desk import Desk
 from reporter.output.view.documents import Document, documents
 from reporter.output.view.inputs import inputs
