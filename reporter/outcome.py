@@ -128,6 +128,13 @@ class RunResult:
     gases: tuple[GasResult, ...]
     exclusions: tuple[Exclusion, ...]
 
+    @property
+    def gaps(self) -> tuple[int, int]:
+        """How many clock minutes lack a valid reading of a gas, and how many the run has."""
+        series = [gas.series for gas in self.gases if gas.series is not None]
+        missing = {minute for one in series for minute in one.missing_minutes}
+        return len(missing), max((one.minutes for one in series), default=0)
+
     def gas(self, segment: str) -> GasResult | None:
         """The result of a gas, by key segment."""
         return next((gas for gas in self.gases if gas.segment == segment), None)

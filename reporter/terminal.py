@@ -99,7 +99,8 @@ def _runs(outcome: Outcome, words: Phrases) -> list[str]:
 
 def _state(outcome: Outcome, result: RunResult, words: Phrases) -> str:
     if result.state is RunState.VALID:
-        return words("run.valid")
+        missing, whole = result.gaps
+        return words("run.valid_with_gaps", missing=missing, whole=whole) if missing else words("run.valid")
     reason = "; ".join(result.reasons)
     if result.state is RunState.EXCLUDED:
         return words("run.excluded_because", reason=reason) if reason else words("run.excluded")

@@ -105,11 +105,14 @@ def _readings(desk: Desk, result: RunResult) -> AnyCell:
     if not texts:
         return desk.missing
     if len(set(texts.values())) == 1:
-        return Cell(f"{next(iter(texts.values()))} of each gas", to=next(iter(keys.values())))
+        return Cell(f"of each gas: {next(iter(texts.values()))}", to=next(iter(keys.values())))
     return ", ".join(f"{gas_name(segment)} {text}" for segment, text in texts.items())
 
 
 def _state(desk: Desk, result: RunResult) -> str:
+    missing, whole = result.gaps
+    if result.state is RunState.VALID and missing:
+        return desk.words("run.valid_with_gaps", missing=missing, whole=whole)
     name = {RunState.VALID: "valid", RunState.INVALID: "invalid", RunState.EXCLUDED: "excluded"}[result.state]
     reasons = formulas("; ".join(result.reasons))
     words = desk.words(f"run.{name}")
