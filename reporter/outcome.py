@@ -23,6 +23,16 @@ class RunState(Enum):
     EXCLUDED = "excluded by the user"
 
 
+class Bearing(Enum):
+    """What a problem does to the results; the value names its words in the phrase file."""
+
+    UNREADABLE = "unreadable"
+    WITHHELD = "withheld"
+    NOT_COUNTED = "not_counted"
+    BEARS = "blocks"
+    NOTE = "note"
+
+
 @dataclass(frozen=True, slots=True)
 class Check:
     """One criterion as it was applied.
@@ -62,7 +72,8 @@ class Series:
     """The readings of one channel that a run's mean rests on, and what was left out.
 
     `first_row` and `last_row` are the sheet rows of the window; `used` the (time, value) pairs in the mean;
-    `left_out` the others with their reading; `missing_minutes` each clock minute without a valid reading.
+    `left_out` the others with their reading; `missing_minutes` each clock minute without a valid reading, of
+    the `minutes` the run touches.
     """
 
     key: str
@@ -70,6 +81,7 @@ class Series:
     used: tuple[tuple[datetime, float], ...]
     left_out: tuple[tuple[datetime, Reading, str], ...]
     missing_minutes: tuple[datetime, ...]
+    minutes: int
     interval: timedelta
     first_row: int
     last_row: int
@@ -116,6 +128,13 @@ class RunResult:
     gases: tuple[GasResult, ...]
     exclusions: tuple[Exclusion, ...]
 
+    @property
+    def gaps(self) -> tuple[int, int]:
+        """How many clock minutes lack a valid reading of a gas, and how many the run has."""
+        series = [gas.series for gas in self.gases if gas.series is not None]
+        missing = {minute for one in series for minute in one.missing_minutes}
+        return len(missing), max((one.minutes for one in series), default=0)
+
     def gas(self, segment: str) -> GasResult | None:
         """The result of a gas, by key segment."""
         return next((gas for gas in self.gases if gas.segment == segment), None)
@@ -158,7 +177,7 @@ class Comparison:
 
 @dataclass(frozen=True, slots=True)
 class Finding:
-    """What the combustion balance says of a run, in words, with the keys it rests on."""
+    """What the combustion balance says of a run (by key segment), in words, with the keys it rests on."""
 
     run: str
     words: str
@@ -187,6 +206,20 @@ class Outcome:
     def run(self, key: str) -> RunResult:
         """The run of a key segment."""
         return next(run for run in self.runs if run.key == key)
+
+    def bearing(self, problem: Problem) -> Bearing:
+        """What a problem of this outcome does: a result is said to be withheld only where it is."""
+        if problem.grade is not Grade.BLOCKS:
+            return Bearing.NOTE if problem.grade is Grade.NOTE else Bearing.UNREADABLE
+        made = {one.key: one.compared for one in self.comparisons}
+        if any(not made.get(key, True) for key in problem.concerns):
+            return Bearing.WITHHELD
+        if problem.concerns and not any(key in made or key in self.ledger for key in problem.concerns):
+            return Bearing.WITHHELD
+        invalid = tuple(f"run.{run.key}.{gas.segment}." for run in self.runs for gas in run.gases if not gas.is_valid)
+        if any(key.startswith(invalid) for key in problem.concerns):
+            return Bearing.NOT_COUNTED
+        return Bearing.BEARS
 
     @property
     def worst(self) -> Grade | None:

@@ -7,26 +7,21 @@ of the report; numbers are rounded for print only.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import replace
 from datetime import datetime
 
 from reporter.errors import LedgerError
 from reporter.gases import gas
 from reporter.ledger import Entry
-from reporter.outcome import Check, Comparison, GasResult, Outcome, RunResult, RunState
-from reporter.output.numbers import day, moment, shortest, shown, unit_text
+from reporter.outcome import Comparison, GasResult, Outcome, RunResult, RunState
+from reporter.output.applied import Applied, applied
+from reporter.output.numbers import capital, day, moment, runs_text, shortest, shown, unit_text
 from reporter.output.phrases import Phrases, load_phrases
-from reporter.problems import Grade, Problem
 from reporter.quantities import quantity_of
 from reporter.record import text_of
 from reporter.synthetic import stamped
+from reporter.terminal_problems import problems_text as problems_text
 from reporter.terminal_text import paragraph, section, table
 
-_GRADES = {
-    Grade.UNREADABLE: "Cannot be read",
-    Grade.BLOCKS: "Results withheld",
-    Grade.NOTE: "Notes",
-}
 #: Rows below the gases in the table of results, where they are in the ledger.
 _ALSO = ("moisture", "combustion.excess_air", "combustion.equivalence_ratio", "combustion.fuel_factor")
 
@@ -51,27 +46,11 @@ def summary(outcome: Outcome) -> str:
         section("Results of the runs", _results(outcome)),
         section("Limits as entered", _limits(outcome, words)),
         section("Criteria", _criteria(outcome, words)),
-        section("What fuel, air and readings imply", [_finding(outcome, f.run, f.words) for f in outcome.findings]),
-        section("Taken where nothing was entered", [paragraph(line) for line in outcome.stated]),
-        problems_text(outcome.problems),
+        section("What fuel, air and readings imply", _findings(outcome)),
+        section("Taken where nothing was entered", [paragraph(capital(line)) for line in outcome.stated]),
+        problems_text(outcome.problems, outcome.bearing),
     ]
     return "\n\n".join(part for part in parts if part)
-
-
-def problems_text(problems: Sequence[Problem]) -> str:
-    """Problems by grade, the gravest first, each with place, found, expected and what to do.
-
-    Problems that differ only in what was found are printed as one; the number counts each.
-    """
-    groups = []
-    for grade, title in _GRADES.items():
-        group = [problem for problem in problems if problem.grade is grade]
-        alike: dict[Problem, list[str]] = {}
-        for problem in group:
-            alike.setdefault(replace(problem, found="", concerns=()), []).append(problem.found)
-        blocks = [_problem(problem, found) for problem, found in alike.items()]
-        groups.append(section(f"{title} ({len(group)})", blocks))
-    return "\n\n".join(group for group in groups if group)
 
 
 def overview(rows: Sequence[tuple[str, str, tuple[int, int]]]) -> str:
@@ -79,17 +58,6 @@ def overview(rows: Sequence[tuple[str, str, tuple[int, int]]]) -> str:
     cells = [[name, words, str(withheld), str(notes)] for name, words, (withheld, notes) in rows]
     head = ["Input", "State", "Withheld", "Notes"]
     return section(f"{len(rows)} inputs", [table(head, cells, numbers={2, 3}, wrapped=1)])
-
-
-def _problem(problem: Problem, found: Sequence[str]) -> str:
-    """A problem, or several that differ in what was found alone."""
-    where = problem.place.text()
-    lines = [paragraph(f"{where}: {problem.title}" if where else problem.title)]
-    facts = [("Found:", words) for words in found]
-    for name, words in (*facts, ("Expected:", problem.expected), ("To do:", problem.remedy)):
-        if words:
-            lines.append(paragraph(f"{name:<10}{words}", indent=4, hang=14))
-    return "\n".join(lines)
 
 
 def _head(outcome: Outcome) -> str:
@@ -131,7 +99,8 @@ def _runs(outcome: Outcome, words: Phrases) -> list[str]:
 
 def _state(outcome: Outcome, result: RunResult, words: Phrases) -> str:
     if result.state is RunState.VALID:
-        return words("run.valid")
+        missing, whole = result.gaps
+        return words("run.valid_with_gaps", missing=missing, whole=whole) if missing else words("run.valid")
     reason = "; ".join(result.reasons)
     if result.state is RunState.EXCLUDED:
         return words("run.excluded_because", reason=reason) if reason else words("run.excluded")
@@ -262,20 +231,22 @@ def _criteria(outcome: Outcome, words: Phrases) -> list[str]:
     if not missed:
         return [paragraph(words("lead.quality_all_met", count=len(checks)))]
     lead = words("lead.quality_some", met=len(checks) - len(missed), count=len(checks))
-    return [paragraph(lead), *(_missed(outcome, check, words) for check in missed)]
+    return [paragraph(lead), *(_missed(outcome, line, words) for line in applied(outcome, missed))]
 
 
-def _missed(outcome: Outcome, check: Check, words: Phrases) -> str:
-    ledger = outcome.ledger
+def _missed(outcome: Outcome, line: Applied, words: Phrases) -> str:
+    ledger, check = outcome.ledger, line.check
     value, bound = ledger.get(check.value), ledger.get(check.bound)
     numbers = ""
     if value is not None and bound is not None:
-        numbers = f": {_number(value)}, {check.relation} {_number(bound)}"
+        within = words("criterion.within", bound=_number(bound))
+        numbers = f": {_number(value)}, {within if check.difference else f'{check.relation} {_number(bound)}'}"
     difference, alternative = ledger.get(check.difference), ledger.get(check.alternative)
     if difference is not None and alternative is not None:
-        numbers += f" ({_number(difference)}, {words('criterion.alternative')} {_number(alternative)})"
+        said = words("criterion.instead", difference=_number(difference), most=_number(alternative))
+        numbers += f"; {said}"
     about = f"{check.gas}: " if check.gas else ""
-    said = f"{about}{check.title} {words('criterion.not_met')} ({check.citation.text()}){numbers}"
+    said = f"{about}{line.title} {words('criterion.not_met')} ({check.citation.text()}){numbers}"
     lines = [paragraph(said)]
     if check.consequence:
         lines.append(paragraph(check.consequence, indent=4, hang=4))
@@ -286,7 +257,9 @@ def _number(entry: Entry) -> str:
     return f"{shown(entry)} {unit_text(entry.unit)}".strip()
 
 
-def _finding(outcome: Outcome, run: str, said: str) -> str:
-    names = (result.run.run.value for result in outcome.runs if run in (result.key, result.run.run.value))
-    name = next(names, "")
-    return paragraph(f"Run {name}: {said}" if name else said)
+def _findings(outcome: Outcome) -> list[str]:
+    """Findings in words, those of several runs once."""
+    names: dict[str, list[str]] = {}
+    for finding in outcome.findings:
+        names.setdefault(finding.words, []).append(outcome.run(finding.run).run.run.value if finding.run else "")
+    return [paragraph(f"{capital(runs_text(some))}: {words}" if all(some) else words) for words, some in names.items()]

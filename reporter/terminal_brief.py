@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections import Counter
 
 from reporter.outcome import Comparison, Outcome, RunState
-from reporter.output.numbers import shown, unit_text
+from reporter.output.numbers import counted, shown, unit_text
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.problems import Grade
 from reporter.record import text_of
@@ -18,19 +18,23 @@ def brief(outcome: Outcome) -> str:
     words = load_phrases()
     lines = [paragraph(f"{_runs(outcome)}; {_criteria(outcome)}")]
     lines += [paragraph(_limit(outcome, comparison, words)) for comparison in outcome.comparisons]
-    withheld = [problem for problem in outcome.problems if problem.grade is Grade.BLOCKS]
-    for problem in withheld:
-        lines.append(paragraph(f"withheld: {problem.title.lower()}. {problem.found} [{problem.code}]"))
+    for problem in outcome.problems:
+        if problem.grade is Grade.BLOCKS:
+            does = words(f"grade.{outcome.bearing(problem).value}")
+            title = problem.title[:1].lower() + problem.title[1:]
+            lines.append(paragraph(f"{does}: {title}. {problem.found} [{problem.code}]"))
     notes = sum(1 for problem in outcome.problems if problem.grade is Grade.NOTE)
     if notes:
-        lines.append(paragraph(f"{notes} notes: `fluebook check` lists them, and so does the report"))
+        said = counted(f"{notes} note(s)")
+        them = "it" if notes == 1 else "them"
+        lines.append(paragraph(f"{said}: `fluebook check` lists {them}, and so does the report"))
     return section(stamped(outcome.record, outcome.record.source.name), lines)
 
 
 def _runs(outcome: Outcome) -> str:
     states = Counter(result.state for result in outcome.runs)
     parts = [f"{count} {state.value}" for state in RunState if (count := states[state])]
-    return f"{len(outcome.runs)} runs: {', '.join(parts)}"
+    return counted(f"{len(outcome.runs)} run(s): {', '.join(parts)}")
 
 
 def _criteria(outcome: Outcome) -> str:

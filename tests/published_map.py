@@ -21,6 +21,7 @@ from reporter.conversions import converted
 from reporter.equation import System
 from reporter.gases import gas, molar_mass
 from reporter.methods import f_factors as ff
+from reporter.methods import method_1 as m1
 from reporter.methods import method_2 as m2
 from reporter.methods import method_3 as m3
 from reporter.methods import method_3b as m3b
@@ -278,7 +279,9 @@ ANSWERS: dict[str, Answer] = {
     "drift_percent_of_span": lambda g: (
         -m7e.calibration_error(direct=g["c_read"], certified=g["c_certified"], span=g["span"])
     ),
-    # Methods 2, 3, 3B, 4
+    # Methods 1, 2, 3, 3B, 4
+    "eq_1_1": _renamed(m1.equivalent_diameter, length="l", width="w"),
+    "duct_diameters": _renamed(m1.in_diameters, distance="l", diameter="d"),
     "eq_3_1": _renamed(m3.dry_molecular_weight, co2="co2d", o2="o2d", n2="n2d", co="cod"),
     "molecular_weight_wet": _renamed(m3.wet_molecular_weight, md="m_d", bws="b_ws"),
     "molecular_weight_wet_from_composition": _wet_from_composition,

@@ -12,7 +12,7 @@ import pytest
 from reporter.assess.pipeline import assess
 from reporter.intake import read, read_bytes
 from reporter.outcome import Finding, Outcome, RunState
-from reporter.output.numbers import shown
+from reporter.output.numbers import counted, shown
 from reporter.problems import Place, problem
 from reporter.terminal import overview, problems_text, summary
 from reporter.terminal_text import WIDTH, encodable, paragraph, table
@@ -56,7 +56,7 @@ def test_every_run_limit_and_problem_is_there(name: str) -> None:
         assert f" {comparison.limit.limit_id.value}: " in text
     for found in outcome.problems:
         assert found.title in text
-        assert flat(found.found) in text
+        assert flat(counted(found.found)) in text
         assert flat(found.remedy) in text
 
 

@@ -10,6 +10,7 @@ from typing import Any
 from reporter.assess.averages import Average, order_of_averaging
 from reporter.assess.extremes import highest_of_valid, lowest_of_valid
 from reporter.assess.rounding import Rule, decimals_of, rounding_rule, significant_places
+from reporter.assess.validity import channels_behind
 from reporter.basis import NO_BASIS, NO_VOLUME, Basis, Moisture, Oxygen, OxygenKind
 from reporter.conversions import convert_entry
 from reporter.equation import Equation
@@ -228,9 +229,9 @@ def _notes(book: Book, made: Made, each: bool, limit: Limit) -> tuple[str, ...]:
     notes: list[str] = []
     if limit.minimum_run_length is not None:
         bound = book.ledger[f"limit.{limit.key}.minimum_run_length"]
-        lengths = [(about.run.run.value, book.given_duration(about.run).value) for about, _, _ in made.average.runs]
+        lengths = [(about.run.run.value, _valid_minutes(book, about, entry)) for about, entry, _ in made.average.runs]
         notes += [
-            f"run {name} is {minutes:g} min long; the limit asks for {bound.value:g} min"
+            f"run {name} has {minutes:g} min with valid readings; the limit asks for {bound.value:g} min"
             for name, minutes in lengths
             if minutes < bound.value
         ]
@@ -243,6 +244,13 @@ def _notes(book: Book, made: Made, each: bool, limit: Limit) -> tuple[str, ...]:
     if made.plan.lane.gas.by_analogy and made.plan.quantity == kinds.EMISSION_RATE:
         notes.append("by analogy with Method 19")
     return tuple(notes)
+
+
+def _valid_minutes(book: Book, about: RunBook, entry: Entry) -> float:
+    """The fewest valid minutes of the channels a result rests on; the length of the run where it rests on none."""
+    keys = (about.key(f"{segment}.valid_minutes") for segment in channels_behind(book, about, entry))
+    found = [float(book.ledger[key].value) for key in keys if key in book.ledger]
+    return min(found, default=float(book.given_duration(about.run).value))
 
 
 def _required(book: Book, limit: Limit, key: str) -> Entry:
@@ -276,5 +284,6 @@ def _too_few(
 
 def not_measured(limit: Limit) -> Comparison:
     """A limit whose pollutant no channel measures."""
-    reason = f"no channel measures {limit.pollutant.value}"
+    named = find_gas(limit.pollutant.value)
+    reason = f"no channel measures {limit.pollutant.value if named is None else named.label}"
     return Comparison(limit=limit, key=f"comparison.{limit.key}", quantity="", runs=(), reason=reason)

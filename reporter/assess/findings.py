@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 
+from reporter.minutes import minutes_text
 from reporter.outcome import Series
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book, Lane
@@ -34,11 +35,11 @@ def look_at_record(
 def _coverage(book: Book, lane: Lane, about: RunBook, found: Series) -> None:
     if not found.missing_minutes:
         return
-    minutes = ", ".join(f"{minute:%H:%M}" for minute in found.missing_minutes)
     excluded = sum(1 for _, reading, why in found.left_out if why != reading.kind.value)
-    said = f"{lane.name}, run {about.run.run.value}: {len(found.missing_minutes)} minute(s): {minutes}"
+    said = f"{lane.name}, run {about.run.run.value}: {minutes_text(found.missing_minutes)}"
+    said += f" of {found.minutes}; the mean rests on {len(found.used)} reading(s)"
     if excluded:
-        said += f" ({excluded} reading(s) excluded by an event)"
+        said += f", {excluded} reading(s) are excluded by an event"
     book.trouble("coverage-low", about.run.place, said)
 
 

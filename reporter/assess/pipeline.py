@@ -28,6 +28,7 @@ from reporter.reduction.fuels import run_factors, shares
 from reporter.reduction.heat import heat_input, heat_inputs
 from reporter.reduction.levels import check_levels
 from reporter.reduction.moisture import moisture
+from reporter.reduction.plane import sampling_plane
 from reporter.reduction.plans import Plan, plans
 from reporter.reduction.process import reduce_load
 from reporter.reduction.process_log import reduce_process_log
@@ -57,6 +58,7 @@ def assess(record: Record) -> Outcome:
     record = as_draft(record)
     book = Book(record, Ledger(record.system))
     _say_synthetic(book)
+    sampling_plane(book)
     tracks = lanes(record)
     runs = runs_in_order(record)
     look_at_barometer(book, runs)

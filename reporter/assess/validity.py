@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from reporter.ledger import Entry, FromCells
-from reporter.methods.criteria import all_met, at_or_above
+from reporter.methods.criteria import all_met
 from reporter.record import Limit, text_of
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
+from reporter.reduction.coverage import long_enough
 
 
 def included(book: Book, about: RunBook) -> Entry | None:
@@ -42,17 +43,11 @@ def counts(book: Book, about: RunBook, entry: Entry, limit: Limit | None, *, wha
         flags.append(shut)
         name += ".included"
     if limit is not None and limit.minimum_run_length is not None:
-        flags.append(_long_enough(book, about, limit))
+        lanes_behind = [about.corrected[segment].lane for segment in segments]
+        flags += [long_enough(book, about.run, lane, limit) for lane in lanes_behind or (None,)]
         name += f".limit_{limit.key}"
     if not segments:
         flags += [corrected.valid for corrected in about.corrected.values()]
     if not flags:
         return book.state(about.key("valid.all"), 1.0, "1", "no analyzer in this run")
     return book.apply(all_met, about.key(f"valid.{name}"), {"flags": flags})
-
-
-def _long_enough(book: Book, about: RunBook, limit: Limit) -> Entry:
-    assert limit.minimum_run_length is not None
-    bound = book.given(f"limit.{limit.key}.minimum_run_length", limit.minimum_run_length, "min")
-    inputs = {"value": book.given_duration(about.run), "bound": bound}
-    return book.apply(at_or_above, about.key(f"long_enough.limit_{limit.key}"), inputs)

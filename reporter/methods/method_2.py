@@ -83,8 +83,8 @@ def barometer_at(
 
 @equation(
     "P_s",
-    ("inHg", "kPa"),
-    {"barometric": ("inHg", "kPa"), "static": ("inH2O", "kPa")},
+    "inHg",
+    {"barometric": "inHg", "static": "inH2O"},
     _CITE,
     symbols={"barometric": "P_bar", "static": "P_g"},
 )
@@ -92,25 +92,50 @@ def absolute_pressure(
     *,
     barometric: Value,
     static: Value,
-    density: Value = constant(13.6, ("inH2O/inHg", "1"), si=1.0, cite=_CITE),
+    density: Value = constant(13.6, "inH2O/inHg", cite=_CITE),
 ) -> Value:
-    """Absolute pressure in the stack.
+    """Absolute pressure in the stack, the static pressure read on a water gauge.
 
     Parameters
     ----------
     barometric
-        Barometric pressure at the sampling site [inHg or kPa].
+        Barometric pressure at the sampling site [inHg].
     static
-        Static pressure of the stack against the barometer [inH2O or kPa], signed.
+        Static pressure of the stack against the barometer [inH2O], signed.
     density
-        Printed 13.6 inH2O/inHg; 1 in SI, where both pressures have one unit.
+        Printed 13.6 inH2O/inHg.
 
     Returns
     -------
     float
-        Absolute pressure [inHg or kPa].
+        Absolute pressure [inHg].
     """
     return barometric + static / density
+
+
+@equation(
+    "P_s",
+    "kPa",
+    {"barometric": "kPa", "static": "kPa"},
+    _CITE,
+    symbols={"barometric": "P_bar", "static": "P_g"},
+)
+def absolute_pressure_metric(*, barometric: Value, static: Value) -> Value:
+    """Absolute pressure in the stack, both pressures in one unit.
+
+    Parameters
+    ----------
+    barometric
+        Barometric pressure at the sampling site [kPa].
+    static
+        Static pressure of the stack against the barometer [kPa], signed.
+
+    Returns
+    -------
+    float
+        Absolute pressure [kPa].
+    """
+    return barometric + static
 
 
 @equation(

@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import math
 import re
+from collections.abc import Sequence
 from datetime import date, datetime
 from decimal import ROUND_HALF_EVEN, Decimal
 
@@ -114,6 +115,16 @@ def counted(text: str) -> str:
     """A sentence of ours with its counted words in the right number: ``3 minute(s)`` as ``3 minutes``."""
     text = _COUNTED.sub(lambda m: f"{m[1]} {m[2]}{'' if m[1] == '1' else 's'}", text)
     return _ONE.sub(lambda m: f"1 {m[1]}", text)
+
+
+def runs_text(names: Sequence[str]) -> str:
+    """Runs by name in words, as in ``runs 1, 3, 4``."""
+    return f"run{'' if len(names) == 1 else 's'} {', '.join(names)}"
+
+
+def capital(text: str) -> str:
+    """A text with its first letter a capital; the rest as it is."""
+    return text[:1].upper() + text[1:]
 
 
 def moment(value: datetime) -> str:

@@ -49,7 +49,7 @@ def _nothing_burned(book: Book, about: RunBook) -> bool:
         return False
     name = about.run.run.value
     words = "Oxygen at or above that of air: no combustion gas is left to balance."
-    book.findings.append(Finding(name, words, (oxygen.key,)))
+    book.findings.append(Finding(about.run.key, words, (oxygen.key,)))
     book.trouble("impossible-balance", about.run.place, f"run {name}: oxygen {oxygen.value:.4g} %")
     return True
 
@@ -110,7 +110,7 @@ def _say(book: Book, about: RunBook, state: State, burned: list[FuelRow]) -> Non
     if state.mixture:
         tell = ": tell the operator" if "rich" in state.mixture else ""
         words = f"Readings imply {state.mixture} combustion{tell}."
-        book.findings.append(Finding(about.run.run.value, words, (ratio.key,)))
+        book.findings.append(Finding(about.run.key, words, (ratio.key,)))
     doubts: dict[str, float] = {}
     for segment in ("o2", "co2"):
         u = reading_uncertainty(book, about, segment)
@@ -125,4 +125,4 @@ def _say(book: Book, about: RunBook, state: State, burned: list[FuelRow]) -> Non
     for found in findings(state, doubts, spreads=wide):
         if found.kind is FindingKind.IMPOSSIBLE:
             book.trouble("impossible-balance", about.run.place, f"run {about.run.run.value}: {found.text()}")
-            book.findings.append(Finding(about.run.run.value, found.text(), found.keys))
+            book.findings.append(Finding(about.run.key, found.text(), found.keys))

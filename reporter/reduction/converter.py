@@ -7,7 +7,7 @@ from reporter.methods.criteria import at_or_above, criteria
 from reporter.methods.method_7e import converter_efficiency
 from reporter.outcome import Check
 from reporter.record import Calibration, Level
-from reporter.reduction.book import Book, Lane
+from reporter.reduction.book import Book, Lane, runs_in_order
 from reporter.reduction.calibration import method_of
 from reporter.reduction.certificates import certificate_entry, expiry_fault
 from reporter.reduction.channel_units import given_in_channel_unit
@@ -39,7 +39,7 @@ def check_converter(book: Book, lane: Lane) -> None:
                 key=met.key,
                 title=f"{criterion.label}, {row.time.value:%H:%M}",
                 gas=lane.gas.label,
-                runs=(),
+                runs=tuple(run.key for run in runs_in_order(book.record)),
                 value=share.key,
                 bound=bound.key,
                 citation=criterion.citation,

@@ -138,10 +138,13 @@ def _standing(
 
 def _without_set(book: Book, found: Calibrations, run: Run) -> tuple[Entry, str]:
     """No whole set before a run: it was made too late, or not at all."""
-    late = any(made.whole for made in found.sets)
-    why = f"no whole direct set (zero or low, mid, high) of {found.lane.name} before run {run.run.value}"
-    code = "calibration-late" if late else "span-missing"
-    book.trouble(code, run.start.place, why, concerns=(found.lane.key(run, "corrected"),))
+    late = min((made.begin for made in found.sets if made.whole), default=None)
+    why = "no whole direct set (zero or low, mid, high) before the run"
+    if late is not None:
+        why += f": the first was made at {late:%H:%M}, after the run had begun"
+    code = "span-missing" if late is None else "calibration-late"
+    said = f"{found.lane.name}, run {run.run.value}: {why}"
+    book.trouble(code, run.start.place, said, concerns=(found.lane.key(run, "corrected"),))
     return book.state(found.lane.key(run, "standing"), 0.0, "1", why), why
 
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from reporter.conversions import convert_entry
@@ -19,6 +19,14 @@ from reporter.reduction.fuel_heat import heat_share
 _ELEMENTS = ("hydrogen", "carbon", "sulfur", "nitrogen", "oxygen")
 #: How far shares of heat input as entered may be from 100 % [%].
 _WHOLE = 0.1
+#: What an emission rate is made from, in words.
+_WANTED = {
+    "fd": "the dry F factor (F_d) of the fuel",
+    "fw": "the wet F factor (F_w) of the fuel",
+    "fc": "the carbon F factor (F_c) of the fuel",
+    "bws": "the moisture of the stack gas",
+    "bwa": "the moisture of the ambient air",
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -183,6 +191,16 @@ def run_factors(book: Book, about: RunBook, share: dict[str, Entry], table: str 
             else None
         )
     return Factors(*made)
+
+
+def factors_lacking(book: Book, share: Mapping[str, Entry], names: Sequence[str]) -> tuple[str, str]:
+    """Code and words for what an emission rate wants: fuel, shares of heat input, or what the fuel's source lacks."""
+    if not book.record.fuels:
+        return "fuel-missing", "no fuel is entered"
+    if not share:
+        words = "the share of heat input of each fuel is missing: Fuel use of the run, or the shares on the sheet Fuel"
+        return "fuel-missing", words
+    return "factor-missing", f"{' and '.join(_WANTED[name] for name in names)} is missing"
 
 
 def _all(parts: Sequence[Entry | None]) -> list[Entry]:

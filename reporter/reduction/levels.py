@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 
 from reporter.ledger import Entry
 from reporter.methods.criteria import Criterion, at_or_above, at_or_below, below, share_of_span
@@ -24,8 +25,10 @@ def check_levels(book: Book, found: Calibrations, runs: Sequence[Run]) -> None:
     if found.held is None:
         return
     for made in found.sets:
+        bears_on = tuple(run.key for run in runs if latest_set(found.sets, run.start.value) is made)
+        _name_runs(book, made, bears_on)
         if made.whole and made.span is not None:
-            _check_set(book, found, made)
+            _check_set(book, found, made, bears_on)
     for run in runs:
         _check_use(book, found, run)
     book.say(
@@ -34,7 +37,13 @@ def check_levels(book: Book, found: Calibrations, runs: Sequence[Run]) -> None:
     )
 
 
-def _check_set(book: Book, found: Calibrations, made: DirectSet) -> None:
+def _name_runs(book: Book, made: DirectSet, runs: tuple[str, ...]) -> None:
+    """Name the runs a set bears on in the checks of its calibration error, which were made before they were known."""
+    mine = {injection.met.key for injection in made.injections if injection.met is not None}
+    book.checks[:] = [replace(check, runs=runs) if check.key in mine else check for check in book.checks]
+
+
+def _check_set(book: Book, found: Calibrations, made: DirectSet, runs: tuple[str, ...]) -> None:
     assert found.held is not None
     assert made.span is not None
     lane = found.lane
@@ -45,7 +54,7 @@ def _check_set(book: Book, found: Calibrations, made: DirectSet) -> None:
             inputs = {"value": injection.certified, "span": made.span}
             share = book.apply(share_of_span, key, inputs)
             words = f"{criterion.label}, set {made.number}"
-            _enter(book, lane, criterion, share, f"{key}.{name}", words, ())
+            _enter(book, lane, criterion, share, f"{key}.{name}", words, runs)
 
 
 def _check_use(book: Book, found: Calibrations, run: Run) -> None:

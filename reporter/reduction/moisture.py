@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from reporter.conversions import convert_entry, converted
+from reporter.equation import System
 from reporter.ledger import Entry
-from reporter.methods.method_2 import absolute_pressure
+from reporter.methods.method_2 import absolute_pressure, absolute_pressure_metric
 from reporter.methods.method_4 import (
     lower_moisture,
     metered_volume,
@@ -40,7 +41,8 @@ def stack_pressure(book: Book, run: Run) -> Entry | None:
         return barometer
     static = book.given(f"run.{run.key}.static_pressure", run.static_pressure, book.unit("inH2O", "kPa"))
     inputs = {"barometric": barometer, "static": static}
-    return book.apply(absolute_pressure, f"run.{run.key}.stack_pressure", inputs)
+    eq = absolute_pressure if book.system is System.US else absolute_pressure_metric
+    return book.apply(eq, f"run.{run.key}.stack_pressure", inputs)
 
 
 def say_static(book: Book, run: Run) -> None:

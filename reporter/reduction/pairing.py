@@ -46,7 +46,8 @@ def pair(book: Book, found: Calibrations, runs: Sequence[Run]) -> list[Pairing]:
 def _paired(book: Book, found: Calibrations, run: Run, runs: Sequence[Run]) -> Pairing:
     start, end = run.start.value, run.end.value
     earlier = max((other.end.value for other in runs if other.end.value <= start), default=None)
-    later = min((other.start.value for other in runs if other.start.value >= end), default=None)
+    following = min((other for other in runs if other.start.value >= end), key=lambda r: r.start.value, default=None)
+    later = None if following is None else following.start.value
     before = _side(found, run, When.BEFORE, lambda t: t <= start and (earlier is None or t >= earlier))
     after = _side(found, run, When.AFTER, lambda t: t >= end and (later is None or t <= later))
     made = Pairing(run)
@@ -54,7 +55,7 @@ def _paired(book: Book, found: Calibrations, run: Run, runs: Sequence[Run]) -> P
     made.before_low, made.after_low = _of_one_gas(before, after, None, low=True)
     made.before_up, made.after_up = _of_one_gas(before, after, None if mean is None else mean.value, low=False)
     _void_after_adjustment(book, found.lane, made)
-    _missing(book, found, made, later)
+    _missing(book, found, made, following)
     _mixed(book, found.lane, made)
     _late(book, found.lane, made)
     return made
@@ -129,24 +130,54 @@ def _names(words: str, name: str) -> bool:
     return re.search(rf"(?<!\w){re.escape(name)}(?!\w)", words, re.IGNORECASE) is not None
 
 
-def _missing(book: Book, found: Calibrations, made: Pairing, later: datetime | None) -> None:
+def _missing(book: Book, found: Calibrations, made: Pairing, following: Run | None) -> None:
+    """Say which check of a run is missing, and whether it was made at a wrong time instead."""
     lane, run = found.lane, made.run
-    sides = (("before", made.before_low, made.before_up), ("after", made.after_low, made.after_up))
     voided = bool(made.missing)
-    for side, low, up in sides:
+    for side, low, up in (("before", made.before_low, made.before_up), ("after", made.after_low, made.after_up)):
         if (low is not None and up is not None) or (side == "after" and voided):
             continue
         gas = "zero or low-level gas" if low is None else "upscale gas"
-        what = "system check" if low is None and up is None else gas
-        said = f"{lane.name}, run {run.run.value}: no {what} {side} the run"
-        if side == "after":
-            late = later is not None and any(i.time >= later for i in found.system)
-        else:
-            late = any(run.start.value < i.time < run.end.value for i in found.system)
-        place = run.end.place if side == "after" else run.start.place
-        code = "calibration-late" if late else "calibration-missing"
-        book.trouble(code, place, said, concerns=(lane.key(run, "corrected"),))
+        what = "system check" if low is None and up is None else f"system check of the {gas}"
+        wanted = [i for i in found.system if (low is None and i.low) or (up is None and not i.low)]
+        stray = _opening_late(made, wanted) if side == "before" else _closing_stray(made, wanted, following)
+        said = f"no {what} {side} the run" + (f": it was made {stray}" if stray else "")
+        place = run.start.place if side == "before" else run.end.place
+        code = "calibration-missing"
+        if stray:
+            code = "calibration-late" if side == "before" else "closing-check-misplaced"
+        about = f"{lane.name}, run {run.run.value}: {said}"
+        book.trouble(code, place, about, concerns=(lane.key(run, "corrected"),))
         made.missing.append(said)
+
+
+def _opening_late(made: Pairing, wanted: Sequence[Injection]) -> str:
+    """When a check that had to open a run was made instead: after the run had begun; nothing where none was."""
+    start = made.run.start.value
+    inside = [i.time for i in wanted if start < i.time < made.run.end.value and not _closes(made, i)]
+    return f"at {min(inside):%H:%M}, after the run had begun at {start:%H:%M}" if inside else ""
+
+
+def _closing_stray(made: Pairing, wanted: Sequence[Injection], following: Run | None) -> str:
+    """When a check that had to close a run was made instead: before its end, or within the next run."""
+    end = made.run.end.value
+    inside = [i.time for i in wanted if made.run.start.value < i.time < end and _closes(made, i)]
+    if inside:
+        return f"at {max(inside):%H:%M}, before the run ended at {end:%H:%M}"
+    if following is None:
+        return ""
+    begun = following.start.value
+    after = [i.time for i in wanted if begun < i.time < following.end.value]
+    return f"at {min(after):%H:%M}, after the next run had begun at {begun:%H:%M}" if after else ""
+
+
+def _closes(made: Pairing, check: Injection) -> bool:
+    """Whether a check within a run is taken for its closing one: where only that is missing, else by the nearer end."""
+    has_opening = made.before_low is not None and made.before_up is not None
+    has_closing = made.after_low is not None and made.after_up is not None
+    if has_opening != has_closing:
+        return has_opening
+    return check.time - made.run.start.value > made.run.end.value - check.time
 
 
 def _mixed(book: Book, lane: Lane, made: Pairing) -> None:
@@ -156,9 +187,10 @@ def _mixed(book: Book, lane: Lane, made: Pairing) -> None:
         if pre is None or post is None or pre.certified.key == post.certified.key:
             continue
         made.mixed = True
-        said = f"{lane.name}, run {made.run.run.value}: the {name} gases before and after the run are not the same"
+        said = f"the {name} gases before and after the run are not the same"
         concerns = (lane.key(made.run, "corrected"),)
-        book.trouble("calibration-missing", post.row.place, said, concerns=concerns)
+        about = f"{lane.name}, run {made.run.run.value}: {said}"
+        book.trouble("calibration-missing", post.row.place, about, concerns=concerns)
         made.missing.append(said)
 
 

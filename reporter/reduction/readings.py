@@ -10,8 +10,6 @@ import numpy as np
 
 from reporter.basis import AS_MEASURED, NO_VOLUME, Basis, Moisture
 from reporter.conversions import converted
-from reporter.equation import Citation, Value, constant, equation
-from reporter.functions import count
 from reporter.ledger import Entry, FromCells
 from reporter.logged import KINDS, Counts, Moments, Where
 from reporter.methods.method_7e import run_mean
@@ -20,60 +18,15 @@ from reporter.problems import Place
 from reporter.record import MoistureBasis, Reading, ReadingKind, text_of
 from reporter.reduction.book import Book, Lane
 from reporter.reduction.channel_units import channel_standard, is_mass
+from reporter.reduction.coverage import enter_coverage
 from reporter.reduction.places import cells_of, readings_place
-from reporter.reduction.window import Window, missing_minutes
+from reporter.reduction.window import Window, clock_minutes, missing_minutes
 from reporter.units import dimension
 
 #: Share a value below detection is counted at, by the policy entered in the Test sheet.
 POLICIES = {"zero": 0.0, "half": 0.5, "full": 1.0}
 #: Oxygen [%] that no gas with air as its only source of oxygen exceeds, with the last digit of an analyzer.
 _AIR_AT_MOST = 21.0
-
-
-@equation("n", "1", {"readings": "*c"}, Citation("m7e", "12.6"), symbols={"readings": "C_i"}, series=("readings",))
-def reading_count(*, readings: Value) -> Value:
-    """Number of valid readings of a run.
-
-    Parameters
-    ----------
-    readings
-        Valid readings of the run [ppm or %], a series.
-
-    Returns
-    -------
-    float
-        Count [1].
-    """
-    return count(readings)
-
-
-@equation(
-    "coverage",
-    "%",
-    {"number": "1", "interval": "min", "duration": "min"},
-    Citation("m7e", "", "one valid reading a minute"),
-    symbols={"number": "n", "interval": "Δt", "duration": "t_run"},
-)
-def coverage(*, number: Value, interval: Value, duration: Value, hundred: Value = constant(100.0, "%")) -> Value:
-    """Share of a run's length that its valid readings cover.
-
-    Parameters
-    ----------
-    number
-        Number of valid readings [1].
-    interval
-        Logging interval [min].
-    duration
-        Length of the run [min], not zero.
-    hundred
-        The 100 of a percentage [%].
-
-    Returns
-    -------
-    float
-        Coverage [%].
-    """
-    return hundred * number * interval / duration
 
 
 def channel_basis(book: Book, lane: Lane) -> Basis:
@@ -117,6 +70,7 @@ def reduce_readings(book: Book, lane: Lane, span: Window) -> Series:
         used=tuple(found.used),
         left_out=tuple(found.left),
         missing_minutes=missing_minutes(span, found.used_at),
+        minutes=clock_minutes(span),
         interval=span.interval,
         first_row=int(rows.min(initial=rows[0])) if len(rows) else 0,
         last_row=int(rows.max(initial=0)),
@@ -187,7 +141,7 @@ def _with_mean(book: Book, lane: Lane, span: Window, series: Series, found: _Sor
         series = replace(series, used=tuple(zip((t for t, _ in series.used), values, strict=True)))
         book.say(f"Readings below detection are counted at {policy} value, as entered.")
     entry = _enter(book, lane, series.key, values, place)
-    _counts(book, lane, span, entry)
+    enter_coverage(book, lane, span, entry, series)
     if undecided:
         _show_policies(book, lane, span, values, found)
         words = f"run {run.run.value}: {len(found.below)} reading(s) below detection and {undecided}"
@@ -242,11 +196,3 @@ def _enter(book: Book, lane: Lane, key: str, values: Sequence[float], place: Pla
     return book.ledger.enter(
         key, values, lane.unit, FromCells(place, f"{len(values)} readings"), basis=channel_basis(book, lane)
     )
-
-
-def _counts(book: Book, lane: Lane, span: Window, entry: Entry) -> None:
-    run = span.run
-    number = book.apply(reading_count, lane.key(run, "count"), {"readings": entry})
-    length = book.given_duration(run)
-    step = book.state("readings.interval", span.interval.total_seconds() / 60.0, "min", "logging interval")
-    book.apply(coverage, lane.key(run, "coverage"), {"number": number, "interval": step, "duration": length})

@@ -21,7 +21,7 @@ from reporter.reduction import plans as kinds
 from reporter.reduction.ambient import ambient_air
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
-from reporter.reduction.fuels import Factors, run_factors
+from reporter.reduction.fuels import Factors, factors_lacking, run_factors
 from reporter.reduction.output_rate import mass_per_output
 from reporter.reduction.plans import Plan
 from reporter.reduction.referenced import at_reference
@@ -192,8 +192,8 @@ def _emission_rate(book: Book, about: RunBook, means: Means, plan: Plan, key: st
     inputs = {name: available.get(name) for name in form.inputs}
     lacking = [name for name, entry in inputs.items() if entry is None]
     if lacking:
-        code = "factor-missing" if means.shares else "fuel-missing"
-        return Missing(code, f"run {run}: {form.equation.citation.number} needs {', '.join(lacking)}")
+        code, words = factors_lacking(book, means.shares, lacking)
+        return Missing(code, f"run {run}: {words}")
     given = {name: entry for name, entry in inputs.items() if entry is not None}
     nothing_left = _nothing_left(run, diluent, given)
     if nothing_left is not None:

@@ -101,12 +101,13 @@ def missing_minutes(span: Window, used: Counts) -> tuple[datetime, ...]:
     """Each clock minute of the run without a valid reading, excluded periods counted too.
 
     A reading of up to a minute belongs to the minute its middle lies in, a longer one to every minute whose
-    middle it covers; a minute only partly in the run is content with any reading that touches it.  `used` are
-    positions in the series.
+    middle it covers; the first and the last minute of the run are content with any reading that touches them, for
+    where the stamps stand beside the minute the reading across an end is not the run's.  `used` are positions in
+    the series.
     """
     start, stop = span.run.start.value, span.run.end.value
     origin = start.replace(second=0, microsecond=0)
-    count = -((origin - stop) // _MINUTE)
+    count = clock_minutes(span)
     begin = (span.begin[np.isin(span.at, used)] - _stamp(origin)).astype(np.int64)
     end = begin + span.interval // _MICROSECOND
     minute = _MINUTE // _MICROSECOND
@@ -119,10 +120,16 @@ def missing_minutes(span: Window, used: Counts) -> tuple[datetime, ...]:
     found = []
     for number in range(count):
         at = origin + number * _MINUTE
-        whole = start <= at and at + _MINUTE <= stop
-        if not (owned if whole else touched)[number]:
+        inner = start < at and at + _MINUTE < stop
+        if not (owned if inner else touched)[number]:
             found.append(at)
     return tuple(found)
+
+
+def clock_minutes(span: Window) -> int:
+    """How many clock minutes a run touches."""
+    origin = span.run.start.value.replace(second=0, microsecond=0)
+    return -((origin - span.run.end.value) // _MINUTE)
 
 
 def _covered(first: Counts, last: Counts, count: int) -> Where:

@@ -72,6 +72,11 @@ def _late() -> Outcome:
     )
 
 
+def _check_moved(clock: str, *gone: str) -> Outcome:
+    rows = (calibration(clock, "NOx", "system", level, 50.0 * (level == "mid")) for level in ("zero", "mid"))
+    return assess(added(without_calibrations(record(), "NOx", *gone), *rows))
+
+
 def _alone(*names: str) -> Outcome:
     values = {"NOx": 40.0, "CO": 10.0, "O2": 5.0, "CO2": 9.0}
     return assessed(
@@ -81,7 +86,8 @@ def _alone(*names: str) -> Outcome:
 
 MADE: dict[str, Callable[[], Outcome]] = {
     "calibration-missing": lambda: assess(without_calibrations(record(), "NOx", "10:40", "10:42")),
-    "calibration-late": lambda: assess(without_calibrations(record(), "NOx", "08:40", "08:42")),
+    "calibration-late": lambda: _check_moved("08:05", "07:50", "07:52"),
+    "closing-check-misplaced": lambda: _check_moved("10:25", "10:40", "10:42"),
     "span-missing": lambda: assess(without_calibrations(record(), "NOx", "07:02")),
     "certificate-missing": lambda: assessed(cylinders=tuple(c for c in cylinders() if c.cylinder.value != "NOx-mid")),
     "cylinder-expired": _expired,

@@ -18,6 +18,7 @@ from reporter.methods import method_3 as m3
 from reporter.methods import method_3b as m3b
 from reporter.methods import method_4 as m4
 from reporter.methods.mass_concentration import molar_volume
+from reporter.typeset import text_formula
 from reporter.units import convert, quantity, registry
 
 SAID = Stated("test value")
@@ -109,7 +110,12 @@ def test_the_rounded_set_differs_from_the_exact_one_by_a_few_hundredths_of_a_per
 
 def test_static_pressure_is_signed() -> None:
     assert m2.absolute_pressure(barometric=29.9, static=-1.36) == pytest.approx(29.8, rel=1e-14)
-    assert m2.absolute_pressure.in_system(SI)(barometric=101.0, static=-0.5) == 100.5
+    assert m2.absolute_pressure_metric(barometric=101.0, static=-0.5) == 100.5
+
+
+def test_no_constant_of_one_is_printed_where_both_pressures_have_one_unit() -> None:
+    """Common practice: pressures in kPa are added as they are."""
+    assert text_formula(m2.absolute_pressure_metric.symbols()) == "P_bar + P_g"
 
 
 def test_a_barometer_is_lower_by_a_tenth_of_an_inch_in_a_hundred_feet() -> None:

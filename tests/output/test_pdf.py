@@ -230,6 +230,29 @@ def test_a_faulty_template_is_an_error_with_its_place(thin: Outcome, tmp_path: P
         render_pdf(thin, issued=ISSUED, version="0.1.0", options=PdfOptions(templates=tmp_path))
 
 
+def test_long_names_leave_page_number_report_number_and_hash_on_every_page(
+    thin: Outcome, changed: Callable[..., Outcome], render: Callable[..., bytes]
+) -> None:
+    """Cut to one line, above and below: nothing of a long name stands outside the page."""
+    firm = "Consolidated Emission Measurement and Combustion Engineers of the Upper Valley (invented) " * 5
+    test = replace(
+        thin.record.test,
+        testing_firm=Given(firm),
+        report_number=Given("HM-26-031 " + "A" * 150),
+    )
+    content = render(changed(thin, test=test))
+    digest = thin.record.source.sha256[:12]
+    reader = PdfReader(io.BytesIO(content))
+    for number, page in enumerate(reader.pages, 1):
+        heights: list[tuple[float, str]] = []
+        page.extract_text(visitor_text=lambda text, cm, tm, *_: heights.append((tm[5] * cm[3] + cm[5], text)))
+        text = page.extract_text()
+        assert f"Page {number} of {len(reader.pages)}" in text
+        assert f"input {digest}" in text
+        assert "Report HM-26-031" in text
+        assert all(0.0 < height < float(page.mediabox.height) for height, words in heights if words.strip())
+
+
 def test_readings_are_printed_on_request(wood: Outcome, wood_pdf: bytes) -> None:
     plain = " ".join(" ".join(pages_of(wood_pdf)).split())
     for row in (wood.record.readings.rows[0], wood.record.readings.rows[-1]):

@@ -148,7 +148,7 @@ def test_every_method_that_is_followed_is_listed_with_its_edition(boiler: Outcom
     block = next(block for block in view.sections["location"] if block.title == "Methods")
     listed = {row.cells[0] for row in block.tables[0].rows}
     assert listed == {
-        "Method 7E", "Method 10", "Method 3A", "Method 2", "Method 3", "Method 3B", "Method 4", "Method 19",
+        "Method 7E", "Method 10", "Method 3A", "Method 1", "Method 2", "Method 3", "Method 3B", "Method 4", "Method 19",
         "40 CFR 60.8",
     }  # fmt: skip
     cited = {row.cells[0] for row in view.sections["references"][0].tables[0].rows}
@@ -308,7 +308,7 @@ def test_an_average_of_some_runs_says_which(invalid: Outcome) -> None:
     limit = view.limits.limits[0]
     averaging = next(fact.text for fact in limit.facts if fact.label == "Averaging")
     assert "3 of 3 required (runs 1, 3, 4)" in averaging.replace("\u00a0", " ")
-    assert [problem.grade for problem in view.quality.problems] == ["run not counted", "note"]
+    assert [problem.grade for problem in view.quality.problems] == ["Run not counted", "Note"]
 
 
 def test_a_limit_says_route_factor_and_table(boiler: Outcome) -> None:

@@ -216,15 +216,42 @@ def test_no_check_after_the_last_run() -> None:
 
 def test_one_gas_of_a_check_missing() -> None:
     outcome = assess(without_calibrations(record(), "NOx", "10:40"))
-    assert "no zero or low-level gas after the run" in _reasons(outcome, "3")
+    assert "no system check of the zero or low-level gas after the run" in _reasons(outcome, "3")
 
 
-def test_a_check_after_the_next_run_began_is_late() -> None:
-    """Nothing between runs 1 and 2; the check of 09:40 comes after run 2."""
+def test_the_check_that_closes_the_next_run_closes_none_before_it() -> None:
+    """Nothing between runs 1 and 2; the check of 09:40 closes run 2, and run 1 has none."""
     outcome = assess(without_calibrations(record(), "NOx", "08:40", "08:42"))
     assert _valid(outcome) == [False, False, True]
-    assert "calibration-late" in codes(outcome)
-    assert "calibration-missing" in codes(outcome)
+    assert codes(outcome).count("calibration-missing") == 2
+    assert "calibration-late" not in codes(outcome)
+    assert "closing-check-misplaced" not in codes(outcome)
+
+
+def _moved(clock: str, *gone: str) -> list[tuple[str, str]]:
+    """Code and what was found, with the checks of some times gone and one made at another time."""
+    made = without_calibrations(record(), "NOx", *gone)
+    rows = (calibration(clock, "NOx", "system", level, 50.0 * (level == "mid")) for level in ("zero", "mid"))
+    outcome = assess(added(made, *rows))
+    wanted = ("calibration-missing", "calibration-late", "closing-check-misplaced")
+    return [(problem.code, problem.found) for problem in outcome.problems if problem.code in wanted]
+
+
+def test_a_check_at_the_wrong_time_is_worded_by_its_case() -> None:
+    """Opening check late, closing check too early, closing check within the next run; a missing one has no time."""
+    late = "NOx, run 1: no system check before the run: it was made at 08:05, after the run had begun at 08:00"
+    assert _moved("08:05", "07:50", "07:52") == [("calibration-late", late)]
+    early = "NOx, run 3: no system check after the run: it was made at 10:25, before the run ended at 10:30"
+    assert _moved("10:25", "10:40", "10:42") == [("closing-check-misplaced", early)]
+    within = [
+        ("closing-check-misplaced", "NOx, run 1: no system check after the run: it was made at 09:05, "
+         "after the next run had begun at 09:00"),
+        ("calibration-late", "NOx, run 2: no system check before the run: it was made at 09:05, "
+         "after the run had begun at 09:00"),
+    ]  # fmt: skip
+    assert _moved("09:05", "08:40", "08:42") == within
+    missing = "NOx, run 3: no system check after the run"
+    assert _moved("08:41", "10:40", "10:42") == [("calibration-missing", missing)]
 
 
 def test_the_first_check_within_the_run_is_late() -> None:

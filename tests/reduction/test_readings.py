@@ -122,7 +122,7 @@ def test_a_missing_reading_is_seen_whatever_the_seconds_of_the_stamps(offset: in
 def test_the_minutes_are_listed_in_the_note() -> None:
     outcome = assessed(readings=_but_nox({"08:11": "", "08:12": "CAL"}))
     note = next(p for p in outcome.problems if p.code == "coverage-low")
-    assert note.found == "NOx, run 1: 2 minute(s): 08:10, 08:11"
+    assert note.found == "NOx, run 1: 08:10 to 08:11, 2 minutes of 30; the mean rests on 28 reading(s)"
     assert value(outcome, "run.1.nox.count") == 28
 
 

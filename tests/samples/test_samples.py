@@ -230,6 +230,20 @@ def test_attachments_are_one_page_papers_marked_as_invented() -> None:
         assert "Invented example" in reader.pages[0].extract_text()
 
 
+def test_the_permit_page_bound_in_says_what_the_limits_say() -> None:
+    """Each limit's number and when it applies stand under its condition on the page, as the committed PDF has it."""
+    book = Sample("gas_boiler_us")
+    page = pypdf.PdfReader(FOLDER / "valid" / "attachments" / "permit_page.pdf").pages[0].extract_text()
+    words = " ".join(page.split())
+    for limit in book.tables["Limits"]:
+        condition = limit["Citation"].rpartition("condition ")[2]
+        said = words.partition(f"{condition} ")[2].partition(". ")[0]
+        assert f" {float(limit['Limit']):g}" in said
+        for part in limit["Applies when"].replace("%", "percent").removeprefix("firing ").split(", "):
+            assert part in said, (condition, said)
+        assert ("load" in said) == ("load" in limit["Applies when"])
+
+
 def test_the_readme_names_every_sample() -> None:
     text = (FOLDER / "README.md").read_text(encoding="utf-8")
     assert not [name for name in NAMES if f"`{name}.xlsx`" not in text]

@@ -14,12 +14,13 @@ from reporter.output.view.checklist import checklist
 from reporter.output.view.closing import cautions, references, statements
 from reporter.output.view.combustion import combustion
 from reporter.output.view.cover import cover, mark, report_number, revision, signatures
+from reporter.output.view.criteria import criteria
 from reporter.output.view.desk import Desk
 from reporter.output.view.documents import Document, documents
 from reporter.output.view.inputs import inputs
 from reporter.output.view.limits import limits
 from reporter.output.view.model import Block, View
-from reporter.output.view.quality import criteria, quality
+from reporter.output.view.quality import quality
 from reporter.output.view.register import register
 from reporter.output.view.runs import runs
 from reporter.output.view.sample import sample, sample_lead, sample_run

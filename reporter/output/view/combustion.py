@@ -7,12 +7,12 @@ from collections.abc import Sequence
 from reporter.ledger import Entry
 from reporter.outcome import RunResult
 from reporter.output.charts import DiagramPoint, FactorBand, FuelLine, OxygenDiagram, oxygen_diagram
-from reporter.output.numbers import formulas
+from reporter.output.numbers import capital, formulas
 from reporter.output.view.desk import Desk
 from reporter.output.view.model import Block, Column, Picture, Row, Table
 from reporter.output.view.runs import layout, rows_table, unit_and_basis
 from reporter.output.view.standing import DAGGER, dagger
-from reporter.output.view.tabular import aligned
+from reporter.output.view.tabular import aligned, side_by_side
 
 #: Percent oxygen of dry air: in physics, and as the methods print it (the fuel factor's range).
 _OXYGEN_OF_AIR, _OXYGEN_PRINTED = 20.95, 20.9
@@ -25,7 +25,7 @@ def combustion(desk: Desk) -> tuple[Block, ...]:
     tables = rows_table(desk, runs, layout().combustion)
     if tables:
         blocks.append(Block(title="Air, fuel and products", tables=tables, notes=_air(desk)))
-    blocks.append(_balance(desk, runs))
+    blocks.append(_balance(desk))
     blocks.append(Block(title="Findings", notes=_findings(desk) or (desk.words("lead.no_findings"),)))
     return tuple(block for block in blocks if block.tables or block.pictures or block.notes)
 
@@ -46,13 +46,19 @@ def _findings(desk: Desk) -> tuple[str, ...]:
     runs: dict[str, list[str]] = {}
     for finding in desk.outcome.findings:
         runs.setdefault(finding.words, []).append(finding.run)
-    return tuple(
-        f"Run {', '.join(some)}: {formulas(words)}" if any(some) else formulas(words) for words, some in runs.items()
-    )
+    heads = {words: capital(desk.run_names(key for key in some if key)) for words, some in runs.items()}
+    return tuple(formulas(f"{heads[words]}: {words}" if any(some) else words) for words, some in runs.items())
 
 
-def _balance(desk: Desk, runs: Sequence[RunResult]) -> Block:
+def _balance(desk: Desk) -> Block:
     """Measured, expected and their difference below each other, a column per run."""
+    tables = [made for runs in side_by_side(desk.outcome.runs) if (made := _differences(desk, runs)) is not None]
+    recalled = any(DAGGER in str(row.cells[1]) for made in tables for row in made.rows)
+    notes = (desk.words("criterion.recalled"),) if recalled else ()
+    return Block(title="Measured against expected", tables=tuple(tables), notes=notes)
+
+
+def _differences(desk: Desk, runs: Sequence[RunResult]) -> Table | None:
     columns = [Column("", width=1.4), Column("", width=2.2), Column("Unit and basis", width=1.8)]
     columns += [Column(f"Run {run.run.run.value}", number=True) for run in runs]
     rows = []
@@ -62,12 +68,11 @@ def _balance(desk: Desk, runs: Sequence[RunResult]) -> Block:
             entries = [_of(desk, run, tail) for run in runs]
             found = next((entry for entry in entries if entry is not None), None)
             if found is not None:
+                word = "expected; not measured" if word == "expected" and name else word
                 words = f"{word}{_range(desk, found.key) if tail.endswith('fuel_factor') else ''}"
                 rows.append(Row((name, words, unit_and_basis(found), *desk.row(entries))))
                 name = ""
-    notes = [desk.words("criterion.recalled")] if any(DAGGER in str(row.cells[1]) for row in rows) else []
-    tables = (aligned(Table(tuple(columns), tuple(rows))),) if rows else ()
-    return Block(title="Measured against expected", tables=tables, notes=tuple(notes) if rows else ())
+    return aligned(Table(tuple(columns), tuple(rows))) if rows else None
 
 
 def _range(desk: Desk, key: str) -> str:

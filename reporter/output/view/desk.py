@@ -16,7 +16,7 @@ from reporter.errors import LedgerError
 from reporter.gases import find_gas
 from reporter.ledger import Entry, FromCells, FromEquation, FromTable
 from reporter.outcome import Outcome
-from reporter.output.numbers import decimals_in, fixed, formulas, shortest, shown, unit_text
+from reporter.output.numbers import decimals_in, fixed, formulas, runs_text, shortest, shown, unit_text
 from reporter.output.phrases import Phrases
 from reporter.output.view.model import AnyCell, Heading, Shown
 from reporter.quantities import label_of, quantity_of, table
@@ -109,8 +109,7 @@ class Desk:
 
     def run_names(self, keys: Iterable[str]) -> str:
         """Names of runs, as in ``runs 1, 3, 4``, kept in one line."""
-        names = [self.outcome.run(key).run.run.value for key in keys]
-        return f"run{'' if len(names) == 1 else 's'} {', '.join(names)}".replace(" ", "\u00a0")
+        return runs_text([self.outcome.run(key).run.run.value for key in keys]).replace(" ", "\u00a0")
 
     def number_text(self, key: str, *, unit: bool = True) -> str:
         """The printed number of a key with its unit, for a sentence; remembered as printed."""

@@ -13,14 +13,12 @@ from reporter.output.numbers import counted, day, decimals_in, formulas, shortes
 from reporter.output.view.desk import CARRIED, Desk, entered, fuel_words, gas_name, said
 from reporter.output.view.model import AnyCell, Cell, Column, Item, LimitsView, LimitView, Picture, Row, Shown, Table
 from reporter.output.view.route import factor_route
-from reporter.output.view.tabular import aligned
+from reporter.output.view.tabular import aligned, side_by_side
 from reporter.record import Limit, Run, text_of
 
 _YES = "yes"
 #: Significant digits of an average before it is rounded.
 _DIGITS = 6
-#: Runs beside each other in one table.
-_ACROSS = 5
 _RELATIONS = {"at most": "at_most", "less than": "less_than", "at least": "at_least"}
 
 
@@ -29,8 +27,7 @@ def limits(desk: Desk) -> LimitsView:
     made = desk.outcome.comparisons
     if not made:
         return LimitsView(None, (), desk.words("lead.no_limits"))
-    runs = desk.outcome.runs
-    groups = [runs[start : start + _ACROSS] for start in range(0, len(runs), _ACROSS)] or [runs]
+    groups = side_by_side(desk.outcome.runs)
     first, *rest = [_table(desk, some, with_average=at == 0) for at, some in enumerate(groups)]
     views = tuple(_limit(desk, comparison) for comparison in made)
     return LimitsView(first, views, desk.words("lead.summary"), tuple(rest))
@@ -113,8 +110,8 @@ def _rows(desk: Desk, comparison: Comparison, some: Sequence[RunResult], *, with
     measured += desk.row([ledger.get(of_run[run][0]) if run in of_run else None for run in runs])
     measured += _compared(desk, comparison) if with_average else []
     rows = [Row((Cell(words, strong=True, span=columns),), style="group"), Row(tuple(measured))]
-    counts = [_counts(desk, comparison, of_run[run][1]) if run in of_run else "" for run in runs]
-    if any(count != _YES for count in counts):
+    counts = [_counts(desk, comparison, of_run[run][1]) if run in of_run else desk.missing for run in runs]
+    if of_run and any(count != _YES for count in counts):
         held = desk.averaged(comparison.value)
         of = desk.words("limit.average_of", runs=desk.run_names(held)) if held else ""
         rest = (Cell(of, span=4),) if with_average else ()

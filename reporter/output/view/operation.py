@@ -6,10 +6,10 @@ from collections.abc import Sequence
 from dataclasses import replace
 
 from reporter.ledger import Entry, FromCells
-from reporter.output.numbers import decimals_in, fixed, formulas, shortest, unit_text
+from reporter.output.numbers import capital, decimals_in, fixed, formulas, shortest, unit_text
 from reporter.output.view.desk import Desk, entered, fuel_words, said
 from reporter.output.view.model import AnyCell, Block, Column, Row, Shown, Table
-from reporter.output.view.tabular import aligned
+from reporter.output.view.tabular import aligned, side_by_side
 from reporter.record import Run
 
 #: Keys of a run's operating conditions, printed where the ledger has them, with the field of the run's sheet.
@@ -45,7 +45,11 @@ _RECORDED = {
 
 def operation(desk: Desk) -> Block:
     """Conditions of each run as they were entered, with the unit once per row."""
-    runs = [run.run for run in desk.outcome.runs]
+    groups = side_by_side([run.run for run in desk.outcome.runs])
+    return Block(tables=tuple(_conditions(desk, runs) for runs in groups))
+
+
+def _conditions(desk: Desk, runs: Sequence[Run]) -> Table:
     columns = (Column("Operating conditions", width=3.4), Column("Unit", width=1), *run_columns(runs))
     rows: list[Row] = []
     for name, field in _OPERATION:
@@ -55,13 +59,13 @@ def operation(desk: Desk) -> Block:
             unit = unit_text(found.unit) or (said(runs[0].load_unit) if name.startswith("load") else "")
             if not unit and name.startswith("moisture"):
                 unit = "fraction"
-            label = _capital(formulas(desk.quantity_label(f"run.{runs[0].key}.{name}")))
+            label = capital(formulas(desk.quantity_label(f"run.{runs[0].key}.{name}")))
             rows.append(Row((f"{label}{_source_words(field, runs)}", unit, *_entered_row(desk, entries))))
         elif field and any(getattr(run, field) is not None for run in runs):
             texts = [entered(getattr(run, field), desk.missing) for run in runs]
             rows.append(Row((f"{_RECORDED[field]}{_source_words(field, runs)}", "", *texts)))
     rows.append(Row(("Fuel", "", *(fuel_words(desk.outcome.record, run) or desk.missing for run in runs))))
-    return Block(tables=(aligned(Table(columns, tuple(rows))),))
+    return aligned(Table(columns, tuple(rows)))
 
 
 def _as_entered(desk: Desk, key: str) -> Entry | None:
@@ -102,10 +106,6 @@ def _flow_basis(run: Run) -> str:
 def _of_runs(texts: Sequence[str]) -> str:
     words = "; ".join(dict.fromkeys(text for text in texts if text))
     return f" ({words})" if words else ""
-
-
-def _capital(text: str) -> str:
-    return text[:1].upper() + text[1:]
 
 
 def run_columns(runs: Sequence[Run]) -> tuple[Column, ...]:

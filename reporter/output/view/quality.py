@@ -1,22 +1,18 @@
-"""Quality criteria: their outcome in a few lines, and each with the numbers it rests on."""
+"""Quality criteria: their outcome in a few lines, and everything invalid, missing or estimated."""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import replace
-from itertools import zip_longest
 
-from reporter.ledger import Entry, FromEquation
-from reporter.outcome import Check, RunState
-from reporter.output.numbers import FIGURE_SPACE, counted, formulas, unit_text
+from reporter.outcome import Bearing, Check, RunState
+from reporter.output.applied import Applied, applied
+from reporter.output.numbers import capital, counted, formulas
+from reporter.output.view.criteria import adopts, bound_words, cited
 from reporter.output.view.desk import Desk, gas_name
-from reporter.output.view.model import AnyCell, Block, Cell, Column, ProblemView, QualityView, Row, Table
+from reporter.output.view.model import AnyCell, Cell, Column, ProblemView, QualityView, Row, Table
 from reporter.output.view.not_applied import not_applied
 from reporter.output.view.standing import dagger
-from reporter.problems import Grade, Problem
-
-#: A criterion with more bounds than this has each beside its value.
-_MOST_BOUNDS = 2
+from reporter.problems import Problem
 
 
 def quality(desk: Desk) -> QualityView:
@@ -31,11 +27,11 @@ def quality(desk: Desk) -> QualityView:
     return QualityView(
         lead=lead,
         table=_overview(desk) if checks else None,
-        not_met=tuple(_not_met(desk, check) for check in checks if not check.met),
+        not_met=tuple(_not_met(desk, line) for line in applied(desk.outcome, (c for c in checks if not c.met))),
         runs=tuple(_run_words(desk)),
         not_applied=not_applied(desk),
         problems=tuple(_problems(desk)),
-        assumed=tuple(formulas(sentence) for sentence in desk.outcome.stated if not _said_before(sentence)),
+        assumed=tuple(capital(formulas(sentence)) for sentence in desk.outcome.stated if not _said_before(sentence)),
     )
 
 
@@ -45,17 +41,11 @@ def _said_before(sentence: str) -> bool:
 
 
 def _groups(checks: Sequence[Check]) -> dict[str, list[Check]]:
-    """Checks of one criterion together, by the part of the title before its particulars.
-
-    A check that bears on two runs (closing one, opening the next) is listed once, with both.
-    """
-    groups: dict[str, dict[tuple[str, str], Check]] = {}
+    """Checks of one criterion together, by the part of the title before its particulars."""
+    groups: dict[str, list[Check]] = {}
     for check in checks:
-        mine = groups.setdefault(check.title.partition(",")[0], {})
-        same = mine.get((check.value, check.bound))
-        runs = check.runs if same is None else tuple(dict.fromkeys((*same.runs, *check.runs)))
-        mine[check.value, check.bound] = replace(check if same is None else same, runs=runs)
-    return {title: list(mine.values()) for title, mine in groups.items()}
+        groups.setdefault(check.title.partition(",")[0], []).append(check)
+    return groups
 
 
 def _overview(desk: Desk) -> Table:
@@ -78,21 +68,11 @@ def _overview(desk: Desk) -> Table:
     return Table(tuple(columns), tuple(rows), note=" ".join(part for part in parts if part))
 
 
-def cited(checks: Sequence[Check]) -> str:
-    """Where a criterion is printed, once, without the methods that adopt it."""
-    texts = [replace(check.citation, number="") if _adopts(check) else check.citation for check in checks]
-    return " and ".join(dict.fromkeys(citation.text() for citation in texts))
-
-
-def _adopts(check: Check) -> bool:
-    return check.citation.number.startswith("as adopted")
-
-
 def _adoptions(desk: Desk) -> str:
     """Which method adopts the criteria for which gases."""
     by_words: dict[str, dict[str, None]] = {}
     for check in desk.outcome.checks:
-        if _adopts(check):
+        if adopts(check):
             by_words.setdefault(check.citation.number, {})[gas_name(check.gas)] = None
     parts = [f"{', '.join(gases)} {words}" for words, gases in by_words.items()]
     return f"{desk.words('criterion.adopted')} {'; '.join(parts)}." if parts else ""
@@ -107,19 +87,13 @@ def _answer(desk: Desk, checks: Sequence[Check], *, span: int = 1) -> AnyCell:
     return Cell(desk.words("criterion.met" if met else "criterion.not_met") + mark, strong=not met, span=span)
 
 
-def _not_met(desk: Desk, check: Check) -> str:
-    words = f"{_name(check)} {desk.words('criterion.not_met')} ({check.citation.text()})"
-    value, bound = desk.number_text(check.value), desk.number_text(check.bound)
+def _not_met(desk: Desk, line: Applied) -> str:
+    check = line.check
+    name = ": ".join(part for part in (gas_name(check.gas), formulas(line.title)) if part)
+    words = f"{name} {desk.words('criterion.not_met')} ({check.citation.text()})"
+    numbers = f"{desk.number_text(check.value)}, {bound_words(desk, check)}"
     consequence = f"; {formulas(check.consequence)}" if check.consequence else ""
-    return f"{words}: {value}, {_relation(desk, check)} {bound}{consequence}."
-
-
-def _name(check: Check) -> str:
-    return ", ".join(part for part in (gas_name(check.gas), formulas(check.title)) if part)
-
-
-def _relation(desk: Desk, check: Check) -> str:
-    return desk.words(f"criterion.{check.relation.replace(' ', '_')}")
+    return f"{words}: {numbers}{consequence}."
 
 
 def _run_words(desk: Desk) -> list[str]:
@@ -132,7 +106,7 @@ def _run_words(desk: Desk) -> list[str]:
             if not gas.is_valid:
                 reason = formulas("; ".join(gas.reasons) or "; ".join(run.reasons))
                 words = desk.words("run.invalid_because", paragraph=_paragraph(desk, run.key, gas.gas), reason=reason)
-                sentences.append(f"{name}, {gas_name(gas.gas)}: {words}.")
+                sentences.append(f"{name}, {gas_name(gas.gas)}, {words}.")
     return sentences
 
 
@@ -145,149 +119,35 @@ def _paragraph(desk: Desk, run: str, gas: str) -> str:
 
 
 def _problems(desk: Desk) -> list[ProblemView]:
-    """Problems, the gravest first; those of one code and standing together, in the order of the input."""
-    order = (Grade.UNREADABLE, Grade.BLOCKS, Grade.NOTE)
-    alike: dict[tuple[str, str], list[Problem]] = {}
-    for problem in sorted(desk.outcome.problems, key=lambda problem: order.index(problem.grade)):
-        alike.setdefault((problem.code, _standing(desk, problem)), []).append(problem)
+    """Problems, the gravest first; those of one code and bearing together, in the order of the input."""
+    order = list(Bearing)
+    bearings = [(problem, desk.outcome.bearing(problem)) for problem in desk.outcome.problems]
+    alike: dict[tuple[str, Bearing], list[Problem]] = {}
+    for problem, bearing in sorted(bearings, key=lambda one: order.index(one[1])):
+        alike.setdefault((problem.code, bearing), []).append(problem)
     return [
         ProblemView(
-            grade=standing,
+            grade=capital(desk.words(f"grade.{bearing.value}")),
             title=formulas(some[0].title),
             found=_found_words(desk, some),
             where=", ".join(dict.fromkeys(_where(problem) for problem in some)),
         )
-        for (_, standing), some in alike.items()
+        for (_, bearing), some in alike.items()
     ]
 
 
 def _found_words(desk: Desk, problems: Sequence[Problem]) -> str:
-    """What was found, once for the channels that share it; a minute without a reading is named by its beginning."""
+    """What was found, once for the channels that share it."""
     names = {channel.channel.value for channel in desk.outcome.record.channels}
     channels: dict[str, dict[str, None]] = {}
     for found in dict.fromkeys(problem.found for problem in problems if problem.found):
         name, comma, rest = found.partition(", ")
         head, words = (name, rest) if comma and name in names else ("", found)
-        channels.setdefault(words.replace("minute(s): ", "minute(s) beginning "), {})[head] = None
+        channels.setdefault(words, {})[head] = None
     texts = [", ".join(part for part in (*heads, words) if part) for words, heads in channels.items()]
     return formulas(counted("; ".join(texts)))
-
-
-def _standing(desk: Desk, problem: Problem) -> str:
-    """What a problem does, in words: a result is said to be withheld only where it is."""
-    if problem.grade is not Grade.BLOCKS:
-        return desk.words("grade.note" if problem.grade is Grade.NOTE else "grade.unreadable")
-    made = {one.key: one.compared for one in desk.outcome.comparisons}
-    if any(not made.get(key, True) for key in problem.concerns):
-        return desk.words("grade.withheld")
-    if problem.concerns and not any(key in made or key in desk.outcome.ledger for key in problem.concerns):
-        return desk.words("grade.withheld")
-    invalid = [f"run.{run.key}.{gas.segment}." for run in desk.outcome.runs for gas in run.gases if not gas.is_valid]
-    if any(key.startswith(tuple(invalid)) for key in problem.concerns if invalid):
-        return desk.words("grade.not_counted")
-    return desk.words("grade.blocks")
 
 
 def _where(problem: Problem) -> str:
     place = problem.place
     return f"{place.sheet}!{place.cell}" if place.sheet and place.cell else place.sheet or place.file
-
-
-def criteria(desk: Desk) -> tuple[Block, ...]:
-    """One table for each criterion, grouped by the equation its value is computed by."""
-    groups = _groups(desk.outcome.checks)
-    blocks = [_block(desk, title, checks) for title, checks in groups.items()]
-    if any(dagger(desk, (check.bound, check.alternative)) for check in desk.outcome.checks):
-        blocks.insert(0, Block(text=(desk.words("criterion.recalled"),)))
-    return tuple(blocks)
-
-
-def _block(desk: Desk, title: str, checks: Sequence[Check]) -> Block:
-    """Value and answer of each application, two beside each other; bound and equation stand above."""
-    values = [desk.outcome.ledger[check.value] for check in checks]
-    common, shared = _common_bounds(desk, checks), _share_bounds(desk, checks)
-    bounds = [key for check in checks for key in (check.bound, check.alternative) if key and desk.is_read(key)]
-    cells = _cells(desk, checks, bound=not shared)
-    half = -(-len(cells) // 2)
-    pairs = zip_longest(cells[:half], cells[half:], fillvalue="")
-    words = f"{common}{_value_words(desk, values)}"
-    table = Table((Column(""), Column("")), tuple(Row(pair) for pair in pairs))
-    return Block(title=formulas(title), anchor=desk.place(bounds), text=(words,), tables=(table,))
-
-
-def _cells(desk: Desk, checks: Sequence[Check], *, bound: bool) -> list[Cell]:
-    """One cell per check: what was checked, its value, whether it is met; below, a difference that decides."""
-    texts = []
-    for check in checks:
-        name = _row_name(check)
-        if bound:
-            name += f", {_relation(desk, check)} {desk.number_text(check.bound)}"
-        more = ""
-        if needs_alternative(desk, check):
-            more = f"\n{desk.words('criterion.difference')} {desk.number_text(check.difference)}"
-        texts.append((name, desk.number_text(check.value, unit=False), check, more))
-    widest = max(len(value) for _, value, *_ in texts)
-    return [
-        Cell(
-            f"{name}\t{value.rjust(widest, FIGURE_SPACE)}\u2002"
-            f"{desk.words('criterion.met' if check.met else 'criterion.not_met')}{more}",
-            to=check.value,
-            strong=not check.met,
-        )
-        for name, value, check, more in texts
-    ]
-
-
-def needs_alternative(desk: Desk, check: Check) -> bool:
-    """Whether a share beyond its bound makes the difference decide."""
-    ledger = desk.outcome.ledger
-    return bool(check.alternative) and abs(float(ledger[check.value].value)) > float(ledger[check.bound].value)
-
-
-def _row_name(check: Check) -> str:
-    particulars = check.title.partition(",")[2].strip()
-    if len(check.runs) > 1:
-        particulars = f"{particulars.rpartition(', ')[0]}, between runs {'–'.join(check.runs)}"
-    return formulas(", ".join(part for part in (gas_name(check.gas), particulars) if part))
-
-
-def _common_bounds(desk: Desk, checks: Sequence[Check]) -> str:
-    """The criterion in a sentence; its paragraph alone where the bounds stand beside the values."""
-    source = f"{cited(checks)}{_adopted_by(desk, checks)}"
-    if not _share_bounds(desk, checks):
-        return f"{source}. "
-    bounds = dict.fromkeys(f"{_relation(desk, check)} {desk.number_text(check.bound)}" for check in checks)
-    words = f" {desk.words('criterion.and')} ".join(bounds)
-    others = dict.fromkeys(desk.number_text(check.alternative) for check in checks if check.alternative)
-    if others:
-        words += f", {desk.words('criterion.alternative')} {' / '.join(others)}"
-    return f"{words[:1].upper()}{words[1:]} ({source}). "
-
-
-def _adopted_by(desk: Desk, checks: Sequence[Check]) -> str:
-    """The methods that adopt a criterion, each with a dagger where its number is recalled."""
-    marks: dict[str, str] = {}
-    for check in checks:
-        words = check.citation.number if _adopts(check) else ""
-        marks[words] = marks.get(words, "") or dagger(desk, (check.bound, check.alternative))
-    own = marks.pop("", "")
-    stem = "as adopted by "
-    methods = ", ".join(f"{words.removeprefix(stem)}{mark}" for words, mark in marks.items())
-    return f"{own}; {stem}{methods}" if methods else own
-
-
-def _share_bounds(desk: Desk, checks: Sequence[Check]) -> bool:
-    """Whether the applications of a criterion have so few bounds that they stand above the table."""
-    bounds = {(check.relation, float(desk.outcome.ledger[check.bound].value)) for check in checks}
-    return len(bounds) <= _MOST_BOUNDS
-
-
-def _value_words(desk: Desk, values: Sequence[Entry]) -> str:
-    """The equation of the values, with their unit."""
-    origin = values[0].origin
-    if not isinstance(origin, FromEquation):
-        return ""
-    units = {unit_text(value.unit) for value in values}
-    unit = f" [{units.pop()}]" if len(units) == 1 and units != {""} else ""
-    equation = origin.equation
-    return f"{desk.words('criterion.value_by')}{unit} {desk.equation_line(equation)} ({equation.citation.text()})."

@@ -10,15 +10,13 @@ from functools import cache
 
 from reporter.gases import find_gas
 from reporter.ledger import Entry
+from reporter.minutes import minutes_text
 from reporter.outcome import RunResult, RunState
-from reporter.output.numbers import day, formulas, moment, period, unit_text
+from reporter.output.numbers import day, formulas, period, unit_text
 from reporter.output.view.desk import Desk, channel_name, gas_name, said
 from reporter.output.view.model import AnyCell, Block, Cell, Column, Row, Shown, Table
-from reporter.output.view.tabular import aligned, group_row
+from reporter.output.view.tabular import aligned, group_row, side_by_side
 from reporter.resources import templates_folder
-
-#: Runs beside each other in one table.
-ACROSS = 6
 
 
 @dataclass(frozen=True, slots=True)
@@ -44,13 +42,10 @@ def layout() -> Layout:
 
 
 def runs(desk: Desk) -> tuple[Block, ...]:
-    """Times and states, then every gas and the run as a whole; at most six runs beside each other."""
-    results = desk.outcome.runs
-    blocks = [_times(desk)]
-    for start in range(0, len(results), ACROSS):
-        some = results[start : start + ACROSS]
-        blocks.append(Block(tables=_results(desk, some, averages=start + ACROSS >= len(results))))
-    return tuple(blocks)
+    """Times and states, then every gas and the run as a whole; the averages stand in the last of many tables."""
+    groups = side_by_side(desk.outcome.runs)
+    tables = [_results(desk, some, averages=some is groups[-1]) for some in groups]
+    return (_times(desk), *(Block(tables=made) for made in tables))
 
 
 def _results(desk: Desk, some: Sequence[RunResult], *, averages: bool) -> tuple[Table, ...]:
@@ -61,7 +56,7 @@ def _results(desk: Desk, some: Sequence[RunResult], *, averages: bool) -> tuple[
         mine = _gas_rows(desk, some, segment, averages)
         if mine:
             rows += [group_row(_gas_words(desk, some, segment), columns), *mine]
-    tails = _tails(desk, [f"run.{run.key}" for run in some], layout().run)
+    tails = _tails(desk, [f"run.{run.key}" for run in _shown_for(desk, some, averages)], layout().run)
     if tails:
         rows.append(group_row(_stack_words(desk), columns))
         rows += [_row(desk, some, tail, averages) for tail in tails]
@@ -110,11 +105,14 @@ def _readings(desk: Desk, result: RunResult) -> AnyCell:
     if not texts:
         return desk.missing
     if len(set(texts.values())) == 1:
-        return Cell(f"{next(iter(texts.values()))} of each gas", to=next(iter(keys.values())))
+        return Cell(f"of each gas: {next(iter(texts.values()))}", to=next(iter(keys.values())))
     return ", ".join(f"{gas_name(segment)} {text}" for segment, text in texts.items())
 
 
 def _state(desk: Desk, result: RunResult) -> str:
+    missing, whole = result.gaps
+    if result.state is RunState.VALID and missing:
+        return desk.words("run.valid_with_gaps", missing=missing, whole=whole)
     name = {RunState.VALID: "valid", RunState.INVALID: "invalid", RunState.EXCLUDED: "excluded"}[result.state]
     reasons = formulas("; ".join(result.reasons))
     words = desk.words(f"run.{name}")
@@ -123,9 +121,15 @@ def _state(desk: Desk, result: RunResult) -> str:
 
 def _gas_rows(desk: Desk, some: Sequence[RunResult], segment: str, averages: bool) -> list[Row]:
     """A row per quantity of one gas; what repeats the row before it (a dry channel's dry value) is left out."""
-    tails = _tails(desk, [f"run.{run.key}.{segment}" for run in some], layout().gas)
+    whole = _shown_for(desk, some, averages)
+    tails = _tails(desk, [f"run.{run.key}.{segment}" for run in whole], layout().gas)
     keys = [f"{segment}.{tail}" for tail in tails]
-    return [_row(desk, some, tail, averages) for tail in keys if not _is_carried(desk, some, tail)]
+    return [_row(desk, some, tail, averages) for tail in keys if not _is_carried(desk, whole, tail)]
+
+
+def _shown_for(desk: Desk, some: Sequence[RunResult], averages: bool) -> Sequence[RunResult]:
+    """The runs whose rows a table has: its own, and all where the averages of all stand beside them."""
+    return desk.outcome.runs if averages else some
 
 
 def _is_carried(desk: Desk, some: Sequence[RunResult], tail: str) -> bool:
@@ -143,9 +147,14 @@ def _gas_words(desk: Desk, some: Sequence[RunResult], segment: str) -> str:
 
 
 def rows_table(desk: Desk, some: Sequence[RunResult], order: Sequence[str]) -> tuple[Table, ...]:
-    """A table of the quantities of runs named in an order, with averages; none where the ledger has none."""
-    tails = _tails(desk, [f"run.{run.key}" for run in some], order)
-    return _tables(desk, some, [_row(desk, some, tail, averages=True) for tail in tails], averages=True)
+    """Tables of the quantities of runs named in an order, with averages in the last; none where the ledger has none."""
+    made: list[Table] = []
+    groups = side_by_side(some)
+    for runs_of in groups:
+        averages = runs_of is groups[-1]
+        tails = _tails(desk, [f"run.{run.key}" for run in _shown_for(desk, runs_of, averages)], order)
+        made += _tables(desk, runs_of, [_row(desk, runs_of, tail, averages) for tail in tails], averages)
+    return tuple(made)
 
 
 def _tables(desk: Desk, some: Sequence[RunResult], rows: Sequence[Row], averages: bool) -> tuple[Table, ...]:
@@ -193,7 +202,8 @@ def _is_variant(tail: str, name: str, order: Sequence[str]) -> bool:
 
 def _row(desk: Desk, some: Sequence[RunResult], tail: str, averages: bool) -> Row:
     entries = [desk.outcome.ledger.get(f"run.{run.key}.{tail}") for run in some]
-    found = next(entry for entry in entries if entry is not None)
+    everywhere = (desk.outcome.ledger.get(f"run.{run.key}.{tail}") for run in desk.outcome.runs)
+    found = next(entry for entry in (*entries, *everywhere) if entry is not None)
     average = desk.outcome.ledger.get(f"average.{tail}")
     held = desk.averaged(f"average.{tail}")
     numbers = desk.row([*entries, average] if averages else entries)
@@ -276,10 +286,7 @@ def _missing_minutes(desk: Desk) -> Sequence[str]:
         by_times: dict[str, list[str]] = {}
         for gas in run.gases:
             if gas.series is not None and gas.series.missing_minutes:
-                times = ", ".join(moment(minute) for minute in gas.series.missing_minutes)
+                times = f"{minutes_text(gas.series.missing_minutes)} of {gas.series.minutes}"
                 by_times.setdefault(times, []).append(gas_name(gas.gas))
-        lines += [
-            f"Run {run.run.run.value}, {', '.join(names)}, minutes beginning {times}"
-            for times, names in by_times.items()
-        ]
+        lines += [f"Run {run.run.run.value}, {', '.join(names)}: {times}" for times, names in by_times.items()]
     return lines

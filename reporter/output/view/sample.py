@@ -10,10 +10,10 @@ from reporter.equation import Equation
 from reporter.ledger import Entry, FromCells, FromEquation, FromTable, Stated
 from reporter.outcome import Comparison, GasResult, RunResult, RunState
 from reporter.output.numbers import formulas, shortest, unit_text
+from reporter.output.view.criteria import needs_alternative
 from reporter.output.view.desk import Desk, cell_words, gas_name
 from reporter.output.view.limits import limit_words, relation_words
 from reporter.output.view.model import Chapter, Shown, Source, Step
-from reporter.output.view.quality import needs_alternative
 from reporter.trace import Name
 from reporter.typeset import html_formula, symbol_html, text_formula
 

@@ -2,15 +2,18 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 from reporter.ledger import slug
 from reporter.methods.criteria import method_family
 from reporter.output.numbers import formulas, moment, shortest, unit_text
 from reporter.output.view.desk import Desk, entered, gas_name, said
 from reporter.output.view.model import Block, Column, Item, Row, Table
 from reporter.output.view.operation import operation, run_columns
+from reporter.output.view.plane import plane_words, with_diameters
 from reporter.output.view.standing import DAGGER, cited_documents, dagger
-from reporter.output.view.tabular import aligned, filled, simple_table
-from reporter.record import Channel, FuelRow, Point
+from reporter.output.view.tabular import aligned, filled, side_by_side, simple_table
+from reporter.record import Channel, FuelRow, Point, Run
 from reporter.references import bibliography
 
 
@@ -91,11 +94,18 @@ def _analysis(row: FuelRow) -> str:
 
 def _process_log(desk: Desk) -> Block:
     """Means of the process log over each run, where the ledger holds them; else where the log is printed."""
-    runs = [run.run for run in desk.outcome.runs]
+    groups = side_by_side([run.run for run in desk.outcome.runs])
+    tables = [made for runs in groups if (made := _process_means(desk, runs)) is not None]
+    if not tables:
+        return Block(notes=(desk.words("lead.process_log", inputs=desk.section_number("inputs")),))
+    return Block(tables=tuple(tables))
+
+
+def _process_means(desk: Desk, runs: Sequence[Run]) -> Table | None:
     ledger = desk.outcome.ledger
     names = dict.fromkeys(entry.key.split(".")[3] for run in runs for entry in ledger.under(f"run.{run.key}.process"))
     if not names:
-        return Block(notes=(desk.words("lead.process_log", inputs=desk.section_number("inputs")),))
+        return None
     columns = (Column("Process log, mean over the run", width=3), Column("Unit", width=1.4), *run_columns(runs))
     rows = []
     for name in names:
@@ -103,19 +113,21 @@ def _process_log(desk: Desk) -> Block:
         found = next(entry for entry in entries if entry is not None)
         label = formulas(found.label.partition(", mean of")[0] or name.replace("_", " "))
         rows.append(Row((label, unit_text(found.unit), *desk.row(entries))))
-    return Block(tables=(aligned(Table(columns, tuple(rows))),))
+    return aligned(Table(columns, tuple(rows)))
 
 
 def location(desk: Desk) -> tuple[Block, ...]:
     """Sampling plane, methods with editions, channels, points."""
     place = desk.outcome.record.location
+    equivalent = "location.equivalent_diameter"
     rows = (
         ("Duct", said(place.duct_shape)),
         ("Diameter", entered(place.diameter, "")),
         ("Width", entered(place.width, "")),
         ("Depth", entered(place.depth, "")),
-        ("Disturbance upstream", entered(place.disturbance_upstream, "")),
-        ("Disturbance downstream", entered(place.disturbance_downstream, "")),
+        ("Equivalent diameter", desk.number_text(equivalent) if equivalent in desk.outcome.ledger else ""),
+        ("Disturbance upstream", with_diameters(desk, "upstream", entered(place.disturbance_upstream, ""))),
+        ("Disturbance downstream", with_diameters(desk, "downstream", entered(place.disturbance_downstream, ""))),
         ("Ports", said(place.ports)),
         ("Elevation", entered(place.elevation, "")),
         ("Barometer height", entered(place.barometer_height, "")),
@@ -123,7 +135,7 @@ def location(desk: Desk) -> tuple[Block, ...]:
     )
     facts = [Item(label, text) for label, text in rows if text]
     facts += [Item(extra.item, _with_note(extra.entry, extra.note)) for extra in place.extra]
-    notes = () if facts else (desk.words("lead.no_location"),)
+    notes = plane_words(desk) if facts else (desk.words("lead.no_location"),)
     blocks = [Block(facts=tuple(facts), notes=notes), _methods(desk), _channels(desk)]
     if desk.outcome.record.points:
         blocks.append(_points(desk))
@@ -206,6 +218,6 @@ def _points(desk: Desk) -> Block:
 
 def _point(point: Point) -> str:
     times = [moment(time.value) for time in (point.from_time, point.until) if time is not None]
-    at = f" {'–'.join(times)}" if times else ""
+    at = f", {'–'.join(times)}" if times else ""
     distance = f" at {entered(point.distance, '')}" if point.distance is not None else ""
     return f"{point.point.value}{distance}{at}"

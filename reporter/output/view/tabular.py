@@ -4,8 +4,25 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import replace
+from itertools import pairwise
+from typing import TypeVar
 
 from reporter.output.view.model import AnyCell, Cell, Column, Row, Shown, Table
+
+T = TypeVar("T")
+
+#: Runs beside each other in one table.
+ACROSS = 5
+
+
+def side_by_side(runs: Sequence[T]) -> list[Sequence[T]]:
+    """Runs in groups that stand in one table each: as few as five across allow, evenly filled."""
+    count = -(-len(runs) // ACROSS)
+    if count <= 1:
+        return [runs]
+    size, more = divmod(len(runs), count)
+    starts = [at * size + min(at, more) for at in range(count + 1)]
+    return [runs[start:end] for start, end in pairwise(starts)]
 
 
 def aligned(made: Table) -> Table:
