@@ -158,11 +158,16 @@ class Comparison:
 
 @dataclass(frozen=True, slots=True)
 class Finding:
-    """What the combustion balance says of a run, in words, with the keys it rests on."""
+    """What the combustion balance says of a run, in words, with the keys it rests on; `run` is empty for all runs.
+
+    A finding worded by a phrase names it, with what its braces hold, so that a firm's own wording can replace it.
+    """
 
     run: str
     words: str
     keys: tuple[str, ...] = ()
+    phrase: str = ""
+    values: tuple[tuple[str, str], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
