@@ -177,11 +177,16 @@ class Comparison:
 
 @dataclass(frozen=True, slots=True)
 class Finding:
-    """What the combustion balance says of a run (by key segment), in words, with the keys it rests on."""
+    """What the combustion balance says of a run (by key segment; empty for all runs), in words, with its keys.
+
+    A finding worded by a phrase names it, with what its braces hold, so that a firm's own wording can replace it.
+    """
 
     run: str
     words: str
     keys: tuple[str, ...] = ()
+    phrase: str = ""
+    values: tuple[tuple[str, str], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

@@ -66,18 +66,3 @@ def _spans(book: Book, abouts: Sequence[RunBook]) -> None:
             if entered is not None and span is not None and abs(entered.value - span.value) > 1e-6 * span.value:
                 said = f"{corrected.lane.name}: entered {entered.value:g}, high-level gas {span.value:g} {span.unit}"
                 book.trouble("span-differs", entered.place, said)
-
-
-def look_at_balance(book: Book, abouts: Sequence[RunBook]) -> None:
-    """Moisture and oxygen against what the combustion of the fuel gives."""
-    for about in abouts:
-        expected = book.ledger.get(about.key("combustion.moisture_expected"))
-        if expected is None or about.moisture is None:
-            continue
-        source = about.run.moisture_source.value if about.run.moisture_source is not None else ""
-        if source != "fuel calculation" and about.moisture.value < 0.9 * expected.value:
-            said = (
-                f"run {about.run.run.value}: measured {100 * about.moisture.value:.1f} %, "
-                f"combustion of the fuel gives {100 * expected.value:.1f} %"
-            )
-            book.trouble("moisture-below-combustion", about.run.place, said)

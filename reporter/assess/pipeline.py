@@ -7,9 +7,10 @@ from collections.abc import Sequence
 from reporter.assess.averages import Average, average
 from reporter.assess.barometer import look_at_barometer
 from reporter.assess.comparison import Made, compare, not_measured
-from reporter.assess.findings import look_at_balance, look_at_record
+from reporter.assess.findings import look_at_record
 from reporter.assess.gaps import say_gaps
 from reporter.assess.groups import groups, runs_of, suffix_of
+from reporter.assess.hints import give_hints
 from reporter.assess.states import run_results
 from reporter.ledger import Ledger
 from reporter.methods.averages import mean_of_valid
@@ -74,7 +75,7 @@ def assess(record: Record) -> Outcome:
     say_gaps(book, wanted, missing)
     comparisons = _compare(book, abouts, wanted, missing)
     averages = _averages(book, abouts, wanted)
-    look_at_balance(book, abouts)
+    give_hints(book, abouts)
     return Outcome(
         record=record,
         ledger=book.ledger,

@@ -144,6 +144,11 @@ def findings(
     return (*found, *_negative_readings(state))
 
 
+def reach(state: State, key: str, spreads: Mapping[str, float]) -> float:
+    """How far an entry moves with half ranges of a composition by ledger key, all in its direction [its unit]."""
+    return _Probe(state).reach_of(key, spreads)
+
+
 def _impossible(
     probe: _Probe, key: str, species: str, uncertainties: Mapping[str, float], spreads: Mapping[str, float]
 ) -> BalanceFinding | None:
@@ -153,8 +158,7 @@ def _impossible(
         return None
     squares = sum((probe.slope(key, leaf) * u) ** 2 for leaf, u in uncertainties.items() if probe.reaches(key, leaf))
     uncertainty = float(squares) ** 0.5
-    reach = sum(abs(probe.slope(key, leaf)) * s for leaf, s in spreads.items() if probe.reaches(key, leaf))
-    if value >= -2.0 * uncertainty - reach:
+    if value >= -2.0 * uncertainty - probe.reach_of(key, spreads):
         return None
     entry = probe.state.ledger[key]
     return BalanceFinding(
@@ -210,6 +214,10 @@ class _Probe:
             step = _STEP * max(abs(at), _scale(self.state.ledger[source].unit))
             self._slopes[key, source] = self._difference(key, source, at, step)
         return self._slopes[key, source]
+
+    def reach_of(self, key: str, spreads: Mapping[str, float]) -> float:
+        """How far an entry moves with half ranges of the entries before it."""
+        return sum(abs(self.slope(key, leaf)) * s for leaf, s in spreads.items() if self.reaches(key, leaf))
 
     def _difference(self, key: str, source: str, at: float, step: float) -> float:
         try:

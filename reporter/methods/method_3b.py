@@ -188,6 +188,20 @@ def fo_range(fuel: str) -> FoRange | None:
     return FoRange(name, float(row["low"]), float(row["high"]), row["status"], citation)
 
 
+def fuels_holding(factor: float) -> tuple[str, ...]:
+    """The published fuels whose expected range holds a fuel factor, in the order of the table.
+
+    Examples
+    --------
+    >>> fuels_holding(1.7)
+    ('natural gas',)
+    >>> fuels_holding(2.5)
+    ()
+    """
+    ranges = _table()["ranges"]
+    return tuple(name for name, row in ranges.items() if row["low"] <= factor <= row["high"])
+
+
 def mixed_fuel_tolerance() -> float:
     """Half-width [%] of the expected range around the computed F_o of fuels burned in varying ratio."""
     return float(_table()["mixed_fuels"]["tolerance_percent"])

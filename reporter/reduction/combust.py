@@ -13,10 +13,11 @@ from reporter.ledger import Entry, slug
 from reporter.methods.criteria import reading_difference
 from reporter.outcome import Finding
 from reporter.record import FuelRow, text_of
+from reporter.reduction.agreement import agreement_table, judge_agreement
 from reporter.reduction.bases import RunBook
 from reporter.reduction.blend import enter_blend
 from reporter.reduction.book import Book
-from reporter.reduction.composition import enter_composition, fuel_of
+from reporter.reduction.composition import composition_key, enter_composition, fuel_of
 from reporter.reduction.uncertainty import reading_uncertainty
 
 _HYDROCARBONS = {"thc": "C3H8", "c3h8": "C3H8", "ch4": "CH4"}
@@ -38,7 +39,9 @@ def balance(book: Book, about: RunBook, share: dict[str, Entry]) -> State | None
         book.say(f"Run {about.run.run.value}: no combustion balance; {error.message}.")
         return None
     _differences(book, about)
-    _say(book, about, state, burned)
+    wide = _spreads(book, burned)
+    judge_agreement(book, about, state, wide)
+    _say(book, about, state, wide)
     return state
 
 
@@ -105,7 +108,17 @@ def _differences(book: Book, about: RunBook) -> None:
             book.apply(reading_difference, about.key(f"combustion.{name}"), inputs)
 
 
-def _say(book: Book, about: RunBook, state: State, burned: list[FuelRow]) -> None:
+def _spreads(book: Book, burned: list[FuelRow]) -> dict[str, float]:
+    """Half ranges of the shares of every assumed composition that burned, by ledger key."""
+    wide: dict[str, float] = {}
+    for row in burned:
+        fuel = fuel_of(book, row)
+        if fuel is not None:
+            wide.update(spreads(fuel, composition_key(row.fuel.value)))
+    return wide
+
+
+def _say(book: Book, about: RunBook, state: State, wide: dict[str, float]) -> None:
     ratio = book.ledger[about.key("combustion.equivalence_ratio")]
     if state.mixture:
         tell = ": tell the operator" if "rich" in state.mixture else ""
@@ -117,11 +130,8 @@ def _say(book: Book, about: RunBook, state: State, burned: list[FuelRow]) -> Non
         reading = about.measured.get(segment)
         if u is not None and reading is not None:
             doubts[reading.key] = u.value
-    wide: dict[str, float] = {}
-    for row in burned:
-        fuel = fuel_of(book, row)
-        if fuel is not None and fuel.assumed and len(burned) == 1:
-            wide.update(spreads(fuel, state.fuel_prefix))
+    if about.moisture is not None:
+        doubts[about.moisture.key] = agreement_table()["moisture"]["tolerance"] / 2
     for found in findings(state, doubts, spreads=wide):
         if found.kind is FindingKind.IMPOSSIBLE:
             book.trouble("impossible-balance", about.run.place, f"run {about.run.run.value}: {found.text()}")

@@ -123,6 +123,8 @@ MADE: dict[str, Callable[[], Outcome]] = {
     "coverage-low": lambda: assessed(readings=_values(NOx=lambda t: "" if t == at("08:05") else 40.0)),
     "oxygen-reading-implausible": lambda: assessed(readings=_values(O2=lambda t: 21.3 if t == at("08:05") else 5.0)),
     "moisture-below-combustion": lambda: assessed(fuels=(fuel(),), runs=runs(moisture=number(5.0, "%"))),
+    "moisture-above-combustion": lambda: assessed(fuels=(fuel(),), runs=runs(moisture=number(25.0, "%"))),
+    "co2-against-fuel": lambda: assessed(readings=_values(CO2=10.2), fuels=(fuel(),)),
     "converter-missing": assessed,
     "response-time-missing": lambda: assessed(
         channels=(channel("NOx", response_time_up=None), *(channel(name) for name in ("CO", "O2", "CO2")))

@@ -33,7 +33,7 @@ def _equations() -> dict[str, Equation[Any]]:
 
 EQUATIONS = _equations()
 each_equation = pytest.mark.parametrize("name", sorted(EQUATIONS))
-VARIABLES = {"*f": "mol/kg", "*t": "mol/mol", "*v": "kJ/kg"}
+VARIABLES = {"*f": "mol/kg", "*t": "mol/mol", "*v": "kJ/kg", "*c": "ppm", "*r": "kg/h"}
 
 
 def _unit(unit: str) -> str:

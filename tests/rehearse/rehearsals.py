@@ -52,4 +52,9 @@ def not_met(outcome: Outcome) -> list[str]:
     return [f"{check.gas} {check.title}".strip() for check in outcome.checks if not check.met]
 
 
+def hints(outcome: Outcome) -> set[tuple[str, str]]:
+    """What the readings are said to look like: run (empty for all) and name of the phrase."""
+    return {(found.run, found.phrase.removeprefix("hint.")) for found in outcome.findings if found.phrase}
+
+
 SYSTEMS = (System.US, System.SI)

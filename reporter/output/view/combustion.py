@@ -45,7 +45,8 @@ def _findings(desk: Desk) -> tuple[str, ...]:
     """Findings in words, those of several runs once."""
     runs: dict[str, list[str]] = {}
     for finding in desk.outcome.findings:
-        runs.setdefault(finding.words, []).append(finding.run)
+        words = desk.words(finding.phrase, **dict(finding.values)) if finding.phrase else finding.words
+        runs.setdefault(words, []).append(finding.run)
     heads = {words: capital(desk.run_names(key for key in some if key)) for words, some in runs.items()}
     return tuple(formulas(f"{heads[words]}: {words}" if any(some) else words) for words, some in runs.items())
 
