@@ -141,13 +141,13 @@ def test_wrong_fuel_oil_entered_and_gas_burned_shows_on_the_other_side() -> None
     assert value(outcome, 1, "combustion.co2_difference") < -2.5
 
 
-def test_clock_shift_only_the_fuel_factor_and_the_expected_carbon_dioxide_show_it() -> None:
+def test_clock_shift_the_log_of_the_calibrations_and_the_fuel_factor_show_it() -> None:
     """Nine minutes late: seven of the check after the run are in its mean, four of zero gas first."""
     _, outcome = faulty(Fault.CLOCK_SHIFT)
     titles = not_met(outcome)
     assert len(titles) == 3
     assert all(title.startswith("Fuel factor, upper end") for title in titles)
-    assert codes(outcome) == {"fuel-factor-out-of-range"}
+    assert codes(outcome) == {"fuel-factor-out-of-range", "clock-differs", "calibration-gas-in-run"}
     assert _states(Fault.CLOCK_SHIFT) == [RunState.VALID] * 3
     assert value(outcome, 1, "combustion.co2_difference") < -1.0
     run = outcome.record.runs[0]
