@@ -47,7 +47,7 @@ def _whole() -> tuple[str, Sheets]:
 
 
 def base(size: str) -> Sheets:
-    """The sheets of the valid sample, smaller: "day" with each minute, "full" those of the runs, "short" four of each."""
+    """The sheets of the valid sample, smaller: "day" has each minute, "full" those of runs, "short" four of each."""
     sheets = copy.deepcopy({name: rows for name, rows in _whole()[1].items() if name not in LEFT_OUT[size]})
     if size == "day":
         return sheets
