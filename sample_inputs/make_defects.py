@@ -12,7 +12,7 @@ import re
 import tomllib
 import zipfile
 from collections.abc import Callable, Mapping
-from datetime import datetime
+from datetime import datetime, timedelta
 from functools import cache
 from pathlib import Path
 from typing import Any
@@ -26,6 +26,7 @@ DEFECTS = Path(__file__).resolve().parent / "defects"
 BASE = "gas_boiler_us"
 #: Sheets a defect does not need.
 LEFT_OUT = {
+    "day": ("Location", "Points", "Process", "Attachments"),
     "full": ("Location", "Points", "Process", "Attachments"),
     "short": ("Location", "Points", "Process", "Attachments", "Fuel", "Fuel use", "Moisture", "Limits", "Events"),
 }
@@ -46,8 +47,10 @@ def _whole() -> tuple[str, Sheets]:
 
 
 def base(size: str) -> Sheets:
-    """The sheets of the valid sample, smaller: "full" keeps each minute of the runs, "short" four of each."""
+    """The sheets of the valid sample, smaller: "day" has each minute, "full" those of runs, "short" four of each."""
     sheets = copy.deepcopy({name: rows for name, rows in _whole()[1].items() if name not in LEFT_OUT[size]})
+    if size == "day":
+        return sheets
     kept = []
     for run in sheets["Runs"]:
         within = [row for row in sheets["Readings"] if run["Start"] < row["Time"] <= run["End"]]
@@ -81,6 +84,9 @@ def _apply(sheets: Sheets, change: Mapping[str, Any]) -> None:
     for rule in change.get("set", ()):
         for row in _chosen(sheets, rule):
             row[rule["column"]] = rule["value"]
+    for name, minutes in change.get("later", {}).items():
+        for row in sheets[name]:
+            row["Time"] += timedelta(minutes=minutes)
     for name, rows in change.get("add", {}).items():
         sheets.setdefault(name, []).extend(copy.deepcopy(rows))
 

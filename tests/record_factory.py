@@ -169,16 +169,27 @@ def readings(
     start: str = "07:56",
     stop: str = "10:34",
     step: float = 60.0,
+    marked: bool = True,
 ) -> Readings:
-    """A row each `step` seconds; a value is a number, a word of the Readings sheet, or a function of the time."""
+    """A row each `step` seconds; a value is a number, a word of the Readings sheet, or a function of the time.
+
+    Where it is `marked`, the log says CAL around each of `CHECKS`.
+    """
     chosen: dict[str, Value] = {name: row[2] for name, row in CHANNELS.items()} if values is None else dict(values)
     rows: list[ReadingRow] = []
     time = at(start)
     while time <= at(stop):
-        rows.append(ReadingRow(time, len(rows) + 2, tuple(_reading(value, time) for value in chosen.values())))
+        cells = tuple(
+            reading("CAL") if marked and _checking(time) else _reading(value, time) for value in chosen.values()
+        )
+        rows.append(ReadingRow(time, len(rows) + 2, cells))
         time += timedelta(seconds=step)
     letters = tuple("BCDEFGHIJ"[: len(chosen)])
     return Readings(tuple(chosen), letters, tuple(rows), Place(sheet="Readings"))
+
+
+def _checking(time: datetime) -> bool:
+    return any(at(clock) - timedelta(minutes=4) < time <= at(_later(clock, 3)) for clock in CHECKS)
 
 
 def _reading(value: Value, time: datetime) -> Reading:

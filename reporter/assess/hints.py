@@ -63,7 +63,7 @@ def _off_the_line(book: Book, about: RunBook) -> None:
     possible = oxygen.value >= 0
     _say(
         book,
-        about.run.run.value,
+        about.run.key,
         "off_the_line" if possible else "off_the_line_co2",
         (difference.key, dioxide.key, expected.key, bound.key, scale.key, *([oxygen.key] if possible else [])),
         measured=f"{dioxide.value:.2f}",
@@ -84,7 +84,7 @@ def _wet(book: Book, about: RunBook) -> bool:
     oxygen, dioxide, difference, bound, expected = entries = [book.ledger[stem(about, f"wet.{name}")] for name in names]
     _say(
         book,
-        about.run.run.value,
+        about.run.key,
         "wet_called_dry",
         (about.moisture.key, *(entry.key for entry in entries)),
         moisture=f"{100 * about.moisture.value:.1f}",
@@ -109,7 +109,7 @@ def _other_fuel(book: Book, about: RunBook) -> bool:
     sides = [_get(book, about, name) for name in ("moisture_not_below", "moisture_not_above")]
     if about.moisture is None or None in sides:
         if others:
-            _say(book, about.run.run.value, "other_fuel", keys, **values, fuels=", ".join(others))
+            _say(book, about.run.key, "other_fuel", keys, **values, fuels=", ".join(others))
         return bool(others)
     if all(side is not None and side.value == 1.0 for side in sides):
         return False
@@ -122,7 +122,7 @@ def _other_fuel(book: Book, about: RunBook) -> bool:
             "expected": f"{100 * expected.value:.1f}",
         }
         keys += [about.moisture.key, expected.key, *(entry.key for _, entry in waters)]
-        _say(book, about.run.run.value, "other_fuel_moist", keys, **values)
+        _say(book, about.run.key, "other_fuel_moist", keys, **values)
     return bool(waters)
 
 
@@ -155,9 +155,9 @@ def _diluted(book: Book, about: RunBook) -> bool:
     share = _by_moisture(book, about)
     if above is not None and above.value != 1.0 and share is not None:
         values["moisture"] = f"{share.value:.0f}"
-        _say(book, about.run.run.value, "diluted_both", (*keys, share.key), **values)
+        _say(book, about.run.key, "diluted_both", (*keys, share.key), **values)
     else:
-        _say(book, about.run.run.value, "diluted_routes", keys, **values)
+        _say(book, about.run.key, "diluted_routes", keys, **values)
     return True
 
 
@@ -195,7 +195,7 @@ def _moist(book: Book, about: RunBook) -> None:
     expected = book.ledger[about.key("combustion.moisture_expected")]
     _say(
         book,
-        about.run.run.value,
+        about.run.key,
         "moist",
         (about.moisture.key, expected.key, share.key),
         measured=f"{100 * about.moisture.value:.1f}",

@@ -6,6 +6,7 @@ from collections.abc import Sequence
 
 from reporter.assess.averages import Average, average
 from reporter.assess.barometer import look_at_barometer
+from reporter.assess.clock import look_at_clocks
 from reporter.assess.comparison import Made, compare, not_measured
 from reporter.assess.findings import look_at_record
 from reporter.assess.gaps import say_gaps
@@ -72,6 +73,7 @@ def assess(record: Record) -> Outcome:
     for about in abouts:
         _reduce_run(book, about, wanted, missing)
     look_at_record(book, tracks, abouts, windows, series)
+    look_at_clocks(book, tracks, runs, windows)
     say_gaps(book, wanted, missing)
     comparisons = _compare(book, abouts, wanted, missing)
     averages = _averages(book, abouts, wanted)

@@ -15,6 +15,7 @@ from reporter.intake.readings import read_readings
 from reporter.intake.rows import Filled, RowReader
 from reporter.intake.sheets import Kind, Sheet, fold, sheets
 from reporter.intake.table import SheetTable
+from reporter.intake.windows import candidates, day_of
 from reporter.record import ProcessLog, Readings, Record, SheetCopy, SourceFile
 from reporter.units import ReadUnit, convert
 
@@ -113,7 +114,7 @@ class _Builder:
         if table is None or not table.header_found:
             return
         rows = self.rows[spec.attr] = self.reader.rows(table)
-        if spec.required and not rows:
+        if spec.required and not rows and spec.attr != "runs":
             self.gathered.add("no-rows", self.gathered.place(table.sheet))
 
     def _share_channels(self) -> None:
@@ -160,6 +161,8 @@ class _Builder:
                 checks.references(spec, rows[spec.attr], names, gathered)
         checks.unit_against_basis([*rows.get("channels", ()), *rows.get("limits", ())], gathered)
         runs = rows.get("runs", [])
+        if all("start" not in row.values and "end" not in row.values for row in runs) and "runs" in self.tables:
+            self._propose_runs(self.tables["runs"])
         checks.flow_against_basis(runs, gathered)
         checks.events(rows.get("events", []), gathered)
         checks.run_times(runs, gathered, (self.reader.day, self._item("last_test_day")))
@@ -168,6 +171,23 @@ class _Builder:
             checks.runs_with_readings(runs, self.readings, gathered, seconds=seconds, at_start=at_start)
             checks.logging_interval(self.readings, seconds, gathered)
         self.reader.say_assumed()
+
+    def _propose_runs(self, table: SheetTable) -> None:
+        """Say which times the runs could have, where none are entered; nothing is chosen."""
+        runs, readings = self.rows.get("runs"), self.readings
+        if readings is None or not readings.rows:
+            if runs == []:
+                self.gathered.add("no-rows", self.gathered.place(table.sheet))
+            return
+        if runs is None:
+            return
+        at_start = self._item("reading_stamp") == "interval start"
+        day = day_of(self.rows, readings, self.process, at_start=at_start)
+        said = [f"{number}) {one.words()}" for number, one in enumerate(candidates(day), start=1)]
+        least = f"{day.least.total_seconds() / 60:g} min"
+        found = f"no start and no end of a run; possible by the rules: {'; '.join(said) or f'no stretch of {least}'}"
+        cell = runs[0].place.cell if runs else table.header[0].cell
+        self.gathered.add("run-times-missing", self.gathered.place(table.sheet, cell, "Start"), found)
 
     def _item(self, attr: str) -> Any:
         """The value of an item of the sheet Test; None where there is none."""

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import replace
-from datetime import date
+from datetime import date, datetime, timedelta
 from pathlib import Path
 from typing import Any
 
@@ -13,7 +13,7 @@ import pytest
 import reporter
 from reporter.outcome import Outcome
 from reporter.problems import Grade, Problem, catalogue
-from reporter.record import Given, Location
+from reporter.record import Given, Location, Record
 from tests.record_factory import (
     HERE,
     added,
@@ -84,6 +84,27 @@ def _alone(*names: str) -> Outcome:
     )
 
 
+def _zero_gas(time: datetime) -> float:
+    return 0.0 if at("08:13") < time <= at("08:15") else 40.0
+
+
+def _logged_day(behind: int) -> Record:
+    """Each gas stands in the log up to so many minutes before it is entered."""
+    made = record()
+    gases = {(row.time.value, row.channel.value): row.reading.value for row in made.calibrations}
+
+    def logged(name: str, usual: float) -> Callable[[datetime], float]:
+        def value(time: datetime) -> float:
+            entered = [(time + timedelta(minutes=behind + ahead), name) for ahead in (0, 1)]
+            return next((gases[one] for one in entered if one in gases), usual)
+
+        return value
+
+    usual = {"NOx": 41.0, "CO": 11.0, "O2": 5.5, "CO2": 8.0}
+    rows = readings({name: logged(name, number) for name, number in usual.items()}, start="06:40", marked=False)
+    return replace(made, readings=rows)
+
+
 MADE: dict[str, Callable[[], Outcome]] = {
     "calibration-missing": lambda: assess(without_calibrations(record(), "NOx", "10:40", "10:42")),
     "calibration-late": lambda: _check_moved("08:05", "07:50", "07:52"),
@@ -114,6 +135,11 @@ MADE: dict[str, Callable[[], Outcome]] = {
     "rounding-rule-unknown": lambda: assessed(limits=(limit(rounding="as usual"),)),
     "no-criteria-held": lambda: assessed(
         channels=(channel("NOx", method="EN 14792"), *(channel(name) for name in ("CO", "O2", "CO2")))
+    ),
+    "clock-differs": lambda: assess(_logged_day(behind=9)),
+    "calibration-not-logged": lambda: assess(added(record(), calibration("08:50", "NOx", "system", "zero", 0.0))),
+    "calibration-gas-in-run": lambda: assess(
+        added(record(readings=_values(NOx=_zero_gas)), calibration("08:15", "NOx", "system", "zero", 0.0))
     ),
     "synthetic-test": lambda: assessed(test=identity(synthetic="yes, a rehearsal")),
     "span-differs": lambda: assessed(

@@ -168,14 +168,19 @@ def test_wrong_fuel_oil_entered_and_gas_burned_shows_on_the_other_side() -> None
     assert any("range of natural gas" in f.words for f in outcome.findings)
 
 
-def test_clock_shift_only_the_fuel_factor_and_the_expected_carbon_dioxide_show_it() -> None:
+def test_clock_shift_the_log_of_the_calibrations_and_the_fuel_factor_show_it() -> None:
     """Nine minutes late: seven of the check after the run are in its mean, four of zero gas first."""
     _, outcome = faulty(Fault.CLOCK_SHIFT)
     titles = not_met(outcome)
     assert len([t for t in titles if t.startswith("Fuel factor, upper end")]) == 3
     assert len([t for t in titles if t.startswith(OFF)]) == 3
     assert len(titles) == 6
-    assert codes(outcome) == {"co2-against-fuel", "fuel-factor-out-of-range"}
+    assert codes(outcome) == {
+        "co2-against-fuel",
+        "fuel-factor-out-of-range",
+        "clock-differs",
+        "calibration-gas-in-run",
+    }
     assert hints(outcome) == {*every("off_the_line"), ("", "shared")}
     assert _states(Fault.CLOCK_SHIFT) == [RunState.VALID] * 3
     assert value(outcome, 1, "combustion.co2_difference") < -1.0

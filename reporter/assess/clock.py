@@ -1,0 +1,201 @@
+"""The clock of the readings against those of calibrations and process: said with its confidence, never applied here."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping, Sequence
+from datetime import datetime, timedelta
+from statistics import median
+
+import numpy as np
+
+from reporter.clocks import Floats, Known, Lag, Log, Shift, lag_between, shift_of_gases
+from reporter.outcome import Exclusion
+from reporter.record import Calibration, Level, ReadingKind, Run
+from reporter.reduction.book import Book, Lane
+from reporter.reduction.window import Window, logging_interval, stamps_interval_start
+
+#: A logged value is the entered one within this share of the channel's highest calibration reading; within the
+#: second it may still be the same gas.
+SAME, ALIKE = 0.02, 0.05
+#: Differences of clocks, and the way from an entered time to its gas in the log, below this are not said [s].
+SLACK = 120.0
+#: A log of longer intervals cannot show each gas [s]; a gas is looked for so far from its entered time [s].
+FINE, AROUND = 60.0, 300.0
+#: Lags against the process log are looked for so far either way [s].
+REACH = 2 * 3600.0
+_EPOCH = datetime(2000, 1, 1)
+
+
+def look_at_clocks(book: Book, tracks: Sequence[Lane], runs: Sequence[Run], windows: Mapping[str, Window]) -> None:
+    """Hold the calibration readings entered against the logged series, and the process log against the diluents.
+
+    Parameters
+    ----------
+    book
+        Takes the problems ``clock-differs``, ``calibration-not-logged``, ``calibration-gas-in-run``.
+    tracks
+        The channels.
+    runs
+        The runs.
+    windows
+        What events exclude in each run, by key.
+    """
+    logs = logs_of(book, tracks)
+    pairs = list(_entered(book, logs))
+    if pairs:
+        step = float(logging_interval(book).total_seconds())
+        shift = shift_of_gases([known for _, known in pairs], step)
+        slack = max(SLACK, step)
+        differs = shift is not None and not shift.first - slack <= 0.0 <= shift.last + slack
+        if shift is not None and differs:
+            book.trouble("clock-differs", pairs[0][0].place, _words(shift))
+        elif step <= FINE:
+            _not_logged(book, pairs)
+        by = shift.seconds if shift is not None and differs else 0.0
+        _in_runs(book, [(row, known, by) for row, known in pairs], runs, windows)
+    _against_process(book, tracks, runs, logs)
+
+
+def logs_of(book: Book, tracks: Sequence[Lane]) -> dict[str, Log]:
+    """The logged series of each channel as intervals, by its name; times are seconds from the year 2000."""
+    readings = book.record.readings
+    step = logging_interval(book).total_seconds()
+    stamps = np.array([seconds(row.time) for row in readings.rows], dtype=np.float64)
+    begin = stamps if stamps_interval_start(book) else stamps - step
+    found = {}
+    for lane in tracks:
+        column = readings.index(lane.name)
+        cells = (row.readings[column] for row in readings.rows)
+        values = [one.value if one.kind is ReadingKind.NUMBER and one.value is not None else np.nan for one in cells]
+        found[lane.name] = Log(begin, begin + step, np.array(values, dtype=np.float64))
+    return found
+
+
+def seconds(moment: datetime) -> float:
+    """A time on the axis of the logs."""
+    return (moment - _EPOCH).total_seconds()
+
+
+def _entered(book: Book, logs: Mapping[str, Log]) -> Iterator[tuple[Calibration, Known]]:
+    """The calibration readings that the log can be held against; the converter gas is read by another way."""
+    highest: dict[str, float] = {}
+    for row in book.record.calibrations:
+        name = row.channel.value
+        highest[name] = max(highest.get(name, 0.0), abs(row.reading.value))
+    for row in book.record.calibrations:
+        name = row.channel.value
+        if row.level.value is not Level.NO2 and name in logs and highest[name] > 0.0:
+            near = SAME * highest[name]
+            yield row, Known(seconds(row.time.value), row.reading.value, near, logs[name])
+
+
+def _words(shift: Shift) -> str:
+    behind = "behind" if shift.seconds < 0.0 else "ahead of"
+    return (
+        f"the clock of the readings stands {span(shift.seconds)} {behind} that of the calibrations "
+        f"({-shift.seconds:+g} s to be added to the stamps): "
+        f"{shift.found} of {shift.total} calibration readings stand in the log at that shift, {shift.as_stamped} as "
+        f"stamped, at most {shift.elsewhere} at any other; confidence {shift.confidence:.2f}, of 1"
+    )
+
+
+def span(seconds_apart: float) -> str:
+    """A length of time in words."""
+    size = abs(seconds_apart)
+    return f"{size / 60.0:.3g} min" if size >= 60.0 else f"{size:g} s"
+
+
+def _not_logged(book: Book, pairs: Sequence[tuple[Calibration, Known]]) -> None:
+    """Calibration gases that the log, though it has numbers all around their time, does not show."""
+    missed: dict[str, list[tuple[Calibration, float]]] = {}
+    for row, known in pairs:
+        log = known.log
+        near = (log.end > known.time - AROUND) & (log.begin < known.time + AROUND)
+        logged = log.value[near]
+        complete = float((log.end - log.begin)[near].sum()) >= 2.0 * AROUND and bool(np.isfinite(logged).all())
+        wide = known.near * ALIKE / SAME
+        if complete and not (np.abs(logged - known.value) <= wide).any():
+            missed.setdefault(row.channel.value, []).append((row, median(logged.tolist())))
+    for name, rows in missed.items():
+        row, logged_value = rows[0]
+        found = (
+            f"{name}: {len(rows)} calibration reading(s), the first at {row.time.value:%H:%M}: {row.level.value.value} "
+            f"gas read as {row.reading.value:g}, the log shows {logged_value:.4g} from {AROUND / 60:g} min before to "
+            f"{AROUND / 60:g} min after"
+        )
+        book.trouble("calibration-not-logged", row.place, found)
+
+
+def _in_runs(
+    book: Book, pairs: Sequence[tuple[Calibration, Known, float]], runs: Sequence[Run], windows: Mapping[str, Window]
+) -> None:
+    """Calibration gases that the log shows inside a run, by its own stamps, and that no event excludes."""
+    for run in runs:
+        start, end = seconds(run.start.value), seconds(run.end.value)
+        inside = [
+            (known.time + by, row)
+            for row, known, by in pairs
+            if start < known.time + by <= end
+            and known.is_telling()
+            and known.shown(np.array([by]))[0]
+            and not _excluded(known.time + by, windows[run.key].exclusions)
+        ]
+        if not inside:
+            continue
+        first = min(inside, key=lambda pair: pair[0])
+        named = ", ".join(dict.fromkeys(f"{row.channel.value} {row.level.value.value}" for _, row in inside))
+        moment = _EPOCH + timedelta(seconds=first[0])
+        found = f"run {run.run.value}: {named}; the first at {moment:%H:%M} by the clock of the readings"
+        book.trouble("calibration-gas-in-run", run.place, found)
+
+
+def _excluded(moment: float, exclusions: Sequence[Exclusion]) -> bool:
+    return any(seconds(one.start) <= moment <= seconds(one.end) for one in exclusions)
+
+
+# ---- the process log ------------------------------------------------------------------------------------
+
+
+def _against_process(book: Book, tracks: Sequence[Lane], runs: Sequence[Run], logs: Mapping[str, Log]) -> None:
+    """The clock of the process log against that of the diluents, where one follows the other closely enough to tell."""
+    log = book.record.process
+    times = np.array([seconds(time) for time in log.times], dtype=np.float64)
+    if len(times) < 2 or (np.diff(times) <= 0.0).any():
+        return
+    step = float(np.median(np.diff(times)))
+    if (np.abs(np.diff(times) - step) > 0.1 * step).any():
+        return
+    best: tuple[str, Lag] | None = None
+    for lane in tracks:
+        if not lane.gas.is_diluent:
+            continue
+        gas = _about(logs[lane.name], times, step, runs)
+        for position, column in enumerate(log.columns):
+            cells = (row[position] for row in log.values)
+            values = np.array([cell if isinstance(cell, float) else np.nan for cell in cells])
+            lag = lag_between(values, gas, step, REACH)
+            if lag is not None and (best is None or lag.confidence > best[1].confidence):
+                best = (f"{lane.name} against {column}", lag)
+    if best is not None and abs(best[1].seconds) > max(SLACK, step):
+        book.trouble("clock-differs", log.place, f"{best[0]}: {lag_words(best[1], 'the readings', 'the process log')}")
+
+
+def _about(log: Log, times: Floats, step: float, runs: Sequence[Run]) -> Floats:
+    """The mean of what was logged inside the runs within half a step of each time."""
+    middle = (log.begin + log.end) / 2.0
+    within = [(middle > seconds(run.start.value)) & (middle <= seconds(run.end.value)) for run in runs]
+    used = np.isfinite(log.value) & np.any(within, axis=0)
+    place = np.floor((middle[used] - times[0]) / step + 0.5).astype(np.int64)
+    inside = (place >= 0) & (place < len(times))
+    total = np.bincount(place[inside], weights=log.value[used][inside], minlength=len(times))
+    count = np.bincount(place[inside], minlength=len(times))
+    return np.where(count > 0, total / np.maximum(count, 1), np.nan)
+
+
+def lag_words(lag: Lag, log: str, other: str) -> str:
+    """A lag in words: `log` is what stands behind (or ahead of) `other`."""
+    return (
+        f"{log} stand {span(lag.seconds)} {'behind' if lag.seconds > 0.0 else 'ahead of'} {other}: correlation "
+        f"{lag.correlation:.2f} at that lag, {lag.as_stamped:.2f} as stamped, at most {abs(lag.elsewhere):.2f} in size "
+        f"at any other, over {lag.points} points; confidence {lag.confidence:.2f}, of 1"
+    )

@@ -1,0 +1,204 @@
+"""By how much two clocks differ, by what was logged: steps to known gases, and two series that move together.
+
+Pure functions on arrays.  Times are seconds on one common axis; a shift is what must be added to a time of the other
+clock (of the calibrations, of the first series) to find the same moment by the clock of the log.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+Floats = NDArray[np.float64]
+Bools = NDArray[np.bool_]
+
+#: Shifts looked at reach so far either way [s]: a whole day's worth of wrong time zones.
+FARTHEST = 14 * 3600.0
+#: A reading that more than this share of the log shows tells nothing about the clock.
+TELLING = 0.25
+#: So many telling readings, entered at so many different times, are needed.
+LEAST_READINGS, LEAST_TIMES = 6, 3
+#: Share of the telling readings that the log must show at the best shift, and the most at any other.
+FOUND, ELSEWHERE = 0.8, 0.6
+#: Shifts within so many seconds of the best are not another shift.
+NEAR = 600.0
+#: Correlation at the best lag; by how much it must exceed that at lag zero and at any other; points in common.
+CORRELATED, BETTER, POINTS = 0.8, 0.15, 30
+
+
+@dataclass(frozen=True, slots=True)
+class Log:
+    """One channel as logged: intervals (begin, end] in time order [s] and their values, not a number where none is."""
+
+    begin: Floats
+    end: Floats
+    value: Floats
+
+    def at(self, times: Floats) -> Floats:
+        """The value of the interval that each time lies in; not a number outside any."""
+        if not len(self.end):
+            return np.full(np.shape(times), np.nan)
+        index = np.minimum(np.searchsorted(self.end, times, side="left"), len(self.end) - 1)
+        inside = (self.begin[index] < times) & (times <= self.end[index])
+        return np.where(inside, self.value[index], np.nan)
+
+
+@dataclass(frozen=True, slots=True)
+class Known:
+    """One reading of a calibration gas: when it was entered [s], its value, how near counts, the log of its channel."""
+
+    time: float
+    value: float
+    near: float
+    log: Log
+
+    def is_telling(self) -> bool:
+        """Whether few enough intervals of the log show this value."""
+        logged = self.log.value[np.isfinite(self.log.value)]
+        return bool(len(logged)) and float(np.mean(np.abs(logged - self.value) <= self.near)) <= TELLING
+
+    def shown(self, shifts: Floats) -> Bools:
+        """At which shifts the log shows the value."""
+        found: Bools = np.abs(self.log.at(self.time + shifts) - self.value) <= self.near
+        return found
+
+
+@dataclass(frozen=True, slots=True)
+class Shift:
+    """An estimated difference of two clocks.
+
+    `seconds` is the clock of the log less the other clock; `first` and `last` are the ends of the shifts that fit
+    [s]; `found` of `total` readings fit at the best, `as_stamped` at none, `elsewhere` at the next best shift.
+    """
+
+    seconds: float
+    first: float
+    last: float
+    found: int
+    total: int
+    as_stamped: int
+    elsewhere: int
+
+    @property
+    def confidence(self) -> float:
+        """The share of readings found at the best shift less the share at the next best: 0 tells nothing, 1 all."""
+        return (self.found - self.elsewhere) / self.total
+
+
+def shift_of_gases(readings: Sequence[Known], step: float) -> Shift | None:
+    """The shift at which the log shows the calibration gases; None where it cannot be told.
+
+    Parameters
+    ----------
+    readings
+        Readings of calibration gases with the logs of their channels.
+    step
+        Steps in which shifts are tried [s]: the logging interval.
+
+    Returns
+    -------
+    Shift or None
+        A reading is entered when it has settled, just before the gas is changed: of the shifts that fit, the last
+        is the estimate.
+    """
+    telling = [one for one in readings if one.is_telling()]
+    if len(telling) < LEAST_READINGS or len({one.time for one in telling}) < LEAST_TIMES:
+        return None
+    most = int(FARTHEST // step)
+    shifts = np.arange(-most, most + 1, dtype=np.float64) * step
+    count = np.zeros(len(shifts), dtype=np.int64)
+    for one in telling:
+        count += one.shown(shifts)
+    best = int(count.argmax())
+    found, total = int(count[best]), len(telling)
+    fits = count >= FOUND * found
+    first = last = best
+    while first > 0 and fits[first - 1]:
+        first -= 1
+    while last < len(shifts) - 1 and fits[last + 1]:
+        last += 1
+    away = (shifts < shifts[first] - NEAR) | (shifts > shifts[last] + NEAR)
+    elsewhere = int(count[away].max(initial=0))
+    if found < FOUND * total or elsewhere > ELSEWHERE * total:
+        return None
+    return Shift(
+        float(shifts[last]), float(shifts[first]), float(shifts[last]), found, total, int(count[most]), elsewhere
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class Lag:
+    """How far one series stands behind another [s], and the correlations at that lag, at none and at the next best."""
+
+    seconds: float
+    correlation: float
+    as_stamped: float
+    elsewhere: float
+    points: int
+
+    @property
+    def confidence(self) -> float:
+        """The size of the correlation at the lag less the largest elsewhere: 0 tells nothing, 1 all."""
+        return abs(self.correlation) - abs(self.elsewhere)
+
+
+def lag_between(one: Floats, two: Floats, step: float, farthest: float) -> Lag | None:
+    """How far the second series stands behind the first; None where it cannot be told.
+
+    Parameters
+    ----------
+    one, two
+        Values at the same times, `step` seconds apart, not a number where there is none.
+    step
+        Seconds between the values.
+    farthest
+        Longest lag looked at either way [s].
+
+    Returns
+    -------
+    Lag or None
+        Positive where what the first series shows stands later in the second.
+    """
+    most = min(int(farthest // step), len(one) - POINTS)
+    if most < 1:
+        return None
+    lags = range(-most, most + 1)
+    pairs = [_correlation(one, two, lag) for lag in lags]
+    size = np.array([abs(correlation) for correlation, _ in pairs])
+    best = int(size.argmax())
+    if size[best] < CORRELATED:
+        return None
+    low, high = _peak(size, best)
+    elsewhere = max((pairs[i][0] for i in range(len(size)) if not low <= i <= high), key=abs, default=0.0)
+    correlation, points = pairs[best]
+    as_stamped = pairs[most][0]
+    if abs(correlation) - abs(elsewhere) < BETTER:
+        return None
+    return Lag(lags[best] * step, correlation, as_stamped, elsewhere, points)
+
+
+def _correlation(one: Floats, two: Floats, lag: int) -> tuple[float, int]:
+    """The correlation of values `lag` places apart, and how many pairs it rests on."""
+    size = len(one) - abs(lag)
+    first = one[:size] if lag >= 0 else one[-lag:]
+    second = two[lag:] if lag >= 0 else two[:size]
+    both = np.isfinite(first) & np.isfinite(second)
+    points = int(both.sum())
+    if points < POINTS:
+        return 0.0, points
+    a, b = first[both] - first[both].mean(), second[both] - second[both].mean()
+    scale = float(np.sqrt((a @ a) * (b @ b)))
+    return (float(a @ b) / scale if scale > 0.0 else 0.0), points
+
+
+def _peak(size: Floats, best: int) -> tuple[int, int]:
+    """The places about the best over which the correlation falls without rising again."""
+    low = high = best
+    while low > 0 and size[low - 1] < size[low]:
+        low -= 1
+    while high < len(size) - 1 and size[high + 1] < size[high]:
+        high += 1
+    return low, high
