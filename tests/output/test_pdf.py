@@ -245,7 +245,9 @@ def test_long_names_leave_page_number_report_number_and_hash_on_every_page(
     reader = PdfReader(io.BytesIO(content))
     for number, page in enumerate(reader.pages, 1):
         heights: list[tuple[float, str]] = []
-        page.extract_text(visitor_text=lambda text, cm, tm, *_: heights.append((tm[5] * cm[3] + cm[5], text)))
+        page.extract_text(
+            visitor_text=lambda text, cm, tm, *_, kept=heights: kept.append((tm[5] * cm[3] + cm[5], text))
+        )
         text = page.extract_text()
         assert f"Page {number} of {len(reader.pages)}" in text
         assert f"input {digest}" in text
