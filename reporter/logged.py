@@ -141,6 +141,11 @@ class LoggedColumn:
     def __hash__(self) -> int:
         return hash((self.values.tobytes(), self.kinds.tobytes()))
 
+    @property
+    def measured(self) -> Floats:
+        """The measured numbers, NaN where a reading is a word, a bound or nothing."""
+        return np.where(self.kinds == CODE[ReadingKind.NUMBER], self.values, np.nan)
+
     def take(self, where: Where) -> LoggedColumn:
         """The column at some positions."""
         source = None if self.source is None else self.source[where]
