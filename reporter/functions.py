@@ -59,6 +59,8 @@ def stacked(values: Any) -> Any:
     """Several values of one kind as one operand whose first axis is the series; anything else as it is."""
     if not isinstance(values, (list, tuple)):
         return values
+    if set(map(type, values)) == {float}:
+        return np.array(values)
     if any(is_traced(value) for value in values):
         return Terms(tuple(as_term(value) for value in values))
     if values and is_quantity(values[0]):

@@ -171,7 +171,7 @@ class Ledger:
         LedgerError
             The key is taken or ill-formed, or a value is not a finite number.
         """
-        plain = tuple(float(v) for v in value) if isinstance(value, Iterable) else float(value)
+        plain = tuple(map(float, value)) if isinstance(value, Iterable) else float(value)
         numbers = plain if isinstance(plain, tuple) else (plain,)
         if not numbers or not all(map(math.isfinite, numbers)):
             raise LedgerError(f"{key}: {value} is no finite number, or no number at all")

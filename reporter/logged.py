@@ -141,9 +141,10 @@ class LoggedColumn:
     def __hash__(self) -> int:
         return hash((self.values.tobytes(), self.kinds.tobytes()))
 
-    def is_kind(self, *kinds: ReadingKind) -> NDArray[np.bool_]:
-        """Where the readings are of one of some kinds."""
-        return np.isin(self.kinds, [CODE[kind] for kind in kinds])
+    @property
+    def measured(self) -> Floats:
+        """The measured numbers, NaN where a reading is a word, a bound or nothing."""
+        return np.where(self.kinds == CODE[ReadingKind.NUMBER], self.values, np.nan)
 
     def take(self, where: Where) -> LoggedColumn:
         """The column at some positions."""
@@ -152,10 +153,6 @@ class LoggedColumn:
             self, values=self.values[where], kinds=self.kinds[where], texts=self.texts.take(where),
             rows=self.rows[where], source=source,
         )  # fmt: skip
-
-    def numbers(self, where: Where) -> list[float | None]:
-        """The numbers and bounds at some positions, None where a reading has none."""
-        return [None if value != value else value for value in self.values[where].tolist()]
 
     def reading(self, index: int) -> Reading:
         """One reading."""
@@ -229,6 +226,43 @@ class LoggedRows(Sequence[ReadingRow]):
 
     def __repr__(self) -> str:
         return f"<{len(self)} rows of {len(self.columns)} channels>"
+
+
+def is_kind(kinds: Codes, *wanted: ReadingKind) -> NDArray[np.bool_]:
+    """Where readings are of one of some kinds."""
+    among = np.zeros(len(KINDS), dtype=bool)
+    among[[CODE[kind] for kind in wanted]] = True
+    return among[kinds]
+
+
+class Timed(Sequence[tuple[datetime, float]]):
+    """Pairs of time stamp and number, made when they are asked for."""
+
+    __slots__ = ("times", "values")
+
+    def __init__(self, times: Sequence[datetime] = (), values: Sequence[float] = ()) -> None:
+        self.times, self.values = times, values
+
+    def __len__(self) -> int:
+        return len(self.values)
+
+    @overload
+    def __getitem__(self, index: int) -> tuple[datetime, float]: ...
+    @overload
+    def __getitem__(self, index: slice) -> Sequence[tuple[datetime, float]]: ...
+    def __getitem__(self, index: int | slice) -> tuple[datetime, float] | Sequence[tuple[datetime, float]]:
+        if isinstance(index, slice):
+            return Timed(self.times[index], self.values[index])
+        return self.times[index], self.values[index]
+
+    def __iter__(self) -> Iterator[tuple[datetime, float]]:
+        return zip(self.times, self.values, strict=True)
+
+    def __eq__(self, other: object) -> bool:
+        return isinstance(other, Sequence) and list(self) == list(other)
+
+    def __hash__(self) -> int:
+        return hash(tuple(self.values))
 
 
 def objects(values: Sequence[Any]) -> Where:

@@ -5,6 +5,7 @@ Numbers stand in the ledger alone; everything here refers to them by key.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
 from datetime import datetime, timedelta
 from enum import Enum
@@ -78,7 +79,7 @@ class Series:
 
     key: str
     channel: str
-    used: tuple[tuple[datetime, float], ...]
+    used: Sequence[tuple[datetime, float]]
     left_out: tuple[tuple[datetime, Reading, str], ...]
     missing_minutes: tuple[datetime, ...]
     minutes: int

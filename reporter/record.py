@@ -121,6 +121,12 @@ class Readings:
         """The readings of a channel as arrays."""
         return self.logged.columns[self.index(channel)]
 
+    def place_of(self, index: int, at: int) -> Place:
+        """The cell of a reading: the column of an index, the row at a position."""
+        column = self.logged.columns[index]
+        source = self.sources(index)[0 if column.source is None else int(column.source[at])]
+        return Place(source.file, source.sheet, f"{source.cell}{int(column.rows[at])}", self.channels[index])
+
     def sources(self, index: int) -> tuple[Place, ...]:
         """Where the readings of the column of an index stand: file, sheet, and the letter of its column."""
         letter = self.columns[index] if self.columns else ""

@@ -10,7 +10,7 @@ import numpy as np
 
 from reporter.clocks import Floats, Known, Lag, Log, Shift, lag_between, shift_of_gases
 from reporter.outcome import Exclusion
-from reporter.record import Calibration, Level, ReadingKind, Run
+from reporter.record import Calibration, Level, Run
 from reporter.reduction.book import Book, Lane
 from reporter.reduction.window import Window, logging_interval, stamps_interval_start
 
@@ -60,15 +60,9 @@ def logs_of(book: Book, tracks: Sequence[Lane]) -> dict[str, Log]:
     """The logged series of each channel as intervals, by its name; times are seconds from the year 2000."""
     readings = book.record.readings
     step = logging_interval(book).total_seconds()
-    stamps = np.array([seconds(row.time) for row in readings.rows], dtype=np.float64)
+    stamps = (readings.times - np.datetime64(_EPOCH, "us")) / np.timedelta64(1, "s")
     begin = stamps if stamps_interval_start(book) else stamps - step
-    found = {}
-    for lane in tracks:
-        column = readings.index(lane.name)
-        cells = (row.readings[column] for row in readings.rows)
-        values = [one.value if one.kind is ReadingKind.NUMBER and one.value is not None else np.nan for one in cells]
-        found[lane.name] = Log(begin, begin + step, np.array(values, dtype=np.float64))
-    return found
+    return {lane.name: Log(begin, begin + step, readings.column(lane.name).measured) for lane in tracks}
 
 
 def seconds(moment: datetime) -> float:

@@ -219,7 +219,7 @@ def reading_of(cell: Cell, unit: str) -> Reading | Fault:
 
 
 @cache
-def _most(unit: str) -> float:
+def most_of(unit: str) -> float:
     """The largest reading in a unit: the whole gas, or more of it than fits its volume."""
     if unit and dimension(unit) == "fraction":
         return convert(100.0, "%", unit)
@@ -231,7 +231,7 @@ def _number(value: float, text: str, unit: str) -> Reading | Fault:
     if value < 0.0 and value in sentinels():
         found = f"{text}, as loggers write for a missing value"
         return Fault("out-of-range", found, "a measured number, an empty cell, or a word for what happened")
-    most = _most(unit)
+    most = most_of(unit)
     if abs(value) > most:
         return Fault("out-of-range", f"{text} {unit}", f"a reading of at most {most:g} {unit}, or a word such as OVER")
     return Reading(ReadingKind.NUMBER, value, text)

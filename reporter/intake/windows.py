@@ -14,8 +14,11 @@ from itertools import pairwise
 from statistics import median
 from typing import Any
 
+import numpy as np
+
 from reporter.gases import find_gas
 from reporter.intake.rows import Filled
+from reporter.logged import is_kind
 from reporter.record import ProcessLog, ReadingKind, Readings
 from reporter.units import convert
 
@@ -131,7 +134,7 @@ def day_of(rows: dict[str, list[Filled]], readings: Readings, process: ProcessLo
     ]
     lengths = [minutes for limit in rows.get("limits", ()) for minutes in _numbers(limit, "minimum_run_length")]
     return Day(
-        logged=_stretches([row.time for row in readings.rows], at_start=at_start),
+        logged=_stretches(readings.times.tolist(), at_start=at_start),
         calibrations=tuple(sorted({*times, *_marked(channels, readings)})),
         load=_load(process),
         purge=max(PURGE, timedelta(seconds=2.0 * max(response, default=0.0))),
@@ -151,8 +154,9 @@ def _numbers(row: Filled, *attrs: str) -> list[float]:
 def _marked(channels: Sequence[Filled], readings: Readings) -> list[datetime]:
     """The times that the log of a diluent marks as calibration."""
     diluents = {c.text("channel") for c in channels if (gas := find_gas(c.text("gas"))) is not None and gas.is_diluent}
-    places = [place for place, name in enumerate(readings.channels) if name in diluents]
-    return [row.time for row in readings.rows if any(row.readings[p].kind is ReadingKind.CALIBRATION for p in places)]
+    kinds = [readings.column(name).kinds for name in readings.channels if name in diluents]
+    marked = [is_kind(own, ReadingKind.CALIBRATION) for own in kinds]
+    return list(readings.times[np.logical_or.reduce(marked)].tolist()) if marked else []
 
 
 def _stretches(times: Sequence[datetime], *, at_start: bool) -> tuple[tuple[datetime, datetime], ...]:

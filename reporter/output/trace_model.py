@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import datetime, timedelta
 from enum import Enum
@@ -37,7 +38,7 @@ class RunWindow:
     name: str
     start: datetime
     end: datetime
-    used: tuple[TimedValue, ...] = ()
+    used: Sequence[TimedValue] = ()
     mean: float | None = None
     mean_text: str = ""
     note: str = ""

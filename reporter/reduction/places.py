@@ -22,21 +22,21 @@ def readings_place(book: Book) -> Place:
 def cells_of(book: Book, channel: str, where: Counts) -> Place:
     """The cells of the readings of a channel at some positions; of several files, each with its own."""
     readings = book.record.readings
-    column = readings.column(channel).take(where)
-    whole = readings_place(book)
-    if not column.sources:
+    column = readings.column(channel)
+    rows, whole = column.rows[where], readings_place(book)
+    if not column.sources or not len(where):
         letter = readings.columns[readings.index(channel)]
-        return Place(whole.file, whole.sheet, cell_ranges(letter, column.rows, whole.file), channel)
-    source = np.zeros(len(where), dtype=np.int64) if column.source is None else column.source
-    _, firsts = np.unique(source, return_index=True)
-    parts = [(column.sources[source[at]], column.rows[source == source[at]]) for at in sorted(firsts)]
+        return Place(whole.file, whole.sheet, cell_ranges(letter, rows, whole.file), channel)
+    source = np.zeros(len(where), dtype=np.int64) if column.source is None else column.source[where]
+    firsts = np.unique(source, return_index=True)[1] if source.any() else [0] * min(len(source), 1)
+    parts = [(column.sources[source[at]], rows[source == source[at]]) for at in sorted(firsts)]
     if len(parts) == 1:
-        place, rows = parts[0]
+        place = parts[0][0]
         return Place(place.file, place.sheet, cell_ranges(place.cell, rows, place.file), channel)
     several = len({place.file for place, _ in parts}) > 1
     cells = [
-        f"{cell_ranges(place.cell, rows, place.file)} of {(place.file if several else '') or place.sheet}"
-        for place, rows in parts
+        f"{cell_ranges(place.cell, own, place.file)} of {(place.file if several else '') or place.sheet}"
+        for place, own in parts
     ]
     return Place(", ".join(dict.fromkeys(place.file for place, _ in parts)), "", "; ".join(cells), channel)
 

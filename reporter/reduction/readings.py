@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
 from datetime import datetime
 
@@ -11,7 +11,7 @@ import numpy as np
 from reporter.basis import AS_MEASURED, NO_VOLUME, Basis, Moisture
 from reporter.conversions import converted
 from reporter.ledger import Entry, FromCells
-from reporter.logged import KINDS, Counts, Moments, Where
+from reporter.logged import KINDS, Counts, Timed, is_kind
 from reporter.methods.method_7e import run_mean
 from reporter.outcome import Series
 from reporter.problems import Place
@@ -45,13 +45,15 @@ class _Sorted:
     """The readings of a window by what they are.
 
     `below` holds position and bound of each reading below detection (None: no bound is known), `over` the bound
-    of each reading over range (None: none was logged); `used_at` and `over_at` are positions in the series.
+    of each reading over range (None: none was logged); `valid` are positions in the window,
+    `used_at` and `over_at` positions in the series.
     """
 
-    used: list[tuple[datetime, float]] = field(default_factory=list)
+    used: Timed = field(default_factory=Timed)
     left: list[tuple[datetime, Reading, str]] = field(default_factory=list)
     below: list[tuple[int, float | None]] = field(default_factory=list)
     over: list[float | None] = field(default_factory=list)
+    valid: Counts = field(default_factory=lambda: np.zeros(0, dtype=np.int64))
     used_at: Counts = field(default_factory=lambda: np.zeros(0, dtype=np.int64))
     over_at: Counts = field(default_factory=lambda: np.zeros(0, dtype=np.int64))
 
@@ -67,9 +69,9 @@ def reduce_readings(book: Book, lane: Lane, span: Window) -> Series:
     series = Series(
         key=lane.key(span.run, "readings"),
         channel=lane.name,
-        used=tuple(found.used),
+        used=found.used,
         left_out=tuple(found.left),
-        missing_minutes=missing_minutes(span, found.used_at),
+        missing_minutes=missing_minutes(span, found.valid),
         minutes=clock_minutes(span),
         interval=span.interval,
         first_row=int(rows.min(initial=rows[0])) if len(rows) else 0,
@@ -87,34 +89,30 @@ def reduce_readings(book: Book, lane: Lane, span: Window) -> Series:
 
 
 def _sort(book: Book, lane: Lane, span: Window) -> _Sorted:
-    column = book.record.readings.column(lane.name).take(span.at)
-    times, kept = book.record.readings.times[span.at], span.excluded == 0
-    numbers = column.is_kind(ReadingKind.NUMBER) & ~np.isnan(column.values)
-    below = column.is_kind(ReadingKind.NOT_DETECTED, ReadingKind.BELOW)
-    used = np.flatnonzero(kept & (numbers | below))
-    over = np.flatnonzero(kept & column.is_kind(ReadingKind.OVER))
-    limit = _detection_limit(lane)
-    bounds = [limit if value is None else value for value in column.numbers(used[below[used]])]
-    values = column.values[used]
-    values[below[used]] = [bound or 0.0 for bound in bounds]
+    column = book.record.readings.column(lane.name)
+    numbers, kinds = column.values[span.at], column.kinds[span.at]
+    below = is_kind(kinds, ReadingKind.NOT_DETECTED, ReadingKind.BELOW)
+    counts = (span.excluded == 0) & ((is_kind(kinds, ReadingKind.NUMBER) & ~np.isnan(numbers)) | below)
+    used = np.flatnonzero(counts)
+    over = np.flatnonzero((span.excluded == 0) & is_kind(kinds, ReadingKind.OVER))
+    limit, low = _detection_limit(lane), below[used]
+    bounds = [limit if value != value else value for value in numbers[used[low]].tolist()]
+    values = numbers[used]
+    values[low] = [bound or 0.0 for bound in bounds]
     left = [
-        (time, column.reading(at), span.reasons[span.excluded[at]] or KINDS[column.kinds[at]].value)
-        for at, time in _timed(times, ~(kept & (numbers | below)))
+        (span.times[at], column.reading(int(span.at[at])), span.reasons[span.excluded[at]] or KINDS[kinds[at]].value)
+        for at in np.flatnonzero(~counts).tolist()
     ]
+    times = span.times if len(used) == len(span.times) else [span.times[at] for at in used.tolist()]
     return _Sorted(
-        used=list(zip(times[used].tolist(), values.tolist(), strict=True)),
+        used=Timed(times, values.tolist()),
         left=left,
-        below=list(zip(np.flatnonzero(below[used]).tolist(), bounds, strict=True)),
-        over=column.numbers(over),
+        below=list(zip(np.flatnonzero(low).tolist(), bounds, strict=True)),
+        over=[None if value != value else value for value in numbers[over].tolist()],
+        valid=used,
         used_at=span.at[used],
         over_at=span.at[over],
     )
-
-
-def _timed(times: Moments, where: Where) -> Iterator[tuple[int, datetime]]:
-    """Positions and time stamps where a condition holds."""
-    at = np.flatnonzero(where)
-    return zip(at.tolist(), times[at].tolist(), strict=True)
 
 
 def _detection_limit(lane: Lane) -> float | None:
@@ -126,19 +124,19 @@ def _implausible(book: Book, lane: Lane, span: Window, place: Place, found: _Sor
     """Oxygen above that of air, whatever the unit of the channel."""
     if lane.gas.key != "o2" or not found.used or dimension(lane.unit) != "fraction":
         return
-    highest = converted(max(value for _, value in found.used), lane.unit, "%")
+    highest = converted(max(found.used.values), lane.unit, "%")
     if highest > _AIR_AT_MOST:
         book.trouble("oxygen-reading-implausible", place, f"{highest:g} % oxygen in run {span.run.run.value}")
 
 
 def _with_mean(book: Book, lane: Lane, span: Window, series: Series, found: _Sorted) -> Series:
     run, place = span.run, cells_of(book, lane.name, found.used_at)
-    values = [value for _, value in series.used]
+    values = found.used.values
     undecided = _undecided(book, found)
     if found.below and not undecided:
         policy = text_of(book.record.test.not_detected_counted_as)
         values = _counted(values, found.below, POLICIES[policy])
-        series = replace(series, used=tuple(zip((t for t, _ in series.used), values, strict=True)))
+        series = replace(series, used=Timed(found.used.times, values))
         book.say(f"Readings below detection are counted at {policy} value, as entered.")
     entry = _enter(book, lane, series.key, values, place)
     enter_coverage(book, lane, span, entry, series)

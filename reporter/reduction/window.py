@@ -39,12 +39,13 @@ def stamps_interval_start(book: Book) -> bool:
 class Window:
     """The readings of one run.
 
-    `at` are their positions in the series, `begin` where the interval of each begins, `excluded` the position in
-    `reasons` of why it is left out (0, the empty reason, where it is not).
+    `at` are their positions in the series, `times` their stamps, `begin` where the interval of each begins,
+    `excluded` the position in `reasons` of why it is left out (0, the empty reason, where it is not).
     """
 
     run: Run
     at: Counts
+    times: tuple[datetime, ...]
     begin: Moments
     excluded: Counts
     reasons: tuple[str, ...]
@@ -81,7 +82,7 @@ def window(book: Book, run: Run) -> Window:
         if event.until is None and tally[id(event)]:
             moment = f"{event.time.value:%H:%M}"
             book.say(f"The event at {moment} ({event.what.value}) has no end; one logging interval is left out.")
-    return Window(run, at, begin, excluded, reasons, exclusions, interval)
+    return Window(run, at, tuple(times[at].tolist()), begin, excluded, reasons, exclusions, interval)
 
 
 def _until(event: Event, interval: timedelta) -> datetime:
@@ -97,18 +98,18 @@ def _excludes(event: Event, run: Run) -> bool:
     return inside and (event.run is None or event.run.value == run.run.value)
 
 
-def missing_minutes(span: Window, used: Counts) -> tuple[datetime, ...]:
+def missing_minutes(span: Window, valid: Counts) -> tuple[datetime, ...]:
     """Each clock minute of the run without a valid reading, excluded periods counted too.
 
     A reading of up to a minute belongs to the minute its middle lies in, a longer one to every minute whose
     middle it covers; the first and the last minute of the run are content with any reading that touches them, for
-    where the stamps stand beside the minute the reading across an end is not the run's.  `used` are positions in
-    the series.
+    where the stamps stand beside the minute the reading across an end is not the run's.  `valid` are the positions
+    of the valid readings in the window.
     """
     start, stop = span.run.start.value, span.run.end.value
     origin = start.replace(second=0, microsecond=0)
     count = clock_minutes(span)
-    begin = (span.begin[np.isin(span.at, used)] - _stamp(origin)).astype(np.int64)
+    begin = (span.begin[valid] - _stamp(origin)).astype(np.int64)
     end = begin + span.interval // _MICROSECOND
     minute = _MINUTE // _MICROSECOND
     if span.interval <= _MINUTE:

@@ -46,7 +46,7 @@ class Feet:
             for column in self.readings:
                 cell = at(self.table.page.rows[row], column)
                 value = self._number(row, column, style)
-                own = [v for r in rows if (v := self._number(r, column, style)) is not None]
+                own = self._numbers(rows, column, style)
                 if value is None or not own:
                     continue
                 compared += 1
@@ -59,6 +59,14 @@ class Feet:
                 return ""
             words += [found] if found else []
         return next(iter(words), "")
+
+    def _numbers(self, rows: Sequence[int], column: int, style: NumberStyle) -> list[float]:
+        """The numbers of a column in some rows; each different cell is read once."""
+        cells = [cell for cell in self.table.page.columns([column], rows)[0] if not isinstance(cell, bool)]
+        if any(own == column for _, own in self.table.page.percent):
+            return [v for row in rows if (v := self._number(row, column, style)) is not None]
+        known = {cell: number(cell, style) for cell in set(cells)}
+        return [v for cell in cells if (v := known[cell]) is not None]
 
     def _number(self, row: int, column: int, style: NumberStyle) -> float | None:
         value = number(at(self.table.page.rows[row], column), style)

@@ -13,7 +13,7 @@ from reporter.errors import RecordError
 from reporter.intake.foreign.apply import ForeignReadings, apply_to_grid
 from reporter.intake.foreign.grid import Grid, read_grid
 from reporter.intake.foreign.join import join
-from reporter.intake.foreign.mapping import ENDING, Mapping, differences, load
+from reporter.intake.foreign.mapping import ENDING, Mapping, differences, differences_of, load
 from reporter.intake.foreign.tables import find_tables
 from reporter.intake.foreign.titles import strangers
 from reporter.intake.guard import look_at
@@ -54,12 +54,13 @@ class _Loggers:
     def __call__(self, channels: Sequence[Filled], reader: RowReader, test: dict[str, Any]) -> Readings | None:
         """The readings of all logger files, by the channels of the field workbook; None where something stops."""
         for grid in self.grids:
-            fitting = [m for m in self.mappings if grid.pages and not differences(m, grid)]
+            tables = find_tables(grid)
+            fitting = [m for m in self.mappings if grid.pages and not differences_of(m, grid, tables)]
             if len(fitting) == 1 or len(self.mappings) == 1:
                 mapping = fitting[0] if fitting else self.mappings[0]
-                found = apply_to_grid(grid, mapping, day=reader.day)
+                found = apply_to_grid(grid, mapping, day=reader.day, tables=tables)
                 self.read.append(found)
-                self.problems += [*found.problems, *strangers(grid, find_tables(grid), test, mapping.titles)]
+                self.problems += [*found.problems, *strangers(grid, tables, test, mapping.titles)]
             elif not grid.pages:
                 self.problems += grid.problems
             else:

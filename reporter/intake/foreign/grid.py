@@ -11,8 +11,9 @@ from collections import Counter
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
-from typing import Any
+from typing import Any, cast
 
+from reporter.intake.foreign.lines import PlainRows, plain_rows
 from reporter.intake.guard import MAX_COLUMN, Look, look_at
 from reporter.intake.table import Raw
 from reporter.intake.workbook import raw, sheet_parts
@@ -43,8 +44,8 @@ class Page:
     """
 
     sheet: str
-    rows: tuple[tuple[Raw, ...], ...]
-    lines: tuple[int, ...] = ()
+    rows: Sequence[Sequence[Raw]]
+    lines: Sequence[int] = ()
     hidden: bool = False
     hidden_rows: frozenset[int] = frozenset()
     percent: frozenset[tuple[int, int]] = frozenset()
@@ -54,6 +55,23 @@ class Page:
     def number(self, row: int) -> int:
         """The line or row number people see."""
         return self.lines[row] if self.lines else row + 1
+
+    def columns(self, columns: Sequence[int], rows: Sequence[int]) -> list[list[Raw]]:
+        """The cells of some columns in some rows, None where a row is short."""
+        if isinstance(self.rows, PlainRows):
+            return cast(list[list[Raw]], self.rows.columns(columns, rows))
+        cells = [self.rows[row] for row in rows]
+        return [[row[column] if column < len(row) else None for row in cells] for column in columns]
+
+    def widths(self, first: int, last: int) -> list[int]:
+        """The number of cells of each of the rows from `first` to before `last`."""
+        return (
+            self.rows.widths[first:last] if isinstance(self.rows, PlainRows) else list(map(len, self.rows[first:last]))
+        )
+
+    def wordy(self, row: int) -> bool:
+        """Whether a row may hold words; a quick look before a thorough one."""
+        return not isinstance(self.rows, PlainRows) or self.rows.wordy(row)
 
     def address(self, row: int, column: int) -> str:
         """A cell as people name it: column letter and row or line, e.g. ``C12``."""
@@ -143,6 +161,11 @@ def _text(source: SourceFile) -> Grid:
     if "\x00" in text:
         return _refused(source, "not-a-workbook", "a file of bytes that are no text")
     delimiter = delimiter_of(text)
+    cut = not text.endswith(("\n", "\r"))
+    plain = plain_rows(text, delimiter)
+    if plain is not None and max(plain.widths, default=0) <= MAX_COLUMN and sum(plain.widths) <= MAX_CELLS:
+        page = Page("", plain, range(1, len(plain) + 1))
+        return Grid(source, "text", (page,), encoding, delimiter, cut_off=cut)
     rows: list[tuple[Raw, ...]] = []
     lines: list[int] = []
     cells = 0
@@ -159,7 +182,6 @@ def _text(source: SourceFile) -> Grid:
             before = reader.line_num
     except csv.Error as error:
         return _refused(source, "truncated", str(error))
-    cut = not text.endswith(("\n", "\r"))
     page = Page("", tuple(rows), tuple(lines))
     return Grid(source, "text", (page,), encoding, delimiter, cut_off=cut)
 
@@ -226,6 +248,9 @@ def _page(sheet: Any, part: str, seen: Look) -> Page:
 
 def filled_rows(page: Page) -> Iterator[int]:
     """Positions of the rows that hold anything."""
+    if isinstance(page.rows, PlainRows):
+        yield from page.rows.filled()
+        return
     for number, row in enumerate(page.rows):
         if any(cell is not None and (not isinstance(cell, str) or cell.strip()) for cell in row):
             yield number

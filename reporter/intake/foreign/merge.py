@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from datetime import datetime
 
 import numpy as np
@@ -50,8 +50,9 @@ def merged(
     -------
     The rows in time order, and the clashes by the position of the series that met them.
     """
-    every = [readings.times for readings, _ in series]
-    times = np.unique(np.concatenate(every))
+    times = np.unique(np.concatenate([readings.times for readings, _ in series]))
+    if len(series) == 1 and len(times) == len(series[0][0].times) and sorted(series[0][1].values()) == sorted(names):
+        return _alone(*series[0], names), {}
     rows = np.zeros(len(times), dtype=np.int64)
     for readings, _ in reversed(series):
         rows[np.searchsorted(times, readings.times)[::-1]] = readings.logged.rows[::-1]
@@ -59,11 +60,21 @@ def merged(
     clashes: dict[int, Clash] = {}
     for number, (readings, own) in enumerate(series):
         where = np.searchsorted(times, readings.times)
-        differs = [_add(made[name], readings, index, where) for index, name in own.items()]
+        _, firsts = np.unique(where, return_index=True)
+        differs = [_add(made[name], readings, index, (where, firsts)) for index, name in own.items()]
         if differs and (count := int(sum(map(np.count_nonzero, differs)))):
             first = int(np.argmax(np.logical_or.reduce(differs)))
             clashes[number] = Clash(count, readings.times[first].item())
     return LoggedRows(times, rows, [_column(made[name]) for name in names]), clashes
+
+
+def _alone(readings: Readings, own: Mapping[int, str], names: Sequence[str]) -> LoggedRows:
+    """The one series there is, its columns in the order of the names."""
+    index = {name: at for at, name in own.items()}
+    columns = [
+        replace(readings.logged.columns[index[name]], sources=readings.sources(index[name])) for name in names
+    ]  # fmt: skip
+    return LoggedRows(readings.times, readings.logged.rows, columns)
 
 
 def _empty(rows: Counts) -> _Column:
@@ -73,10 +84,9 @@ def _empty(rows: Counts) -> _Column:
     return _Column(np.full(size, np.nan), kinds, objects([""] * size), rows.copy(), source, np.zeros(size, dtype=bool))
 
 
-def _add(column: _Column, readings: Readings, index: int, where: Counts) -> Where:
+def _add(column: _Column, readings: Readings, index: int, places: tuple[Counts, Counts]) -> Where:
     """Take the readings of one more series where none is known yet; where it says something else than is known."""
-    own = readings.logged.columns[index]
-    _, firsts = np.unique(where, return_index=True)
+    own, (where, firsts) = readings.logged.columns[index], places
     new = firsts[~column.filled[where[firsts]]]
     at = where[new]
     column.values[at], column.kinds[at], column.rows[at] = own.values[new], own.kinds[new], own.rows[new]

@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterable
 from dataclasses import dataclass
+from itertools import islice
 
 from reporter.intake.foreign.model import Desk, Option
 from reporter.intake.table import Raw, clean
@@ -92,9 +93,9 @@ def style_of(texts: Iterable[str], percents: Iterable[str], desk: Desk) -> Numbe
         Takes evidence and the question ``decimal-mark``.
     """
     counts = {".": _Counts(), ",": _Counts()}
-    for _, text in zip(range(ENOUGH), texts, strict=False):
+    for text in dict.fromkeys(islice(texts, ENOUGH)):
         _count(text, counts)
-    for _, text in zip(range(ENOUGH), percents, strict=False):
+    for text in dict.fromkeys(islice(percents, ENOUGH)):
         _bound(text, counts)
     point, comma = counts["."], counts[","]
     if (point.decimal and comma.decimal) or (point.grouping and comma.grouping):

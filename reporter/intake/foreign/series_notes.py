@@ -10,9 +10,9 @@ import numpy as np
 
 from reporter.errors import UnitError
 from reporter.intake.foreign.apply import ForeignReadings
-from reporter.intake.foreign.series_findings import Finding, Trace, Values, findings
+from reporter.intake.foreign.series_findings import Finding, Trace, findings
 from reporter.problems import Place, Problem, problem
-from reporter.record import Channel, ReadingKind, Readings, Record
+from reporter.record import Channel, Readings, Record
 from reporter.units import convert
 
 #: Notes of one kind in one channel that are said.
@@ -42,20 +42,15 @@ def notes_of_record(record: Record) -> tuple[Problem, ...]:
 
 
 def _times(readings: Readings) -> list[datetime]:
-    return [row.time for row in readings.rows]
+    return list(readings.times.tolist())
 
 
 def _traces(readings: Readings, gases: Mapping[str, str], cylinders: Mapping[str, Sequence[float]]) -> list[Trace]:
     """The channels as columns of numbers."""
     return [
-        Trace(name, gases.get(name, ""), _numbers(readings, index), tuple(cylinders.get(name, ())))
-        for index, name in enumerate(readings.channels)
+        Trace(name, gases.get(name, ""), readings.column(name).measured, tuple(cylinders.get(name, ())))
+        for name in readings.channels
     ]
-
-
-def _numbers(readings: Readings, index: int) -> Values:
-    cells = (row.readings[index] for row in readings.rows)
-    return np.array([r.value if r.kind is ReadingKind.NUMBER else np.nan for r in cells], dtype=np.float64)
 
 
 def _cylinders(record: Record, channel: Channel) -> list[float]:
@@ -84,15 +79,12 @@ def _said(readings: Readings, found: Sequence[Finding]) -> tuple[Problem, ...]:
 
 
 def _place(readings: Readings, one: Finding) -> Place:
-    index = readings.channels.index(one.channel) if one.channel else 0
-    column = readings.columns[index] if index < len(readings.columns) else ""
-    row = readings.rows[one.first].row
-    where = readings.place
-    return Place(where.file, where.sheet, f"{column}{row}", one.channel)
+    place = readings.place_of(readings.index(one.channel) if one.channel else 0, one.first)
+    return Place(place.file, place.sheet, place.cell, one.channel)
 
 
 def _span(readings: Readings, one: Finding) -> str:
-    first, last = readings.rows[one.first].time, readings.rows[one.last].time
+    first, last = readings.times[one.first].item(), readings.times[one.last].item()
     form = "%H:%M" if not (first.second or last.second) else "%H:%M:%S"
     start = f"{first:%Y-%m-%d} {first.strftime(form)}"
     if one.first == one.last:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from bisect import bisect_left
 from collections import Counter
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
@@ -39,15 +40,28 @@ class Sorted:
 
 
 def sort_rows(
-    table: Table, times: Sequence[int], readings: Sequence[int], order: str, *, cut_off: bool = False
+    table: Table,
+    times: Sequence[int],
+    readings: Sequence[int],
+    order: str,
+    *,
+    cut_off: bool = False,
+    known: Sequence[int] = (),
 ) -> Iterator[Sorted]:
-    """Every filled row of a table, sorted; `times` and `readings` are columns of the page."""
+    """Every filled row of a table, sorted; `times` and `readings` are columns of the page.
+
+    `known` are rows of readings already, ascending: they are not given again.
+    """
     width = table.columns[-1] + 1
-    usual, feet = _usual_length(table), Feet(table, readings)
+    usual, feet = usual_length(table), Feet(table, readings)
     late: list[int] = []
     kept: list[int] = []
+    taken = 0
     final = len(table.page.rows) - 1
-    for row in range(table.first, table.last):
+    for row in sorted(set(range(table.first, table.last)).difference(known)):
+        before = bisect_left(known, row, taken)
+        kept += known[taken:before]
+        taken = before
         cells = table.page.rows[row]
         own = [at(cells, column) for column in table.columns]
         if all(blank(cell) for cell in own) and not any((row, c) in table.page.uncalculated for c in table.columns):
@@ -77,6 +91,7 @@ def sort_rows(
             yield Sorted(row, why=f"a row of text: {_label(own)}")
         else:
             late.append(row)
+    kept += known[taken:]
     for row in late:
         if row > max(kept, default=-1) and _is_statistic(table, row, kept, readings):
             yield Sorted(row, why="each number is a statistic of its column")
@@ -102,13 +117,16 @@ def _shorter(table: Table, kept: Sequence[int]) -> bool:
     return tails[-1] < min(tails[:-1], default=1_000)
 
 
-def _usual_length(table: Table) -> int:
+def usual_length(table: Table) -> int:
     """The number of cells of most rows of a text table; 0 for a workbook, where no cell can shift."""
-    if not table.page.lines:
+    page = table.page
+    if not page.lines:
         return 0
-    rows = table.page.rows[table.first : table.last]
-    lengths = Counter(len(cells) for cells in rows if len(cells) > 1 and not _foot(cells))
-    return lengths.most_common(1)[0][0] if lengths else 0
+    counts = Counter(width for width in page.widths(table.first, table.last) if width > 1)
+    if len(counts) > 1:
+        rows = page.rows[table.first : table.last]
+        counts = Counter(len(cells) for cells in rows if len(cells) > 1 and not _foot(cells))
+    return counts.most_common(1)[0][0] if counts else 0
 
 
 def _out_of_line(cells: Sequence[Raw], usual: int) -> str:
@@ -121,7 +139,7 @@ def _out_of_line(cells: Sequence[Raw], usual: int) -> str:
 
 def _foot(cells: Sequence[Raw]) -> bool:
     first = next((cell for cell in cells if not blank(cell)), None)
-    return isinstance(first, str) and any(map(str.isalpha, first)) and is_foot(first)
+    return isinstance(first, str) and not first[:1].isdigit() and any(map(str.isalpha, first)) and is_foot(first)
 
 
 def _label(cells: Sequence[Raw]) -> str:
@@ -159,7 +177,9 @@ def _is_statistic(table: Table, row: int, kept: Sequence[int], readings: Sequenc
             if value is None:
                 continue
             numbers += 1
-            values = [v for r in kept if (v := number(at(table.page.rows[r], column), style)) is not None]
+            cells = [cell for cell in table.page.columns([column], kept)[0] if not isinstance(cell, bool)]
+            each = {cell: number(cell, style) for cell in set(cells)}
+            values = [v for cell in cells if (v := each[cell]) is not None]
             if len(values) > 1:
                 known = (fmean(values), sum(values), min(values), max(values))
                 hits += any(isclose(value, k, rel_tol=NEAR, abs_tol=0.06) for k in known)

@@ -93,7 +93,7 @@ def _of_page(page: Page) -> list[Table]:
     blocks: list[tuple[int, ...]] = []
     taken: set[int] = set()
     for row in filled:
-        if row not in taken and _perhaps_header(page.rows[row]) and _is_header(_texts(page, row)):
+        if row not in taken and page.wordy(row) and _perhaps_header(page.rows[row]) and _is_header(_texts(page, row)):
             block = _block(page, row)
             taken.update(block)
             blocks.append(block)
@@ -180,7 +180,7 @@ def _reading_words(texts: Sequence[str]) -> bool:
 def _side_by_side(page: Page, block: tuple[int, ...], last: int) -> list[Table]:
     """The tables of one header block, parted at columns in which nothing stands."""
     first = block[-1] + 1
-    width = max((len(page.rows[row]) for row in range(block[0], last)), default=0)
+    width = max(page.widths(block[0], last), default=0)
     width = max(width, *(len(_texts(page, row)) for row in block))
     used = [
         column

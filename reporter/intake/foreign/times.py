@@ -27,8 +27,8 @@ _CLOCK = re.compile(
     re.IGNORECASE,
 )
 _YEARS = range(1990, 2080)
-_SERIALS = (30_000.0, 60_000.0)
-_EPOCHS = {"serial 1900": datetime(1899, 12, 30), "serial 1904": datetime(1904, 1, 1)}
+SERIALS = (30_000.0, 60_000.0)
+EPOCHS = {"serial 1900": datetime(1899, 12, 30), "serial 1904": datetime(1904, 1, 1)}
 _ORDERS = {"year first": (0, 1, 2), "day first": (2, 1, 0), "month first": (2, 0, 1)}
 
 
@@ -85,8 +85,8 @@ def _serial(value: Raw) -> float | None:
 def _of_serial(number: float, order: str) -> Stamp | None:
     if 0.0 <= number <= 1.0:
         return Stamp(None, timedelta(milliseconds=round(number * 86_400_000)))
-    epoch = _EPOCHS.get(order)
-    if epoch is None or not _SERIALS[0] <= number <= _SERIALS[1]:
+    epoch = EPOCHS.get(order)
+    if epoch is None or not SERIALS[0] <= number <= SERIALS[1]:
         return None
     moment = epoch + timedelta(milliseconds=round(number * 86_400_000))
     return read_stamp(moment, order)
@@ -176,6 +176,7 @@ def order_of(values: Sequence[Raw], desk: Desk, place: Place, *, epoch: str) -> 
 
     `epoch` is the date system of the workbook, empty for a text file.
     """
+    values = _first_of_each_day(values)
     texts = [clean(v) for v in values if isinstance(v, str) and clean(v)]
     numeric = [text for text in texts if (m := _THREE.match(text)) and len(m[1]) < 4]
     others = any(isinstance(v, datetime) for v in values) or len(numeric) < sum(1 for t in texts if _THREE.match(t))
@@ -191,6 +192,14 @@ def order_of(values: Sequence[Raw], desk: Desk, place: Place, *, epoch: str) -> 
     if numbers and not any(isinstance(v, datetime) for v in values):
         return _date_system(numbers, desk, place, epoch)
     return "year first"
+
+
+def _first_of_each_day(values: Sequence[Raw]) -> list[Raw]:
+    """Of texts that begin with the same word the first alone; the date is in that word."""
+    firsts: dict[Raw, Raw] = {}
+    for value in values:
+        firsts.setdefault(value.strip().partition(" ")[0] if isinstance(value, str) else value, value)
+    return list(firsts.values())
 
 
 def _order_of_texts(texts: Sequence[str], desk: Desk, place: Place) -> str:
@@ -224,7 +233,7 @@ def _date_system(numbers: Sequence[float], desk: Desk, place: Place, epoch: str)
         desk.say(f"times are numbers of days in the workbook's own date system ({epoch[-4:]})")
         return epoch
     options = []
-    for order in _EPOCHS:
+    for order in EPOCHS:
         read = _of_serial(numbers[0], order)
         options.append(Option(order, f"{read.day:%d %B %Y}" if read and read.day else "out of range"))
     return desk.ask("date-order", "From which year do the day numbers count?", f"{numbers[0]:.5f}", options, place)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from reporter.logged import is_kind
 from reporter.outcome import GasResult, RunResult
 from reporter.output.charts import (
     CalibrationMark,
@@ -40,7 +41,7 @@ def _trace(desk: Desk, channel: Channel) -> Trace | None:
     if name not in readings.channels:
         return None
     column = readings.column(name)
-    where = column.is_kind(ReadingKind.NUMBER)
+    where = is_kind(column.kinds, ReadingKind.NUMBER)
     values = tuple(zip(readings.times[where].tolist(), column.values[where].tolist(), strict=True))
     results = [(run, gas) for run in desk.outcome.runs for gas in run.gases if gas.channel is channel]
     series = next((gas.series for _, gas in results if gas.series is not None), None)

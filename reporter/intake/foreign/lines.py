@@ -1,0 +1,92 @@
+"""The rows of a text whose cells are parted by a delimiter alone: split when they are asked for."""
+
+from __future__ import annotations
+
+import csv
+import re
+from collections.abc import Iterator, Sequence
+from typing import overload
+
+#: A letter that is no T between date and time.
+_LETTER = re.compile(r"(?!(?<=\d)T\d)[^\W\d_]")
+_ZEROES = ("02", "0 2")
+
+
+class PlainRows(Sequence[tuple[str, ...]]):
+    """The rows of a text without quotation marks: what the csv module gives, a row at a time or by column.
+
+    Parameters
+    ----------
+    lines
+        The lines of the text, without their ends.
+    delimiter
+        What parts the cells of a line.
+    """
+
+    __slots__ = ("_widths", "delimiter", "lines")
+
+    def __init__(self, lines: Sequence[str], delimiter: str) -> None:
+        self.lines, self.delimiter = lines, delimiter
+        self._widths: list[int] | None = None
+
+    def __len__(self) -> int:
+        return len(self.lines)
+
+    @overload
+    def __getitem__(self, index: int) -> tuple[str, ...]: ...
+    @overload
+    def __getitem__(self, index: slice) -> Sequence[tuple[str, ...]]: ...
+    def __getitem__(self, index: int | slice) -> tuple[str, ...] | Sequence[tuple[str, ...]]:
+        if isinstance(index, slice):
+            return PlainRows(self.lines[index], self.delimiter)
+        line = self.lines[index]
+        return tuple(line.split(self.delimiter)) if line else ()
+
+    def __iter__(self) -> Iterator[tuple[str, ...]]:
+        mark = self.delimiter
+        return (tuple(line.split(mark)) if line else () for line in self.lines)
+
+    @property
+    def widths(self) -> list[int]:
+        """The number of cells of each row."""
+        if self._widths is None:
+            self._widths = [line.count(self.delimiter) + 1 if line else 0 for line in self.lines]
+        return self._widths
+
+    def filled(self) -> Iterator[int]:
+        """Positions of the rows that hold more than delimiters and blanks."""
+        return (number for number, line in enumerate(self.lines) if line.replace(self.delimiter, "").strip())
+
+    def wordy(self, row: int) -> bool:
+        """Whether a row holds a letter, or the digits that may stand for O2: a header holds either."""
+        line, mark = self.lines[row], self.delimiter
+        if line.isascii() and line.lower() == line.upper() and (mark == "\t" or "\t" not in line):
+            return f"{mark}02{mark}" in f"{mark}{line.replace(' ', '')}{mark}"
+        return _LETTER.search(line) is not None or any(cell.strip() in _ZEROES for cell in self[row])
+
+    def columns(self, columns: Sequence[int], rows: Sequence[int]) -> list[list[str | None]]:
+        """The cells of some columns in some rows, None where a row is short."""
+        lines = self.lines if len(rows) == len(self.lines) else [self.lines[row] for row in rows]
+        widths = {self.widths[row] for row in rows}
+        if len(columns) == 1 and columns[0] < min(widths, default=0):
+            most = columns[0] + 1
+            return [[line.split(self.delimiter, most)[columns[0]] for line in lines]]
+        if len(widths) == 1 and (width := widths.pop()):
+            cells = self.delimiter.join(lines).split(self.delimiter)
+            return [list(cells[c::width]) if c < width else [None] * len(rows) for c in columns]
+        split = [self[row] for row in rows]
+        return [[cells[c] if c < len(cells) else None for cells in split] for c in columns]
+
+
+def plain_rows(text: str, delimiter: str) -> PlainRows | None:
+    """The rows of a text; None where only the csv module can tell them: quotation marks, or a very long line."""
+    if '"' in text:
+        return None
+    if "\r" in text:
+        text = text.replace("\r\n", "\n").replace("\r", "\n")
+    lines = text.split("\n")
+    if not lines[-1]:
+        lines.pop()
+    if max(map(len, lines), default=0) > csv.field_size_limit():
+        return None
+    return PlainRows(lines, delimiter)
