@@ -31,6 +31,8 @@ AIR, FLUE = (20.4, 21.5), 18.0
 ABSENT, PLATEAU = 0.03, 0.02
 #: So many readings in a row are air, zero gas or calibration gas.
 LEAST = 2
+#: Readings on the way to another gas and back, on each side of it.
+RESPONSE = 2
 
 
 @dataclass(frozen=True, slots=True)
@@ -78,7 +80,7 @@ def findings(times: Sequence[datetime], traces: Sequence[Trace], spans: Sequence
         found += _intervals(times, first, end)
         cut = [Trace(t.name, t.gas, t.values[first:end], t.cylinders) for t in traces]
         own = [*_foreign_gas(cut)]
-        taken = _marked([(f.first, f.last) for f in own], end - first)
+        taken = _marked([(max(f.first - RESPONSE, 0), f.last + RESPONSE) for f in own], end - first)
         for trace in cut:
             own += _of_one(trace, taken)
         own += _ranges(cut, _marked([(f.first, f.last) for f in own], end - first))
