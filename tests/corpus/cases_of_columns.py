@@ -37,6 +37,9 @@ SPELLINGS = [
     Case("oxygen with its unit", "`O2%`, no blank between", headed("Time", "NOX ppmvd", "CO ppmvd", "O2% dry",
          "CO2% dry")),
     Case("lowered digits", "NOₓ, O₂ and CO₂", headed("Time", "NOₓ ppm dry", "CO ppm dry", "O₂ % dry", "CO₂ % dry")),
+    Case("a lost letter", "`NO?` and `CO?`, as an old program writes NOₓ and CO₂", headed(
+        "Time", "NO? ppm dry", "CO ppm dry", "O? % dry", "CO? % dry"), answers={
+            **END, "column.B.gas": "NOx", "column.D.gas": "O2", "column.E.gas": "CO2"}),
     Case("capitals", "OXYGEN, NOX", headed("TIME", "NOX PPM DRY", "CO PPM DRY", "OXYGEN % DRY", "CO2 % DRY")),
     Case("basis in the unit", "ppmvd, %vd", headed("Time", "NOx ppmvd", "CO ppmvd", "O2 %vd", "CO2 %vd")),
     Case("wet", "ppmvw, and % wet", headed("Time", "NOx ppmvw", "CO ppmvw", "O2 % wet", "CO2 % wet"), basis="wet"),

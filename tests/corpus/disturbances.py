@@ -352,8 +352,8 @@ def cut_off(draft: Draft, chance: Random) -> None:
 @on(TEXT)
 def cell_too_many(draft: Draft, chance: Random) -> None:
     """A delimiter too many in one row: must stop, or stand where it does no harm."""
-    moment, cells = chance.choice(draft.lines)
-    cells[1] = f"{cells[1]}{draft.delimiter}7"
+    moment, _ = chance.choice(draft.lines)
+    draft.broken = moment
     draft.held[moment] = [("number", float("nan"))] * 4
 
 

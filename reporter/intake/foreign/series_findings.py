@@ -8,12 +8,13 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
-from datetime import datetime
 from itertools import pairwise
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
+
+from reporter.logged import Moments
 
 Values = NDArray[np.float64]
 Marks = NDArray[np.bool_]
@@ -56,7 +57,7 @@ class Finding:
     words: str
 
 
-def findings(times: Sequence[datetime], traces: Sequence[Trace], spans: Sequence[tuple[int, int]]) -> list[Finding]:
+def findings(times: Moments, traces: Sequence[Trace], spans: Sequence[tuple[int, int]]) -> list[Finding]:
     """Look at a series.
 
     Parameters
@@ -103,10 +104,9 @@ def _marked(spans: Sequence[tuple[int, int]], length: int) -> Marks:
     return marks
 
 
-def _intervals(times: Sequence[datetime], first: int, end: int) -> Iterator[Finding]:
+def _intervals(times: Moments, first: int, end: int) -> Iterator[Finding]:
     """The first place where the usual step between readings becomes another."""
-    stamps = np.asarray(times[first:end], dtype="datetime64[ms]")
-    steps = np.diff(stamps).astype(np.int64)
+    steps = np.diff(times[first:end].astype("datetime64[ms]")).astype(np.int64)
     same = np.concatenate(([False], steps[1:] == steps[:-1]))
     usual = [(start, int(steps[start])) for start, _ in stretches(same, LEAST)]
     for (_, before), (start, after) in pairwise(usual):

@@ -166,6 +166,12 @@ def _reading_unit(text: str) -> ReadUnit | None:
 
 
 @lru_cache(4096)
+def lost_letters(text: str) -> bool:
+    """Whether a letter of a header was lost in an export, as in ``NO?`` for NOₓ or ``CO?`` for CO₂."""
+    return re.search(r"(?<![A-Za-z])[A-Za-z]{1,3}[?\ufffd]", text) is not None
+
+
+@lru_cache(4096)
 def is_foot(text: str) -> bool:
     """Whether a text is the first words of a row of averages, totals or the like."""
     words = folded(text)
