@@ -20,6 +20,7 @@ from reporter.intake.foreign.words import basis_of, gases_in, stamp_of, time_par
 from reporter.record import ReadingKind
 from tests.corpus.case import END, HEADERS, book, number, rows_on
 from tests.corpus.case import text as table
+from tests.corpus.corpus import CASES
 from tests.corpus.truth import TRUTH as WHOLE
 
 TRUTH = WHOLE[8:20]
@@ -183,6 +184,16 @@ def test_times_alone_join_the_test_date(tmp_path: Path) -> None:
 def test_a_clock_of_twelve_hours_is_noticed() -> None:
     lines = ["Time,NOx ppm dry,O2 % dry", *(f"2026-04-20 {h}:{m:02d},24.1,4.1" for h in (11, 12, 1) for m in (0, 30))]
     assert "half-day-clock" in keys(seen("\n".join(lines) + "\n"))
+
+
+@pytest.mark.parametrize("answer", ["as written", "America/Denver", "Mars/Olympus"])
+def test_a_clock_that_goes_back_is_not_taken(answer: str) -> None:
+    """01:30 daylight time to 01:59, then 01:00 standard time: by either clock the second half would come first."""
+    found = seen(CASES["autumn, an hour twice with offsets"].content, {**END, "time-zone": answer})
+    (question,) = found.questions
+    assert question.key == "time-zone"
+    assert "goes back from 2026-11-01 01:59 to 01:00" in question.found
+    assert "as written" not in question.answers
 
 
 def test_questions_are_written_and_read_back(tmp_path: Path) -> None:
