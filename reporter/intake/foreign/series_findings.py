@@ -34,6 +34,8 @@ ABSENT, PLATEAU = 0.03, 0.02
 LEAST = 2
 #: Readings on the way to another gas and back, on each side of it.
 RESPONSE = 2
+#: Numbers from which the middle of a channel, or its noise, is known well enough.
+ENOUGH = 5000
 
 
 @dataclass(frozen=True, slots=True)
@@ -143,8 +145,9 @@ def _foreign_gas(traces: Sequence[Trace]) -> Iterator[Finding]:
 
 
 def _middle(values: Values) -> float:
+    """The middle of a channel's numbers, of some thousand of them where there are more; zero where there is none."""
     numbers = values[~np.isnan(values)]
-    return float(np.median(numbers)) if numbers.size else 0.0
+    return float(np.median(numbers[:: 1 + numbers.size // ENOUGH])) if numbers.size else 0.0
 
 
 def _all(marks: Sequence[Marks]) -> Any:
@@ -178,13 +181,17 @@ def _of_one(trace: Trace, taken: Marks) -> Iterator[Finding]:
 
 
 def _spikes(name: str, where: NDArray[np.int64], numbers: Values) -> Iterator[Finding]:
-    padded = np.pad(numbers, 2, mode="edge")
-    level = np.median(np.lib.stride_tricks.sliding_window_view(padded, 5), axis=1)
-    apart = np.abs(numbers - level)
-    noise = 1.4826 * float(np.median(apart))
     steps = np.abs(np.diff(numbers))
-    noise = max(noise, float(np.median(steps[steps > 0.0])) / 2.0 if np.any(steps > 0.0) else 0.0)
-    marks = apart > np.maximum(SPIKE_NOISE * noise, SPIKE_SHARE * np.abs(level))
+    moving = steps[steps > 0.0]
+    if not moving.size:
+        return
+    bound = SPIKE_NOISE * float(np.median(moving[:: 1 + moving.size // ENOUGH]))
+    leaps = np.flatnonzero(steps > bound / 2.0)
+    near = np.unique(np.clip(np.concatenate([leaps - 1, leaps, leaps + 1, leaps + 2]), 0, numbers.size - 1))
+    level = np.full(numbers.size, np.nan)
+    level[near] = np.median(np.pad(numbers, 2, mode="edge")[near[:, None] + np.arange(5)], axis=1)
+    with np.errstate(invalid="ignore"):
+        marks = np.abs(numbers - level) > np.maximum(bound, SPIKE_SHARE * np.abs(level))
     found = [pair for pair in stretches(marks, 1) if pair[1] - pair[0] < SPIKE_LENGTH]
     if not found:
         return
