@@ -11,7 +11,7 @@ import numpy as np
 from reporter.errors import UnitError
 from reporter.intake.foreign.apply import ForeignReadings
 from reporter.intake.foreign.series_findings import Finding, Trace, findings
-from reporter.logged import Moments
+from reporter.logged import CODE, Moments
 from reporter.problems import Place, Problem, problem
 from reporter.record import Channel, ReadingKind, Readings, Record, text_of
 from reporter.units import convert
@@ -52,7 +52,7 @@ def _traces(readings: Readings, gases: Mapping[str, str], cylinders: Mapping[str
     """The channels as columns of numbers."""
     traces = []
     for name, column in zip(readings.channels, readings.logged.columns, strict=True):
-        numbers = np.where(column.is_kind(ReadingKind.NUMBER), column.values, np.nan)
+        numbers = np.where(column.kinds == CODE[ReadingKind.NUMBER], column.values, np.nan)
         traces.append(Trace(name, gases.get(name, ""), numbers, tuple(cylinders.get(name, ()))))
     return traces
 
