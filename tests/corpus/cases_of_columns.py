@@ -37,6 +37,11 @@ SPELLINGS = [
     Case("oxygen with its unit", "`O2%`, no blank between", headed("Time", "NOX ppmvd", "CO ppmvd", "O2% dry",
          "CO2% dry")),
     Case("lowered digits", "NOₓ, O₂ and CO₂", headed("Time", "NOₓ ppm dry", "CO ppm dry", "O₂ % dry", "CO₂ % dry")),
+    Case("a lost letter", "`NO?` and `CO?`, as an old program writes NOₓ and CO₂", headed(
+        "Time", "NO? ppm dry", "CO ppm dry", "O? % dry", "CO? % dry"), answers={
+            **END, "column.B.gas": "NOx", "column.D.gas": "O2", "column.E.gas": "CO2"}),
+    Case("gas and unit in one word", "NOxppm, ppmCO, O2percent", headed(
+        "Time", "NOxppm dry", "ppmCO dry", "O2percent dry", "CO2-% dry")),
     Case("capitals", "OXYGEN, NOX", headed("TIME", "NOX PPM DRY", "CO PPM DRY", "OXYGEN % DRY", "CO2 % DRY")),
     Case("basis in the unit", "ppmvd, %vd", headed("Time", "NOx ppmvd", "CO ppmvd", "O2 %vd", "CO2 %vd")),
     Case("wet", "ppmvw, and % wet", headed("Time", "NOx ppmvw", "CO ppmvw", "O2 % wet", "CO2 % wet"), basis="wet"),
@@ -80,6 +85,9 @@ TWICE = [
         "NOx ppmvd", TO_THREE), answers={**END, "gas.nox.columns": "B"}),
     Case("corrected in words, not in numbers", "`NOx @3% O2` whose numbers are not corrected", one_more(
         "NOx @3% O2", SECOND), stops="column.F.corrected"),
+    Case("corrected, reference unsaid", "`NOx@O2ref` and no column as measured", headed(
+        "Time", "NOx@O2ref [ppm dry]", *DRY), stops="column.B.corrected"),
+    Case("corrected by its unit", "`NOx ppmvdc`", headed("Time", "NOx ppmvdc", *DRY), stops="column.B.corrected"),
     Case("corrected alone", "`NOx @15% O2` and no column as measured", headed("Time", "NOx @15% O2 [ppm dry]", *DRY),
          stops="column.B.corrected"),
     Case("reference in words", "`bezogen auf 3 % O2` beside NOx", one_more("NOx bezogen auf 3 % O2 ppm tr", TO_THREE),

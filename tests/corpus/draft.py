@@ -44,6 +44,7 @@ class Draft:
     last: str = ""
     hidden_row: bool = False
     sheets: str = "one"
+    broken: datetime | None = None
 
     def set(self, at: int, column: int, written: float | str, held: Held) -> None:
         """Another cell, and what it holds."""
@@ -95,7 +96,8 @@ class Draft:
         for at in range(len(self.lines)):
             if at in self.between:
                 rows.append(self.between[at])
-            rows.append([str(cell) for cell in self._cells(at, typed=False)])
+            cells = [str(cell) for cell in self._cells(at, typed=False)]
+            rows.append([*cells[:2], "7", *cells[2:]] if self.lines[at][0] == self.broken else cells)
         rows += self.below
         return self.end.join([*(self.delimiter.join(row) for row in rows), self.last])
 

@@ -11,7 +11,7 @@ import pytest
 from reporter.intake.foreign import look, mapping_of
 from reporter.intake.foreign.apply import apply_to_grid
 from reporter.problems import Grade
-from tests.corpus.disturbances import ANY, BOOK, TEXT
+from tests.corpus.disturbances_of_form import ANY, BOOK, TEXT
 from tests.corpus.draft import Draft
 from tests.corpus.truth import CHANNELS, STARTS
 

@@ -181,7 +181,6 @@ def test_clock_shift_the_log_of_the_calibrations_and_the_fuel_factor_show_it() -
         "clock-differs",
         "calibration-gas-in-run",
         "gas-in-run",
-        "spike-reading",
     }
     assert hints(outcome) == {*every("off_the_line"), ("", "shared")}
     assert _states(Fault.CLOCK_SHIFT) == [RunState.VALID] * 3

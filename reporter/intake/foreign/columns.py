@@ -18,6 +18,7 @@ from reporter.intake.foreign.words import (
     basis_words_clash,
     folded,
     gases_in,
+    lost_letters,
     other_words,
     signal_in,
     units_in,
@@ -84,7 +85,7 @@ class Columns:
         """Why a column is no reading, or the gas it reads; both empty while that is open."""
         filled = [cell for cell in lane.cells if not blank(cell)]
         numbers = sum(1 for cell in filled if is_numberlike(cell) or _suffixed(cell))
-        named = gases_in(lane.header)
+        named = () if lost_letters(lane.header) else gases_in(lane.header)
         if not filled:
             return "nothing stands in it", ""
         if not numbers and not named:
@@ -94,7 +95,7 @@ class Columns:
         if len(named) == 1 and not other_words(lane.header):
             self.desk.say(f"{lane.name}: {gas(named[0]).label}, by its header")
             return "", named[0]
-        if not named and lane.header and not units_in(lane.header):
+        if not named and lane.header and not units_in(lane.header) and not lost_letters(lane.header):
             return "no gas in its header", ""
         if not lane.header and self.table.page.lines and lane.column > self._last_named():
             found = f"{filled[0]!r}, right of the last header"

@@ -8,12 +8,13 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
-from datetime import datetime
 from itertools import pairwise
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
+
+from reporter.logged import Moments
 
 Values = NDArray[np.float64]
 Marks = NDArray[np.bool_]
@@ -31,6 +32,10 @@ AIR, FLUE = (20.4, 21.5), 18.0
 ABSENT, PLATEAU = 0.03, 0.02
 #: So many readings in a row are air, zero gas or calibration gas.
 LEAST = 2
+#: Readings on the way to another gas and back, on each side of it.
+RESPONSE = 2
+#: Numbers from which the middle of a channel, or its noise, is known well enough.
+ENOUGH = 5000
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,7 +59,7 @@ class Finding:
     words: str
 
 
-def findings(times: Sequence[datetime], traces: Sequence[Trace], spans: Sequence[tuple[int, int]]) -> list[Finding]:
+def findings(times: Moments, traces: Sequence[Trace], spans: Sequence[tuple[int, int]]) -> list[Finding]:
     """Look at a series.
 
     Parameters
@@ -78,7 +83,7 @@ def findings(times: Sequence[datetime], traces: Sequence[Trace], spans: Sequence
         found += _intervals(times, first, end)
         cut = [Trace(t.name, t.gas, t.values[first:end], t.cylinders) for t in traces]
         own = [*_foreign_gas(cut)]
-        taken = _marked([(f.first, f.last) for f in own], end - first)
+        taken = _marked([(max(f.first - RESPONSE, 0), f.last + RESPONSE) for f in own], end - first)
         for trace in cut:
             own += _of_one(trace, taken)
         own += _ranges(cut, _marked([(f.first, f.last) for f in own], end - first))
@@ -101,10 +106,9 @@ def _marked(spans: Sequence[tuple[int, int]], length: int) -> Marks:
     return marks
 
 
-def _intervals(times: Sequence[datetime], first: int, end: int) -> Iterator[Finding]:
+def _intervals(times: Moments, first: int, end: int) -> Iterator[Finding]:
     """The first place where the usual step between readings becomes another."""
-    stamps = np.asarray(times[first:end], dtype="datetime64[ms]")
-    steps = np.diff(stamps).astype(np.int64)
+    steps = np.diff(times[first:end].astype("datetime64[ms]")).astype(np.int64)
     same = np.concatenate(([False], steps[1:] == steps[:-1]))
     usual = [(start, int(steps[start])) for start, _ in stretches(same, LEAST)]
     for (_, before), (start, after) in pairwise(usual):
@@ -141,8 +145,9 @@ def _foreign_gas(traces: Sequence[Trace]) -> Iterator[Finding]:
 
 
 def _middle(values: Values) -> float:
+    """The middle of a channel's numbers, of some thousand of them where there are more; zero where there is none."""
     numbers = values[~np.isnan(values)]
-    return float(np.median(numbers)) if numbers.size else 0.0
+    return float(np.median(numbers[:: 1 + numbers.size // ENOUGH])) if numbers.size else 0.0
 
 
 def _all(marks: Sequence[Marks]) -> Any:
@@ -176,13 +181,17 @@ def _of_one(trace: Trace, taken: Marks) -> Iterator[Finding]:
 
 
 def _spikes(name: str, where: NDArray[np.int64], numbers: Values) -> Iterator[Finding]:
-    padded = np.pad(numbers, 2, mode="edge")
-    level = np.median(np.lib.stride_tricks.sliding_window_view(padded, 5), axis=1)
-    apart = np.abs(numbers - level)
-    noise = 1.4826 * float(np.median(apart))
     steps = np.abs(np.diff(numbers))
-    noise = max(noise, float(np.median(steps[steps > 0.0])) / 2.0 if np.any(steps > 0.0) else 0.0)
-    marks = apart > np.maximum(SPIKE_NOISE * noise, SPIKE_SHARE * np.abs(level))
+    moving = steps[steps > 0.0]
+    if not moving.size:
+        return
+    bound = SPIKE_NOISE * float(np.median(moving[:: 1 + moving.size // ENOUGH]))
+    leaps = np.flatnonzero(steps > bound / 2.0)
+    near = np.unique(np.clip(np.concatenate([leaps - 1, leaps, leaps + 1, leaps + 2]), 0, numbers.size - 1))
+    level = np.full(numbers.size, np.nan)
+    level[near] = np.median(np.pad(numbers, 2, mode="edge")[near[:, None] + np.arange(5)], axis=1)
+    with np.errstate(invalid="ignore"):
+        marks = np.abs(numbers - level) > np.maximum(bound, SPIKE_SHARE * np.abs(level))
     found = [pair for pair in stretches(marks, 1) if pair[1] - pair[0] < SPIKE_LENGTH]
     if not found:
         return

@@ -2,33 +2,35 @@
 
 from __future__ import annotations
 
-from bisect import bisect_left, bisect_right
 from collections.abc import Mapping, Sequence
 from datetime import datetime
+from typing import Literal, TypeAlias
 
 import numpy as np
 
 from reporter.errors import UnitError
 from reporter.intake.foreign.apply import ForeignReadings
 from reporter.intake.foreign.series_findings import Finding, Trace, findings
+from reporter.logged import Moments
 from reporter.problems import Place, Problem, problem
-from reporter.record import Channel, Readings, Record
+from reporter.record import Channel, Readings, Record, text_of
 from reporter.units import convert
 
 #: Notes of one kind in one channel that are said.
 LISTED = 5
+Side: TypeAlias = Literal["left", "right"]
 
 
 def notes_of_file(made: ForeignReadings) -> tuple[Problem, ...]:
     """What the whole series of a logger's file shows; no run is known yet."""
     gases = {column.channel: column.gas for column in made.columns}
     traces = _traces(made.readings, gases, {})
-    return _said(made.readings, findings(_times(made.readings), traces, [(0, len(made.readings.rows))]))
+    return _said(made.readings, findings(made.readings.times, traces, [(0, len(made.readings.rows))]))
 
 
 def notes_of_record(record: Record) -> tuple[Problem, ...]:
     """What the readings of each run show; readings that an event excludes are not looked at."""
-    times = _times(record.readings)
+    times = record.readings.times
     gases = {channel.channel.value: channel.gas.value for channel in record.channels}
     cylinders = {channel.channel.value: _cylinders(record, channel) for channel in record.channels}
     traces = _traces(record.readings, gases, cylinders)
@@ -36,13 +38,14 @@ def notes_of_record(record: Record) -> tuple[Problem, ...]:
         if event.readings_excluded is not None and event.readings_excluded.value:
             until = event.time if event.until is None else event.until
             for trace in traces:
-                trace.values[bisect_left(times, event.time.value) : bisect_right(times, until.value)] = np.nan
-    spans = [(bisect_right(times, run.start.value), bisect_right(times, run.end.value)) for run in record.runs]
+                trace.values[_from(times, event.time.value, "left") : _from(times, until.value, "right")] = np.nan
+    side: Side = "left" if text_of(record.test.reading_stamp).endswith("start") else "right"
+    spans = [(_from(times, run.start.value, side), _from(times, run.end.value, side)) for run in record.runs]
     return _said(record.readings, findings(times, traces, spans))
 
 
-def _times(readings: Readings) -> list[datetime]:
-    return list(readings.times.tolist())
+def _from(times: Moments, moment: datetime, side: Side) -> int:
+    return int(np.searchsorted(times, np.datetime64(moment), side=side))
 
 
 def _traces(readings: Readings, gases: Mapping[str, str], cylinders: Mapping[str, Sequence[float]]) -> list[Trace]:
@@ -79,12 +82,13 @@ def _said(readings: Readings, found: Sequence[Finding]) -> tuple[Problem, ...]:
 
 
 def _place(readings: Readings, one: Finding) -> Place:
+    """The cell of the first reading; of a finding of all channels, the row in the first of them."""
     place = readings.place_of(readings.index(one.channel) if one.channel else 0, one.first)
     return Place(place.file, place.sheet, place.cell, one.channel)
 
 
 def _span(readings: Readings, one: Finding) -> str:
-    first, last = readings.times[one.first].item(), readings.times[one.last].item()
+    first, last = readings.times[[one.first, one.last]].tolist()
     form = "%H:%M" if not (first.second or last.second) else "%H:%M:%S"
     start = f"{first:%Y-%m-%d} {first.strftime(form)}"
     if one.first == one.last:

@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from datetime import datetime
+from datetime import UTC, datetime, timedelta, tzinfo
+from itertools import pairwise
 
 from reporter.intake.foreign.grid import Grid, letters
 from reporter.intake.foreign.mapping import AS_ENTERED
@@ -162,22 +163,48 @@ def _zone(stamps: Sequence[Stamp], desk: Desk) -> str:
     offsets = {stamp.offset for stamp in stamps if stamp.offset is not None}
     if not offsets:
         return ""
-    found = ", ".join(sorted(str(offset) for offset in offsets)) + " h from UTC"
+    found = ", ".join(f"{offset / timedelta(hours=1):+g}" for offset in sorted(offsets)) + " h from UTC"
     given = desk.answers.get("time-zone", "")
     if given and given != "as written":
         try:
-            zone_of(given)
+            zone = zone_of(given)
         except ValueError:
             found += f"; {given!r} is no time zone"
-        else:
+            zone = None
+        if zone is not None and (back := _goes_back(stamps, zone)):
+            found += f"; by {given} {back}: answer a fixed one, such as UTC-07:00"
+        elif zone is not None:
             desk.say(f"stamps have their offset ({found}); they are converted to {given}, as answered")
             return given
+    back = _goes_back(stamps, None)
+    kept = () if back else (Option("as written", "the clock in the file is the clock of the test"),)
+    found += f"; as written {back}" if back else ""
     options = (
-        Option("as written", "the clock in the file is the clock of the test"),
-        Option("America/Denver", "convert to this zone; any name of a zone, or UTC-07:00"),
+        *kept,
+        Option(
+            "UTC-07:00" if back else "America/Denver", "convert to this zone; any name of a zone, or hours from UTC"
+        ),
     )
     answer = desk.ask("time-zone", "The stamps say their offset: what is the clock of the test?", found, options)
     return "" if answer == "as written" else answer
+
+
+def _goes_back(stamps: Sequence[Stamp], zone: tzinfo | None) -> str:
+    """Where a clock (None: as written) goes back while the time goes on, in words; empty where it does not."""
+    moments = []
+    for stamp in stamps:
+        if stamp.day is not None and stamp.clock is not None and stamp.offset is not None:
+            local = datetime(stamp.day.year, stamp.day.month, stamp.day.day) + stamp.clock
+            moments.append((local - stamp.offset, local))
+    moments.sort()
+    clocks = [
+        local if zone is None else utc.replace(tzinfo=UTC).astimezone(zone).replace(tzinfo=None)
+        for utc, local in moments
+    ]
+    for (one, before), (two, after) in pairwise(zip((utc for utc, _ in moments), clocks, strict=True)):
+        if after < before or (after == before and two > one):
+            return f"the clock goes back from {before:%Y-%m-%d %H:%M} to {after:%H:%M}"
+    return ""
 
 
 def _day(stamps: Sequence[Stamp], desk: Desk) -> str:

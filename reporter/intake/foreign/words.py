@@ -17,9 +17,11 @@ from reporter.units import ReadUnit, dimension, read_unit
 _LOWERED = str.maketrans("₀₁₂₃₄₅₆₇₈₉ₓ", "0123456789x")
 _GAP = re.compile(r"[\s_\-,;:.'’()\[\]{}|\"]+")
 _CORRECTED = re.compile(
-    r"(?:@|\bat\b|\bto\b|\bauf\b|\bref\b|\breference\b|\breferencia\b|\bbezug\b|\bal\b|\ba\b)\s*"
+    r"(?:@|\bcorr\b|\bcorrected\b|\bkorr\b|\bbez\b|\bat\b|\bto\b|\bauf\b|\bref\b|\breference\b|\breferencia\b|\bbezug\b|\bal\b|\ba\b)\s*"
     r"(\d{1,2}(?:[.,]\d+)?)\s*(?:%|vol|pct)?\s*(?:o2|02|oxygen|oxigeno|oxygene|sauerstoff)?"
 )
+_GLUED = re.compile(r"\b(nox|no2|no|co2|co|so2|o2|02)(ppm\w*|ppb\w*|percent|pct|vol)\b", re.IGNORECASE)
+_GLUED_BEHIND = re.compile(r"\b(ppm[vdw]{0,2}|ppb)(nox|no2|no|co2|co|so2)\b", re.IGNORECASE)
 _SHORT = re.compile(r"^(?:[a-z0-9]|in|cc|cf|gr)$", re.IGNORECASE)
 #: Dimensions of what an analyzer may read.
 READABLE = frozenset({"fraction", "mass_concentration"})
@@ -42,9 +44,15 @@ def signal_in(text: str) -> str:
     return next((part for part in re.split(r"[^\w%.]+", clean(text)) if part in _table()["signal"]["units"]), "")
 
 
+def parted(text: str) -> str:
+    """A header with lowered digits made plain, and gas and unit parted where they are written as one word."""
+    plain = clean(text).translate(_LOWERED)
+    return _GLUED_BEHIND.sub(r"\1 \2", _GLUED.sub(r"\1 \2", plain))
+
+
 def folded(text: str) -> str:
     """Text for comparison: lower case, no accents, one blank for any gap; ``%``, ``@``, ``/``, ``+`` stay."""
-    plain = unicodedata.normalize("NFKD", clean(text).translate(_LOWERED))
+    plain = unicodedata.normalize("NFKD", parted(text))
     plain = "".join(mark for mark in plain if not unicodedata.combining(mark)).casefold()
     return _GAP.sub(" ", re.sub(r"\bno[\s_]x\b", "nox", plain)).strip()
 
@@ -61,6 +69,7 @@ def without_correction(text: str) -> tuple[str, float | None, bool]:
     """A folded header without what it says of a correction; the reference in percent; whether it says one."""
     dotted = re.sub(r"(?<=\d) (?=\d% ?o2)", ".", text)
     words = any(re.search(rf"\b{re.escape(word)}\b", dotted) for word in _table()["corrected"]["words"])
+    words = words or "@" in dotted or re.search(r"\b(?:o2|02) ?ref|\bref ?(?:o2|02)\b", dotted) is not None
     match = next(
         (m for m in _CORRECTED.finditer(dotted) if words or m[0].startswith("@") or re.search(r"o2|02|ox|sau", m[0])),
         None,
@@ -110,7 +119,8 @@ def stamp_of(text: str) -> str:
 
 def basis_of(text: str) -> str:
     """``dry`` or ``wet`` as a header says it; empty where it says neither, or both."""
-    words = re.sub(r"\d+ ?sec\b", " ", folded(without_correction(folded(text))[0])).replace("/", " ").split()
+    plain = re.sub(r"\d+ ?sec\b", " ", folded(without_correction(folded(text))[0]))
+    words = re.sub(r"[/%]", " ", plain).split()
     said = {basis for basis, names in _table()["basis"].items() for name in names if name in words}
     said |= {unit.moisture.value for unit in units_in(text) if unit.moisture is not None}
     return said.pop() if len(said) == 1 else ""
@@ -124,9 +134,10 @@ def basis_words_clash(text: str) -> bool:
 
 def units_in(text: str) -> tuple[ReadUnit, ...]:
     """The units of a reading that a header names, each once: in brackets, in a part of its own, or as its words."""
-    plain = " ".join(clean(text).split())
+    plain = re.sub(r"(?<=[A-Za-z0-9])-(?=[A-Za-z%])", " ", " ".join(parted(text).split()))
     pieces = [a or b for a, b in re.findall(r"\[([^\[\]]*)\]|\(([^()]*)\)", plain)]
     pieces += [part.strip() for part in re.split(r"[|,;]", re.sub(r"\[[^\[\]]*\]|\([^()]*\)", "|", plain))]
+    pieces += [part for piece in pieces for gas, _, part in [piece.partition("/")] if gases_in(gas)]
     found: dict[str, ReadUnit] = {}
     for piece in pieces:
         for unit in _units_of(piece):
@@ -139,6 +150,7 @@ def units_in(text: str) -> tuple[ReadUnit, ...]:
 def _units_of(piece: str) -> list[ReadUnit]:
     rest = re.sub(r"@\s*\d+(?:[.,]\d+)?\s*%?\s*(?:O2|02)?", " ", piece, flags=re.IGNORECASE)
     rest = re.sub(r"(?<![A-Za-z0-9])(?!02)\d+(?:[.,]\d+)?\s*%\s*(?:O2|02|oxygen)?", " ", rest, flags=re.IGNORECASE)
+    rest = re.sub(r"%(?=(?:db|wb|dry|wet)\b)", "% ", rest, flags=re.IGNORECASE)
     words = re.sub(r"(?<=[A-Za-z0-9])%", " %", rest).replace("_", " ").split()
     found = []
     for length in (3, 2, 1):
@@ -163,6 +175,12 @@ def _reading_unit(text: str) -> ReadUnit | None:
     except UnitError:
         return None
     return unit if dimension(unit.unit) in READABLE and unit.unit != "1" else None
+
+
+@lru_cache(4096)
+def lost_letters(text: str) -> bool:
+    """Whether a letter of a header was lost in an export, as in ``NO?`` for NOₓ or ``CO?`` for CO₂."""
+    return re.search(r"(?<![A-Za-z])[A-Za-z]{1,3}[?\ufffd]", text) is not None
 
 
 @lru_cache(4096)

@@ -16,10 +16,19 @@ from reporter.intake.foreign.apply import apply_to_grid
 from reporter.intake.foreign.grid import grid_of
 from reporter.intake.foreign.look import Look, look_at_grid
 from reporter.intake.foreign.mapping import differences
-from reporter.intake.foreign.words import basis_of, gases_in, stamp_of, time_part, units_in
+from reporter.intake.foreign.words import (
+    basis_of,
+    folded,
+    gases_in,
+    stamp_of,
+    time_part,
+    units_in,
+    without_correction,
+)
 from reporter.record import ReadingKind
 from tests.corpus.case import END, HEADERS, book, number, rows_on
 from tests.corpus.case import text as table
+from tests.corpus.corpus import CASES
 from tests.corpus.truth import TRUTH as WHOLE
 
 TRUTH = WHOLE[8:20]
@@ -73,12 +82,37 @@ def replaced(row: int, cell: int, new: str) -> str:
         ("Normal flow", (), [], ""),
         ("Stack W NOx ppm", ("nox",), ["ppm"], ""),
         ("NOx ppm 10 sec", ("nox",), ["ppm"], ""),
+        ("NOx-ppm", ("nox",), ["ppm"], ""),
+        ("CO/ppm", ("co",), ["ppm"], ""),
+        ("O₂/%", ("o2",), ["%"], ""),
+        ("O2 %db", ("o2",), ["%"], "dry"),
+        ("NOxppm", ("nox",), ["ppm"], ""),
+        ("ppmCO", ("co",), ["ppm"], ""),
+        ("O2percent", ("o2",), ["%"], ""),
+        ("Nozzle ppm", (), ["ppm"], ""),
     ],
 )
 def test_the_words_of_a_header(header: str, gases: tuple[str, ...], units: list[str], basis: str) -> None:
     assert gases_in(header) == gases
     assert [unit.unit for unit in units_in(header)] == units
     assert basis_of(header) == basis
+
+
+@pytest.mark.parametrize(
+    ("header", "reference", "corrected"),
+    [
+        ("NOx ppmvd@15%O2", 15.0, True),
+        ("NOx corr. 3% O2", 3.0, True),
+        ("NOx@O2ref mg/Nm3", None, True),
+        ("NOx ppmvdc", None, True),
+        ("NOx mg/m3 bez. 11 % O2", 11.0, True),
+        ("NOx at stack ppm", None, False),
+        ("NOx ppm", None, False),
+        ("O2 % dry", None, False),
+    ],
+)
+def test_the_words_of_a_correction(header: str, reference: float | None, corrected: bool) -> None:
+    assert without_correction(folded(header))[1:] == (reference, corrected)
 
 
 @pytest.mark.parametrize(
@@ -183,6 +217,16 @@ def test_times_alone_join_the_test_date(tmp_path: Path) -> None:
 def test_a_clock_of_twelve_hours_is_noticed() -> None:
     lines = ["Time,NOx ppm dry,O2 % dry", *(f"2026-04-20 {h}:{m:02d},24.1,4.1" for h in (11, 12, 1) for m in (0, 30))]
     assert "half-day-clock" in keys(seen("\n".join(lines) + "\n"))
+
+
+@pytest.mark.parametrize("answer", ["as written", "America/Denver", "Mars/Olympus"])
+def test_a_clock_that_goes_back_is_not_taken(answer: str) -> None:
+    """01:30 daylight time to 01:59, then 01:00 standard time: by either clock the second half would come first."""
+    found = seen(CASES["autumn, an hour twice with offsets"].content, {**END, "time-zone": answer})
+    (question,) = found.questions
+    assert question.key == "time-zone"
+    assert "goes back from 2026-11-01 01:59 to 01:00" in question.found
+    assert "as written" not in question.answers
 
 
 def test_questions_are_written_and_read_back(tmp_path: Path) -> None:

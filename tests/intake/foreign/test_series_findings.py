@@ -28,7 +28,7 @@ def found(
     series: dict[str, Values], spans: list[tuple[int, int]] | None = None, times: list[datetime] = TIMES
 ) -> list[Finding]:
     traces = [Trace(name, name.lower(), values, (50.0,) if name == "NOx" else ()) for name, values in series.items()]
-    return findings(times, traces, [(0, COUNT)] if spans is None else spans)
+    return findings(np.array(times, dtype="datetime64[us]"), traces, [(0, COUNT)] if spans is None else spans)
 
 
 @pytest.mark.parametrize("digits", [0, 1, 2])
