@@ -25,6 +25,8 @@ LEAST_READINGS, LEAST_TIMES = 6, 3
 FOUND, ELSEWHERE = 0.8, 0.6
 #: Shifts within so many seconds of the best are not another shift.
 NEAR = 600.0
+#: So many times the usual distance from the usual value is far from it.
+FAR = 8.0
 #: Correlation at the best lag; by how much it must exceed that at lag zero and at any other; points in common.
 CORRELATED, BETTER, POINTS = 0.8, 0.15, 30
 
@@ -178,6 +180,20 @@ def lag_between(one: Floats, two: Floats, step: float, farthest: float) -> Lag |
     if abs(correlation) - abs(elsewhere) < BETTER:
         return None
     return Lag(lags[best] * step, correlation, as_stamped, elsewhere, points)
+
+
+def departures(values: Floats) -> Floats:
+    """Where a series stands far from its usual value: 1 there, 0 elsewhere, not a number where it is none.
+
+    Far is more than `FAR` times the usual distance (median of the sizes) from the median: calibration gases, ambient
+    air, an outage, which two loggers see at the same time whatever gas each reads.
+    """
+    known = values[np.isfinite(values)]
+    if not len(known):
+        return values
+    distance = np.abs(values - np.median(known))
+    usual = float(np.median(distance[np.isfinite(distance)]))
+    return np.where(np.isfinite(values), (distance > FAR * usual).astype(np.float64), np.nan)
 
 
 def _correlation(one: Floats, two: Floats, lag: int) -> tuple[float, int]:

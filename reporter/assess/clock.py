@@ -10,6 +10,7 @@ import numpy as np
 
 from reporter.clocks import Floats, Known, Lag, Log, Shift, lag_between, shift_of_gases
 from reporter.outcome import Exclusion
+from reporter.problems import Place
 from reporter.record import Calibration, Level, ReadingKind, Run
 from reporter.reduction.book import Book, Lane
 from reporter.reduction.window import Window, logging_interval, stamps_interval_start
@@ -41,18 +42,20 @@ def look_at_clocks(book: Book, tracks: Sequence[Lane], runs: Sequence[Run], wind
         What events exclude in each run, by key.
     """
     logs = logs_of(book, tracks)
-    pairs = list(_entered(book, logs))
-    if pairs:
-        step = float(logging_interval(book).total_seconds())
+    step = float(logging_interval(book).total_seconds())
+    slack = max(SLACK, step)
+    shifted: list[tuple[Calibration, Known, float]] = []
+    for file, names in _loggers(book, tracks).items():
+        pairs = [(row, known) for row, known in _entered(book, logs) if row.channel.value in names]
         shift = shift_of_gases([known for _, known in pairs], step)
-        slack = max(SLACK, step)
         differs = shift is not None and not shift.first - slack <= 0.0 <= shift.last + slack
         if shift is not None and differs:
-            book.trouble("clock-differs", pairs[0][0].place, _words(shift))
+            book.trouble("clock-differs", Place(file), _words(shift))
         elif step <= FINE:
             _not_logged(book, pairs)
         by = shift.seconds if shift is not None and differs else 0.0
-        _in_runs(book, [(row, known, by) for row, known in pairs], runs, windows)
+        shifted += [(row, known, by) for row, known in pairs]
+    _in_runs(book, shifted, runs, windows)
     _against_process(book, tracks, runs, logs)
 
 
@@ -60,14 +63,24 @@ def logs_of(book: Book, tracks: Sequence[Lane]) -> dict[str, Log]:
     """The logged series of each channel as intervals, by its name; times are seconds from the year 2000."""
     readings = book.record.readings
     step = logging_interval(book).total_seconds()
-    stamps = np.array([seconds(row.time) for row in readings.rows], dtype=np.float64)
+    stamps = (readings.times - np.datetime64(_EPOCH, "us")).astype(np.int64) / 1e6
     begin = stamps if stamps_interval_start(book) else stamps - step
     found = {}
     for lane in tracks:
-        column = readings.index(lane.name)
-        cells = (row.readings[column] for row in readings.rows)
-        values = [one.value if one.kind is ReadingKind.NUMBER and one.value is not None else np.nan for one in cells]
-        found[lane.name] = Log(begin, begin + step, np.array(values, dtype=np.float64))
+        column = readings.column(lane.name)
+        values = np.where(column.is_kind(ReadingKind.NUMBER), column.values, np.nan)
+        found[lane.name] = Log(begin, begin + step, values)
+    return found
+
+
+def _loggers(book: Book, tracks: Sequence[Lane]) -> dict[str, set[str]]:
+    """The channels by the first file they were logged in: each file has its clock."""
+    readings = book.record.readings
+    found: dict[str, set[str]] = {}
+    for lane in tracks:
+        sources = readings.sources(readings.index(lane.name))
+        file = (sources[0].file if sources else "") or book.record.source.name
+        found.setdefault(file, set()).add(lane.name)
     return found
 
 
@@ -193,9 +206,11 @@ def _about(log: Log, times: Floats, step: float, runs: Sequence[Run]) -> Floats:
 
 
 def lag_words(lag: Lag, log: str, other: str) -> str:
-    """A lag in words: `log` is what stands behind (or ahead of) `other`."""
+    """A lag in words: `log` is what the other leads, or follows."""
+    side = "ahead of" if lag.seconds > 0.0 else "behind"
     return (
-        f"{log} stand {span(lag.seconds)} {'behind' if lag.seconds > 0.0 else 'ahead of'} {other}: correlation "
+        f"the clock of {log} stands {span(lag.seconds)} {side} that of {other} "
+        f"({-lag.seconds:+g} s to be added to its stamps): correlation "
         f"{lag.correlation:.2f} at that lag, {lag.as_stamped:.2f} as stamped, at most {abs(lag.elsewhere):.2f} in size "
         f"at any other, over {lag.points} points; confidence {lag.confidence:.2f}, of 1"
     )
