@@ -86,6 +86,26 @@ def csv(record: Record, name: str, logger: Logger) -> bytes:
     return ("\n".join(lines) + "\n").encode()
 
 
+def changing(record: Record, first: int, second: int, minutes: int) -> tuple[bytes, list[tuple[datetime, int, int]]]:
+    """One file of all channels that goes from one interval [s] to another after so many minutes; the rows' spans.
+
+    A span is the start of a row and the positions of the ten-second readings it is the mean of.
+    """
+    logger = Logger(tuple(UNITS), 10)
+    lines = [csv(record, "one", logger).decode().splitlines()[0]]
+    times = record.readings.times
+    spans, place = [], 0
+    while True:
+        step = first if place * 10 < minutes * 60 else second
+        end = place + step // 10
+        if end > len(times):
+            return ("\n".join(lines) + "\n").encode(), spans
+        cells = [repr(float(np.mean(record.readings.column(name).values[place:end]))) for name in UNITS]
+        lines.append(",".join([f"{times[place].item():%Y-%m-%d %H:%M:%S}", *cells]))
+        spans.append((times[place].item(), place, end))
+        place = end
+
+
 def mapping(name: str, logger: Logger) -> str:
     """The mapping of that file."""
     columns = (COLUMN.format(name=one, unit=UNITS[one], gas=one.lower()) for one in logger.channels)

@@ -6,7 +6,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from split_tests import Logger, folder, means, source
+from split_tests import Logger, changing, folder, means, source
 
 from reporter.api import assessed, issue_time, read_input
 from reporter.intake.read import ReadResult
@@ -75,6 +75,26 @@ def test_an_interval_that_was_entered_wins_and_the_coarser_channel_stays_blank(t
     said = [p.found for p in found.problems if p.code == "interval-blank"]
     assert len(said) == 2
     assert said[0].endswith("readings stand for more than 10 s each")
+
+
+@pytest.mark.parametrize(("first", "second"), [(10, 60), (60, 10), (60, 300), (10, 900)])
+def test_an_interval_that_changes_inside_a_file(first: int, second: int, tmp_path: Path) -> None:
+    """An hour at one interval, then another: the coarser is the common one, and each mean is that of its time."""
+    record = source()[1]
+    path = folder(tmp_path / "day", {"one": Logger((*POLLUTANTS, *DILUENTS), 10)})
+    (path / "one.csv").write_bytes(changing(record, first, second, 60)[0])
+    found = read_input(path)
+    own, step = readings(found), max(first, second)
+    size = step // 10
+    for name in (*POLLUTANTS, *DILUENTS):
+        values = record.readings.column(name).values
+        whole = len(values) // size * size
+        truth = np.mean(values[:whole].reshape(-1, size), axis=1)
+        made = own.column(name)
+        assert made.is_kind(ReadingKind.NUMBER)[: len(truth)].all()
+        assert made.values[: len(truth)] == pytest.approx(truth, rel=1e-12, abs=1e-12)
+    words = f"averaged to {step // 60} min, coverage 100 %"
+    assert sum(words in line for line in found.understood) == 4
 
 
 def test_stamps_at_the_start_and_at_the_end_are_brought_together(tmp_path: Path) -> None:
