@@ -17,6 +17,8 @@ Bools = NDArray[np.bool_]
 
 #: Shifts looked at reach so far either way [s]: a whole day's worth of wrong time zones.
 FARTHEST = 14 * 3600.0
+#: Shifts are first tried in steps no finer than this [s]: a gas flows for minutes.
+COARSE = 10.0
 #: A reading that more than this share of the log shows tells nothing about the clock.
 TELLING = 0.25
 #: So many telling readings, entered at so many different times, are needed.
@@ -25,6 +27,8 @@ LEAST_READINGS, LEAST_TIMES = 6, 3
 FOUND, ELSEWHERE = 0.8, 0.6
 #: Shifts within so many seconds of the best are not another shift.
 NEAR = 600.0
+#: So many times the usual distance from the usual value is far from it.
+FAR = 8.0
 #: Correlation at the best lag; by how much it must exceed that at lag zero and at any other; points in common.
 CORRELATED, BETTER, POINTS = 0.8, 0.15, 30
 
@@ -107,26 +111,41 @@ def shift_of_gases(readings: Sequence[Known], step: float) -> Shift | None:
     telling = [one for one in readings if one.is_telling()]
     if len(telling) < LEAST_READINGS or len({one.time for one in telling}) < LEAST_TIMES:
         return None
-    most = int(FARTHEST // step)
-    shifts = np.arange(-most, most + 1, dtype=np.float64) * step
+    wide = max(step, COARSE)
+    lowest = max(-FARTHEST, min(float(one.log.begin[0]) - one.time for one in telling))
+    highest = min(FARTHEST, max(float(one.log.end[-1]) - one.time for one in telling))
+    shifts = np.arange(np.floor(lowest / wide), np.ceil(highest / wide) + 1, dtype=np.float64) * wide
+    count = _found(telling, shifts)
+    first, last = _fitting(shifts, count)
+    away = (shifts < first - NEAR) | (shifts > last + NEAR)
+    elsewhere, total = int(count[away].max(initial=0)), len(telling)
+    if wide > step:
+        shifts = np.arange(np.floor((first - wide) / step), np.ceil((last + wide) / step) + 1) * step
+        count = _found(telling, shifts)
+        first, last = _fitting(shifts, count)
+    found = int(count.max())
+    if found < FOUND * total or elsewhere > ELSEWHERE * total:
+        return None
+    return Shift(last, first, last, found, total, int(_found(telling, np.zeros(1))[0]), elsewhere)
+
+
+def _found(readings: Sequence[Known], shifts: Floats) -> NDArray[np.int64]:
+    """How many readings the log shows at each shift."""
     count = np.zeros(len(shifts), dtype=np.int64)
-    for one in telling:
+    for one in readings:
         count += one.shown(shifts)
-    best = int(count.argmax())
-    found, total = int(count[best]), len(telling)
-    fits = count >= FOUND * found
-    first = last = best
+    return count
+
+
+def _fitting(shifts: Floats, count: NDArray[np.int64]) -> tuple[float, float]:
+    """The first and the last of the shifts around the best that find nearly as many readings."""
+    first = last = int(count.argmax())
+    fits = count >= FOUND * count[first]
     while first > 0 and fits[first - 1]:
         first -= 1
     while last < len(shifts) - 1 and fits[last + 1]:
         last += 1
-    away = (shifts < shifts[first] - NEAR) | (shifts > shifts[last] + NEAR)
-    elsewhere = int(count[away].max(initial=0))
-    if found < FOUND * total or elsewhere > ELSEWHERE * total:
-        return None
-    return Shift(
-        float(shifts[last]), float(shifts[first]), float(shifts[last]), found, total, int(count[most]), elsewhere
-    )
+    return float(shifts[first]), float(shifts[last])
 
 
 @dataclass(frozen=True, slots=True)
@@ -178,6 +197,20 @@ def lag_between(one: Floats, two: Floats, step: float, farthest: float) -> Lag |
     if abs(correlation) - abs(elsewhere) < BETTER:
         return None
     return Lag(lags[best] * step, correlation, as_stamped, elsewhere, points)
+
+
+def departures(values: Floats) -> Floats:
+    """Where a series stands far from its usual value: 1 there, 0 elsewhere, not a number where it is none.
+
+    Far is more than `FAR` times the usual distance (median of the sizes) from the median: calibration gases, ambient
+    air, an outage, which two loggers see at the same time whatever gas each reads.
+    """
+    known = values[np.isfinite(values)]
+    if not len(known):
+        return values
+    distance = np.abs(values - np.median(known))
+    usual = float(np.median(distance[np.isfinite(distance)]))
+    return np.where(np.isfinite(values), (distance > FAR * usual).astype(np.float64), np.nan)
 
 
 def _correlation(one: Floats, two: Floats, lag: int) -> tuple[float, int]:

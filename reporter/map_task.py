@@ -11,11 +11,13 @@ from reporter.intake.foreign.answers import questions_toml, read_answers
 from reporter.intake.foreign.apply import apply_to_grid
 from reporter.intake.foreign.grid import read_grid
 from reporter.intake.foreign.look import Look, look, mapping_of
+from reporter.intake.foreign.mapping import Mapping
 from reporter.intake.foreign.mapping import save as save_mapping
 from reporter.intake.foreign.model import Question
+from reporter.intake.foreign.process_log import read_process_file
 from reporter.intake.foreign.resent import difference
 from reporter.intake.foreign.series_notes import notes_of_file
-from reporter.problems import Grade
+from reporter.problems import Grade, Problem
 from reporter.tasks import Task
 from reporter.terminal import problems_text
 from reporter.terminal_text import paragraph, section
@@ -91,9 +93,8 @@ def _said(found: Look, name: str, save: Path | None, questions: Path | None, cha
             )
         return Task(file.name, "\n\n".join(parts), WITHHELD, "questions are open", len(found.questions))
     mapping = mapping_of(found, name=name)
-    made = apply_to_grid(found.grid, mapping)
-    parts.append(section("By this mapping", [paragraph(line) for line in made.report.lines()]))
-    problems = (*made.problems, *notes_of_file(made))
+    lines, problems = _by_mapping(found, mapping)
+    parts.append(section("By this mapping", [paragraph(line) for line in lines]))
     shown = [p for p in problems if not (p.code == "not-a-time" and mapping.time.day)]
     if shown:
         parts.append(problems_text(shown))
@@ -102,6 +103,21 @@ def _said(found: Look, name: str, save: Path | None, questions: Path | None, cha
         parts.append(f"Written: {save.name} (shape {mapping.fingerprint})")
     stops = any(p.grade is Grade.UNREADABLE for p in shown)
     return Task(file.name, "\n\n".join(parts), UNREADABLE if stops else OK, "mapped")
+
+
+def _by_mapping(found: Look, mapping: Mapping) -> tuple[Sequence[str], Sequence[Problem]]:
+    """What the file gives by the mapping: in words, and the problems."""
+    lines: list[str] = []
+    problems: list[Problem] = []
+    if mapping.has("reading"):
+        made = apply_to_grid(found.grid, mapping)
+        lines += made.report.lines()
+        problems += [*made.problems, *notes_of_file(made)]
+    if mapping.has("process"):
+        log = read_process_file(found.grid, mapping)
+        lines += log.lines
+        problems += log.problems
+    return lines, problems
 
 
 def _asked(question: Question) -> str:

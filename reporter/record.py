@@ -90,13 +90,15 @@ class When(Enum):
 class Readings:
     """The logged series: channel names, their columns' letters, and rows in time order.
 
-    `rows` may be given as plain rows; they are kept by column (`reporter.logged`).
+    `rows` may be given as plain rows; they are kept by column (`reporter.logged`).  `made` says what the rows are where
+    they were not logged so, e.g. ``means over 1 min``.
     """
 
     channels: tuple[str, ...]
     columns: tuple[str, ...]
     rows: Sequence[ReadingRow]
     place: Place = field(default_factory=Place)
+    made: str = ""
 
     def __post_init__(self) -> None:
         if not isinstance(self.rows, LoggedRows):
@@ -529,7 +531,10 @@ class SheetCopy:
 
 @dataclass(frozen=True, slots=True)
 class Record:
-    """The whole test as entered; `source` is the field workbook or JSON record, `sources` all files of a folder."""
+    """The whole test as entered; `source` is the field workbook or JSON record, `sources` all files of a folder.
+
+    `prepared` says what was done to readings and process log before they stood here: averages, clocks, units.
+    """
 
     test: Test
     channels: tuple[Channel, ...]
@@ -554,6 +559,7 @@ class Record:
     source: SourceFile = field(default_factory=lambda: SourceFile("", "", 0))
     sheets: tuple[SheetCopy, ...] = ()
     sources: tuple[SourceFile, ...] = ()
+    prepared: tuple[str, ...] = ()
 
     @property
     def inputs(self) -> tuple[SourceFile, ...]:

@@ -169,7 +169,7 @@ def build_folder(code: str) -> dict[str, bytes]:
     """The files of the defect folder of a code, by name."""
     from making import broken_folders
 
-    made = base("short")
+    made = base("day" if code in broken_folders.WHOLE_DAY else "short")
     readings = made.pop("Readings")
     files = broken_folders.whole(make_samples.workbook.write(_whole()[0], made), readings)
     return broken_folders.CHANGES[code](files, readings)

@@ -10,6 +10,7 @@ import numpy as np
 
 from reporter.clocks import Floats, Known, Lag, Log, Shift, lag_between, shift_of_gases
 from reporter.outcome import Exclusion
+from reporter.problems import Place
 from reporter.record import Calibration, Level, Run
 from reporter.reduction.book import Book, Lane
 from reporter.reduction.window import Window, logging_interval, stamps_interval_start
@@ -41,18 +42,20 @@ def look_at_clocks(book: Book, tracks: Sequence[Lane], runs: Sequence[Run], wind
         What events exclude in each run, by key.
     """
     logs = logs_of(book, tracks)
-    pairs = list(_entered(book, logs))
-    if pairs:
-        step = float(logging_interval(book).total_seconds())
+    step = float(logging_interval(book).total_seconds())
+    slack = max(SLACK, step)
+    shifted: list[tuple[Calibration, Known, float]] = []
+    for file, names in _loggers(book, tracks).items():
+        pairs = [(row, known) for row, known in _entered(book, logs) if row.channel.value in names]
         shift = shift_of_gases([known for _, known in pairs], step)
-        slack = max(SLACK, step)
         differs = shift is not None and not shift.first - slack <= 0.0 <= shift.last + slack
         if shift is not None and differs:
-            book.trouble("clock-differs", pairs[0][0].place, _words(shift))
+            book.trouble("clock-differs", Place(file), _words(shift))
         elif step <= FINE:
             _not_logged(book, pairs)
         by = shift.seconds if shift is not None and differs else 0.0
-        _in_runs(book, [(row, known, by) for row, known in pairs], runs, windows)
+        shifted += [(row, known, by) for row, known in pairs]
+    _in_runs(book, shifted, runs, windows)
     _against_process(book, tracks, runs, logs)
 
 
@@ -63,6 +66,17 @@ def logs_of(book: Book, tracks: Sequence[Lane]) -> dict[str, Log]:
     stamps = (readings.times - np.datetime64(_EPOCH, "us")) / np.timedelta64(1, "s")
     begin = stamps if stamps_interval_start(book) else stamps - step
     return {lane.name: Log(begin, begin + step, readings.column(lane.name).measured) for lane in tracks}
+
+
+def _loggers(book: Book, tracks: Sequence[Lane]) -> dict[str, set[str]]:
+    """The channels by the first file they were logged in: each file has its clock."""
+    readings = book.record.readings
+    found: dict[str, set[str]] = {}
+    for lane in tracks:
+        sources = readings.sources(readings.index(lane.name))
+        file = (sources[0].file if sources else "") or book.record.source.name
+        found.setdefault(file, set()).add(lane.name)
+    return found
 
 
 def seconds(moment: datetime) -> float:
@@ -187,9 +201,11 @@ def _about(log: Log, times: Floats, step: float, runs: Sequence[Run]) -> Floats:
 
 
 def lag_words(lag: Lag, log: str, other: str) -> str:
-    """A lag in words: `log` is what stands behind (or ahead of) `other`."""
+    """A lag in words: `log` is what the other leads, or follows."""
+    side = "ahead of" if lag.seconds > 0.0 else "behind"
     return (
-        f"{log} stand {span(lag.seconds)} {'behind' if lag.seconds > 0.0 else 'ahead of'} {other}: correlation "
+        f"the clock of {log} stands {span(lag.seconds)} {side} that of {other} "
+        f"({-lag.seconds:+g} s to be added to its stamps): correlation "
         f"{lag.correlation:.2f} at that lag, {lag.as_stamped:.2f} as stamped, at most {abs(lag.elsewhere):.2f} in size "
         f"at any other, over {lag.points} points; confidence {lag.confidence:.2f}, of 1"
     )

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
-from typing import Any
+from collections.abc import Sequence
+from typing import Any, Protocol
 
 from reporter import record as domain
 from reporter.equation import System
@@ -40,8 +40,21 @@ ROW_CLASSES: dict[str, type[Any]] = {
 }
 
 
-#: Readings that come from elsewhere than the sheet Readings: made of channels, reader and items of Test.
-Series = Callable[[Sequence[Filled], RowReader, dict[str, Any]], Readings | None]
+class Series(Protocol):
+    """What stands in files beside the workbook: readings, process log, corrections of clocks."""
+
+    @property
+    def has_readings(self) -> bool:
+        """Whether the readings stand in the files."""
+
+    def readings(self, channels: Sequence[Filled], reader: RowReader, test: dict[str, Any]) -> Readings | None:
+        """The readings of the files by the channels of the workbook; None where something stops."""
+
+    def corrected(self, file: str, readings: Readings) -> Readings:
+        """The readings of the workbook by its corrected clock."""
+
+    def process(self, own: ProcessLog, reader: RowReader, test: dict[str, Any]) -> ProcessLog:
+        """The process log of the files and of the workbook together."""
 
 
 class _Builder:
@@ -77,7 +90,7 @@ class _Builder:
         """Read every sheet, those first that others need."""
         names = ", ".join(table.sheet for table in self.tables.values()) or "none of the field workbook"
         for spec in sheets():
-            elsewhere = spec.attr == "readings" and self.series is not None
+            elsewhere = spec.attr == "readings" and self.series is not None and self.series.has_readings
             if spec.required and spec.attr not in self.tables and not elsewhere:
                 place = self.gathered.place(spec.name)
                 self.gathered.add("missing-sheet", place, f"the sheets {names}", expected=f"a sheet {spec.name!r}")
@@ -132,19 +145,23 @@ class _Builder:
     def _read_series(self) -> None:
         table = self.tables.get("readings")
         channels = self.rows.get("channels", [])
-        if self.series is not None:
+        test = self.items["test"][0].values if "test" in self.items else {}
+        if self.series is not None and self.series.has_readings:
             if table is not None and table.rows:
                 found = f"readings on the sheet {table.sheet!r}, and logger files beside the workbook"
                 self.gathered.add("folder-inputs", self.gathered.place(table.sheet), found)
-            test = self.items["test"][0].values if "test" in self.items else {}
-            self.readings = self.series(channels, self.reader, test)
+            self.readings = self.series.readings(channels, self.reader, test)
         elif table is not None and table.header_found:
             self.readings = read_readings(table, channels, self.reader, _gas_key)
             if not table.rows:
                 self.gathered.add("no-rows", self.gathered.place(table.sheet))
+            if self.series is not None and self.readings is not None:
+                self.readings = self.series.corrected(self.gathered.file, self.readings)
         process = self.tables.get("process")
         if process is not None and process.header_found:
             self.process = read_process(process, self.reader)
+        if self.series is not None:
+            self.process = self.series.process(self.process, self.reader, test)
 
     def check(self) -> None:
         """Hold the sheets against each other."""
@@ -175,7 +192,7 @@ class _Builder:
     def _propose_runs(self, table: SheetTable) -> None:
         """Say which times the runs could have, where none are entered; nothing is chosen."""
         runs, readings = self.rows.get("runs"), self.readings
-        if readings is None or not readings.rows:
+        if readings is None or not len(readings.times):
             if runs == []:
                 self.gathered.add("no-rows", self.gathered.place(table.sheet))
             return

@@ -18,7 +18,7 @@ import numpy as np
 
 from reporter.gases import find_gas
 from reporter.intake.rows import Filled
-from reporter.logged import is_kind
+from reporter.logged import Moments, is_kind
 from reporter.record import ProcessLog, ReadingKind, Readings
 from reporter.units import convert
 
@@ -134,7 +134,7 @@ def day_of(rows: dict[str, list[Filled]], readings: Readings, process: ProcessLo
     ]
     lengths = [minutes for limit in rows.get("limits", ()) for minutes in _numbers(limit, "minimum_run_length")]
     return Day(
-        logged=_stretches(readings.times.tolist(), at_start=at_start),
+        logged=_stretches(readings.times, at_start=at_start),
         calibrations=tuple(sorted({*times, *_marked(channels, readings)})),
         load=_load(process),
         purge=max(PURGE, timedelta(seconds=2.0 * max(response, default=0.0))),
@@ -159,19 +159,16 @@ def _marked(channels: Sequence[Filled], readings: Readings) -> list[datetime]:
     return list(readings.times[np.logical_or.reduce(marked)].tolist()) if marked else []
 
 
-def _stretches(times: Sequence[datetime], *, at_start: bool) -> tuple[tuple[datetime, datetime], ...]:
+def _stretches(times: Moments, *, at_start: bool) -> tuple[tuple[datetime, datetime], ...]:
     """The stretches of the log without a gap."""
     if len(times) < 2:
         return ()
-    steps = sorted(after - before for before, after in pairwise(times))
-    step = steps[len(steps) // 2]
-    parts = [[times[0]]]
-    for before, after in pairwise(times):
-        if after - before > max(GAP, 1.5 * step):
-            parts.append([])
-        parts[-1].append(after)
+    steps = np.diff(times)
+    step: timedelta = np.sort(steps)[len(steps) // 2].item()
+    cuts = np.flatnonzero(steps > np.timedelta64(max(GAP, 1.5 * step), "us"))
     lead, tail = (timedelta(0), step) if at_start else (step, timedelta(0))
-    return tuple((part[0] - lead, part[-1] + tail) for part in parts)
+    first, last = times[[0, *(cuts + 1)]].tolist(), times[[*cuts, -1]].tolist()
+    return tuple((begin - lead, end + tail) for begin, end in zip(first, last, strict=True))
 
 
 def _load(process: ProcessLog) -> Load | None:

@@ -63,6 +63,7 @@ def to_json(outcome: Outcome, issued: datetime, version: str) -> bytes:
             for row in (*record.test.extra, *record.location.extra)
         ],
         "attachments": [as_entered(attachment) for attachment in record.attachments],
+        "prepared": list(record.prepared),
         "stated": list(outcome.stated),
         "runs": [run_row(run) for run in outcome.runs],
         "averages": list(outcome.averages),

@@ -126,6 +126,7 @@ def write_problems(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
             sheet.texts([*texts, found.expected, found.remedy, found.code], table)
             sheet.next()
     sheet.rules(first, len(table))
+    _lines(sheet, said["prepared"], outcome.record.prepared, len(table))
     _lines(sheet, said["stated"], outcome.stated, len(table))
     names = {run.key: said["finding_run"].format(run=run.run.run.value) for run in outcome.runs}
     findings = [f"{names.get(finding.run, '')}{finding.words}" for finding in outcome.findings]

@@ -52,8 +52,9 @@ def reduce_process_log(book: Book, about: RunBook) -> None:
         unit = log.units[position]
         rows = [log.rows[i] for i in with_number] if log.rows else []
         letter = log.letters[position] if log.letters else ""
-        cells = cell_ranges(letter, rows, book.record.source.name)
-        place = Place(book.record.source.name, log.place.sheet or "Process", cells, column)
+        file = log.place.file or book.record.source.name
+        sheet = log.place.sheet or ("Process" if file == book.record.source.name else "")
+        place = Place(file, sheet, cell_ranges(letter, rows, file), column)
         words = f"{len(values)} readings from {log.times[inside[0]]:%H:%M} to {log.times[inside[-1]]:%H:%M}"
         key = about.key(f"process.{name}")
         series = book.ledger.enter(

@@ -191,6 +191,5 @@ def _counted(values: Sequence[float], below: Sequence[tuple[int, float | None]],
 
 
 def _enter(book: Book, lane: Lane, key: str, values: Sequence[float], place: Place) -> Entry:
-    return book.ledger.enter(
-        key, values, lane.unit, FromCells(place, f"{len(values)} readings"), basis=channel_basis(book, lane)
-    )
+    words = f"{len(values)} {book.record.readings.made or 'readings'}"
+    return book.ledger.enter(key, values, lane.unit, FromCells(place, words), basis=channel_basis(book, lane))

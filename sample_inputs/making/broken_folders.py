@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
+from datetime import timedelta
 from typing import Any
 
 from making.day import Rows
@@ -37,18 +38,18 @@ basis = "dry"
 UNITS = {"NOx": "ppm", "CO": "ppm", "O2": "%", "CO2": "%"}
 
 
-def logger(readings: Rows, below: str = "") -> bytes:
+def logger(readings: Rows, below: str = "", names: Sequence[str] = tuple(UNITS)) -> bytes:
     """The readings as comma-separated text."""
-    lines = ["Time," + ",".join(f"{name} [{unit} dry]" for name, unit in UNITS.items())]
+    lines = ["Time," + ",".join(f"{name} [{UNITS[name]} dry]" for name in names)]
     for row in readings:
-        cells = ("" if row[name] is None else str(row[name]) for name in UNITS)
+        cells = ("" if row[name] is None else str(row[name]) for name in names)
         lines.append(f"{row['Time']:%Y-%m-%d %H:%M}," + ",".join(cells))
     return ("\n".join(lines) + "\n" + below).encode()
 
 
-def mapping() -> bytes:
+def mapping(names: Sequence[str] = tuple(UNITS)) -> bytes:
     """The mapping of that text."""
-    columns = (COLUMN.format(name=name, unit=unit, gas=name.lower()) for name, unit in UNITS.items())
+    columns = (COLUMN.format(name=name, unit=UNITS[name], gas=name.lower()) for name in names)
     return (MAPPING + "".join(columns)).encode()
 
 
@@ -58,7 +59,7 @@ def whole(field: bytes, readings: Rows) -> Files:
 
 
 def _without_gases(files: Files, readings: Rows) -> Files:
-    return files | {"logger.csv": b"Time,Load\n2026-04-14 09:01,46.1\n"}
+    return files | {"logger.csv": b"Time,Level\n2026-04-14 09:01,46.1\n"}
 
 
 def _no_mapping(files: Files, readings: Rows) -> Files:
@@ -104,6 +105,29 @@ def _wrong_average(files: Files, readings: Rows) -> Files:
     return files | {"logger.csv": logger(readings, "Average,99.0,3.0,4.0,9.6\n")}
 
 
+def _two_loggers(files: Files, first: Rows, second: Rows) -> Files:
+    """Pollutants by one logger, diluents by another."""
+    pollutants, diluents = ("NOx", "CO"), ("O2", "CO2")
+    return {
+        "field.xlsx": files["field.xlsx"],
+        "pollutants.csv": logger(first, names=pollutants),
+        "pollutants.map.toml": mapping(pollutants),
+        "diluents.csv": logger(second, names=diluents),
+        "diluents.map.toml": mapping(diluents),
+    }
+
+
+def _late_logger(files: Files, readings: Rows) -> Files:
+    late = [{**row, "Time": row["Time"] + timedelta(minutes=7)} for row in readings]
+    return _two_loggers(files, late, readings)
+
+
+def _coarse_logger(files: Files, readings: Rows) -> Files:
+    return _two_loggers(files, readings, readings[14::15])
+
+
+#: The codes whose folders need each minute of the day.
+WHOLE_DAY = frozenset({"loggers-differ", "interval-blank"})
 #: What is wrong, by the code of the problem.
 CHANGES: dict[str, Callable[[Files, Rows], Files]] = {
     "no-readings-table": _without_gases,
@@ -112,6 +136,8 @@ CHANGES: dict[str, Callable[[Files, Rows], Files]] = {
     "mapping-differs": _new_header,
     "mapping-against-channels": _other_basis,
     "readings-contradict": _two_days,
+    "loggers-differ": _late_logger,
+    "interval-blank": _coarse_logger,
     "row-out-of-line": _missing_comma,
     "folder-inputs": _two_workbooks,
     "rows-left-out": _average,

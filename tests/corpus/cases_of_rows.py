@@ -33,7 +33,7 @@ HEADED = [
         before={20: ["", "Run 2"], 40: ["", "Run 3"]}), notes=LEFT),
     Case("header without readings", "a header and nothing below", (",".join(HEADERS) + "\n").encode(),
          stops="no-readings-table"),
-    Case("no gas", "times and a load alone", b"Time,Load\n2026-04-20 09:55,3\n2026-04-20 09:56,4\n",
+    Case("no gas", "times and a level alone", b"Time,Level\n2026-04-20 09:55,3\n2026-04-20 09:56,4\n",
          stops="no-readings-table"),
     Case("time along the row", "gases below each other, a column for each minute", "\n".join([
         "Time," + ",".join(f"{row[0]}" for row in TRUTH),

@@ -1,4 +1,4 @@
-"""One test as a folder: the field workbook for what is fixed, logger files for the readings, mappings to read them."""
+"""One test as a folder: the field workbook for what is fixed, logger files and plant logs, mappings to read them."""
 
 from __future__ import annotations
 
@@ -10,11 +10,13 @@ from pathlib import Path
 from typing import Any
 
 from reporter.errors import RecordError
-from reporter.intake.foreign.apply import ForeignReadings, apply_to_grid
+from reporter.intake.foreign.apply import apply_to_grid
+from reporter.intake.foreign.corrections import Correction, corrections
 from reporter.intake.foreign.grid import Grid, read_grid
 from reporter.intake.foreign.join import join
 from reporter.intake.foreign.mapping import ENDING, Mapping, differences, differences_of, load
-from reporter.intake.foreign.tables import find_tables
+from reporter.intake.foreign.process_log import ProcessFile, process_of, read_process_file
+from reporter.intake.foreign.tables import Table, find_tables
 from reporter.intake.foreign.titles import strangers
 from reporter.intake.guard import look_at
 from reporter.intake.jsonrecord import looks_like_json
@@ -24,7 +26,7 @@ from reporter.intake.sheets import find_sheet
 from reporter.intake.workbook import sheet_parts
 from reporter.paths import attachment_path
 from reporter.problems import Grade, Place, Problem, problem
-from reporter.record import Readings, SourceFile
+from reporter.record import ProcessLog, Readings, SourceFile
 
 #: Name of the optional list of files, and the endings of what is taken for a logger file without it.
 MANIFEST = "folder.toml"
@@ -35,41 +37,85 @@ _FIXED = ("test", "channels", "runs")
 
 @dataclass(slots=True)
 class _Inputs:
-    """The files of a folder by what they are."""
+    """The files of a folder by what they are, and the corrections of their clocks by file."""
 
     workbook: Path
     loggers: tuple[Path, ...]
     mappings: tuple[Path, ...]
+    clocks: dict[str, Correction] = field(default_factory=dict)
 
 
 @dataclass(slots=True)
-class _Loggers:
-    """The logger files of a test: read when the field workbook's channels are known."""
+class _Files:
+    """The logger files and plant logs of a test: read when the field workbook's channels are known."""
 
     grids: Sequence[Grid]
     mappings: Sequence[Mapping]
+    clocks: dict[str, Correction]
     problems: list[Problem] = field(default_factory=list)
-    read: list[ForeignReadings] = field(default_factory=list)
+    understood: list[str] = field(default_factory=list)
+    done: list[str] = field(default_factory=list)
+    logs: list[ProcessFile] = field(default_factory=list)
+    chosen: list[tuple[Grid, Mapping, Sequence[Table]]] = field(init=False)
 
-    def __call__(self, channels: Sequence[Filled], reader: RowReader, test: dict[str, Any]) -> Readings | None:
-        """The readings of all logger files, by the channels of the field workbook; None where something stops."""
+    def __post_init__(self) -> None:
+        self.chosen = []
         for grid in self.grids:
             tables = find_tables(grid)
             fitting = [m for m in self.mappings if grid.pages and not differences_of(m, grid, tables)]
             if len(fitting) == 1 or len(self.mappings) == 1:
-                mapping = fitting[0] if fitting else self.mappings[0]
-                found = apply_to_grid(grid, mapping, day=reader.day, tables=tables)
-                self.read.append(found)
-                self.problems += [*found.problems, *strangers(grid, tables, test, mapping.titles)]
+                self.chosen.append((grid, fitting[0] if fitting else self.mappings[0], tables))
             elif not grid.pages:
                 self.problems += grid.problems
             else:
                 self.problems.append(_no_mapping(grid, self.mappings, fitting))
+
+    @property
+    def has_readings(self) -> bool:
+        """Whether a file of the folder holds readings, as far as that is known."""
+        known = any(mapping.has("reading") for _, mapping, _ in self.chosen)
+        return known or len(self.chosen) < len(self.grids)
+
+    def readings(self, channels: Sequence[Filled], reader: RowReader, test: dict[str, Any]) -> Readings | None:
+        """The readings of all logger files, by the channels of the field workbook; None where something stops."""
+        made = []
+        for grid, mapping, tables in self.chosen:
+            if mapping.has("reading"):
+                found = apply_to_grid(grid, mapping, day=reader.day, tables=tables)
+                self.problems += [*found.problems, *strangers(grid, tables, test, mapping.titles)]
+                self.understood += [f"{found.report.file}: {line}" for line in found.report.lines()]
+                made.append(replace(found, readings=self.corrected(grid.source.name, found.readings)))
         if self._stops():
             return None
-        joined, problems = join(self.read, channels, test)
+        joined = join(made, channels, test)
+        self.problems += joined.problems
+        self.done += joined.done
+        return None if self._stops() else joined.readings
+
+    def corrected(self, file: str, readings: Readings) -> Readings:
+        """Readings by the corrected clock of their file."""
+        correction = self.clocks.get(file)
+        if correction is None:
+            return readings
+        self.done.append(correction.words())
+        return correction.of_readings(readings)
+
+    def process(self, own: ProcessLog, reader: RowReader, test: dict[str, Any]) -> ProcessLog:
+        """The process log of the sheet Process and of the plant logs of the folder."""
+        for grid, mapping, tables in self.chosen:
+            if mapping.has("process"):
+                found = read_process_file(grid, mapping, day=reader.day)
+                self.problems += found.problems
+                self.problems += [] if mapping.has("reading") else strangers(grid, tables, test, mapping.titles)
+                self.understood += [f"{found.name}: {line}" for line in found.lines]
+                correction = self.clocks.get(found.name)
+                if correction is not None:
+                    self.done += [] if mapping.has("reading") else [correction.words()]
+                    found = replace(found, log=correction.of_process(found.log))
+                self.logs.append(found)
+        log, problems = process_of(own, self.logs)
         self.problems += problems
-        return None if self._stops() else joined
+        return log
 
     def _stops(self) -> bool:
         return any(p.grade is Grade.UNREADABLE for p in self.problems)
@@ -104,7 +150,7 @@ def read_folder(path: str | Path, mapping: str | Path | None = None) -> ReadResu
     inputs = _inputs(folder)
     if isinstance(inputs, Problem):
         return ReadResult(None, (inputs,))
-    if not inputs.loggers:
+    if not inputs.loggers and not inputs.clocks:
         return read(inputs.workbook)
     mappings, problems = [], []
     files = inputs.mappings if mapping is None else (Path(mapping),)
@@ -115,16 +161,18 @@ def read_folder(path: str | Path, mapping: str | Path | None = None) -> ReadResu
             problems.append(problem("mapping-unreadable", Place(file.name), error.message))
     if problems:
         return ReadResult(None, tuple(problems))
-    loggers = _Loggers([read_grid(file) for file in inputs.loggers], mappings)
-    result = read(inputs.workbook, series=loggers)
-    understood = tuple(f"{found.report.file}: {line}" for found in loggers.read for line in found.report.lines())
+    beside = _Files([read_grid(file) for file in inputs.loggers], mappings, inputs.clocks)
+    result = read(inputs.workbook, series=beside)
     record = result.record
+    if any(p.grade is Grade.UNREADABLE for p in beside.problems):
+        record = None
     if record is not None:
-        sources = [record.source, *(grid.source for grid in loggers.grids), *map(_source, files)]
-        record = replace(record, sources=tuple(sources))
+        manifest = [folder / MANIFEST] if inputs.clocks else []
+        sources = [record.source, *(grid.source for grid in beside.grids), *map(_source, (*files, *manifest))]
+        record = replace(record, sources=tuple(sources), prepared=tuple(beside.done))
     grades = list(Grade)
-    everything = sorted((*result.problems, *loggers.problems), key=lambda p: grades.index(p.grade))
-    return ReadResult(record, tuple(everything), understood)
+    everything = sorted((*result.problems, *beside.problems), key=lambda p: grades.index(p.grade))
+    return ReadResult(record, tuple(everything), (*beside.understood, *beside.done))
 
 
 def _source(file: Path) -> SourceFile:
@@ -136,14 +184,31 @@ def _source(file: Path) -> SourceFile:
 
 
 def _inputs(folder: Path) -> _Inputs | Problem:
-    """The files of a folder, by its list of files or by what they hold."""
+    """The files of a folder, by its list of files or by what they hold, with the corrections of its clocks."""
     place = Place(folder.resolve().name)
     try:
-        if (folder / MANIFEST).is_file():
-            return _listed(folder, tomllib.loads((folder / MANIFEST).read_text(encoding="utf-8")))
-        files = sorted(f for f in folder.iterdir() if f.is_file() and not f.name.startswith(("~$", ".")))
+        listed = (folder / MANIFEST).is_file()
+        data = tomllib.loads((folder / MANIFEST).read_text(encoding="utf-8")) if listed else {}
+        clocks = corrections(data)
+        made = _listed(folder, data) if set(data) - {"clock"} else _found(folder, place)
     except (OSError, UnicodeDecodeError, tomllib.TOMLDecodeError) as error:
         return problem("folder-inputs", place, str(error))
+    except ValueError as error:
+        expected = "file, add_seconds (a number within a day) and said_by in each [[clock]], each file once"
+        return problem("folder-inputs", Place(MANIFEST), str(error), expected=expected)
+    if isinstance(made, Problem):
+        return made
+    known = {made.workbook.name, *(file.name for file in made.loggers)}
+    for file in clocks:
+        if file not in known:
+            expected = f"a file of the test: {', '.join(sorted(known))}"
+            return problem("folder-inputs", Place(MANIFEST), f"[[clock]]: file = {file!r}", expected=expected)
+    return replace(made, clocks=clocks)
+
+
+def _found(folder: Path, place: Place) -> _Inputs | Problem:
+    """The files of a folder by what they hold."""
+    files = sorted(f for f in folder.iterdir() if f.is_file() and not f.name.startswith(("~$", ".")))
     mappings = tuple(f for f in files if f.name.endswith(ENDING))
     fixed = [f for f in files if f.suffix.lower() in (".json", ".xlsx", ".xlsm") and _is_record(f)]
     if len(fixed) != 1:
@@ -157,9 +222,10 @@ def _listed(folder: Path, data: dict[str, Any]) -> _Inputs | Problem:
     """The files that the list of the folder names."""
     place = Place(MANIFEST)
     names = {"workbook": [data.get("workbook")], "readings": data.get("readings", []), "mappings": data.get("mappings")}
-    unknown = sorted(set(data) - set(names))
+    unknown = sorted(set(data) - set(names) - {"clock"})
     if unknown:
-        return problem("folder-inputs", place, f"the entry {unknown[0]!r}", expected="workbook, readings, mappings")
+        expected = "workbook, readings, mappings, [[clock]]"
+        return problem("folder-inputs", place, f"the entry {unknown[0]!r}", expected=expected)
     if names["mappings"] is None:
         names["mappings"] = sorted(f.name for f in folder.iterdir() if f.name.endswith(ENDING))
     found: dict[str, list[Path]] = {}

@@ -81,6 +81,10 @@ class Averages:
     row: Ticks
     too_long: int
 
+    def at(self, where: Ticks) -> Averages:
+        """The same at some of the intervals."""
+        return Averages(self.value[where], self.kind[where], self.coverage[where], self.row[where], self.too_long)
+
     @property
     def short(self) -> int:
         """How many intervals have readings and too little coverage for a number."""

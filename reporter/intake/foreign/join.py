@@ -3,21 +3,33 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass, replace
 from typing import Any
 
 from reporter.intake.foreign.apply import ForeignReadings
+from reporter.intake.foreign.common import RULE, File, length, needed_step, on_common_intervals
+from reporter.intake.foreign.lags import lags_between_files
 from reporter.intake.foreign.mapping import AS_ENTERED, MappedColumn
-from reporter.intake.foreign.merge import merged
+from reporter.intake.foreign.merge import Clash, merged
 from reporter.intake.foreign.times import zone_of
 from reporter.intake.rows import Filled
 from reporter.intake.sheets import fold
+from reporter.logged import LoggedRows
 from reporter.problems import Place, Problem, problem
 from reporter.record import Given, Readings
+from reporter.units import convert, read_unit
 
 
-def join(
-    files: Sequence[ForeignReadings], channels: Sequence[Filled], test: dict[str, Any]
-) -> tuple[Readings | None, list[Problem]]:
+@dataclass(frozen=True, slots=True)
+class Joined:
+    """The series of all files (None without a file), the problems found, what was done to the readings in words."""
+
+    readings: Readings | None
+    problems: list[Problem]
+    done: tuple[str, ...] = ()
+
+
+def join(files: Sequence[ForeignReadings], channels: Sequence[Filled], test: dict[str, Any]) -> Joined:
     """One series of all files, in time order.
 
     Parameters
@@ -27,32 +39,85 @@ def join(
     channels
         The rows of the sheet Channels; what they and a mapping say differently is a problem.
     test
-        The items of the sheet Test; the stamp of the mappings is added where the sheet names none.
+        The items of the sheet Test; stamp and interval of the files are added where the sheet names none.
 
     Returns
     -------
-    Readings or None, and the problems found.
+    Joined
+        Files of different intervals, or whose stamps do not fall together, are averaged to one (`common`).
     """
     problems: list[Problem] = []
     names = [channel.text("channel") for channel in channels]
     if not files:
-        return None, problems
+        return Joined(None, problems)
     taken = [_match(found, channels, problems) for found in files]
     for name in names:
         if not any(name in own.values() for own in taken):
             words = f"no column for the channel {name!r}"
             problems.append(problem("mapping-against-channels", files[0].readings.place, words))
     _stamps(files, test, problems)
-    rows, clashes = merged([(found.readings, own) for found, own in zip(files, taken, strict=True)], names)
-    for number, clash in clashes.items():
-        words = f"{clash.count} readings, the first at {clash.first:%Y-%m-%d %H:%M:%S}"
-        problems.append(problem("readings-contradict", Place(files[number].report.file), words))
+    parts = [
+        File(found.report.file, found.readings, own, _at_start(found, test))
+        for found, own in zip(files, taken, strict=True)
+    ]
+    problems += [problem("loggers-differ", Place(file), words) for file, words in lags_between_files(parts)]
+    step = needed_step(parts, _entered_interval(test)) if all(len(part.readings.times) for part in parts) else None
+    if step is not None:
+        return _averaged(files, parts, names, step=step, test=test, problems=problems)
+    rows, clashes = merged([(part.readings, part.own) for part in parts], names)
+    problems += [_contradiction_of(parts[number], clash) for number, clash in clashes.items()]
+    return Joined(_named(files, parts, names, rows), problems)
+
+
+def _averaged(
+    files: Sequence[ForeignReadings],
+    parts: Sequence[File],
+    names: Sequence[str],
+    *,
+    step: float,
+    test: dict[str, Any],
+    problems: list[Problem],
+) -> Joined:
+    """The series on intervals of one length; stamps and interval of the sheet Test are those of the result."""
+    place = Place(", ".join(part.name for part in parts))
+    at_start = all(part.at_start for part in parts)
+    made = on_common_intervals(parts, names, step, at_start=at_start)
+    problems += [problem("interval-blank", Place(file), words) for file, words in made.blank]
+    problems += [_contradiction_of(parts[number], clash) for number, clash in made.clashes.items()]
+    stamp = "interval start" if at_start else "interval end"
+    test["reading_stamp"] = Given(stamp, place, stamp)
+    test.setdefault("logging_interval", Given(step, place, length(step), read_unit("s")))
+    readings = replace(_named(files, parts, names, made.rows), made=f"means over {length(step)}")
+    return Joined(readings, problems, (*made.words, f"averages over {length(step)}: {RULE}"))
+
+
+def _named(files: Sequence[ForeignReadings], parts: Sequence[File], names: Sequence[str], rows: LoggedRows) -> Readings:
+    """Rows with the letters of their columns and the files they came from."""
     letters: dict[str, str] = {}
-    for found, own in zip(files, taken, strict=True):
-        letters |= {name: found.readings.columns[i] for i, name in own.items() if found.readings.columns}
-    file = ", ".join(found.report.file for found in files)
-    place = Place(file, files[0].readings.place.sheet)
-    return Readings(tuple(names), tuple(letters.get(name, "") for name in names), rows, place), problems
+    for part in parts:
+        letters |= {name: part.readings.columns[i] for i, name in part.own.items() if part.readings.columns}
+    place = Place(", ".join(part.name for part in parts), files[0].readings.place.sheet)
+    return Readings(tuple(names), tuple(letters.get(name, "") for name in names), rows, place)
+
+
+def _contradiction_of(part: File, clash: Clash) -> Problem:
+    words = f"{clash.count} readings, the first at {clash.first:%Y-%m-%d %H:%M:%S}"
+    return problem("readings-contradict", Place(part.name), words)
+
+
+def _at_start(found: ForeignReadings, test: dict[str, Any]) -> bool:
+    """Whether the stamps of a file name the start of their intervals."""
+    own = found.time.stamp
+    if own in ("", AS_ENTERED):
+        entered = test.get("reading_stamp")
+        own = "" if entered is None else entered.value
+    return bool(own == "interval start")
+
+
+def _entered_interval(test: dict[str, Any]) -> float | None:
+    """The logging interval entered on the sheet Test [s]."""
+    given = test.get("logging_interval")
+    return None if given is None else convert(given.value, "min" if given.unit is None else given.unit.unit, "s")
 
 
 def _match(found: ForeignReadings, channels: Sequence[Filled], problems: list[Problem]) -> dict[int, str]:
@@ -93,14 +158,15 @@ def _contradiction(column: MappedColumn, channel: Filled) -> str:
 
 
 def _stamps(files: Sequence[ForeignReadings], test: dict[str, Any], problems: list[Problem]) -> None:
-    """Hold stamps and zones of the mappings against the sheet Test."""
+    """Hold stamps and zones of the mappings against the sheet Test; files may differ where the sheet names no stamp."""
     entered = test.get("reading_stamp")
+    on_sheet = entered is not None
     for found in files:
         place = Place(found.report.file)
         if found.time.stamp not in ("", AS_ENTERED):
             if entered is None:
                 entered = test["reading_stamp"] = Given(found.time.stamp, place, found.time.stamp)
-            elif entered.value != found.time.stamp:
+            elif on_sheet and entered.value != found.time.stamp:
                 words = f"{found.time.stamp} in the mapping, {entered.value} on the sheet Test"
                 problems.append(problem("mapping-against-channels", place, words))
         zone = test.get("time_zone")

@@ -13,8 +13,9 @@ from reporter.intake.foreign.grid import Grid, letters, read_grid
 from reporter.intake.foreign.mapping import MappedColumn, Mapping
 from reporter.intake.foreign.model import Desk, Option, Question
 from reporter.intake.foreign.numbers import NumberStyle, style_of
+from reporter.intake.foreign.process import is_plant_log, process_columns
 from reporter.intake.foreign.sort import sort_rows
-from reporter.intake.foreign.tables import Table, find_tables, is_timelike, timed_rows
+from reporter.intake.foreign.tables import Table, at, find_tables, is_timelike, timed_rows
 from reporter.intake.foreign.timebase import TimeBase, time_base, time_columns
 from reporter.intake.foreign.times import TimeStyle
 from reporter.intake.foreign.wording import words_of
@@ -137,6 +138,11 @@ def _mapping(grid: Grid, tables: Sequence[Table], hidden: str, desk: Desk) -> Ma
     base = time_base(grid, tables, desk)
     if base is None:
         return None
+    of_plant = is_plant_log(table, desk)
+    if of_plant is None:
+        return None
+    if of_plant:
+        return _of_plant(grid, tables, base, hidden=hidden, desk=desk)
     rows, columns = _data_rows(tables, base), []
     reader = Columns(grid, table, rows[0], desk)
     lanes, ignored = reader.lanes(base.columns)
@@ -160,6 +166,18 @@ def _mapping(grid: Grid, tables: Sequence[Table], hidden: str, desk: Desk) -> Ma
             desk.say(f"column {letters(column)} ({header!r}): left out, {ignored.get(column, '') or 'asked about'}")
     style = TimeStyle(base.order, base.stamp, base.zone, base.day)
     return Mapping(Path(grid.source.name).stem, grid.kind, tuple(columns), style, numbers, words, hidden)
+
+
+def _of_plant(grid: Grid, tables: Sequence[Table], base: TimeBase, *, hidden: str, desk: Desk) -> Mapping:
+    """The mapping of a plant's own log."""
+    table, rows = tables[0], _data_rows(tables, base)
+    _say_rows(rows, desk)
+    columns = process_columns(grid, tables, base.columns, desk)
+    own = [column for column, mapped in zip(table.columns, columns, strict=True) if mapped.use == "process"]
+    texts = [c for row in rows[0] for column in own if isinstance(c := at(table.page.rows[row], column), str)]
+    numbers = style_of(texts, (), desk)
+    style = TimeStyle(base.order, base.stamp, base.zone, base.day)
+    return Mapping(Path(grid.source.name).stem, grid.kind, columns, style, numbers, (), hidden)
 
 
 def _data_rows(tables: Sequence[Table], base: TimeBase) -> list[list[int]]:

@@ -29,12 +29,15 @@ AS_ENTERED = "as the field workbook says"
 _STAMPS = ("interval start", "interval end", AS_ENTERED)
 _ORDERS = ("year first", "day first", "month first", "serial 1900", "serial 1904")
 _BASES = ("dry", "wet", AS_ENTERED)
-_USES = ("time", "reading", "ignore")
+_USES = ("time", "reading", "process", "ignore")
 
 
 @dataclass(frozen=True, slots=True)
 class MappedColumn:
-    """One column: its header, its use (``time``, ``reading``, ``ignore``), and for a reading what it is."""
+    """One column: its header, its use (``time``, ``reading``, ``process``, ``ignore``), and what it is.
+
+    `channel` is the name of a channel, or of a column of the sheet Process; gas and basis are those of a reading.
+    """
 
     header: str
     use: str
@@ -71,6 +74,10 @@ class Mapping:
     def fingerprint(self) -> str:
         """Twelve characters that stand for the shape: kind of file and headers in their order."""
         return hashlib.sha256("\x1f".join((self.kind, *self.signature)).encode()).hexdigest()[:12]
+
+    def has(self, use: str) -> bool:
+        """Whether a column has this use."""
+        return any(column.use == use for column in self.columns)
 
     def fits(self, table: Table) -> bool:
         """Whether a table has the headers of this mapping, in their order."""
@@ -151,9 +158,9 @@ def parse(data: dict[str, Any]) -> Mapping:
     if style.zone:
         zone_of(style.zone)
     columns = tuple(_column(row) for row in data["column"])
-    channels = [column.channel for column in columns if column.use == "reading"]
-    if not channels or len(set(channels)) != len(channels):
-        raise ValueError("column: no reading, or two readings of one channel")
+    names = [(column.use, column.channel) for column in columns if column.use in ("reading", "process")]
+    if not names or len(set(names)) != len(names):
+        raise ValueError("column: no reading and no process column, or two of one name")
     if sum(1 for column in columns if column.use == "time") not in (1, 2):
         raise ValueError("column: one or two columns of use 'time'")
     return Mapping(
@@ -175,11 +182,14 @@ def _column(row: dict[str, Any]) -> MappedColumn:
     column = MappedColumn(
         row["header"], use, *(str(row.get(k, "")) for k in ("channel", "gas", "unit", "basis", "why"))
     )
+    if use == "process" and not column.channel:
+        raise ValueError("channel")
     if use == "reading":
         _one_of("gas", column.gas, [gas.key for gas in all_gases()])
         _one_of("basis", column.basis, _BASES)
         if not column.channel:
             raise ValueError("channel")
+    if use == "reading" or (use == "process" and column.unit):
         try:
             if read_unit(column.unit).unit != column.unit:
                 raise ValueError(f"unit: {column.unit!r}")

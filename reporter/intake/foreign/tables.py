@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from datetime import date, datetime, time, timedelta
 
 from reporter.intake.foreign.grid import Grid, Page, filled_rows
+from reporter.intake.foreign.process_words import process_in
 from reporter.intake.foreign.words import gases_in, time_part, units_in
 from reporter.intake.table import Raw, clean, show
 
@@ -84,16 +85,17 @@ def at(row: Sequence[Raw], column: int) -> Raw:
 
 
 def find_tables(grid: Grid) -> tuple[Table, ...]:
-    """Every table of readings: a header that names a gas, and rows below it."""
-    return tuple(table for page in grid.pages for table in _of_page(page))
+    """Every table of readings: a header that names a gas, and rows below it; of a plant's log where there is none."""
+    found = tuple(table for page in grid.pages for table in _of_page(page, _is_header))
+    return found or tuple(table for page in grid.pages for table in _of_page(page, _is_process_header))
 
 
-def _of_page(page: Page) -> list[Table]:
+def _of_page(page: Page, is_header: Callable[[Sequence[str]], bool]) -> list[Table]:
     filled = list(filled_rows(page))
     blocks: list[tuple[int, ...]] = []
     taken: set[int] = set()
     for row in filled:
-        if row not in taken and page.wordy(row) and _perhaps_header(page.rows[row]) and _is_header(_texts(page, row)):
+        if row not in taken and page.wordy(row) and _perhaps_header(page.rows[row]) and is_header(_texts(page, row)):
             block = _block(page, row)
             taken.update(block)
             blocks.append(block)
@@ -135,6 +137,13 @@ def _is_header(texts: Sequence[str]) -> bool:
     gases = [text for text in short if gases_in(text)]
     times = [text for text in short if time_part(text)]
     return len(set(gases)) + len(times) >= 2 and bool(gases) and len(short) >= 2
+
+
+def _is_process_header(texts: Sequence[str]) -> bool:
+    """Whether a row names a time and, in another cell, a quantity of the plant's."""
+    short = [text for text in texts if text and len(text) <= 80 and not _TIMELIKE.search(text)]
+    times = [text for text in short if time_part(text)]
+    return bool(times) and any(process_in(text) for text in short if text not in times)
 
 
 def _block(page: Page, row: int) -> tuple[int, ...]:

@@ -26,6 +26,8 @@ def inputs(desk: Desk, *, minute_data: bool) -> tuple[Block, ...]:
     name = "inputs_minutes" if minute_data else "inputs"
     lead = desk.words(f"lead.{name}", calibrations=desk.section_number("calibrations"))
     blocks = [Block(text=(lead,))]
+    if prepared := desk.outcome.record.prepared:
+        blocks.append(Block(title=desk.words("lead.prepared"), lines=prepared))
     for sheet in desk.outcome.record.sheets:
         if sheet.sheet not in _ELSEWHERE and sheet.rows:
             blocks.append(_sheet(sheet))
