@@ -180,6 +180,8 @@ def test_clock_shift_the_log_of_the_calibrations_and_the_fuel_factor_show_it() -
         "fuel-factor-out-of-range",
         "clock-differs",
         "calibration-gas-in-run",
+        "gas-in-run",
+        "spike-reading",
     }
     assert hints(outcome) == {*every("off_the_line"), ("", "shared")}
     assert _states(Fault.CLOCK_SHIFT) == [RunState.VALID] * 3
