@@ -145,11 +145,6 @@ def findings(
     return (*found, *_negative_readings(state))
 
 
-def reach(state: State, key: str, spreads: Mapping[str, float]) -> float:
-    """How far an entry moves with half ranges of a composition by ledger key, all in its direction [its unit]."""
-    return _Probe(state).reach_of(key, spreads)
-
-
 def _impossible(
     probe: _Probe, key: str, species: str, uncertainties: Mapping[str, float], spreads: Mapping[str, float]
 ) -> BalanceFinding | None:
