@@ -86,13 +86,15 @@ def _report_parser(command: argparse.ArgumentParser) -> None:
 
 
 _PROFILES = ("steady", "ramp", "swing")
+_GASES = "NOx,CO,O2,CO2"
 _FAULTS = ("air-leak", "drifting-analyzer", "wrong-cylinder", "wet-called-dry", "wrong-fuel", "clock-shift")
 
 
 def _rehearse_parser(command: argparse.ArgumentParser) -> None:
-    command.add_argument("file", type=_path, metavar="OUT.xlsx", help="where to write the field workbook")
+    command.add_argument("file", type=_path, metavar="OUT", help="the field workbook to write; with --shape the folder")
     command.add_argument("--fuel", default="natural gas", help="a published fuel name or a composition (%(default)s)")
-    command.add_argument("--gases", default="NOx,CO,O2,CO2", help="of NOx, CO, SO2, O2, CO2, by comma (%(default)s)")
+    command.add_argument("--gases", help="of NOx, CO, SO2, O2, CO2, by comma (NOx,CO,O2,CO2; with --shape its own)")
+    command.add_argument("--shape", type=_path, metavar="MAPPING", help="write a folder in the shape of this mapping")
     command.add_argument("--runs", type=int, default=3, help="number of runs (%(default)s)")
     command.add_argument("--run-minutes", type=int, default=60, metavar="MIN", help="length of a run (%(default)s)")
     command.add_argument("--units", choices=("US", "SI"), default="US", help="unit system (%(default)s)")
@@ -245,10 +247,13 @@ def _rehearse(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
     from reporter.errors import FluebookError, OutputError
     from reporter.rehearse import Fault, Order, Profile, write_rehearsal
 
+    if given.shape is not None and given.gases is not None:
+        print("fluebook: with --shape the gases are those of the mapping; leave --gases out", file=err)
+        return USAGE
     try:
         order = Order(
             fuel=given.fuel,
-            gases=tuple(name.strip() for name in given.gases.split(",") if name.strip()),
+            gases=tuple(name.strip() for name in (given.gases or _GASES).split(",") if name.strip()),
             runs=given.runs,
             run_minutes=given.run_minutes,
             system=System(given.units),
@@ -258,7 +263,7 @@ def _rehearse(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:
             fault=None if given.fault is None else Fault(given.fault),
             seed=given.seed,
         )
-        write_rehearsal(order, given.file, given.truth)
+        write_rehearsal(order, given.file, given.truth, shape=given.shape)
     except OutputError as error:
         print(f"fluebook: {error}", file=err)
         return UNWRITTEN

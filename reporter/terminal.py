@@ -14,6 +14,7 @@ from reporter.gases import gas
 from reporter.ledger import Entry
 from reporter.outcome import Comparison, GasResult, Outcome, RunResult, RunState
 from reporter.output.applied import Applied, applied
+from reporter.output.finding_words import finding_words
 from reporter.output.numbers import capital, day, moment, runs_text, shortest, shown, unit_text
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.quantities import quantity_of
@@ -259,7 +260,8 @@ def _number(entry: Entry) -> str:
 
 def _findings(outcome: Outcome) -> list[str]:
     """Findings in words, those of several runs once."""
-    names: dict[str, list[str]] = {}
-    for finding in outcome.findings:
-        names.setdefault(finding.words, []).append(outcome.run(finding.run).run.run.value if finding.run else "")
-    return [paragraph(f"{capital(runs_text(some))}: {words}" if all(some) else words) for words, some in names.items()]
+    lines = []
+    for keys, words in finding_words(outcome.findings, load_phrases()):
+        names = [outcome.run(key).run.run.value for key in keys]
+        lines.append(paragraph(f"{capital(runs_text(names))}: {words}" if names else words))
+    return lines

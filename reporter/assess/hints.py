@@ -11,9 +11,7 @@ from collections.abc import Iterable, Sequence
 
 from reporter.combustion.agreement import air_by_moisture, air_by_routes
 from reporter.combustion.bare import balance
-from reporter.combustion.findings import reach
-from reporter.combustion.fuel import nominal_fuel, nominal_names
-from reporter.combustion.fuel_entries import spreads
+from reporter.combustion.fuel import nominal_fuel, nominal_names, nominal_reach
 from reporter.ledger import Entry, slug
 from reporter.methods.method_3b import fuels_holding
 from reporter.outcome import Finding
@@ -30,13 +28,14 @@ _ROUTES = ("by_flow", "by_heat_input")
 
 def give_hints(book: Book, abouts: Sequence[RunBook]) -> None:
     """Say what the readings of each run look like, and what those of all runs have in common."""
+    differences = [entry for entry in book.ledger if entry.key.endswith(".route_difference")]
     explained = False
     for about in abouts:
         dioxide = _get(book, about, "co2_met")
         if dioxide is not None and dioxide.value != 1.0:
             _off_the_line(book, about)
             explained |= _wet(book, about) or _other_fuel(book, about)
-        elif not _diluted(book, about):
+        elif not _diluted(book, about, differences):
             _moist(book, about)
     _shared(book, abouts, explained=explained)
 
@@ -132,10 +131,10 @@ def _water_of(book: Book, about: RunBook, name: str) -> Entry | None:
     oxygen, measured = about.dry.get("o2"), about.moisture
     if name not in nominal_names() or oxygen is None or measured is None:
         return None
-    fuel = nominal_fuel(name)
-    state = balance(fuel, {"o2": oxygen.value} | ({} if air is None else {"air_moisture": air.value}))
-    expected = state.entry("moisture_expected")
-    wide = agreement_table()["moisture"]["tolerance"] + reach(state, expected.key, spreads(fuel, state.fuel_prefix))
+    readings = {"o2": oxygen.value} | ({} if air is None else {"air_moisture": air.value})
+    expected = balance(nominal_fuel(name), readings).entry("moisture_expected")
+    reach = nominal_reach(name)[1] / 100 * expected.value * (1 - expected.value)
+    wide = agreement_table()["moisture"]["tolerance"] + reach
     if abs(measured.value - expected.value) > wide:
         return None
     reason = f"combustion of {name} of nominal composition at the oxygen measured"
@@ -145,9 +144,9 @@ def _water_of(book: Book, about: RunBook, name: str) -> Entry | None:
 # ---- one run, on the line ------------------------------------------------------------------------------------
 
 
-def _diluted(book: Book, about: RunBook) -> bool:
+def _diluted(book: Book, about: RunBook, differences: Sequence[Entry]) -> bool:
     """Ambient air in the sample: rates by flow below those by heat input, perhaps with moisture above the expected."""
-    routes = _by_routes(book, about)
+    routes = _by_routes(book, about, differences)
     if routes is None or not about.measured.keys() & {"o2", "co2"}:
         return False
     keys, values = [routes.key], {"routes": f"{routes.value:.0f}"}
@@ -161,19 +160,18 @@ def _diluted(book: Book, about: RunBook) -> bool:
     return True
 
 
-def _by_routes(book: Book, about: RunBook) -> Entry | None:
+def _by_routes(book: Book, about: RunBook, differences: Sequence[Entry]) -> Entry | None:
     """Share of air that explains the routes; None where they agree, or the rate by flow is the higher one."""
     apart = agreement_table()["routes"]["apart"]
-    for segment in about.measured:
-        for difference in book.ledger.under(about.key(f"{segment}.mass_rate")):
-            stated, _, last = difference.key.rpartition(".")
-            if last != "route_difference" or abs(difference.value) <= apart:
-                continue
-            flow, heat = (book.ledger.get(f"{stated}.{name}") or book.ledger[stated] for name in _ROUTES)
-            name = stem(about, f"air_by_routes.{segment}")
-            share = book.apply(air_by_routes, name, {"by_flow": flow, "by_heat": heat})
-            if share.value > 0:
-                return share
+    for difference in differences:
+        stated = difference.key.rpartition(".")[0]
+        if not stated.startswith(about.key("")) or ".mass_rate" not in stated or abs(difference.value) <= apart:
+            continue
+        flow, heat = (book.ledger.get(f"{stated}.{name}") or book.ledger[stated] for name in _ROUTES)
+        name = stem(about, f"air_by_routes.{stated.split('.')[2]}")
+        share = book.apply(air_by_routes, name, {"by_flow": flow, "by_heat": heat})
+        if share.value > 0:
+            return share
     return None
 
 

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from reporter.combustion.air import AMOUNT, BALANCE
 from reporter.equation import Citation, Value, constant, equation
+from reporter.functions import dot
 
 _PROPAGATED = Citation("gum", "5.1.2", "Eq. 10; coverage factor 2")
 _ALLOWED = Citation("gum", "4.3.7", "rectangular distribution")
@@ -91,6 +92,66 @@ def agreement_bound(*, u_co2: Value, u_o2: Value, slope: Value, spread: Value) -
         Bound [%].
     """
     return 2 * (u_co2**2 + (slope * u_o2) ** 2) ** 0.5 + spread
+
+
+@equation(
+    "r",
+    "%",
+    {"expected": "%", "shares": "1", "reaches": "%"},
+    BALANCE,
+    symbols={"expected": "CO2_exp", "shares": "X_k", "reaches": "ρ_k"},
+    series=("shares", "reaches"),
+)
+def co2_spread(*, expected: Value, shares: Value, reaches: Value, hundred: Value = constant(100.0, "%")) -> Value:
+    """How far assumed compositions reach in the expected CO2; of fuels burned together each by its share.
+
+    Parameters
+    ----------
+    expected
+        Dry CO2 expected [%].
+    shares
+        Share of the heat input of each assumed fuel [1], a series.
+    reaches
+        Reach of each in its highest CO2 [% of it], a series.
+    hundred
+        The 100 of a percentage [%].
+
+    Returns
+    -------
+    float
+        Reach [% CO2].
+    """
+    return expected * dot(shares, reaches) / hundred
+
+
+@equation(
+    "r",
+    "1",
+    {"expected": "1", "shares": "1", "reaches": "%"},
+    BALANCE,
+    symbols={"expected": "B_exp", "shares": "X_k", "reaches": "ρ_k"},
+    series=("shares", "reaches"),
+)
+def moisture_spread(*, expected: Value, shares: Value, reaches: Value, hundred: Value = constant(100.0, "%")) -> Value:
+    """How far assumed compositions reach in the expected moisture; of fuels burned together each by its share.
+
+    Parameters
+    ----------
+    expected
+        Moisture expected [1].
+    shares
+        Share of the heat input of each assumed fuel [1], a series.
+    reaches
+        Reach of each in its water for each dry flue gas [% of it], a series.
+    hundred
+        The 100 of a percentage [%].
+
+    Returns
+    -------
+    float
+        Reach [1].
+    """
+    return expected * (1 - expected) * dot(shares, reaches) / hundred
 
 
 @equation("C_d", "*c", {"value": "*c", "moisture": "1"}, BALANCE, symbols={"value": "C", "moisture": "B_ws"})

@@ -34,6 +34,7 @@ SPECIES = {
 _TINY = 1e-9
 _STEP = 1e-5
 _ROUNDS = 12
+_FAR = 10.0
 
 
 class FindingKind(Enum):
@@ -144,11 +145,6 @@ def findings(
     return (*found, *_negative_readings(state))
 
 
-def reach(state: State, key: str, spreads: Mapping[str, float]) -> float:
-    """How far an entry moves with half ranges of a composition by ledger key, all in its direction [its unit]."""
-    return _Probe(state).reach_of(key, spreads)
-
-
 def _impossible(
     probe: _Probe, key: str, species: str, uncertainties: Mapping[str, float], spreads: Mapping[str, float]
 ) -> BalanceFinding | None:
@@ -226,7 +222,10 @@ class _Probe:
             return math.inf
 
     def suspects(self, key: str) -> list[Suspect]:
-        """The readings each of which alone could bring an amount to zero, the smallest relative change first."""
+        """The readings each of which alone could bring an amount to zero, the smallest relative change first.
+
+        A reading that would have to be many times what it is explains nothing while a nearer one does.
+        """
         found: list[Suspect] = []
         for reading in self.state.readings:
             if not self.reaches(key, reading):
@@ -235,7 +234,8 @@ class _Probe:
             entry = self.state.ledger[reading]
             if needed is not None:
                 found.append(Suspect(reading, _label(entry), float(entry.value), needed, entry.unit))
-        return sorted(found, key=lambda suspect: abs(suspect.change) / _scale(suspect.unit))
+        near = [one for one in found if abs(one.needed) <= _FAR * max(abs(one.value), _scale(one.unit))]
+        return sorted(near or found, key=lambda suspect: abs(suspect.change) / _scale(suspect.unit))
 
     def _root(self, key: str, reading: str) -> float | None:
         """The value of a reading that brings an amount to zero: the linear step, then refined; None if none."""

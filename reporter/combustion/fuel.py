@@ -219,6 +219,18 @@ def nominal_fuel(name: str) -> Fuel:
     )
 
 
+def nominal_reach(name: str) -> tuple[float, float]:
+    """How far the spread of a published fuel reaches in its highest CO2, and in its water for each dry gas [%].
+
+    Examples
+    --------
+    >>> nominal_reach("natural gas")
+    (1.473, 1.316)
+    """
+    row = _nominal()[" ".join(name.lower().split())]["reach"]
+    return row["co2"], row["water"]
+
+
 def _check_range(name: str, shares: tuple[Share, ...]) -> None:
     for share in shares:
         if not 0.0 <= share.percent <= 100.0:

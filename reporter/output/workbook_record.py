@@ -11,7 +11,8 @@ from importlib.metadata import version as installed
 
 from reporter.ledger import Ledger
 from reporter.outcome import Check, Outcome
-from reporter.output.numbers import shortest, unit_text
+from reporter.output.finding_words import finding_words
+from reporter.output.numbers import capital, runs_text, shortest, unit_text
 from reporter.output.phrases import Phrases
 from reporter.output.workbook_book import Column, Sheet
 from reporter.output.workbook_home import number_format
@@ -128,8 +129,10 @@ def write_problems(sheet: Sheet, outcome: Outcome, phrases: Phrases) -> None:
     sheet.rules(first, len(table))
     _lines(sheet, said["prepared"], outcome.record.prepared, len(table))
     _lines(sheet, said["stated"], outcome.stated, len(table))
-    names = {run.key: said["finding_run"].format(run=run.run.run.value) for run in outcome.runs}
-    findings = [f"{names.get(finding.run, '')}{finding.words}" for finding in outcome.findings]
+    findings = []
+    for keys, text in finding_words(outcome.findings, phrases):
+        runs = capital(runs_text([outcome.run(key).run.run.value for key in keys]))
+        findings.append(f"{said['finding_runs'].format(runs=runs)}{text}" if keys else text)
     _lines(sheet, said["findings"], findings, len(table))
 
 

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 import tomllib
 from collections.abc import Mapping
 from functools import cache
@@ -13,29 +12,33 @@ from reporter.combustion.agreement import (
     agreement_bound,
     as_if_wet,
     co2_on_line,
+    co2_spread,
     line_slope,
     moisture_at_oxygen,
     moisture_highest,
     moisture_lowest,
+    moisture_spread,
     o2_on_line,
     scale_to_line,
     uncertainty_allowed,
 )
 from reporter.combustion.air import air_model, enter_air
-from reporter.combustion.findings import reach
+from reporter.combustion.fuel import nominal_reach
 from reporter.combustion.state import State
 from reporter.equation import Citation
-from reporter.ledger import Entry
+from reporter.ledger import Entry, Given
 from reporter.methods.criteria import all_met, at_or_above, at_or_below, criteria, reading_difference, share_within
 from reporter.outcome import Check
 from reporter.record import text_of
 from reporter.reduction.bases import RunBook
 from reporter.reduction.book import Book
 from reporter.reduction.calibration import method_of
+from reporter.reduction.composition import composition_key
 from reporter.reduction.uncertainty import reading_uncertainty
 from reporter.resources import table_text
 
 _GUM = Citation("gum", "5.1.2")
+_TYPICAL = Citation("practice", "", "typical composition")
 _WATER = Citation("practice", "", "within 1 percent H2O, as Method 4 asks of an estimate")
 _ALLOWED = (
     "Where oxygen and CO2 are held against the line of the fuel, the calibration error that the method accepts is part "
@@ -55,29 +58,26 @@ def stem(about: RunBook, name: str) -> str:
     return about.key(f"combustion.agreement.{name}")
 
 
-def judge_agreement(book: Book, about: RunBook, state: State, spreads: Mapping[str, float]) -> None:
+def judge_agreement(book: Book, about: RunBook, state: State, assumed: Mapping[str, Entry]) -> None:
     """Enter the criteria of a run: CO2 on the line of the fuel, moisture near the water of combustion.
 
-    `spreads` holds the half ranges of assumed compositions by ledger key.
+    `assumed` holds the shares of heat input of the fuels whose composition is assumed, by name.
     """
     if state.by == "o2":
-        _carbon_dioxide(book, about, state, spreads)
-    _water(book, about, state, spreads)
+        _carbon_dioxide(book, about, state, assumed)
+    _water(book, about, state, assumed)
 
 
 # ---- carbon dioxide ------------------------------------------------------------------------------------------
 
 
-def _carbon_dioxide(book: Book, about: RunBook, state: State, spreads: Mapping[str, float]) -> None:
+def _carbon_dioxide(book: Book, about: RunBook, state: State, assumed: Mapping[str, Entry]) -> None:
     difference = book.ledger.get(about.key("combustion.co2_difference"))
     oxygen, dioxide = about.dry.get("o2"), about.dry.get("co2")
     if difference is None or oxygen is None or dioxide is None:
         return
     doubts = {name: _uncertainty(book, about, name) for name in ("o2", "co2")}
     if doubts["o2"] is None or doubts["co2"] is None:
-        return
-    spread = _spread(book, about, state, "co2", spreads)
-    if spread is None:
         return
     air = enter_air(book.ledger, air_model("physical")).oxygen
     line = {"expected": state.entry("co2_expected"), "o2": oxygen, "air_oxygen": air}
@@ -86,7 +86,7 @@ def _carbon_dioxide(book: Book, about: RunBook, state: State, spreads: Mapping[s
         "u_co2": doubts["co2"],
         "u_o2": doubts["o2"],
         "slope": slope,
-        "spread": spread,
+        "spread": _spread(book, about, state, "co2", assumed),
     }
     bound = book.apply(agreement_bound, stem(about, "co2_bound"), inputs)
     met = book.apply(share_within, stem(about, "co2_met"), {"value": difference, "bound": bound})
@@ -126,17 +126,18 @@ def _uncertainty(book: Book, about: RunBook, segment: str) -> Entry | None:
     return book.apply(as_if_wet, stem(about, f"{segment}_uncertainty.dry"), wet)
 
 
-def _spread(book: Book, about: RunBook, state: State, name: str, spreads: Mapping[str, float]) -> Entry | None:
-    """How far the assumed compositions reach in an expected value, each share at the end of its range.
-
-    None where the reach has no number, so that nothing is claimed.
-    """
+def _spread(book: Book, about: RunBook, state: State, name: str, assumed: Mapping[str, Entry]) -> Entry:
+    """How far the assumed compositions reach in an expected value, each share at the end of its range."""
     key, expected = stem(about, f"{name}_spread"), state.entry(f"{name}_expected")
-    if not spreads:
+    if not assumed:
         return book.state(key, 0.0, expected.unit, "no composition is assumed")
-    reason = "reach of the assumed composition: slope by each share times half of its range, summed"
-    far = reach(state, expected.key, spreads)
-    return book.state(key, far, expected.unit, reason) if math.isfinite(far) else None
+    eq, number = (co2_spread, 0) if name == "co2" else (moisture_spread, 1)
+    reaches = [
+        book.table(f"{composition_key(fuel)}.{name}_reach", nominal_reach(fuel)[number], "%", _TYPICAL, row=fuel)
+        for fuel in assumed
+    ]
+    inputs: dict[str, Given] = {"expected": expected, "shares": list(assumed.values()), "reaches": reaches}
+    return book.apply(eq, key, inputs)
 
 
 def _if_wet(book: Book, about: RunBook, point: Mapping[str, Entry], bound: Entry) -> None:
@@ -172,16 +173,13 @@ def _is_calculated(about: RunBook) -> bool:
     return text_of(about.run.moisture_source) == "fuel calculation"
 
 
-def _water(book: Book, about: RunBook, state: State, spreads: Mapping[str, float]) -> None:
+def _water(book: Book, about: RunBook, state: State, assumed: Mapping[str, Entry]) -> None:
     difference = book.ledger.get(about.key("combustion.moisture_difference"))
     if difference is None or about.moisture is None or _is_calculated(about):
         return
     rule = agreement_table()["moisture"]
     tolerance = book.table("criterion.moisture.tolerance", rule["tolerance"], "1", _WATER)
-    spread = _spread(book, about, state, "moisture", spreads)
-    if spread is None:
-        return
-    both = {"tolerance": tolerance, "spread": spread}
+    both = {"tolerance": tolerance, "spread": _spread(book, about, state, "moisture", assumed)}
     low = book.apply(moisture_lowest, stem(about, "moisture_lowest"), both)
     more = {
         "humidity": _uncounted(book, about),

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from reporter.combustion.air import air_model
 from reporter.combustion.findings import FindingKind, findings
+from reporter.combustion.fuel import Fuel
 from reporter.combustion.fuel_entries import spreads
 from reporter.combustion.run import balance_run
 from reporter.combustion.run_book import FlueGas
@@ -39,9 +40,9 @@ def balance(book: Book, about: RunBook, share: dict[str, Entry]) -> State | None
         book.say(f"Run {about.run.run.value}: no combustion balance; {error.message}.")
         return None
     _differences(book, about)
-    wide = _spreads(book, burned)
-    judge_agreement(book, about, state, wide)
-    _say(book, about, state, wide)
+    fuels = {row.fuel.value: fuel for row in burned if (fuel := fuel_of(book, row)) is not None and fuel.assumed}
+    judge_agreement(book, about, state, {name: share[name] for name in fuels})
+    _say(book, about, state, fuels)
     return state
 
 
@@ -108,17 +109,7 @@ def _differences(book: Book, about: RunBook) -> None:
             book.apply(reading_difference, about.key(f"combustion.{name}"), inputs)
 
 
-def _spreads(book: Book, burned: list[FuelRow]) -> dict[str, float]:
-    """Half ranges of the shares of every assumed composition that burned, by ledger key."""
-    wide: dict[str, float] = {}
-    for row in burned:
-        fuel = fuel_of(book, row)
-        if fuel is not None:
-            wide.update(spreads(fuel, composition_key(row.fuel.value)))
-    return wide
-
-
-def _say(book: Book, about: RunBook, state: State, wide: dict[str, float]) -> None:
+def _say(book: Book, about: RunBook, state: State, assumed: dict[str, Fuel]) -> None:
     ratio = book.ledger[about.key("combustion.equivalence_ratio")]
     if state.mixture:
         tell = ": tell the operator" if "rich" in state.mixture else ""
@@ -132,6 +123,9 @@ def _say(book: Book, about: RunBook, state: State, wide: dict[str, float]) -> No
             doubts[reading.key] = u.value
     if about.moisture is not None:
         doubts[about.moisture.key] = agreement_table()["moisture"]["tolerance"] / 2
+    wide: dict[str, float] = {}
+    for name, fuel in assumed.items():
+        wide |= spreads(fuel, composition_key(name))
     for found in findings(state, doubts, spreads=wide):
         if found.kind is FindingKind.IMPOSSIBLE:
             book.trouble("impossible-balance", about.run.place, f"run {about.run.run.value}: {found.text()}")

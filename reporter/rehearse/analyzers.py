@@ -148,7 +148,8 @@ class Logger:
         if not self.day.on_stack <= minute < self.day.off_stack:
             return air
         flue = self.stack.at(minute)
-        value = flue.wet(label) if self.order.has(Fault.WET_CALLED_DRY) else flue.dry[label]
+        is_wet = label in self.order.wet or self.order.has(Fault.WET_CALLED_DRY)
+        value = flue.wet(label) if is_wet else flue.dry[label]
         share = self._leak(minute)
         return value * (1 - share) + air * share
 

@@ -29,16 +29,7 @@ def written(tables: Mapping[str, Rows]) -> bytes:
 
     words, buffer = settings()["words"], BytesIO()
     book = xlsxwriter.Workbook(buffer, {"in_memory": True, "strings_to_formulas": False, "strings_to_urls": False})
-    book.set_properties(
-        {
-            "title": words["title"],
-            "subject": "SYNTHETIC",
-            "category": "SYNTHETIC",
-            "keywords": "synthetic, rehearsal",
-            "comments": words["comment"],
-            "created": CREATED,
-        }
-    )
+    book.set_properties(properties())
     formats = {name: book.add_format(look) for name, look in _FORMATS.items()}
     for spec in sheets():
         rows = tables.get(spec.name, [])
@@ -72,6 +63,25 @@ def _write(page: Any, heading: str, rows: list[Row], formats: Mapping[str, Any])
     page.set_landscape()
     page.fit_to_pages(1, 0)
     page.repeat_rows(_HEAD)
+    page_marks(page)
+
+
+def properties() -> dict[str, Any]:
+    """The properties of a workbook that say what it is."""
+    words = settings()["words"]
+    return {
+        "title": words["title"],
+        "subject": "SYNTHETIC",
+        "category": "SYNTHETIC",
+        "keywords": "synthetic, rehearsal",
+        "comments": words["comment"],
+        "created": CREATED,
+    }
+
+
+def page_marks(page: Any) -> None:
+    """Header and footer of a sheet that say what it is on each printed page."""
+    words = settings()["words"]
     page.set_header(f'&C&"{FONT},Bold"&11{words["title"]}')
     page.set_footer(f'&C&"{FONT},Bold"&11{words["comment"]}&R&P of &N')
 

@@ -58,7 +58,9 @@ class Order:
     """A rehearsal as ordered.
 
     `fuel` is a published name or a composition; `gases` are labels; `run_minutes` [min], `oxygen` [% dry],
-    `interval` [s].  The same order gives the same bytes.
+    `interval` [s].  `wet` are the labels of gases read on wet gas; `stamp` is ``interval start`` or ``interval end``,
+    `zone` what the sheet Test says of the clock: both are the shape's of a firm's logger.  The same order gives
+    the same bytes.
 
     Raises
     ------
@@ -76,6 +78,9 @@ class Order:
     interval: int = 60
     fault: Fault | None = None
     seed: int = 1
+    wet: tuple[str, ...] = ()
+    stamp: str = "interval start"
+    zone: str = "UTC"
 
     def __post_init__(self) -> None:
         heated(self.entered_fuel)
@@ -83,6 +88,8 @@ class Order:
             raise RecordError("a rehearsal needs O2 or CO2 among its gases")
         if all(gas.is_diluent for gas in self.measured):
             raise RecordError("a rehearsal needs a pollutant among its gases: NOx, CO or SO2")
+        if self.wet and self.has(Fault.WET_CALLED_DRY):
+            raise RecordError("channels that are called wet cannot be wet called dry")
         _within("the number of runs", self.runs, 1, MOST_RUNS)
         _within("the length of a run in minutes", self.run_minutes, SHORTEST_RUN, LONGEST_RUN)
         _within("the oxygen in percent", self.oxygen, *OXYGEN)

@@ -56,7 +56,7 @@ def moment(minutes: float) -> datetime:
     return datetime.combine(settings()["day"]["date"], time()) + timedelta(seconds=round(minutes * 60))
 
 
-def channels(made: tuple[Analyzer, ...]) -> Rows:
+def channels(order: Order, made: tuple[Analyzer, ...]) -> Rows:
     """The analyzers as the crew describes them."""
     kinds = settings()["analyzer"]["kind"]
     return [
@@ -64,7 +64,7 @@ def channels(made: tuple[Analyzer, ...]) -> Rows:
             "Channel": one.gas.label,
             "Gas": one.gas.label,
             "Unit": one.gas.unit,
-            "Moisture basis": "dry",
+            "Moisture basis": "wet" if one.gas.label in order.wet else "dry",
             "Calibration span": one.span,
             "Method": f"Method {one.gas.method}",
             "System": "extractive",
@@ -121,14 +121,15 @@ def calibrations(logger: Logger) -> Rows:
 
 
 def readings(logger: Logger) -> Rows:
-    """The logged series, stamped at the start of each interval by the clock of the logger."""
+    """The logged series, stamped at the start or the end of each interval by the clock of the logger."""
     order, day = logger.order, logger.day
+    late = order.interval / 60 if order.stamp == "interval end" else 0
     behind = settings()["fault"]["clock-shift"]["minutes"] if order.has(Fault.CLOCK_SHIFT) else 0
     series = {f"{one.gas.label} [{one.gas.unit}]": logger.series(one) for one in logger.analyzers}
     count = (day.end - day.start) * 60 // order.interval
     return [
         {
-            "Time": moment(day.start - behind + number * order.interval / 60),
+            "Time": moment(day.start - behind + late + number * order.interval / 60),
             **{name: values[number] for name, values in series.items()},
         }
         for number in range(count)

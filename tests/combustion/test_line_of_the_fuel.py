@@ -9,6 +9,9 @@ from __future__ import annotations
 import pytest
 
 from reporter.combustion import agreement as eq
+from reporter.combustion.bare import balance
+from reporter.combustion.fuel import nominal_fuel, nominal_names, nominal_reach
+from reporter.combustion.fuel_entries import spreads
 from reporter.equation import System
 
 X = 0.2095
@@ -83,3 +86,31 @@ def test_moisture_bounds_hold_tolerance_spread_and_the_water_of_air_not_counted(
     more = {"air": air, "wet": DRY + 2, "expected": dry}
     found = eq.moisture_highest(tolerance=0.0, spread=0.0, humidity=water, **more)
     assert found == pytest.approx(humid - dry, rel=0.03)
+
+
+# ---- assumed compositions ------------------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize("name", nominal_names())
+def test_the_reach_of_a_nominal_fuel_follows_from_its_spreads(name: str) -> None:
+    """Central differences of the balance by each share, times half of its range, summed without regard to sign."""
+    fuel = nominal_fuel(name)
+    state = balance(fuel, {"o2": 5.0})
+    found = []
+    for quantity in ("co2_expected", "moisture_expected"):
+        key, at = f"{state.prefix}.{quantity}", state.value(quantity)
+        total = 0.0
+        for leaf, half in spreads(fuel, state.fuel_prefix).items():
+            share = float(state.ledger[leaf].value)
+            step = 1e-4 * max(share, 0.1)
+            ends = [float(state.ledger.replay({leaf: share + s}, only=[key])[key]) for s in (-step, step)]
+            total += abs(ends[1] - ends[0]) / (2 * step) * half
+        found.append(100 * total / (at if quantity == "co2_expected" else at * (1 - at)))
+    assert nominal_reach(name) == pytest.approx(found, abs=6e-4)
+
+
+def test_a_reach_is_taken_of_the_expected_by_the_share_of_heat() -> None:
+    """Half of the heat from a fuel that reaches 4 %: 2 % of 10 % CO2; of water over dry gas 0.02 B (1 - B)."""
+    half = {"shares": (0.5,), "reaches": (4.0,)}
+    assert eq.co2_spread(expected=10.0, **half) == pytest.approx(0.2)
+    assert eq.moisture_spread(expected=0.25, **half) == pytest.approx(0.02 * 0.25 * 0.75)

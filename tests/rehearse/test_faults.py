@@ -66,7 +66,7 @@ def test_air_leak_flow_against_heat_input_shows_it_and_moisture_has_moved() -> N
     assert abs(value(outcome, 1, "combustion.moisture_difference")) < 0.003
     assert hints(outcome) == {("2", "diluted_both")}
     share = settings()["fault"]["air-leak"]["share"]
-    for by in ("air_by_moisture", "air_by_routes.nox"):
+    for by in ("air_by_moisture", "air_by_routes.co"):
         assert value(outcome, 2, f"combustion.agreement.{by}") == pytest.approx(share, abs=2.0), by
 
 

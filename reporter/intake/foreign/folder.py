@@ -26,7 +26,8 @@ from reporter.intake.sheets import find_sheet
 from reporter.intake.workbook import sheet_parts
 from reporter.paths import attachment_path
 from reporter.problems import Grade, Place, Problem, problem
-from reporter.record import ProcessLog, Readings, SourceFile
+from reporter.record import Given, ProcessLog, Readings, SourceFile
+from reporter.synthetic import MARK, is_marked
 
 #: Name of the optional list of files, and the endings of what is taken for a logger file without it.
 MANIFEST = "folder.toml"
@@ -87,6 +88,7 @@ class _Files:
                 made.append(replace(found, readings=self.corrected(grid.source.name, found.readings)))
         if self._stops():
             return None
+        _mark(self.grids, test)
         joined = join(made, channels, test)
         self.problems += joined.problems
         self.done += joined.done
@@ -119,6 +121,18 @@ class _Files:
 
     def _stops(self) -> bool:
         return any(p.grade is Grade.UNREADABLE for p in self.problems)
+
+
+def _mark(grids: Sequence[Grid], test: dict[str, Any]) -> None:
+    """Say on the sheet Test that readings are those of a rehearsal, where a logger file bears its mark."""
+    entered = test.get("synthetic")
+    if entered is not None and str(entered.value).casefold().startswith("yes"):
+        return
+    for grid in grids:
+        if is_marked(grid.source.content):
+            said = f"yes, {MARK}, as the file {grid.source.name} says"
+            test["synthetic"] = Given(said, Place(grid.source.name), said)
+            return
 
 
 def _no_mapping(grid: Grid, mappings: Sequence[Mapping], fitting: Sequence[Mapping]) -> Problem:

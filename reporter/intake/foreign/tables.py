@@ -18,6 +18,8 @@ _TIMELIKE = re.compile(
     r"\d{1,4}[-/.]\d{1,2}[-/.]\d{1,4}|\d{1,2}:\d{2}|\d{1,2}[\s.\-]*[^\W\d_]{3,9}\.?[\s.\-,]*\d{2,4}"
     r"|[^\W\d_]{3,9}\.?\s+\d{1,2},?\s+\d{4}"
 )
+#: Oxygen as a header sometimes spells it, which looks like a number.
+_OXYGEN = ("02", "0 2")
 _NUMBER = re.compile(r"^[<>]?\s*[+\-−]?[\d.,'’ ]*\d[\d.,'’ ]*(?:[eE][+\-]?\d+)?\s*%?$")
 
 
@@ -125,7 +127,7 @@ def _perhaps_header(cells: Sequence[Raw]) -> bool:
     for cell in cells:
         if not isinstance(cell, str):
             continue
-        words += cell.strip() in ("02", "0 2") or (any(map(str.isalpha, cell)) and not _TIMELIKE.search(cell))
+        words += cell.strip() in _OXYGEN or (any(map(str.isalpha, cell)) and not _TIMELIKE.search(cell))
         if words > 1:
             return True
     return False
@@ -134,6 +136,7 @@ def _perhaps_header(cells: Sequence[Raw]) -> bool:
 def _is_header(texts: Sequence[str]) -> bool:
     """Whether a row names a gas and, in another cell, a time or another gas."""
     short = [text for text in texts if text and len(text) <= 80 and not _TIMELIKE.search(text)]
+    short = [text for text in short if text in _OXYGEN or not _NUMBER.match(text)]
     gases = [text for text in short if gases_in(text)]
     times = [text for text in short if time_part(text)]
     return len(set(gases)) + len(times) >= 2 and bool(gases) and len(short) >= 2

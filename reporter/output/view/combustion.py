@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from reporter.ledger import Entry
 from reporter.outcome import RunResult
 from reporter.output.charts import DiagramPoint, FactorBand, FuelLine, OxygenDiagram, oxygen_diagram
+from reporter.output.finding_words import finding_words
 from reporter.output.numbers import capital, formulas
 from reporter.output.view.desk import Desk
 from reporter.output.view.model import Block, Column, Picture, Row, Table
@@ -43,12 +44,8 @@ def _air(desk: Desk) -> tuple[str, ...]:
 
 def _findings(desk: Desk) -> tuple[str, ...]:
     """Findings in words, those of several runs once."""
-    runs: dict[str, list[str]] = {}
-    for finding in desk.outcome.findings:
-        words = desk.words(finding.phrase, **dict(finding.values)) if finding.phrase else finding.words
-        runs.setdefault(words, []).append(finding.run)
-    heads = {words: capital(desk.run_names(key for key in some if key)) for words, some in runs.items()}
-    return tuple(formulas(f"{heads[words]}: {words}" if any(some) else words) for words, some in runs.items())
+    said = finding_words(desk.outcome.findings, desk.phrases)
+    return tuple(formulas(f"{capital(desk.run_names(runs))}: {words}" if runs else words) for runs, words in said)
 
 
 def _balance(desk: Desk) -> Block:

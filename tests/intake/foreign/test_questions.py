@@ -292,3 +292,14 @@ def test_hidden_parts_of_a_workbook_are_said() -> None:
 def test_text_that_looks_like_a_formula_stays_text() -> None:
     found = made(text(above=["=1+1", "+cmd", "@x"], show=number))
     assert len(found.readings.rows) == len(TRUTH)
+
+
+def test_a_reading_that_looks_like_oxygen_makes_no_header_of_its_row() -> None:
+    """0,02 has the letters of 02, as some write O2; two columns of words beside it do not make the row a header."""
+    lines = [";".join((*HEADERS, "State", "Mode"))]
+    lines += [";".join([f"{row[0]}", *(number(v, ",") for v in row[1:]), "on stack", "auto"]) for row in TRUTH]
+    cells = lines[3].split(";")
+    lines[3] = ";".join([*cells[:2], "0,02", *cells[3:]])
+    found = made("\n".join(lines) + "\n")
+    assert len(found.readings.rows) == len(TRUTH)
+    assert found.readings.rows[2].readings[1].value == 0.02
