@@ -15,6 +15,7 @@ from reporter.outcome import Finding, Outcome, RunState
 from reporter.output.numbers import counted, shown
 from reporter.problems import Place, problem
 from reporter.terminal import overview, problems_text, summary
+from reporter.terminal_brief import brief
 from reporter.terminal_text import WIDTH, encodable, paragraph, table
 
 SAMPLES = sorted((Path(__file__).parents[1] / "sample_inputs" / "valid").glob("*.xlsx"))
@@ -81,6 +82,24 @@ def test_a_run_that_does_not_count_is_named_with_its_paragraph_and_bracketed() -
     assert "(run 2 " in text
     assert "System bias, upscale gas, after run 2 is not met (Method 7E, § 13.2): −" in text
     assert "In brackets: does not count in an average." in text
+
+
+def test_nothing_is_said_to_be_withheld_where_a_run_merely_does_not_count() -> None:
+    """The invalid run of this sample leaves every limit compared; a missing citation withholds a comparison."""
+    outcome = outcome_of("bias_invalid_run")
+    assert all(comparison.compared for comparison in outcome.comparisons)
+    for text in (flat(summary(outcome)), flat(brief(outcome))):
+        assert "withheld" not in text.lower()
+    assert "Runs that do not count (1)" in summary(outcome)
+    assert "run not counted: a run is invalid unless the authority agrees. NOx, run 2: bias" in flat(brief(outcome))
+    limits = tuple(replace(limit, citation=None) for limit in outcome.record.limits[:1])
+    without = assess(replace(outcome.record, limits=limits))
+    assert "Results withheld (1)" in summary(without)
+    assert "result withheld: the limit names no authority" in flat(brief(without))
+
+
+def test_an_unrounded_number_has_six_digits() -> None:
+    assert "316.039 (not rounded)" in flat(summary(outcome_of("wood_boiler_si")))
 
 
 def changed() -> Outcome:
