@@ -57,7 +57,8 @@ def test_every_run_limit_and_problem_is_there(name: str) -> None:
         assert f" {comparison.limit.limit_id.value}: " in text
     for found in outcome.problems:
         assert found.title in text
-        assert flat(counted(found.found)) in text
+        name, _, of_run = found.found.partition(", run ")
+        assert flat(counted(of_run or name)) in text
         assert flat(found.remedy) in text
 
 
@@ -96,6 +97,13 @@ def test_nothing_is_said_to_be_withheld_where_a_run_merely_does_not_count() -> N
     without = assess(replace(outcome.record, limits=limits))
     assert "Results withheld (1)" in summary(without)
     assert "result withheld: the limit names no authority" in flat(brief(without))
+
+
+def test_what_is_the_same_of_several_channels_is_said_once() -> None:
+    text = flat(summary(outcome_of("gas_boiler_us")))
+    said = "NOx, CO, O2, CO2, run 2: 10:52 to 10:54, 3 minutes of 63; the mean rests on 60 readings"
+    assert text.count(said) == 1
+    assert text.count("10:52 to 10:54") == 1
 
 
 def test_an_unrounded_number_has_six_digits() -> None:
