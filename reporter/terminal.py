@@ -15,7 +15,7 @@ from reporter.ledger import Entry
 from reporter.outcome import Comparison, GasResult, Outcome, RunResult, RunState
 from reporter.output.applied import Applied, applied
 from reporter.output.finding_words import finding_words
-from reporter.output.numbers import capital, day, moment, runs_text, shortest, shown, unit_text
+from reporter.output.numbers import capital, day, moment, runs_text, shortest, shown, significant, unit_text
 from reporter.output.phrases import Phrases, load_phrases
 from reporter.quantities import quantity_of
 from reporter.record import text_of
@@ -122,7 +122,7 @@ def _results(outcome: Outcome) -> list[str]:
         for found in result.gases:
             first.setdefault(found.segment, found)
     rows = [_gas_row(outcome, found) for found in first.values()]
-    rows += [_row(outcome, ending, _quantity_label(ending)) for ending in _ALSO]
+    rows += [_row(outcome, ending, capital(_quantity_label(ending))) for ending in _ALSO]
     head = ["", *(f"Run {result.run.run.value}" for result in outcome.runs), "Average"]
     kept = [row for row in rows if any(row[1:])]
     if not kept:
@@ -206,8 +206,8 @@ def _limit(outcome: Outcome, comparison: Comparison, words: Phrases) -> str:
 
 
 def _compared(rounded: Entry) -> str:
-    """A compared number with the digits its rounding left."""
-    return shown(rounded) if rounded.decimals is not None else shortest(rounded.value, 12)
+    """A compared number with the digits its rounding left; six where nothing was rounded."""
+    return shown(rounded) if rounded.decimals is not None else significant(rounded.value, 6)
 
 
 def _run_values(outcome: Outcome, comparison: Comparison) -> str:
@@ -241,7 +241,8 @@ def _missed(outcome: Outcome, line: Applied, words: Phrases) -> str:
     numbers = ""
     if value is not None and bound is not None:
         within = words("criterion.within", bound=_number(bound))
-        numbers = f": {_number(value)}, {within if check.difference else f'{check.relation} {_number(bound)}'}"
+        asked = within if check.difference else f"{check.relation} {_number(bound)}"
+        numbers = f": {_number(value)}, {words('criterion.asked', bound=asked)}"
     difference, alternative = ledger.get(check.difference), ledger.get(check.alternative)
     if difference is not None and alternative is not None:
         said = words("criterion.instead", difference=_number(difference), most=_number(alternative))

@@ -45,8 +45,17 @@ def _problem(problem: Problem, found: Sequence[str]) -> str:
     """A problem, or several that differ in what was found alone."""
     where = problem.place.text()
     lines = [paragraph(f"{where}: {problem.title}" if where else problem.title)]
-    facts = [("Found:", words) for words in found]
+    facts = [("Found:", words) for words in _together(found)]
     for name, words in (*facts, ("Expected:", problem.expected), ("To do:", problem.remedy)):
         if words:
             lines.append(paragraph(f"{name:<10}{counted(words)}", indent=4, hang=14))
     return "\n".join(lines)
+
+
+def _together(found: Sequence[str]) -> list[str]:
+    """What was found, once for the channels of which the same is said of a run."""
+    names: dict[str, list[str]] = {}
+    for text in found:
+        name, of_run, rest = text.partition(", run ")
+        names.setdefault(f", run {rest}" if of_run else text, []).append(name if of_run else "")
+    return [f"{', '.join(name for name in some if name)}{words}" for words, some in names.items()]

@@ -15,6 +15,7 @@ from reporter.outcome import Finding, Outcome, RunState
 from reporter.output.numbers import counted, shown
 from reporter.problems import Place, problem
 from reporter.terminal import overview, problems_text, summary
+from reporter.terminal_brief import brief
 from reporter.terminal_text import WIDTH, encodable, paragraph, table
 
 SAMPLES = sorted((Path(__file__).parents[1] / "sample_inputs" / "valid").glob("*.xlsx"))
@@ -56,7 +57,8 @@ def test_every_run_limit_and_problem_is_there(name: str) -> None:
         assert f" {comparison.limit.limit_id.value}: " in text
     for found in outcome.problems:
         assert found.title in text
-        assert flat(counted(found.found)) in text
+        name, _, of_run = found.found.partition(", run ")
+        assert flat(counted(of_run or name)) in text
         assert flat(found.remedy) in text
 
 
@@ -81,6 +83,31 @@ def test_a_run_that_does_not_count_is_named_with_its_paragraph_and_bracketed() -
     assert "(run 2 " in text
     assert "System bias, upscale gas, after run 2 is not met (Method 7E, § 13.2): −" in text
     assert "In brackets: does not count in an average." in text
+
+
+def test_nothing_is_said_to_be_withheld_where_a_run_merely_does_not_count() -> None:
+    """The invalid run of this sample leaves every limit compared; a missing citation withholds a comparison."""
+    outcome = outcome_of("bias_invalid_run")
+    assert all(comparison.compared for comparison in outcome.comparisons)
+    for text in (flat(summary(outcome)), flat(brief(outcome))):
+        assert "withheld" not in text.lower()
+    assert "Runs that do not count (1)" in summary(outcome)
+    assert "run not counted: a run is invalid unless the authority agrees. NOx, run 2: bias" in flat(brief(outcome))
+    limits = tuple(replace(limit, citation=None) for limit in outcome.record.limits[:1])
+    without = assess(replace(outcome.record, limits=limits))
+    assert "Results withheld (1)" in summary(without)
+    assert "result withheld: the limit names no authority" in flat(brief(without))
+
+
+def test_what_is_the_same_of_several_channels_is_said_once() -> None:
+    text = flat(summary(outcome_of("gas_boiler_us")))
+    said = "NOx, CO, O2, CO2, run 2: 10:52 to 10:54, 3 minutes of 63; the mean rests on 60 readings"
+    assert text.count(said) == 1
+    assert text.count("10:52 to 10:54") == 1
+
+
+def test_an_unrounded_number_has_six_digits() -> None:
+    assert "316.039 (not rounded)" in flat(summary(outcome_of("wood_boiler_si")))
 
 
 def changed() -> Outcome:

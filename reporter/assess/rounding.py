@@ -67,7 +67,7 @@ def rounding_rule(limit: Limit) -> Rule:
         )
     significant = (match["what"] or "").startswith("significant")
     digits = int(match["number"]) if match["number"] else decimals_of(limit.limit.text)
-    kind = "significant digits" if significant else "decimals"
+    kind = f"{'significant digit' if significant else 'decimal'}{'' if digits == 1 else 's'}"
     words = f"{match['rule']} to {digits} {kind}" + ("" if match["number"] else ", those of the limit")
     return Rule(_EQUATIONS[match["rule"], significant], digits, significant, words)
 

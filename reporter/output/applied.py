@@ -17,11 +17,16 @@ _END = re.compile(r"(?:^|, )(?:lower|upper) end(?: of the range expected)?(?=,|$
 
 @dataclass(frozen=True, slots=True)
 class Applied:
-    """One or several checks printed as one: criterion, what it was applied to, the check with the numbers."""
+    """One or several checks printed as one: criterion, what it was applied to, and the checks."""
 
     criterion: str
     about: str
-    check: Check
+    checks: tuple[Check, ...]
+
+    @property
+    def check(self) -> Check:
+        """The check whose numbers stand for all."""
+        return self.checks[0]
 
     @property
     def title(self) -> str:
@@ -53,9 +58,11 @@ def _particulars(check: Check) -> str:
 
 def _lines(outcome: Outcome, checks: Sequence[Check]) -> list[Applied]:
     ledger = outcome.ledger
-    values = {float(ledger[check.value].value) for check in checks}
-    met = {check.met for check in checks}
-    same = len(values) == 1 and len(met) == 1
+    bounds: dict[str, set[float]] = {}
+    for check in checks:
+        bounds.setdefault(check.value, set()).add(float(ledger[check.bound].value))
+    numbers = {(float(ledger[key].value), *sorted(of_key)) for key, of_key in bounds.items()}
+    same = len(numbers) == 1 and len({check.met for check in checks}) == 1
     groups: dict[tuple[str, str, bool], list[Check]] = {}
     for check in checks:
         name = "" if same else check.value
@@ -70,7 +77,7 @@ def _line(outcome: Outcome, checks: Sequence[Check]) -> Applied:
     runs = tuple(dict.fromkeys(run for check in checks for run in check.runs))
     parts = [_particulars(first), _run_words(outcome, checks, runs)]
     about = ", ".join(part for part in parts if part)
-    return Applied(_criterion(first), about, first)
+    return Applied(_criterion(first), about, tuple(checks))
 
 
 def _run_words(outcome: Outcome, checks: Sequence[Check], runs: Sequence[str]) -> str:

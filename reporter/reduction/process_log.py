@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from datetime import datetime
+from decimal import Decimal
 
 from reporter.equation import Citation, Value, equation
 from reporter.functions import mean
@@ -65,7 +67,14 @@ def reduce_process_log(book: Book, about: RunBook) -> None:
             label=f"{column}, readings of run {about.run.run.value}",
         )
         label = f"{column}, mean of run {about.run.run.value}"
-        book.ledger.apply(process_mean, key, {"readings": series}, label=label)
+        whole = [value for row in log.values if isinstance(value := row[position], float)]
+        book.ledger.apply(process_mean, key, {"readings": series}, label=label, decimals=_decimals(whole))
+
+
+def _decimals(values: Sequence[float]) -> int:
+    """Decimals shown of a mean: one more than its readings were logged with."""
+    exponents = (Decimal(f"{value:.10g}").as_tuple().exponent for value in values)
+    return 1 + max(-exponent if isinstance(exponent, int) and exponent < 0 else 0 for exponent in exponents)
 
 
 def _within(about: RunBook, time: datetime) -> bool:

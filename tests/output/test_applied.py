@@ -2,10 +2,19 @@
 
 from __future__ import annotations
 
+import re
+from datetime import UTC, datetime
+from pathlib import Path
+
+from reporter.api import read
 from reporter.outcome import Outcome
 from reporter.output.applied import applied
+from reporter.output.view.build import build_view
+from reporter.output.view.model import Cell
 from reporter.terminal import summary
 from tests.record_factory import assess, assessed, calibration, fuel, recalibrated, record
+
+SAMPLES = Path(__file__).parents[2] / "sample_inputs" / "valid"
 
 
 def _titles(outcome: Outcome, criterion: str, gas: str) -> list[str]:
@@ -41,10 +50,19 @@ def test_a_shared_check_that_is_not_met_is_said_once() -> None:
     outcome = assess(recalibrated(record(), "08:42", "NOx", 60.0))
     text = " ".join(summary(outcome).split())
     assert text.count("System bias, upscale gas") == 1
-    assert (
-        "NOx: System bias, upscale gas, between runs 1–2 is not met (Method 7E, § 13.2): 10.00 %, within ±5.00 %"
-        in text
-    )
+    said = "NOx: System bias, upscale gas, between runs 1–2 is not met (Method 7E, § 13.2): 10.00 %, where"
+    assert f"{said} within ±5.00 % is asked for" in text
+
+
+def test_bounds_that_differ_by_run_stand_beside_the_values_both_ends_together() -> None:
+    """Two fuels by their shares: each run has its own range of the fuel factor (Method 3B, 12.3.3)."""
+    found = read(SAMPLES / "two_fuel_furnace.xlsx")
+    assert found.record is not None
+    view = build_view(assess(found.record), datetime(2026, 1, 1, tzinfo=UTC), "0.1.0")
+    block = next(block for block in view.sections["criteria"] if block.title == "Fuel factor")
+    texts = [cell.text for row in block.tables[0].rows for cell in row.cells if isinstance(cell, Cell)]
+    assert len(texts) == 3
+    assert all(re.match(r"run \d, at least 1\.\d{3} and at most 1\.\d{3}\t", text) for text in texts)
 
 
 def test_a_direct_set_names_the_runs_it_bears_on() -> None:

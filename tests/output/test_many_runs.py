@@ -93,7 +93,7 @@ def test_what_was_not_measured_has_no_row_of_what_counts(bare: View) -> None:
     table = bare.limits.table
     assert table is not None
     firsts = [row.cells[0] for row in table.rows]
-    assert "counts" not in firsts
+    assert "Counts" not in firsts
     assert [cell for cell in firsts if isinstance(cell, str)] == ["NOx [ppm]", "SO₂ [ppm]"]
 
 

@@ -13,7 +13,7 @@ from pathlib import Path
 
 import pikepdf
 import pytest
-from pypdf import PdfReader
+from pypdf import PageObject, PdfReader
 
 from reporter.errors import OutputError
 from reporter.outcome import Outcome
@@ -230,6 +230,18 @@ def test_a_faulty_template_is_an_error_with_its_place(thin: Outcome, tmp_path: P
         render_pdf(thin, issued=ISSUED, version="0.1.0", options=PdfOptions(templates=tmp_path))
 
 
+def _heights(page: PageObject) -> list[float]:
+    """How high each text of a page stands, from its lower edge."""
+    found: list[float] = []
+
+    def visit(text: str, cm: list[float], tm: list[float], *_: object) -> None:
+        if text.strip():
+            found.append(tm[5] * cm[3] + cm[5])
+
+    page.extract_text(visitor_text=visit)
+    return found
+
+
 def test_long_names_leave_page_number_report_number_and_hash_on_every_page(
     thin: Outcome, changed: Callable[..., Outcome], render: Callable[..., bytes]
 ) -> None:
@@ -244,15 +256,11 @@ def test_long_names_leave_page_number_report_number_and_hash_on_every_page(
     digest = thin.record.source.sha256[:12]
     reader = PdfReader(io.BytesIO(content))
     for number, page in enumerate(reader.pages, 1):
-        heights: list[tuple[float, str]] = []
-        page.extract_text(
-            visitor_text=lambda text, cm, tm, *_, kept=heights: kept.append((tm[5] * cm[3] + cm[5], text))
-        )
         text = page.extract_text()
         assert f"Page {number} of {len(reader.pages)}" in text
         assert f"input {digest}" in text
         assert "Report HM-26-031" in text
-        assert all(0.0 < height < float(page.mediabox.height) for height, words in heights if words.strip())
+        assert all(0.0 < height < float(page.mediabox.height) for height in _heights(page))
 
 
 def test_readings_are_printed_on_request(wood: Outcome, wood_pdf: bytes) -> None:

@@ -52,7 +52,7 @@ def _cells(desk: Desk, lines: Sequence[Applied], *, bound: bool) -> list[Cell]:
         check = line.check
         name = formulas(", ".join(part for part in (gas_name(check.gas), line.about) if part))
         if bound:
-            name += f", {bound_words(desk, check)}"
+            name += f", {_bounds_in_words(desk, line.checks)}"
         more = ""
         if needs_alternative(desk, check):
             more = f"\n{desk.words('criterion.difference')} {desk.number_text(check.difference)}"
@@ -80,12 +80,16 @@ def _common_bounds(desk: Desk, checks: Sequence[Check]) -> str:
     source = f"{cited(checks)}{_adopted_by(desk, checks)}"
     if not _share_bounds(desk, checks):
         return f"{source}. "
-    bounds = dict.fromkeys(bound_words(desk, check) for check in checks)
-    words = f" {desk.words('criterion.and')} ".join(bounds)
+    words = _bounds_in_words(desk, checks)
     others = dict.fromkeys(desk.number_text(check.alternative) for check in checks if check.alternative)
     if others:
         words += f", {desk.words('criterion.alternative')} {' / '.join(others)}"
     return f"{words[:1].upper()}{words[1:]} ({source}). "
+
+
+def _bounds_in_words(desk: Desk, checks: Sequence[Check]) -> str:
+    bounds = dict.fromkeys(bound_words(desk, check) for check in checks)
+    return f" {desk.words('criterion.and')} ".join(bounds)
 
 
 def _adopted_by(desk: Desk, checks: Sequence[Check]) -> str:

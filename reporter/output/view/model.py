@@ -10,8 +10,9 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from itertools import pairwise
 
-#: A table of at most so many rows is not broken over pages.
-KEPT = 14
+#: A table of at most so many rows is not broken over pages; one of groups may be longer, so that no group's name
+#: stands at the foot of a page without its rows.
+KEPT, KEPT_GROUPED = 20, 26
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,7 +82,7 @@ class Table:
     @property
     def is_short(self) -> bool:
         """Whether the table is kept on one page."""
-        return len(self.rows) <= KEPT
+        return len(self.rows) <= (KEPT_GROUPED if self.is_grouped else KEPT)
 
     @property
     def is_grouped(self) -> bool:

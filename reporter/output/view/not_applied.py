@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 from reporter.methods.criteria import Criterion, criteria, not_held_reason
 from reporter.output.numbers import formulas
 from reporter.output.view.desk import Desk, gas_name, said
@@ -26,10 +28,18 @@ def not_applied(desk: Desk) -> tuple[str, ...]:
                 labels.setdefault(key, {})[criterion.label] = None
                 gases.setdefault(key, {})[gas] = None
     made = [
-        f"{formulas('; '.join(labels[paragraph, words]))} ({paragraph}), {', '.join(names)}: {words}."
+        f"{formulas(_joined(list(labels[paragraph, words])))} ({paragraph}), {', '.join(names)}: {words}."
         for (paragraph, words), names in gases.items()
     ]
     return (*made, *(formulas(f"{', '.join(names)}: {reason}.") for reason, names in reasons.items()))
+
+
+def _joined(labels: Sequence[str]) -> str:
+    """Labels of one reason, what they begin with once."""
+    heads = {label.rpartition(", ")[0] for label in labels}
+    if len(labels) == 1 or len(heads) > 1:
+        return "; ".join(labels)
+    return f"{heads.pop()}, {' and '.join(label.rpartition(', ')[2] for label in labels)}"
 
 
 def _applied(desk: Desk, channel: Channel) -> set[str]:

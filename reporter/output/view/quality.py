@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 
 from reporter.outcome import Bearing, Check, RunState
@@ -13,6 +14,9 @@ from reporter.output.view.model import AnyCell, Cell, Column, ProblemView, Quali
 from reporter.output.view.not_applied import not_applied
 from reporter.output.view.standing import dagger
 from reporter.problems import Problem
+
+#: A minus as people type it, before a number.
+_MINUS = re.compile(r"(?<=\s)-(?=[0-9])")
 
 
 def quality(desk: Desk) -> QualityView:
@@ -91,7 +95,7 @@ def _not_met(desk: Desk, line: Applied) -> str:
     check = line.check
     name = ": ".join(part for part in (gas_name(check.gas), formulas(line.title)) if part)
     words = f"{name} {desk.words('criterion.not_met')} ({check.citation.text()})"
-    numbers = f"{desk.number_text(check.value)}, {bound_words(desk, check)}"
+    numbers = f"{desk.number_text(check.value)}, {desk.words('criterion.asked', bound=bound_words(desk, check))}"
     consequence = f"; {formulas(check.consequence)}" if check.consequence else ""
     return f"{words}: {numbers}{consequence}."
 
@@ -145,7 +149,7 @@ def _found_words(desk: Desk, problems: Sequence[Problem]) -> str:
         head, words = (name, rest) if comma and name in names else ("", found)
         channels.setdefault(words, {})[head] = None
     texts = [", ".join(part for part in (*heads, words) if part) for words, heads in channels.items()]
-    return formulas(counted("; ".join(texts)))
+    return _MINUS.sub("−", formulas(counted("; ".join(texts))))
 
 
 def _where(problem: Problem) -> str:

@@ -255,7 +255,8 @@ def unit_and_basis(entry: Entry) -> str:
     unit = unit_text(entry.unit)
     if not unit and "moisture" in entry.key:
         unit = "fraction by volume"
-    return formulas(", ".join(part for part in (unit, entry.basis.text()) if part))
+    basis = entry.basis.text().replace("k = ", "k\u00a0=\u00a0")
+    return formulas(", ".join(part for part in (unit, basis) if part))
 
 
 def left_out(desk: Desk, numbers: Mapping[str, str]) -> tuple[Block, ...]:
