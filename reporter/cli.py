@@ -1,7 +1,7 @@
 """The command line: each command parses, makes one library call, prints, and gives an exit code.
 
-Exit codes: 0 nothing is withheld; 1 a result is withheld, for a reason said, or a question is open; 2 the command
-is wrong; 3 an input cannot be read; 4 a file cannot be written.
+Exit codes: 0 nothing bears on a result; 1 a run is not counted or a result withheld, for a reason said, or a
+question is open; 2 the command is wrong; 3 an input cannot be read; 4 a file cannot be written.
 """
 
 from __future__ import annotations
@@ -26,8 +26,8 @@ OK, WITHHELD, USAGE, UNREADABLE, UNWRITTEN = 0, 1, 2, 3, 4
 _STOPPED = 130
 
 _EXIT_CODES = """exit codes:
-  0  nothing is withheld (notes may be)
-  1  a result is withheld: a criterion is not met or a fact is missing; or a question of map is open
+  0  nothing bears on a result (notes may be said)
+  1  a criterion is not met or a fact is missing: a run is not counted or a result withheld; a question of map is open
   2  the command is wrong
   3  an input cannot be read
   4  a file cannot be written

@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING
 
 from reporter.cli import OK, UNREADABLE, UNWRITTEN, WITHHELD
 from reporter.errors import OutputError, UnreadableError
-from reporter.outcome import Outcome
+from reporter.outcome import Bearing, Outcome
 from reporter.problems import Grade, Problem
 
 if TYPE_CHECKING:
@@ -90,11 +90,20 @@ def report_input(path: Path, out: Path, issued: datetime, options: ReportOptions
         return _stopped(path, error)
 
 
+#: What the overview says of an input, by the strongest bearing of its problems on its results.
+_BEARINGS = {
+    Bearing.WITHHELD: "a result is withheld",
+    Bearing.NOT_COUNTED: "a run is not counted",
+    Bearing.BEARS: "a problem bears on a result",
+}
+
+
 def _assessed(path: Path, outcome: Outcome, text: str, done: str) -> Task:
-    withheld = _count(outcome.problems, Grade.BLOCKS)
-    words = f"{done}; {'a result is withheld' if withheld else 'nothing is withheld'}"
-    code = WITHHELD if withheld else OK
-    return Task(path.name, text, code, words, withheld, _count(outcome.problems, Grade.NOTE))
+    bearings = [outcome.bearing(problem) for problem in outcome.problems]
+    strongest = next((words for bearing, words in _BEARINGS.items() if bearing in bearings), "nothing is withheld")
+    code = WITHHELD if any(bearing in _BEARINGS for bearing in bearings) else OK
+    withheld, notes = bearings.count(Bearing.WITHHELD), bearings.count(Bearing.NOTE)
+    return Task(path.name, text, code, f"{done}; {strongest}", withheld, notes)
 
 
 def _unreadable(path: Path, problems: Sequence[Problem], before: str = "") -> Task:

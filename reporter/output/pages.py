@@ -39,15 +39,31 @@ def page_text(view: View, phrases: Phrases, issued: datetime, overlay: Path | No
     OutputError
         A template is missing, malformed, or names something the view does not have.
     """
-    from jinja2 import TemplateError
-
     try:
         template = _environment(overlay).get_template("report.html")
         text = template.render(view=view, words=phrases, issued_at=issued.isoformat(timespec="seconds"))
-    except TemplateError as error:
-        where = f"{getattr(error, 'name', '') or 'template'}, line {getattr(error, 'lineno', '?')}"
-        raise OutputError(f"the templates cannot be filled in: {error}", where) from None
+    except OutputError:
+        raise
+    except Exception as error:  # whatever a firm's template does
+        raise OutputError(*_what_and_where(error)) from None
     return _FORBIDDEN.sub("\ufffd", text)
+
+
+def _what_and_where(error: Exception) -> tuple[str, str]:
+    """What is wrong with a template, and its name and line; no path of this machine."""
+    import traceback
+
+    from jinja2 import TemplateNotFound, TemplateSyntaxError
+
+    steps = [step for step in traceback.extract_tb(error.__traceback__) if step.filename.endswith(".html")]
+    name, line = (Path(steps[-1].filename).name, steps[-1].lineno) if steps else ("", None)
+    words = str(getattr(error, "message", "") or error)
+    if isinstance(error, TemplateNotFound):
+        words = f"there is no template {error.name}"
+    elif isinstance(error, TemplateSyntaxError):
+        name, line = Path(error.name or name).name, error.lineno
+    where = f"{name}, line {line}" if name and line else name or "templates"
+    return f"the templates cannot be filled in: {words}", where
 
 
 def load_templates() -> None:

@@ -223,10 +223,12 @@ def test_nothing_outside_the_template_folders_is_read(thin: Outcome, tmp_path: P
         render_pdf(thin, issued=ISSUED, version="0.1.0", options=PdfOptions(templates=inner))
 
 
-@pytest.mark.parametrize("letterhead", ["{{ view.nothing }}", "{% if %}", "{% include 'none.html' %}"])
+@pytest.mark.parametrize(
+    "letterhead", ["\n{{ view.nothing }}", "\n{% if %}", "\n{% include 'none.html' %}", "\n{{ 1 / 0 }}"]
+)
 def test_a_faulty_template_is_an_error_with_its_place(thin: Outcome, tmp_path: Path, letterhead: str) -> None:
     overlay(tmp_path, letterhead__html=letterhead)
-    with pytest.raises(OutputError, match="templates cannot be filled in"):
+    with pytest.raises(OutputError, match=r"templates cannot be filled in: [^(/]+ \(letterhead\.html, line 2\)$"):
         render_pdf(thin, issued=ISSUED, version="0.1.0", options=PdfOptions(templates=tmp_path))
 
 
