@@ -15,6 +15,8 @@ from collections import Counter
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 
+from reporter.intake.cellscan import CellScan
+
 MEGABYTE = 1 << 20
 #: Caps on what a workbook may unpack to.
 MAX_TOTAL = 100 * MEGABYTE
@@ -41,6 +43,7 @@ _PREFIX = rb"(?:[^\s<>/:!?]+:)?"
 _ATTRIBUTES = rb"((?:[^\"'<>]|\"[^\"]*\"|'[^']*')*+)"
 _FAR = re.compile(rb"<" + _PREFIX + rb"c\s[^<>]*?\br\s*=\s*[\"']((?:[A-Z]{3,}|S[S-Z]|[T-Z][A-Z])\d+|[A-Z]+\d{7,})[\"']")
 _PERHAPS_FAR = re.compile(rb"[\"'](?:[A-Z]{3,}|S[S-Z]|[T-Z][A-Z]|[A-Z]+\d{6})\d")
+_PREFIXED = re.compile(rb":(?:c|row|si|xf|sheet)[\s>/]")
 _COUNTED = re.compile(rb"<" + _PREFIX + rb"(c|row|si|xf|sheet)[\s>/]")
 _AREA = re.compile(rb"<" + _PREFIX + rb"(?:mergeCell|hyperlink)\s" + _ATTRIBUTES + rb">")
 _REF = re.compile(rb"\bref\s*=\s*[\"']([^\"']*)[\"']")
@@ -66,12 +69,13 @@ class Finding:
 
 @dataclass(slots=True)
 class Look:
-    """Result of the look: findings, and by part of the container the formulas without a stored value."""
+    """Result of the look: findings, and by part of the container the formulas without a stored value, and the cells."""
 
     findings: list[Finding] = field(default_factory=list)
     uncalculated: dict[str, frozenset[str]] = field(default_factory=dict)
     macros: bool = False
     counts: Counter[bytes] = field(default_factory=Counter)
+    scans: dict[str, CellScan] = field(default_factory=dict)
 
     @property
     def stops(self) -> bool:
@@ -79,8 +83,8 @@ class Look:
         return bool(self.findings)
 
 
-def look_at(content: bytes) -> Look:
-    """Look at the bytes of a workbook file; a file that must not be opened has findings."""
+def look_at(content: bytes, cells: int = MAX_CELLS) -> Look:
+    """Look at the bytes of a workbook file of at most so many cells; a file that must not be opened has findings."""
     if content.startswith(_OLE):
         code = "encrypted" if _OLE_ENCRYPTED in content else "old-workbook"
         return Look([Finding(code, "a file of the old binary container")])
@@ -91,7 +95,7 @@ def look_at(content: bytes) -> Look:
         with zipfile.ZipFile(io.BytesIO(content)) as archive:
             if not _container(archive, look):
                 for info in archive.infolist():
-                    _part(archive, info, look)
+                    _part(archive, info, look, cells)
                     if look.stops:
                         break
     except (zipfile.BadZipFile, zlib.error, EOFError, OSError, ValueError, NotImplementedError) as error:
@@ -133,10 +137,11 @@ def _container(archive: zipfile.ZipFile, look: Look) -> bool:
     return look.stops
 
 
-def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look) -> None:
+def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look, cells: int) -> None:
     """Look through one part, if it is XML: the name of a part says nothing about what a reader takes it for."""
     name, area = info.filename, 0
     uncalculated: set[str] = set()
+    scan = CellScan()
     for number, piece in enumerate(_pieces(archive, info)):
         if number == 0:
             kind = _kind(piece)
@@ -145,28 +150,44 @@ def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look) -> None:
             if kind:
                 look.findings.append(Finding("not-a-workbook", f"the part {name} is {kind}, not UTF-8 text"))
                 return
-        look.counts.update(_COUNTED.findall(piece))
+        prefixed = _PREFIXED.search(piece) is not None
+        usual = scan.see(piece) and not prefixed
+        _count(piece, look.counts, scan, prefixed=prefixed)
         area += sum(_areas(piece))
         if _DTD.search(piece):
             look.findings.append(Finding("dtd", f"in the part {name}"))
-        elif far := _far_cell(piece):
+        elif far := _far_cell(piece, scan, usual=usual):
             look.findings.append(Finding("far-cell", "", name, far))
         elif len(piece) > MAX_ROW_BYTES:
             look.findings.append(Finding("zip-bomb", f"a row of more than {MAX_ROW_BYTES // MEGABYTE} MB", name))
-        elif many := _too_many(look.counts):
+        elif many := _too_many(look.counts, cells):
             look.findings.append(Finding("zip-bomb", many, name))
         elif area > MAX_AREA:
             look.findings.append(Finding("far-cell", "merged cells or links over a vast area", name))
         if look.stops:
             return
-        uncalculated.update(_uncalculated(piece))
+        if prefixed or "f" in scan.starts or b":f" in piece:
+            uncalculated.update(_uncalculated(piece))
+    scan.odd |= not usual
+    look.scans[name] = scan
     if uncalculated:
         look.uncalculated[name] = frozenset(uncalculated)
 
 
-def _too_many(counts: Mapping[bytes, int]) -> str:
+def _count(piece: bytes, counts: Counter[bytes], scan: CellScan, *, prefixed: bool) -> None:
+    """Count what there may not be too many of; the rarer elements where a piece may have any."""
+    if prefixed:
+        counts.update(_COUNTED.findall(piece))
+        return
+    counts[b"c"] += scan.cells
+    counts[b"row"] += scan.rows
+    if scan.starts & {"s", "x"}:
+        counts.update(name for name in _COUNTED.findall(piece) if name not in (b"c", b"row"))
+
+
+def _too_many(counts: Mapping[bytes, int], cells: int) -> str:
     """Which elements there are too many of; empty if there are none."""
-    for element, most in MAX_ELEMENTS.items():
+    for element, most in (MAX_ELEMENTS | {"c": cells}).items():
         if counts[element.encode()] > most:
             return f"more than {most:,} {_CALLED[element]}"
     return ""
@@ -211,9 +232,10 @@ def _kind(piece: bytes) -> str:
     return ""
 
 
-def _far_cell(piece: bytes) -> str:
+def _far_cell(piece: bytes, scan: CellScan, *, usual: bool) -> str:
     """The address of a cell outside the allowed corner; empty if there is none."""
-    if _PERHAPS_FAR.search(piece) is None:
+    within = scan.last_column <= MAX_COLUMN and scan.last_row <= MAX_ROW
+    if (usual and within) or _PERHAPS_FAR.search(piece) is None:
         return ""
     for match in _FAR.finditer(piece):
         address = match[1].decode("ascii")
@@ -249,8 +271,6 @@ def column_number(letters: str) -> int:
 
 def _uncalculated(piece: bytes) -> Iterator[str]:
     """Addresses of formulas that carry no value; an empty text is a value."""
-    if b"<f" not in piece and b":f" not in piece:
-        return
     for match in _FORMULA_CELL.finditer(piece):
         address = _ADDRESS.search(match[1])
         if address and not (_TEXT_RESULT.search(match[1]) and not match[0].rstrip().endswith(b"c>")):

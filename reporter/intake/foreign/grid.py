@@ -14,6 +14,8 @@ from pathlib import Path
 from typing import Any, cast
 
 from reporter.intake.foreign.lines import PlainRows, plain_rows
+from reporter.intake.foreign.quick import SheetRows, is_long, quick_sheets, too_wide
+from reporter.intake.guard import MAX_CELLS as MAX_CELLS_OF_FORM
 from reporter.intake.guard import MAX_COLUMN, Look, look_at
 from reporter.intake.table import Raw
 from reporter.intake.workbook import raw, sheet_parts
@@ -24,6 +26,8 @@ from reporter.record import SourceFile
 MAX_FILE = 100 << 20
 #: A text file with more cells is not read.
 MAX_CELLS = 4_000_000
+#: A workbook with more cells is not read.
+MAX_LOGGED = 2_000_000
 #: Lines and bytes that decide about delimiter and encoding.
 SAMPLE_LINES, SAMPLE_BYTES = 400, 65_536
 #: Delimiters, those first that seldom stand inside a cell.
@@ -58,20 +62,19 @@ class Page:
 
     def columns(self, columns: Sequence[int], rows: Sequence[int]) -> list[list[Raw]]:
         """The cells of some columns in some rows, None where a row is short."""
-        if isinstance(self.rows, PlainRows):
+        if isinstance(self.rows, (PlainRows, SheetRows)):
             return cast(list[list[Raw]], self.rows.columns(columns, rows))
         cells = [self.rows[row] for row in rows]
         return [[row[column] if column < len(row) else None for row in cells] for column in columns]
 
     def widths(self, first: int, last: int) -> list[int]:
         """The number of cells of each of the rows from `first` to before `last`."""
-        return (
-            self.rows.widths[first:last] if isinstance(self.rows, PlainRows) else list(map(len, self.rows[first:last]))
-        )
+        own = self.rows.widths if isinstance(self.rows, (PlainRows, SheetRows)) else list(map(len, self.rows))
+        return own[first:last]
 
     def wordy(self, row: int) -> bool:
         """Whether a row may hold words; a quick look before a thorough one."""
-        return not isinstance(self.rows, PlainRows) or self.rows.wordy(row)
+        return not isinstance(self.rows, (PlainRows, SheetRows)) or self.rows.wordy(row)
 
     def address(self, row: int, column: int) -> str:
         """A cell as people name it: column letter and row or line, e.g. ``C12``."""
@@ -206,9 +209,16 @@ def _alike(sample: Sequence[str], mark: str) -> int:
 
 
 def _workbook(source: SourceFile) -> Grid:
-    seen = look_at(source.content)
+    seen = look_at(source.content, MAX_LOGGED)
     if seen.stops:
         return _refused(source, seen.findings[0].code, seen.findings[0].found, cell=seen.findings[0].cell)
+    notes = (problem("macro-enabled", Place(source.name)),) if seen.macros else ()
+    if is_long(seen):
+        if found := too_wide(seen):
+            return _refused(source, "zip-bomb", found)
+        return _long_workbook(source, seen, notes)
+    if seen.counts[b"c"] > MAX_CELLS_OF_FORM:
+        return _refused(source, "zip-bomb", f"more than {MAX_CELLS_OF_FORM:,} cells written in an unusual way")
     import openpyxl
 
     try:
@@ -220,7 +230,17 @@ def _workbook(source: SourceFile) -> Grid:
             late = book.epoch.year == 1904
     except Exception as error:  # whatever the library raises on a damaged file means one thing
         return _refused(source, "truncated", f"{type(error).__name__} while reading the workbook")
-    notes = (problem("macro-enabled", Place(source.name)),) if seen.macros else ()
+    return Grid(source, "workbook", pages, epoch_1904=late, problems=notes)
+
+
+def _long_workbook(source: SourceFile, seen: Look, notes: tuple[Problem, ...]) -> Grid:
+    try:
+        sheets, late = quick_sheets(source.content, seen, sheet_parts(source.content))
+    except Exception as error:  # whatever the library raises on a damaged file means one thing
+        return _refused(source, "truncated", f"{type(error).__name__} while reading the workbook")
+    pages = tuple(
+        Page(s.title, s.rows, (), s.hidden, s.hidden_rows, s.percent, s.uncalculated, s.merged) for s in sheets
+    )
     return Grid(source, "workbook", pages, epoch_1904=late, problems=notes)
 
 
@@ -248,7 +268,7 @@ def _page(sheet: Any, part: str, seen: Look) -> Page:
 
 def filled_rows(page: Page) -> Iterator[int]:
     """Positions of the rows that hold anything."""
-    if isinstance(page.rows, PlainRows):
+    if isinstance(page.rows, (PlainRows, SheetRows)):
         yield from page.rows.filled()
         return
     for number, row in enumerate(page.rows):

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
 from datetime import date, datetime
 
@@ -26,6 +26,8 @@ from reporter.problems import Place
 from reporter.record import Reading, ReadingKind
 
 Lane = tuple[int, MappedColumn]
+#: Rows whose texts are taken out at a time.
+_CHUNK = 2_000
 
 
 @dataclass(frozen=True, slots=True)
@@ -222,8 +224,7 @@ class Reader:
             if order in ("day first", "month first") and order != own and own in ("day first", "month first"):
                 self.gathered.add("mapping-differs", place, f"dates are {order}, in the mapping {own}")
         desk = Desk({}, self.grid.source.name)
-        cells_of = (table.page.rows[row] for row in rows)
-        style = style_of((c for cells in cells_of for i in lanes if isinstance(c := at(cells, i), str)), (), desk)
+        style = style_of(_texts(table, lanes), (), desk)
         telling = bool(desk.evidence) and not desk.open
         if telling and style.decimal != self.mapping.numbers.decimal:
             found = f"the decimal mark is {style.decimal!r}, in the mapping {self.mapping.numbers.decimal!r}"
@@ -306,6 +307,14 @@ class Reader:
             found = f"{times[order[at_]].item():%Y-%m-%d %H:%M:%S}, also in row {number}, with other readings"
             self.gathered.add("duplicate-time", self._place(int(order[at_])), found)
         return order[~again]
+
+
+def _texts(table: Table, columns: Sequence[int]) -> Iterator[str]:
+    """The texts of some columns, row by row, as far as they are asked for."""
+    for first in range(table.first, table.last, _CHUNK):
+        cells = table.page.columns(columns, range(first, min(first + _CHUNK, table.last)))
+        with_texts = [own for own in cells if str in map(type, own)]
+        yield from (cell for row in zip(*with_texts, strict=True) for cell in row if isinstance(cell, str))
 
 
 def _put_among(part: _Part, rows: Sequence[int], moments: Sequence[datetime], readings: list[list[Reading]]) -> None:
