@@ -36,6 +36,12 @@ def hidden_row(made: Any) -> None:
     made.active.row_dimensions[5].hidden = True
 
 
+def hidden_columns(made: Any) -> None:
+    rows_on(made.active)
+    for letter in "BC":
+        made.active.column_dimensions[letter].hidden = True
+
+
 def hidden_sheet(made: Any) -> None:
     rows_on(made.active)
     other = made.create_sheet("Old")
@@ -175,6 +181,8 @@ BOOKS = [
          LOG),
     Case("merged headers", "merged title and group cells, three header rows", book(merged), LOG),
     Case("hidden row", "a hidden row among the readings", book(hidden_row), LOG, notes=frozenset({"hidden-read"})),
+    Case("hidden columns", "the columns of NOx and CO are hidden", book(hidden_columns), LOG,
+         notes=frozenset({"hidden-read"}), says=("columns B, C",)),
     Case("hidden sheet", "older readings on a hidden sheet", book(hidden_sheet), LOG,
          answers={**END, "hidden-sheets": "leave out"}),
     Case("all on a hidden sheet", "the only readings on a hidden sheet", book(only_hidden), LOG,
@@ -184,7 +192,7 @@ BOOKS = [
     Case("runs side by side", "three tables beside each other, an empty column between", book(beside), LOG),
     Case("runs side by side without a gap", "two tables that touch", book(beside_close), LOG, stops="time-column"),
     Case("summary sheet", "a sheet of averages beside the readings", book(summary_sheet), LOG,
-         answers={**END, "table": "1"}),
+         answers={**END, "table": "1"}, notes=frozenset({"rows-left-out"}), says=("a table: sheet 'Summary'",)),
     Case("summary above the readings", "a table of averages on the same sheet", book(summary_above), LOG,
          answers={**END, "table": "2"}),
     Case("percent cells", "0.045 shown as 4.50 %", book(percent_cells), LOG),
@@ -193,7 +201,8 @@ BOOKS = [
     Case("serials of 1904", "day numbers, the date system that begins in 1904", book(serials_1904), LOG),
     Case("dates of 1904", "date cells in the date system that begins in 1904", book(dates_1904), LOG),
     Case("numbers as text", "numbers stored as text", book(numbers_as_text), LOG),
-    Case("comments and filters", "a comment at a cell, a filter over the table", book(commented), LOG),
+    Case("comments and filters", "a comment at a cell, a filter over the table", book(commented), LOG,
+         says=("comment at B7: probe moved (invented)",)),
     Case("half-converted dates in cells", "date cells with day and month exchanged beside dates left as text",
          book(half_converted), LOG, stops="date-order"),
     Case("error cells", "#DIV/0! as a cell's value", book(error_cells), LOG,

@@ -16,7 +16,6 @@ from reporter.intake.foreign.reader import LeftOut, Reader
 from reporter.intake.foreign.tables import Table, find_tables
 from reporter.intake.foreign.times import TimeStyle
 from reporter.intake.gather import Gathered
-from reporter.intake.workbook import ranges
 from reporter.logged import Floats, LoggedRows
 from reporter.problems import Place, Problem
 from reporter.record import Readings, SourceFile
@@ -36,6 +35,7 @@ class Report:
     gaps: tuple[tuple[datetime, datetime], ...] = ()
     merged: int = 0
     columns: tuple[str, ...] = ()
+    comments: tuple[str, ...] = ()
 
     def lines(self) -> tuple[str, ...]:
         """The report in lines of plain text."""
@@ -48,6 +48,7 @@ class Report:
             lines.append(f"and {len(self.gaps) - 10} more gaps")
         if self.merged:
             lines.append(f"{self.merged} rows stood twice with the same readings and count once")
+        lines += self.comments[:20]
         lines += [f"left out {out.place.text()}: {out.why}" for out in self.left_out[:20]]
         if len(self.left_out) > 20:
             lines.append(f"and {len(self.left_out) - 20} more rows left out")
@@ -86,6 +87,13 @@ def apply(path: str | Path, mapping: Mapping, *, day: date | None = None) -> For
     return apply_to_grid(read_grid(path), mapping, day=day)
 
 
+def _not_read(grid: Grid, every: Sequence[Table], tables: Sequence[Table]) -> list[LeftOut]:
+    """The tables of a file that are not among those read."""
+    others = [table for table in every if table.last > table.first and all(table is not one for one in tables)]
+    places = (grid.place(table.page, table.header_rows[0], table.columns[0]) for table in others)
+    return [LeftOut(place, f"a table: {table.words()}") for place, table in zip(places, others, strict=True)]
+
+
 def apply_to_grid(
     grid: Grid, mapping: Mapping, *, day: date | None = None, tables: Sequence[Table] | None = None
 ) -> ForeignReadings:
@@ -106,18 +114,19 @@ def apply_to_grid(
     work = Reader(grid, mapping, gathered, day)
     for table in tables:
         work.read(table)
+    work.left_out += _not_read(grid, every, tables)
     rows = work.in_order()
     columns = tuple(letters(tables[0].columns[index]) for index, _ in lanes)
     readings = Readings(empty.channels, columns, rows, Place(grid.source.name, tables[0].page.sheet))
     report = _report(work, rows, [column for _, column in lanes], columns)
+    report = replace(report, comments=tuple(text for table in tables for text in table.page.comment_words()))
     if work.left_out:
         first = work.left_out[0]
         counts = Counter(out.why.split(":")[0] for out in work.left_out)
         found = ", ".join(f"{count} ({why})" for why, count in counts.items())
         gathered.add("rows-left-out", first.place, found)
     for page in {id(table.page): table.page for table in tables}.values():
-        rows_hidden = f"rows {ranges(page.number(row) for row in page.hidden_rows)}" if page.hidden_rows else ""
-        if hidden := "the sheet" if page.hidden else rows_hidden:
+        if hidden := "the sheet" if page.hidden else page.hidden_words():
             gathered.add("hidden-read", gathered.place(page.sheet), hidden)
     work.say_negative()
     if not len(rows) and not gathered.unreadable:

@@ -18,7 +18,7 @@ from reporter.intake.foreign.quick import SheetRows, is_long, quick_sheets, too_
 from reporter.intake.guard import MAX_CELLS as MAX_CELLS_OF_FORM
 from reporter.intake.guard import MAX_COLUMN, Look, look_at
 from reporter.intake.table import Raw
-from reporter.intake.workbook import raw, sheet_parts
+from reporter.intake.workbook import ranges, raw, sheet_parts
 from reporter.problems import Place, Problem, problem
 from reporter.record import SourceFile
 
@@ -55,6 +55,18 @@ class Page:
     percent: frozenset[tuple[int, int]] = frozenset()
     uncalculated: frozenset[tuple[int, int]] = frozenset()
     merged: tuple[tuple[int, int, int, int], ...] = ()
+    hidden_columns: frozenset[int] = frozenset()
+    comments: tuple[tuple[int, int, str], ...] = ()
+
+    def hidden_words(self) -> str:
+        """The hidden rows and columns that hold something, in words; empty where none is hidden."""
+        rows = f"rows {ranges(self.number(row) for row in self.hidden_rows)}" if self.hidden_rows else ""
+        columns = f"columns {', '.join(letters(column) for column in sorted(self.hidden_columns))}"
+        return ", ".join(part for part in (rows, columns if self.hidden_columns else "") if part)
+
+    def comment_words(self) -> tuple[str, ...]:
+        """The comments at cells, each with its cell."""
+        return tuple(f"comment at {self.address(row, column)}: {text}" for row, column, text in self.comments)
 
     def number(self, row: int) -> int:
         """The line or row number people see."""
@@ -262,8 +274,20 @@ def _page(sheet: Any, part: str, seen: Look) -> Page:
     hidden = frozenset(n - 1 for n, dimension in sheet.row_dimensions.items() if dimension.hidden)
     return Page(
         sheet.title, rows, (), sheet.sheet_state != "visible", hidden & filled.keys(),
-        frozenset(percent), frozenset(uncalculated), tuple(merged),
+        frozenset(percent), frozenset(uncalculated), tuple(merged), _hidden_columns(sheet, width), _comments(sheet),
     )  # fmt: skip
+
+
+def _hidden_columns(sheet: Any, width: int) -> frozenset[int]:
+    """Positions of the hidden columns among those that hold something; one entry may stand for several."""
+    spans = [(d.min or d.index, d.max or d.index) for d in sheet.column_dimensions.values() if d.hidden]
+    numbers = [(first, last) for first, last in spans if isinstance(first, int) and isinstance(last, int)]
+    return frozenset(n - 1 for first, last in numbers for n in range(first, min(last, width) + 1))
+
+
+def _comments(sheet: Any) -> tuple[tuple[int, int, str], ...]:
+    cells = (cell for _, cell in sorted(sheet._cells.items()) if cell.comment is not None)
+    return tuple((c.row - 1, c.column - 1, " ".join(str(c.comment.text).split())[:200]) for c in cells)
 
 
 def filled_rows(page: Page) -> Iterator[int]:

@@ -130,6 +130,10 @@ def _chosen(candidates: Sequence[Table], desk: Desk) -> tuple[list[Table], str]:
             desk.say(f"sheet {table.page.sheet!r} is hidden; it is read")
         if hid := sum(1 for row in table.page.hidden_rows if table.first <= row < table.last):
             desk.say(f"{hid} hidden rows of sheet {table.page.sheet!r} are read")
+        if own := [letters(column) for column in table.columns if column in table.page.hidden_columns]:
+            desk.say(f"hidden columns of sheet {table.page.sheet!r} are read like the others: {', '.join(own)}")
+        for text in table.page.comment_words():
+            desk.say(text)
     return group, hidden
 
 
