@@ -8,18 +8,16 @@ from statistics import median
 
 import numpy as np
 
-from reporter.clocks import Floats, Known, Lag, Log, Shift, lag_between, shift_of_gases
+from reporter.clock_words import SAME, SLACK, differs, lag_words, shift_words
+from reporter.clocks import Floats, Known, Lag, Log, lag_between, shift_of_gases
 from reporter.outcome import Exclusion
 from reporter.problems import Place
 from reporter.record import Calibration, Level, Run
 from reporter.reduction.book import Book, Lane
 from reporter.reduction.window import Window, logging_interval, stamps_interval_start
 
-#: A logged value is the entered one within this share of the channel's highest calibration reading; within the
-#: second it may still be the same gas.
-SAME, ALIKE = 0.02, 0.05
-#: Differences of clocks, and the way from an entered time to its gas in the log, below this are not said [s].
-SLACK = 120.0
+#: Within this share of the channel's highest calibration reading, a logged value may still be the same gas.
+ALIKE = 0.05
 #: A log of longer intervals cannot show each gas [s]; a gas is looked for so far from its entered time [s].
 FINE, AROUND = 60.0, 300.0
 #: Lags against the process log are looked for so far either way [s].
@@ -43,17 +41,15 @@ def look_at_clocks(book: Book, tracks: Sequence[Lane], runs: Sequence[Run], wind
     """
     logs = logs_of(book, tracks)
     step = float(logging_interval(book).total_seconds())
-    slack = max(SLACK, step)
     shifted: list[tuple[Calibration, Known, float]] = []
     for file, names in _loggers(book, tracks).items():
         pairs = [(row, known) for row, known in _entered(book, logs) if row.channel.value in names]
         shift = shift_of_gases([known for _, known in pairs], step)
-        differs = shift is not None and not shift.first - slack <= 0.0 <= shift.last + slack
-        if shift is not None and differs:
-            book.trouble("clock-differs", Place(file), _words(shift))
+        by = shift.seconds if shift is not None and differs(shift, step) else 0.0
+        if shift is not None and by:
+            book.trouble("clock-differs", Place(file), shift_words(shift))
         elif step <= FINE:
             _not_logged(book, pairs)
-        by = shift.seconds if shift is not None and differs else 0.0
         shifted += [(row, known, by) for row, known in pairs]
     _in_runs(book, shifted, runs, windows)
     _against_process(book, tracks, runs, logs)
@@ -95,22 +91,6 @@ def _entered(book: Book, logs: Mapping[str, Log]) -> Iterator[tuple[Calibration,
         if row.level.value is not Level.NO2 and name in logs and highest[name] > 0.0:
             near = SAME * highest[name]
             yield row, Known(seconds(row.time.value), row.reading.value, near, logs[name])
-
-
-def _words(shift: Shift) -> str:
-    behind = "behind" if shift.seconds < 0.0 else "ahead of"
-    return (
-        f"the clock of the readings stands {span(shift.seconds)} {behind} that of the calibrations "
-        f"({-shift.seconds:+g} s to be added to the stamps): "
-        f"{shift.found} of {shift.total} calibration readings stand in the log at that shift, {shift.as_stamped} as "
-        f"stamped, at most {shift.elsewhere} at any other; confidence {shift.confidence:.2f}, of 1"
-    )
-
-
-def span(seconds_apart: float) -> str:
-    """A length of time in words."""
-    size = abs(seconds_apart)
-    return f"{size / 60.0:.3g} min" if size >= 60.0 else f"{size:g} s"
 
 
 def _not_logged(book: Book, pairs: Sequence[tuple[Calibration, Known]]) -> None:
@@ -198,14 +178,3 @@ def _about(log: Log, times: Floats, step: float, runs: Sequence[Run]) -> Floats:
     total = np.bincount(place[inside], weights=log.value[used][inside], minlength=len(times))
     count = np.bincount(place[inside], minlength=len(times))
     return np.where(count > 0, total / np.maximum(count, 1), np.nan)
-
-
-def lag_words(lag: Lag, log: str, other: str) -> str:
-    """A lag in words: `log` is what the other leads, or follows."""
-    side = "ahead of" if lag.seconds > 0.0 else "behind"
-    return (
-        f"the clock of {log} stands {span(lag.seconds)} {side} that of {other} "
-        f"({-lag.seconds:+g} s to be added to its stamps): correlation "
-        f"{lag.correlation:.2f} at that lag, {lag.as_stamped:.2f} as stamped, at most {abs(lag.elsewhere):.2f} in size "
-        f"at any other, over {lag.points} points; confidence {lag.confidence:.2f}, of 1"
-    )

@@ -9,6 +9,7 @@ from reporter import record as domain
 from reporter.equation import System
 from reporter.gases import find_gas
 from reporter.intake import checks
+from reporter.intake.clock_hint import clock_hint
 from reporter.intake.gather import Gathered
 from reporter.intake.process import read_process
 from reporter.intake.readings import read_readings
@@ -186,6 +187,10 @@ class _Builder:
         if self.readings is not None and self.readings.rows:
             seconds, at_start = self._interval(), self._item("reading_stamp") == "interval start"
             checks.runs_with_readings(runs, self.readings, gathered, seconds=seconds, at_start=at_start)
+            if gathered.has("run-without-readings"):
+                hint = clock_hint(rows.get("calibrations", ()), self.readings, at_start=at_start)
+                if hint:
+                    gathered.add("clock-differs", gathered.place(self.readings.place.sheet), hint)
             checks.logging_interval(self.readings, seconds, gathered)
         self.reader.say_assumed()
 

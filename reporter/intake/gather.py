@@ -32,6 +32,10 @@ class Gathered:
         if self._count[key] <= LISTED:
             self._problems.append(problem(code, place, found, expected=expected, remedy=remedy))
 
+    def has(self, code: str) -> bool:
+        """Whether a problem of this code was gathered."""
+        return any(p.code == code for p in self._problems)
+
     @property
     def unreadable(self) -> bool:
         """Whether any problem gathered so far makes the file unreadable."""

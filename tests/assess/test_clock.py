@@ -3,15 +3,21 @@
 from __future__ import annotations
 
 import tempfile
+from dataclasses import replace
+from datetime import datetime, timedelta
 from pathlib import Path
+from random import Random
 
 import pytest
 
 from reporter.api import opened
+from reporter.intake.read import read_bytes
 from reporter.outcome import Outcome
+from reporter.record import ProcessLog
 from reporter.rehearse import Fault, Order, Profile, rehearse
 from reporter.rehearse.order import settings
-from tests.record_factory import assessed, calibration, calibrations, event, readings
+from reporter.units import read_unit
+from tests.record_factory import assess, assessed, at, calibration, calibrations, event, readings
 
 SAID = {"clock-differs", "calibration-not-logged", "calibration-gas-in-run"}
 
@@ -44,6 +50,58 @@ def test_the_shift_of_the_truth_is_estimated_within_the_interval(seed: int, inte
         runs = said(made, "calibration-gas-in-run")
         assert len(runs) == 2
         assert "O2 zero" in runs[0]
+
+
+@pytest.mark.parametrize("minutes", [-20, -12, -5, 3, 25])
+def test_clocks_that_are_ahead_or_far_behind(minutes: int, monkeypatch: pytest.MonkeyPatch) -> None:
+    """Minutes the logger is behind the truth."""
+    monkeypatch.setitem(settings()["fault"]["clock-shift"], "minutes", minutes)
+    (words,) = said(outcome(order(21, fault=Fault.CLOCK_SHIFT)), "clock-differs")
+    estimate = float(words.split("(")[1].split(" s to be added")[0])
+    assert abs(estimate - 60.0 * minutes) <= 60.0
+    assert ("behind" if minutes > 0 else "ahead of") in words
+
+
+@pytest.mark.parametrize("minutes", [61, -120])
+def test_a_clock_so_wrong_that_a_run_has_no_readings(minutes: int, monkeypatch: pytest.MonkeyPatch) -> None:
+    """The file cannot be assessed, and what is wrong with it is said all the same."""
+    monkeypatch.setitem(settings()["fault"]["clock-shift"], "minutes", minutes)
+    found = read_bytes("rehearsal.xlsx", rehearse(order(21, fault=Fault.CLOCK_SHIFT)).workbook)
+    assert found.record is None
+    (hint,) = [p.found for p in found.problems if p.code == "clock-differs"]
+    assert abs(float(hint.split("(")[1].split(" s to be added")[0]) - 60.0 * minutes) <= 60.0
+
+
+def process(late: int, *, follows: bool = True) -> ProcessLog:
+    """A load each minute whose steps the oxygen of `loaded` follows; its clock is so many minutes behind."""
+    times = [at("07:30") + timedelta(minutes=k) for k in range(200)]
+    values = [(step(time) if follows else 40.0 + 0.1 * (k % 7),) for k, time in enumerate(times)]
+    units = (read_unit("t/h"),)
+    return ProcessLog(("Load",), units, tuple(t - timedelta(minutes=late) for t in times), tuple(values))
+
+
+def step(time: datetime) -> float:
+    """A load that goes to another height each seven minutes."""
+    return 40.0 + Random(int((time - at("07:00")).total_seconds() // 420)).random() * 13.0
+
+
+def loaded() -> Outcome:
+    return assessed(readings=readings({"NOx": 40.0, "CO": 10.0, "O2": lambda t: 9.0 - step(t) / 10.0, "CO2": 9.0}))
+
+
+@pytest.mark.parametrize("late", [0, 10, -8])
+def test_a_process_log_by_another_clock(late: int) -> None:
+    made = assess(replace(loaded().record, process=process(late)))
+    words = said(made, "clock-differs")
+    assert len(words) == (late != 0)
+    if late:
+        assert words[0].startswith("O2 against Load: the clock of the readings stands ")
+        estimate = float(words[0].split("(")[1].split(" s to be added")[0])
+        assert estimate == -60.0 * late
+
+
+def test_a_process_log_that_nothing_follows_tells_nothing() -> None:
+    assert said(assess(replace(loaded().record, process=process(10, follows=False)))) == []
 
 
 @pytest.mark.parametrize("seed", range(10, 18))

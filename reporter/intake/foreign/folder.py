@@ -13,7 +13,7 @@ from reporter.errors import RecordError
 from reporter.intake.foreign.apply import apply_to_grid
 from reporter.intake.foreign.corrections import Correction, corrections
 from reporter.intake.foreign.grid import Grid, read_grid
-from reporter.intake.foreign.join import join
+from reporter.intake.foreign.join import join, zone_words
 from reporter.intake.foreign.mapping import ENDING, Mapping, differences, differences_of, load
 from reporter.intake.foreign.process_log import ProcessFile, process_of, read_process_file
 from reporter.intake.foreign.tables import Table, find_tables
@@ -109,6 +109,8 @@ class _Files:
                 found = read_process_file(grid, mapping, day=reader.day)
                 self.problems += found.problems
                 self.problems += [] if mapping.has("reading") else strangers(grid, tables, test, mapping.titles)
+                if found.log.times and (words := zone_words(mapping.time.zone, found.log.times[0], test)):
+                    self.problems.append(problem("mapping-against-channels", Place(found.name), words))
                 self.understood += [f"{found.name}: {line}" for line in found.lines]
                 correction = self.clocks.get(found.name)
                 if correction is not None:

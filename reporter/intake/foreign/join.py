@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from datetime import datetime
 from typing import Any
 
 from reporter.intake.foreign.apply import ForeignReadings
@@ -169,13 +170,18 @@ def _stamps(files: Sequence[ForeignReadings], test: dict[str, Any], problems: li
             elif on_sheet and entered.value != found.time.stamp:
                 words = f"{found.time.stamp} in the mapping, {entered.value} on the sheet Test"
                 problems.append(problem("mapping-against-channels", place, words))
-        zone = test.get("time_zone")
-        if found.time.zone and zone is not None and len(found.readings.times):
-            moment = found.readings.times[0].item()
-            try:
-                same = zone_of(zone.value).utcoffset(moment) == zone_of(found.time.zone).utcoffset(moment)
-            except ValueError:
-                same = zone.value == found.time.zone
-            if not same:
-                words = f"times converted to {found.time.zone} by the mapping, {zone.value} on the sheet Test"
-                problems.append(problem("mapping-against-channels", place, words))
+        if len(found.readings.times):
+            words = zone_words(found.time.zone, found.readings.times[0].item(), test)
+            problems += [problem("mapping-against-channels", place, words)] if words else []
+
+
+def zone_words(own: str, moment: datetime, test: dict[str, Any]) -> str:
+    """That times were converted to another zone than that of the sheet Test, in words; empty where they were not."""
+    zone = test.get("time_zone")
+    if not own or zone is None:
+        return ""
+    try:
+        same = zone_of(zone.value).utcoffset(moment) == zone_of(own).utcoffset(moment)
+    except ValueError:
+        same = zone.value == own
+    return "" if same else f"times converted to {own} by the mapping, {zone.value} on the sheet Test"

@@ -139,11 +139,9 @@ def _chosen(candidates: Sequence[Table], desk: Desk) -> tuple[list[Table], str]:
 
 def _mapping(grid: Grid, tables: Sequence[Table], hidden: str, desk: Desk) -> Mapping | None:
     table = tables[0]
-    base = time_base(grid, tables, desk)
-    if base is None:
-        return None
     of_plant = is_plant_log(table, desk)
-    if of_plant is None:
+    base = None if of_plant is None else time_base(grid, tables, desk, of_plant=of_plant)
+    if base is None:
         return None
     if of_plant:
         return _of_plant(grid, tables, base, hidden=hidden, desk=desk)

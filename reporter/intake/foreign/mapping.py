@@ -26,7 +26,9 @@ FORM = 1
 ENDING = ".map.toml"
 #: Basis and stamp that are those of the field workbook.
 AS_ENTERED = "as the field workbook says"
-_STAMPS = ("interval start", "interval end", AS_ENTERED)
+#: Stamp of a plant's own log that is the moment of its values.
+MOMENT = "moment"
+_STAMPS = ("interval start", "interval end", AS_ENTERED, MOMENT)
 _ORDERS = ("year first", "day first", "month first", "serial 1900", "serial 1904")
 _BASES = ("dry", "wet", AS_ENTERED)
 _USES = ("time", "reading", "process", "ignore")
@@ -161,6 +163,8 @@ def parse(data: dict[str, Any]) -> Mapping:
     names = [(column.use, column.channel) for column in columns if column.use in ("reading", "process")]
     if not names or len(set(names)) != len(names):
         raise ValueError("column: no reading and no process column, or two of one name")
+    if style.stamp == MOMENT and any(use == "reading" for use, _ in names):
+        raise ValueError(f"stamp: {MOMENT!r} where readings of a gas stand")
     if sum(1 for column in columns if column.use == "time") not in (1, 2):
         raise ValueError("column: one or two columns of use 'time'")
     return Mapping(

@@ -8,7 +8,7 @@ from datetime import UTC, datetime, timedelta, tzinfo
 from itertools import pairwise
 
 from reporter.intake.foreign.grid import Grid, letters
-from reporter.intake.foreign.mapping import AS_ENTERED
+from reporter.intake.foreign.mapping import AS_ENTERED, MOMENT
 from reporter.intake.foreign.model import Desk, Option
 from reporter.intake.foreign.tables import Table, at, blank, is_timelike
 from reporter.intake.foreign.times import (
@@ -25,6 +25,7 @@ from reporter.intake.table import Raw, show
 
 #: Stamps looked at where only their form matters.
 ENOUGH = 5000
+_AS_ENTERED = Option(AS_ENTERED, "the item Reading stamp of the sheet Test decides")
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,8 +56,11 @@ def _day_number(cell: Raw) -> bool:
     return isinstance(cell, float) and (0.0 <= cell < 1.0 or 30_000.0 < cell < 60_000.0)
 
 
-def time_base(grid: Grid, tables: Sequence[Table], desk: Desk) -> TimeBase | None:
-    """The time base of tables of one shape; None while its columns are open."""
+def time_base(grid: Grid, tables: Sequence[Table], desk: Desk, *, of_plant: bool = False) -> TimeBase | None:
+    """The time base of tables of one shape; None while its columns are open.
+
+    In a plant's own log (`of_plant`) a stamp may be the moment of a value.
+    """
     table = tables[0]
     columns = _columns(grid, table, desk)
     if not columns:
@@ -70,7 +74,8 @@ def time_base(grid: Grid, tables: Sequence[Table], desk: Desk) -> TimeBase | Non
     if order and all(stamp is None for part in stamps[-1:] for stamp in part):
         asks = "These times cannot be read. Export the file with dates as 2026-04-20 and times as 09:50"
         desk.ask("time-form", asks, repr(show(cells[-1][0])) if cells[-1] else "no time", (), place)
-    stamp = _stamp(grid, table, columns, desk)
+    other = Option(MOMENT, "the value stood so at 09:00") if of_plant else _AS_ENTERED
+    stamp = _stamp(grid, table, columns, desk, other)
     zone = _zone([s for part in stamps for s in part if s is not None], desk)
     day = "" if not order else _day([s for part in stamps for s in part if s is not None], desk)
     if order:
@@ -142,7 +147,7 @@ def _dated(values: Sequence[Raw]) -> bool:
     )
 
 
-def _stamp(grid: Grid, table: Table, columns: Sequence[int], desk: Desk) -> str:
+def _stamp(grid: Grid, table: Table, columns: Sequence[int], desk: Desk, other: Option) -> str:
     headers = dict(zip(table.columns, table.headers, strict=True))
     text = " ".join(headers[column] for column in columns)
     said = stamp_of(text)
@@ -152,7 +157,7 @@ def _stamp(grid: Grid, table: Table, columns: Sequence[int], desk: Desk) -> str:
     options = (
         Option("interval start", "a stamp of 09:00 covers the time from 09:00"),
         Option("interval end", "a stamp of 09:00 covers the time up to 09:00"),
-        Option(AS_ENTERED, "the item Reading stamp of the sheet Test decides"),
+        other,
     )
     place = grid.place(table.page, table.header_rows[0], columns[-1])
     asks = "Does a stamp stand for the start or for the end of its interval?"

@@ -19,7 +19,7 @@ from reporter.intake.foreign.process_words import process_in, split_name
 
 ROOT = Path(__file__).resolve().parents[3]
 SAMPLE = ROOT / "sample_inputs" / "valid" / "gas_boiler_us.xlsx"
-MOMENTS = {"stamp": "as the field workbook says"}
+MOMENTS = {"stamp": "moment"}
 START = datetime(2026, 4, 14, 8, 0)
 #: Steam flow each quarter of an hour: it rises by 0.1 each time.
 STEAM = [40.0 + 0.1 * k for k in range(24)]
@@ -95,6 +95,12 @@ def test_the_mapping_is_read_back_as_it_was(tmp_path: Path) -> None:
     (tmp_path / "bad.map.toml").write_text(dump(mapping).replace('channel = "Steam flow"\n', ""), encoding="utf-8")
     with pytest.raises(RecordError, match="channel"):
         load(tmp_path / "bad.map.toml")
+    mixed = dump(mapping).replace(
+        'use = "ignore"', 'use = "reading"\nchannel = "O2"\ngas = "o2"\nunit = "%"\nbasis = "dry"'
+    )
+    (tmp_path / "mixed.map.toml").write_text(mixed, encoding="utf-8")
+    with pytest.raises(RecordError, match="moment"):
+        load(tmp_path / "mixed.map.toml")
     with pytest.raises(ValueError, match="form"):
         parse({"form": 0})
 
@@ -117,7 +123,7 @@ def test_gases_beside_a_load_are_asked_about() -> None:
     assert asked(seen(content)) == {"whose-log"}
     uses = [c.use for c in mapping_of(seen(content, MOMENTS | {"whose-log": "plant"})).columns]
     assert uses == ["time", "process", "process", "process"]
-    other = mapping_of(seen(content, MOMENTS | {"whose-log": "analyzers"}))
+    other = mapping_of(seen(content, {"stamp": "interval end", "whose-log": "analyzers"}))
     assert [c.use for c in other.columns] == ["time", "ignore", "ignore", "reading"]
 
 
@@ -149,11 +155,18 @@ def test_values_of_an_interval_stand_at_its_middle(tmp_path: Path) -> None:
 
 
 def test_a_clock_in_another_zone_is_converted(tmp_path: Path) -> None:
-    """The plant logs in UTC, five hours ahead of the clock of the test."""
-    answers = MOMENTS | {"time-zone": "UTC-05:00"}
-    outcome = opened(folder(tmp_path / "test", plant(zone="Z", hours=5), answers))
+    """The plant logs in UTC, six hours ahead of the clock of the test."""
+    answers = MOMENTS | {"time-zone": "UTC-06:00"}
+    outcome = opened(folder(tmp_path / "test", plant(zone="Z", hours=6), answers))
     value = outcome.ledger["run.1.process.steam_flow"].value
     assert value == pytest.approx(mean("09:00", "10:00"), rel=1e-14)
+
+
+def test_a_zone_that_is_not_that_of_the_test_stops(tmp_path: Path) -> None:
+    answers = MOMENTS | {"time-zone": "UTC+03:00"}
+    found = read_input(folder(tmp_path / "test", plant(zone="Z", hours=5), answers))
+    assert found.record is None
+    assert [p.code for p in found.problems if "UTC+03:00" in p.found] == ["mapping-against-channels"]
 
 
 def test_the_clock_of_the_plant_may_be_corrected(tmp_path: Path) -> None:
