@@ -39,7 +39,7 @@ from reporter.resources import table_text
 
 _GUM = Citation("gum", "5.1.2")
 _TYPICAL = Citation("practice", "", "typical composition")
-_WATER = Citation("practice", "", "within 1 percent H2O, as Method 4 asks of an estimate")
+_WATER = Citation("practice", "", "1 % H2O")
 _ALLOWED = (
     "Where oxygen and CO2 are held against the line of the fuel, the calibration error that the method accepts is part "
     "of an uncertainty that was not entered, as a rectangular distribution."
