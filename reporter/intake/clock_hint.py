@@ -10,7 +10,7 @@ import numpy as np
 from reporter.clock_words import SAME, differs, shift_words
 from reporter.clocks import Known, Log, shift_of_gases
 from reporter.intake.rows import Filled
-from reporter.record import Level, ReadingKind, Readings
+from reporter.record import Level, Readings
 
 _EPOCH = datetime(2000, 1, 1)
 
@@ -34,8 +34,7 @@ def clock_hint(calibrations: Sequence[Filled], readings: Readings, *, at_start: 
     begin = stamps if at_start else stamps - step
     known: list[Known] = []
     for name in readings.channels:
-        column = readings.column(name)
-        log = Log(begin, begin + step, np.where(column.is_kind(ReadingKind.NUMBER), column.values, np.nan))
+        log = Log(begin, begin + step, readings.column(name).measured)
         rows = [row for row in calibrations if row.text("channel") == name and {"time", "reading"} <= row.values.keys()]
         highest = max((abs(row.values["reading"].value) for row in rows), default=0.0)
         known += [
