@@ -163,17 +163,29 @@ def _channel(files: Sequence[File], name: str, grid: Clockwork, made: Common) ->
     if not holding:
         empty = Series(*(np.array([], dtype=np.int64),) * 2, np.array([]), np.array([], dtype=np.uint8))
         return _Channel(name, (), (), None, average(empty, grid))
+    stamps, column = _alone(holding[0][1], name) if len(holding) == 1 else _together(holding, name, made)
+    series = Series(stamps - lengths(stamps, at_start=False), stamps, column.values, column.kinds)
+    names = tuple(file.name for _, file in holding)
+    return _Channel(name, names, intervals_of(stamps), column, average(series, grid))
+
+
+def _alone(file: File, name: str) -> tuple[Ticks, LoggedColumn]:
+    """Stamps and readings of a channel that one file has."""
+    index = next(index for index, own in file.own.items() if own == name)
+    column = file.readings.logged.columns[index]
+    source = np.zeros(len(column), dtype=np.int64) if column.source is None else column.source
+    return ticks(file.readings.times), replace(column, sources=file.readings.sources(index), source=source)
+
+
+def _together(holding: Sequence[tuple[int, File]], name: str, made: Common) -> tuple[Ticks, LoggedColumn]:
+    """Stamps and readings of a channel of several files; what they say differently is a clash."""
     only = [(file.readings, {index: own for index, own in file.own.items() if own == name}) for _, file in holding]
     rows, clashes = merged(only, [name])
     for place, clash in clashes.items():
         number = holding[place][0]
         known = made.clashes.setdefault(number, Clash(0, clash.first))
         known.count, known.first = known.count + clash.count, min(known.first, clash.first)
-    stamps = ticks(rows.times)
-    column = rows.columns[0]
-    series = Series(stamps - lengths(stamps, at_start=False), stamps, column.values, column.kinds)
-    names = tuple(file.name for _, file in holding)
-    return _Channel(name, names, intervals_of(stamps), column, average(series, grid))
+    return ticks(rows.times), rows.columns[0]
 
 
 def _say(made: Common, channel: _Channel, own: Averages) -> None:

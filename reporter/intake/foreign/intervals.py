@@ -146,7 +146,8 @@ def intervals_of(stamps: Ticks) -> tuple[float, ...]:
     regular = _regular(steps)
     chosen = steps[regular] if regular.any() else np.array([np.sort(steps)[len(steps) // 2]])
     found: list[float] = []
-    for step in dict.fromkeys(chosen.tolist()):
+    changed = np.append(0, np.flatnonzero(np.diff(chosen)) + 1)
+    for step in dict.fromkeys(chosen[changed].tolist()):
         size = _fitting(step / SECOND)
         if not any(abs(size - known) <= ALIKE * min(size, known) for known in found):
             found.append(size)
@@ -209,12 +210,18 @@ def _decided(series: Series, parts: _Parts, grid: Clockwork, too_long: int) -> A
     """What each common interval holds."""
     kind, value = series.kind[parts.row], series.value[parts.row]
 
+    present = np.bincount(kind, minlength=len(_CODE))
+
     def time_of(*codes: int) -> Floats:
+        if not present[list(codes)].any():
+            return np.zeros(grid.count)
         chosen = np.isin(kind, codes)
         weights = parts.length[chosen].astype(np.float64)
         return np.bincount(parts.cell[chosen], weights=weights, minlength=grid.count).astype(np.float64)
 
     def mean_of(*codes: int) -> Floats:
+        if not present[list(codes)].any():
+            return np.full(grid.count, np.nan)
         chosen = np.isin(kind, codes)
         weights = parts.length[chosen] * value[chosen]
         total = np.bincount(parts.cell[chosen], weights=weights, minlength=grid.count)
