@@ -101,9 +101,9 @@ HOSTILE = {
 def test_a_hostile_file_is_refused_in_well_under_half_a_second(name: str) -> None:
     content, code = HOSTILE[name]
     read_bytes("warm.xlsx", b"")
-    start = time.perf_counter()
+    start = time.process_time()
     result = read_bytes("hostile.xlsx", content)
-    seconds = time.perf_counter() - start
+    seconds = time.process_time() - start
     assert result.record is None
     assert [p.code for p in result.problems] == [code]
     assert seconds < 0.5
@@ -135,16 +135,16 @@ def test_the_far_cell_is_named() -> None:
 
 def test_a_stray_cell_in_the_last_allowed_row_costs_nothing() -> None:
     content = in_runs(b"</sheetData>", b'<row r="1048576"><c r="A1048576" t="str"><v> </v></c></row></sheetData>')
-    start = time.perf_counter()
+    start = time.process_time()
     assert read_bytes("stray.xlsx", content).record is not None
-    assert time.perf_counter() - start < 1.0
+    assert time.process_time() - start < 1.0
 
 
 def test_a_hidden_column_as_wide_as_a_number_can_say_costs_nothing() -> None:
     columns = b'<cols><col min="1" max="2000000000" hidden="1" width="9"/></cols><sheetData>'
-    start = time.perf_counter()
+    start = time.process_time()
     result = read_bytes("wide.xlsx", in_runs(b"<sheetData>", columns))
-    assert time.perf_counter() - start < 1.0
+    assert time.process_time() - start < 1.0
     assert [(p.code, p.found) for p in result.problems] == [("hidden-read", "columns A, B, C")]
 
 

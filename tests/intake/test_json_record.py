@@ -192,9 +192,9 @@ def test_a_huge_number_is_no_traceback() -> None:
     ],
 )
 def test_json_made_to_take_time_and_memory_is_refused_at_once(content: bytes) -> None:
-    start = time.perf_counter()
+    start = time.process_time()
     assert "bad-json" in {code for code, _ in problems(content)}
-    assert time.perf_counter() - start < 1.0
+    assert time.process_time() - start < 1.0
 
 
 def test_halves_of_characters_become_question_marks() -> None:

@@ -117,9 +117,9 @@ def test_a_document_that_can_be_drawn_is_counted(name: str, caplog: pytest.LogCa
 
 @pytest.mark.parametrize("name", REFUSED)
 def test_a_document_that_cannot_be_drawn_is_none(name: str, caplog: pytest.LogCaptureFixture) -> None:
-    start = time.perf_counter()
+    start = time.process_time()
     assert page_count(REFUSED[name]) == 0
-    assert time.perf_counter() - start < 2.0
+    assert time.process_time() - start < 2.0
     assert caplog.records == []
 
 

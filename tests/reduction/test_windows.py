@@ -39,7 +39,7 @@ def plainly(start: datetime, stop: datetime, spans: list[tuple[datetime, datetim
     return [
         minute
         for minute in minutes(start, stop)
-        if minute not in (whole if start <= minute and minute + MINUTE <= stop else partly)
+        if minute not in (whole if start < minute and minute + MINUTE < stop else partly)
     ]
 
 

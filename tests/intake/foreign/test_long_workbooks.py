@@ -152,9 +152,9 @@ def stray(cell: bytes) -> bytes:
 def test_a_stray_cell_is_refused_before_its_rectangle_is_laid_out(
     cell: bytes, both: Callable[[bytes], tuple[Grid, Grid]]
 ) -> None:
-    start = time.perf_counter()
+    start = time.process_time()
     usual, fast = both(stray(cell))
-    assert time.perf_counter() - start < 3.0
+    assert time.process_time() - start < 3.0
     assert usual.pages
     assert [p.code for p in fast.problems] == ["zip-bomb"]
     assert "fields" in fast.problems[0].found
