@@ -10,6 +10,7 @@ from split_tests import Logger, changing, folder, means, source
 
 from reporter.api import assessed, issue_time, read_input
 from reporter.intake.read import ReadResult
+from reporter.logged import is_kind
 from reporter.outcome import Outcome
 from reporter.output.phrases import load_phrases
 from reporter.output.view.desk import Desk
@@ -70,7 +71,7 @@ def test_an_interval_that_was_entered_wins_and_the_coarser_channel_stays_blank(t
     made = folder(tmp_path / "day", {"fine": FINE, "coarse": COARSE}, keep=("Logging interval",))
     found = read_input(made)
     own = readings(found)
-    assert own.column("O2").is_kind(ReadingKind.BLANK).all()
+    assert is_kind(own.column("O2").kinds, ReadingKind.BLANK).all()
     assert own.column("NOx").values == pytest.approx(source()[1].readings.column("NOx").values, rel=0, abs=0)
     said = [p.found for p in found.problems if p.code == "interval-blank"]
     assert len(said) == 2
@@ -91,7 +92,7 @@ def test_an_interval_that_changes_inside_a_file(first: int, second: int, tmp_pat
         whole = len(values) // size * size
         truth = np.mean(values[:whole].reshape(-1, size), axis=1)
         made = own.column(name)
-        assert made.is_kind(ReadingKind.NUMBER)[: len(truth)].all()
+        assert is_kind(made.kinds, ReadingKind.NUMBER)[: len(truth)].all()
         assert made.values[: len(truth)] == pytest.approx(truth, rel=1e-12, abs=1e-12)
     words = f"averaged to {step // 60} min, coverage 100 %"
     assert sum(words in line for line in found.understood) == 4
