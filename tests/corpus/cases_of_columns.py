@@ -60,6 +60,8 @@ SPELLINGS = [
     Case("a column of a status", "`NOx status` beside NOx", one_more("NOx status", ["0"] * 60),
          answers={**END, "column.F.gas": "ignore"}),
     Case("other columns", "a load and a temperature between the readings", one_more("Load [MW]", ["3.1"] * 60)),
+    Case("remarks beside the readings", "`PORT B` in a column of remarks", one_more(
+        "Remark", ["PORT B" if k == 20 else "" for k in range(60)]), says=("'PORT B' in F22",)),
     Case("time last", "the time in the last column", "\n".join(
         ",".join([*line.split(",")[1:], line.split(",")[0]]) for line in text().splitlines()).encode() + b"\n"),
     Case("start and end", "a column for the start and one for the end of each interval", "\n".join([

@@ -25,7 +25,7 @@ from reporter.intake.foreign.words import (
     without_correction,
 )
 from reporter.intake.sheets import sentinels
-from reporter.intake.table import Raw, clean
+from reporter.intake.table import Raw, clean, show
 from reporter.problems import Place
 
 _SUFFIX = re.compile(r"^[<>]?\s*[+\-−]?[\d.,' ]*\d\s*([^\d\s.,].*)$")
@@ -33,6 +33,8 @@ _SUFFIX = re.compile(r"^[<>]?\s*[+\-−]?[\d.,' ]*\d\s*([^\d\s.,].*)$")
 _UNITS = ("ppm", "%", "mg/m3", "ppb")
 #: A percentage below this everywhere may be a fraction.
 _FRACTION_BELOW = 0.3
+#: Words of a column of remarks that are said one by one.
+WORDS = 5
 
 
 @dataclass(frozen=True, slots=True)
@@ -89,6 +91,7 @@ class Columns:
         if not filled:
             return "nothing stands in it", ""
         if not numbers and not named:
+            self._say_words(lane)
             return "words only", ""
         if named and (signal := signal_in(lane.header)) and not units_in(lane.header):
             return self._signal(lane, signal), ""
@@ -119,6 +122,13 @@ class Columns:
         key = f"column.{letters(lane.column)}.signal"
         answer = self.desk.ask(key, asks, f"{signal} in {lane.header!r}", options, self.place(lane.column))
         return "an analyzer's output, as answered" if answer else ""
+
+    def _say_words(self, lane: Lane) -> None:
+        """Say what a column of words holds, such as a change of port, each with its cell."""
+        page, rows = self.table.page, zip(self.rows, lane.cells, strict=True)
+        said = [f"{show(cell)[:60]!r} in {page.address(row, lane.column)}" for row, cell in rows if not blank(cell)]
+        more = f" and {len(said) - WORDS} more" if len(said) > WORDS else ""
+        self.desk.say(f"{lane.name} holds words: {', '.join(said[:WORDS])}{more}")
 
     def _last_named(self) -> int:
         pairs = zip(self.table.columns, self.table.headers, strict=True)
