@@ -172,10 +172,18 @@ def decoded(content: bytes) -> tuple[str, str]:
 
 
 def _text(source: SourceFile) -> Grid:
+    first = source.content[: 4 * SAMPLE_BYTES]
+    if len(first) < source.size:
+        first = first[: first.rfind(b"\n") + 1] or first
+    start, _ = decoded(first)
+    if "\x00" in start:
+        return _refused(source, "not-a-workbook", "a file of bytes that are no text")
+    delimiter = delimiter_of(start)
+    if source.content.count(delimiter.encode()) + source.content.count(b"\n") > MAX_CELLS:
+        return _refused(source, "zip-bomb", f"more than {MAX_CELLS:,} cells")
     text, encoding = decoded(source.content)
     if "\x00" in text:
         return _refused(source, "not-a-workbook", "a file of bytes that are no text")
-    delimiter = delimiter_of(text)
     cut = not text.endswith(("\n", "\r"))
     plain = plain_rows(text, delimiter)
     if plain is not None and max(plain.widths, default=0) <= MAX_COLUMN and sum(plain.widths) <= MAX_CELLS:
