@@ -7,7 +7,7 @@ Rows that are anything but ordinary are left to them.
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -41,6 +41,10 @@ class Coded:
         """The same of cells, none of which is yes or no (these equal one and nought)."""
         found = {cell: code for code, cell in enumerate(dict.fromkeys(cells))}
         return cls(list(found), np.fromiter(map(found.__getitem__, cells), np.int64, len(cells)))
+
+    def cells(self) -> list[Raw]:
+        """The cells as they stand."""
+        return [self.distinct[code] for code in self.codes.tolist()]
 
     def where(self, marked: Sequence[bool]) -> Where:
         """The rows whose cell is marked."""
@@ -86,25 +90,37 @@ def ordinary_rows(
         rows = rows[rows != len(page.rows) - 1]
     if usual:
         rows = rows[np.array(page.widths(table.first, table.last), dtype=np.int64)[rows - table.first] == usual]
-    cells = dict(zip(table.columns, page.columns(table.columns, rows.tolist()), strict=True))
-    sound = _sound(cells, rows, split=isinstance(page.rows, PlainRows))
-    if not sound.all():
-        rows = rows[sound]
-        cells = {column: [own[i] for i in np.flatnonzero(sound).tolist()] for column, own in cells.items()}
+    rows, cells, lanes = _cells(table, rows, readings)
     stamps = tuple(stamps_of(cells[column], order) for column in times)
-    lanes = {column: Coded.of(cells[column]) for column in readings}
     filled = np.zeros(len(rows), dtype=np.int64)
     for own in lanes.values():
         filled += ~own.where([blank(cell) for cell in own.distinct])
     several = (filled != 1) | (len(readings) <= 1)
     read = np.logical_and.reduce([s.read for s in stamps])
-    return Ordinary(rows, stamps, lanes).take(read & several & ~_foot(cells, len(rows)))
+    texts = (cells[column] if column in cells else lanes[column].cells() for column in table.columns)
+    return Ordinary(rows, stamps, lanes).take(read & several & ~_foot(texts, len(rows)))
 
 
-def _sound(cells: Mapping[int, Sequence[Raw]], rows: Counts, *, split: bool) -> Where:
-    """Where no cell is a yes or no, and none holds further lines; `split` where neither can be."""
+def _cells(
+    table: Table, rows: Counts, readings: Sequence[int]
+) -> tuple[Counts, dict[int, list[Raw]], dict[int, Coded]]:
+    """The rows that hold plain cells alone, their cells by column, and those of the readings coded."""
+    page, where = table.page, rows.tolist()
+    if isinstance(page.rows, PlainRows) and where and (coded := page.rows.coded(readings, where)) is not None:
+        others = [column for column in table.columns if column not in readings]
+        lanes = {column: Coded(list(own), codes) for column, (own, codes) in zip(readings, coded, strict=True)}
+        return rows, dict(zip(others, page.columns(others, where), strict=True)), lanes
+    cells = dict(zip(table.columns, page.columns(table.columns, where), strict=True))
+    if not isinstance(page.rows, PlainRows) and not (sound := _sound(cells, rows)).all():
+        rows = rows[sound]
+        cells = {column: [own[i] for i in np.flatnonzero(sound).tolist()] for column, own in cells.items()}
+    return rows, cells, {column: Coded.of(cells[column]) for column in readings}
+
+
+def _sound(cells: Mapping[int, Sequence[Raw]], rows: Counts) -> Where:
+    """Where no cell is a yes or no, and none holds further lines."""
     sound = np.ones(len(rows), dtype=bool)
-    for own in cells.values() if not split else ():
+    for own in cells.values():
         types = set(map(type, own))
         if bool in types:
             sound &= np.array([not isinstance(cell, bool) for cell in own], dtype=bool)
@@ -113,10 +129,10 @@ def _sound(cells: Mapping[int, Sequence[Raw]], rows: Counts, *, split: bool) -> 
     return sound
 
 
-def _foot(cells: Mapping[int, Sequence[Raw]], size: int) -> Where:
+def _foot(columns: Iterable[Sequence[Raw]], size: int) -> Where:
     """Where the first filled cell of a row is the first word of an average or the like."""
     foot, open_ = np.zeros(size, dtype=bool), np.ones(size, dtype=bool)
-    for own in cells.values():
+    for own in columns:
         where = np.flatnonzero(open_).tolist()
         some = own if len(where) == size else [own[i] for i in where]
         if all(isinstance(cell, str) and cell[:1].isdigit() for cell in some):

@@ -9,6 +9,7 @@ from dataclasses import dataclass, field, replace
 from pathlib import Path
 from typing import Any
 
+from reporter.collecting import without_collecting
 from reporter.errors import RecordError
 from reporter.intake.foreign.apply import apply_to_grid
 from reporter.intake.foreign.corrections import Correction, corrections
@@ -146,6 +147,7 @@ def _no_mapping(grid: Grid, mappings: Sequence[Mapping], fitting: Sequence[Mappi
     return problem("mapping-missing", Place(grid.source.name), found)
 
 
+@without_collecting()
 def read_folder(path: str | Path, mapping: str | Path | None = None) -> ReadResult:
     """Read a folder as one test.
 

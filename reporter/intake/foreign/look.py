@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 
+from reporter.collecting import without_collecting
 from reporter.errors import RecordError
 from reporter.intake.foreign.columns import Columns, Lane, mapped
 from reporter.intake.foreign.grid import Grid, letters, read_grid
@@ -57,6 +58,7 @@ def look(path: str | Path, answers: Answers[str, str] | None = None) -> Look:
     return look_at_grid(read_grid(path), answers or {})
 
 
+@without_collecting()
 def look_at_grid(grid: Grid, answers: Answers[str, str]) -> Look:
     """The same for a grid already read."""
     desk = Desk(answers, grid.source.name)
