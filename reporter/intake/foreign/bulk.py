@@ -39,6 +39,9 @@ class Coded:
     @classmethod
     def of(cls, cells: Sequence[Raw]) -> Coded:
         """The same of cells, none of which is yes or no (these equal one and nought)."""
+        if set(map(type, cells)) == {float}:
+            each, codes = np.unique(np.array(cells, dtype=np.float64), return_inverse=True)
+            return cls(each.tolist(), codes)
         found = {cell: code for code, cell in enumerate(dict.fromkeys(cells))}
         return cls(list(found), np.fromiter(map(found.__getitem__, cells), np.int64, len(cells)))
 

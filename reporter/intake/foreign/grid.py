@@ -84,9 +84,15 @@ class Page:
         own = self.rows.widths if isinstance(self.rows, (PlainRows, SheetRows)) else list(map(len, self.rows))
         return own[first:last]
 
-    def wordy(self, row: int) -> bool:
-        """Whether a row may hold words; a quick look before a thorough one."""
-        return not isinstance(self.rows, (PlainRows, SheetRows)) or self.rows.wordy(row)
+    def wordy(self) -> list[int]:
+        """The rows that may hold a header, by a quick look before a thorough one."""
+        return self.rows.wordy() if isinstance(self.rows, (PlainRows, SheetRows)) else list(filled_rows(self))
+
+    @property
+    def end(self) -> int:
+        """One past the last row that holds anything."""
+        own = self.rows
+        return own.end if isinstance(own, (PlainRows, SheetRows)) else max(filled_rows(self), default=-1) + 1
 
     def address(self, row: int, column: int) -> str:
         """A cell as people name it: column letter and row or line, e.g. ``C12``."""

@@ -63,12 +63,23 @@ class PlainRows(Sequence[tuple[str, ...]]):
         """Positions of the rows that hold more than delimiters and blanks."""
         return (number for number, line in enumerate(self.lines) if line.replace(self.delimiter, "").strip())
 
-    def wordy(self, row: int) -> bool:
-        """Whether a row holds a letter, or the digits that may stand for O2: a header holds either."""
-        line, mark = self.lines[row], self.delimiter
-        if line.isascii() and line.lower() == line.upper() and (mark == "\t" or "\t" not in line):
-            return f"{mark}02{mark}" in f"{mark}{line.replace(' ', '')}{mark}"
-        return _LETTER.search(line) is not None or any(cell.strip() in _ZEROES for cell in self[row])
+    def wordy(self) -> list[int]:
+        """Positions of the rows with a letter, or the digits that may stand for O2: a header holds either."""
+        mark = self.delimiter
+        zero, found = f"{mark}02{mark}", []
+        for number, line in enumerate(self.lines):
+            if line.isascii() and line.lower() == line.upper() and (mark == "\t" or "\t" not in line):
+                if zero in f"{mark}{line.replace(' ', '')}{mark}":
+                    found.append(number)
+            elif _LETTER.search(line) or any(cell.strip() in _ZEROES for cell in line.split(mark)):
+                found.append(number)
+        return found
+
+    @property
+    def end(self) -> int:
+        """One past the last row that holds more than delimiters and blanks."""
+        rows = range(len(self.lines), 0, -1)
+        return next((row for row in rows if self.lines[row - 1].replace(self.delimiter, "").strip()), 0)
 
     def columns(self, columns: Sequence[int], rows: Sequence[int]) -> list[list[str | None]]:
         """The cells of some columns in some rows, None where a row is short."""

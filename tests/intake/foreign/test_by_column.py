@@ -171,6 +171,9 @@ def test_lines_without_quotation_marks_are_rows_as_the_csv_module_reads_them(tex
     assert [rows[i] for i in range(len(rows))] == expected
     assert rows.widths == [len(row) for row in expected]
     assert [*rows.filled()] == [n for n, row in enumerate(expected) if any(cell.strip() for cell in row)]
+    assert rows.end == max(rows.filled(), default=-1) + 1
+    lettered = [n for n, row in enumerate(expected) if any(any(map(str.isalpha, cell)) for cell in row)]
+    assert set(lettered) <= set(rows.wordy())
     where = range(len(expected))
     for column, cells in enumerate(rows.columns(range(4), where)):
         assert cells == [row[column] if column < len(row) else None for row in expected]
