@@ -16,6 +16,7 @@ from reporter.intake.dates import Fault
 from reporter.intake.foreign.lines import PlainRows
 from reporter.intake.foreign.moments import Stamps, stamps_of
 from reporter.intake.foreign.numbers import NumberStyle
+from reporter.intake.foreign.sort import usual_length
 from reporter.intake.foreign.tables import Table, blank
 from reporter.intake.foreign.wording import read_cell
 from reporter.intake.foreign.words import is_foot
@@ -102,6 +103,14 @@ def ordinary_rows(
     read = np.logical_and.reduce([s.read for s in stamps])
     texts = (cells[column] if column in cells else lanes[column].cells() for column in table.columns)
     return Ordinary(rows, stamps, lanes).take(read & several & ~_foot(texts, len(rows)))
+
+
+def rows_known(table: Table, times: Sequence[int], readings: Sequence[int], order: str) -> list[int]:
+    """The rows of a long table that are surely readings; none of a short one."""
+    if table.last - table.first < LONG:
+        return []
+    known = ordinary_rows(table, times, readings, order, usual=usual_length(table))
+    return list(known.rows.tolist())
 
 
 def _cells(
