@@ -116,7 +116,7 @@ def total(series: Any) -> Any:
     if array.dtype == object:
         return reduce(lambda a, b: a + b, array)
     if array.ndim == 1:
-        return math.fsum(array)
+        return math.fsum(array.tolist())
     return np.sum(array, axis=0)
 
 

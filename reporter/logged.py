@@ -141,6 +141,10 @@ class LoggedColumn:
     def __hash__(self) -> int:
         return hash((self.values.tobytes(), self.kinds.tobytes()))
 
+    def is_kind(self, *wanted: ReadingKind) -> NDArray[np.bool_]:
+        """Where the readings are of one of some kinds."""
+        return is_kind(self.kinds, *wanted)
+
     @property
     def measured(self) -> Floats:
         """The measured numbers, NaN where a reading is a word, a bound or nothing."""

@@ -29,7 +29,8 @@ class CellScan:
     """What has been seen of one part: the last row and column, error cells with their texts, hidden rows.
 
     `odd` says that cells were written in another way than the usual: `last_row` and the rest are not to be trusted.
-    `cells` and `rows` were in the last piece alone, and `starts` are the first letters of its elements.
+    `cells` and `rows` were in the last piece alone, and `starts` are the first letters of its elements; `all_rows`
+    are those of the part.
     """
 
     last_row: int = 0
@@ -39,6 +40,7 @@ class CellScan:
     odd: bool = False
     cells: int = 0
     rows: int = 0
+    all_rows: int = 0
     starts: frozenset[str] = frozenset()
 
     def see(self, piece: bytes) -> bool:
@@ -56,6 +58,7 @@ class CellScan:
         letters = data[tags + 1]
         self.starts = frozenset(chr(letter) for letter in np.flatnonzero(np.bincount(letters, minlength=256)))
         self.rows = int(np.count_nonzero(data[tags[letters == _R] + 2] == _O))
+        self.all_rows += self.rows
         tags = tags[letters == _C]
         usual = data[tags + 2] == _SPACE
         for step, byte in ((3, _R), (4, _EQUALS), (5, _QUOTE)):

@@ -103,6 +103,20 @@ def look_at(content: bytes, cells: int = MAX_CELLS) -> Look:
     return look
 
 
+def names_may_be_read(content: bytes) -> bool:
+    """Whether the names of the sheets may be read, by the list of the parts and their sizes alone."""
+    try:
+        with zipfile.ZipFile(io.BytesIO(content)) as archive:
+            small = all(
+                info.file_size <= SMALL_PART
+                for info in archive.infolist()
+                if info.filename.endswith(("workbook.xml", "workbook.xml.rels"))
+            )
+            return small and not _container(archive, Look())
+    except (zipfile.BadZipFile, OSError, ValueError, NotImplementedError):
+        return False
+
+
 def _what_it_is(start: bytes) -> str:
     """What a file that is no zip container seems to be."""
     if not start:

@@ -9,8 +9,9 @@ from pathlib import Path
 
 from reporter.intake.build import Series, build
 from reporter.intake.gather import Gathered
-from reporter.intake.guard import Finding, look_at
+from reporter.intake.guard import Finding, Look, look_at
 from reporter.intake.jsonrecord import looks_like_json, read_json
+from reporter.intake.sheets import Kind, find_sheet
 from reporter.intake.table import SheetTable, whole_text
 from reporter.intake.workbook import read_workbook, sheet_parts
 from reporter.paths import attachment_path
@@ -19,6 +20,8 @@ from reporter.record import Record, SourceFile
 
 #: A larger file is not read into memory.
 MAX_FILE = 100 << 20
+#: A sheet of a form with more rows is not opened; only the series are longer.
+MAX_FORM_ROWS = 20_000
 #: Why a file cannot be opened, in words.
 _WHY = {
     errno.ENOENT: "no file of this name",
@@ -103,7 +106,26 @@ def _workbook(content: bytes, gathered: Gathered) -> tuple[SheetTable, ...]:
             sheet = _sheet_of(finding, content)
             gathered.add(finding.code, gathered.place(sheet, finding.cell), finding.found)
         return ()
+    if _long_forms(content, look, gathered):
+        return ()
     return read_workbook(content, look, gathered)
+
+
+def _long_forms(content: bytes, look: Look, gathered: Gathered) -> bool:
+    """Whether a sheet that is no series has more rows than a person enters; it is then not opened."""
+    long = {part: scan.all_rows for part, scan in look.scans.items() if scan.all_rows > MAX_FORM_ROWS}
+    if not long:
+        return False
+    try:
+        names = sheet_parts(content)
+    except Exception:  # a damaged file is said when it is read
+        return False
+    for part, rows in long.items():
+        spec = find_sheet(names.get(part, ""))
+        if spec is not None and spec.kind in (Kind.ITEMS, Kind.TABLE):
+            found, expected = f"{rows:,} rows", f"at most {MAX_FORM_ROWS:,} rows on a sheet that is no series"
+            gathered.add("zip-bomb", gathered.place(names[part]), found, expected=expected)
+    return gathered.unreadable
 
 
 def _sheet_of(finding: Finding, content: bytes) -> str:

@@ -135,9 +135,8 @@ def clock_minutes(span: Window) -> int:
 
 def _covered(first: Counts, last: Counts, count: int) -> Where:
     """Which of a number of minutes lie in any of some spans of minutes, ends not included."""
-    edges = np.zeros(count + 1, dtype=np.int64)
-    np.add.at(edges, np.clip(first, 0, count), 1)
-    np.add.at(edges, np.clip(last, 0, count), -1)
+    begin, end = (np.bincount(np.clip(edge, 0, count), minlength=count + 1) for edge in (first, last))
+    edges = begin - end
     return np.cumsum(edges)[:count] > 0
 
 

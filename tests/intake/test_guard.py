@@ -158,6 +158,24 @@ def test_a_table_of_many_empty_fields_is_refused_before_they_are_made() -> None:
     assert [(p.code, p.place.sheet, p.found) for p in problems] == [("zip-bomb", "Runs", "2,994 rows of 494 columns")]
 
 
+def test_a_form_of_more_rows_than_a_person_enters_is_refused_before_it_is_opened() -> None:
+    rows = b"".join(b'<row hidden="1" r="%d"><c r="A%d"><f>1+1</f></c></row>' % (n, n) for n in range(9, 190_000))
+    content = in_runs(b"</sheetData>", rows + b"</sheetData>")
+    read_bytes("warm.xlsx", GOOD)
+    start = time.process_time()
+    result = read_bytes("long.xlsx", content)
+    assert time.process_time() - start < 1.0
+    assert [(p.code, p.place.sheet, p.found) for p in result.problems] == [("zip-bomb", "Runs", "189,994 rows")]
+
+
+def test_cells_are_counted_and_placed_however_they_are_written() -> None:
+    rows = b'<row r="9"><c r="A9"/><c r="AB9" s="1"><v>1</v></c></row><row r="700"><c r="C700"/></row></sheetData>'
+    usual, odd = look_at(in_runs(b"</sheetData>", rows)), look_at(in_runs(b"</sheetData>", rows.replace(b'"', b"'")))
+    assert (usual.scans[SHEET].last_row, usual.scans[SHEET].last_column) == (700, 28)
+    assert usual.counts == odd.counts
+    assert (usual.scans[SHEET].odd, odd.scans[SHEET].odd) == (False, True)
+
+
 def test_a_part_in_sixteen_bits_is_looked_through_and_read() -> None:
     content = rezipped(GOOD, lambda n, d: d.decode().encode("utf-16") if n == SHEET else d)
     assert read_bytes("wide.xlsx", content).record is not None

@@ -6,6 +6,7 @@ import random
 import socket
 import subprocess
 import sys
+import time
 import zipfile
 from io import BytesIO
 from pathlib import Path
@@ -15,6 +16,7 @@ import pytest
 from field_book import SAMPLES, read_sheets, record_of, rezipped, tiny, workbook
 
 from reporter.intake import ReadResult, read, read_bytes
+from reporter.intake.foreign.grid import grid_of
 from reporter.problems import Grade
 
 INERT = [
@@ -155,3 +157,20 @@ def test_reading_needs_no_heavy_library() -> None:
     path = str(SAMPLES / "gas_boiler_us.xlsx")
     done = subprocess.run([sys.executable, "-c", script, path], capture_output=True, text=True, check=True)
     assert done.stdout.strip() == "[]"
+
+
+LONG_TEXTS = {
+    "one line": b"1,2,3," * 10_000_000,
+    "many cells": b"1,2,3,4\n" * 1_250_000,
+    "many quotation marks": b'"1",2,3,4\n' * 1_250_000,
+    "no text": bytes(range(256)) * 100_000,
+}
+
+
+@pytest.mark.parametrize("name", sorted(LONG_TEXTS))
+def test_a_text_of_too_many_cells_is_refused_before_it_is_split(name: str) -> None:
+    grid_of("warm.csv", b"Time,NOx\n")
+    start = time.process_time()
+    grid = grid_of("long.csv", LONG_TEXTS[name])
+    assert time.process_time() - start < 0.5
+    assert [p.code for p in grid.problems] == ["not-a-workbook" if name == "no text" else "zip-bomb"]

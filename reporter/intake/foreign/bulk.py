@@ -7,7 +7,7 @@ Rows that are anything but ordinary are left to them.
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -16,6 +16,7 @@ from reporter.intake.dates import Fault
 from reporter.intake.foreign.lines import PlainRows
 from reporter.intake.foreign.moments import Stamps, stamps_of
 from reporter.intake.foreign.numbers import NumberStyle
+from reporter.intake.foreign.sort import usual_length
 from reporter.intake.foreign.tables import Table, blank
 from reporter.intake.foreign.wording import read_cell
 from reporter.intake.foreign.words import is_foot
@@ -39,8 +40,15 @@ class Coded:
     @classmethod
     def of(cls, cells: Sequence[Raw]) -> Coded:
         """The same of cells, none of which is yes or no (these equal one and nought)."""
+        if set(map(type, cells)) == {float}:
+            each, codes = np.unique(np.array(cells, dtype=np.float64), return_inverse=True)
+            return cls(each.tolist(), codes)
         found = {cell: code for code, cell in enumerate(dict.fromkeys(cells))}
         return cls(list(found), np.fromiter(map(found.__getitem__, cells), np.int64, len(cells)))
+
+    def cells(self) -> list[Raw]:
+        """The cells as they stand."""
+        return [self.distinct[code] for code in self.codes.tolist()]
 
     def where(self, marked: Sequence[bool]) -> Where:
         """The rows whose cell is marked."""
@@ -86,25 +94,45 @@ def ordinary_rows(
         rows = rows[rows != len(page.rows) - 1]
     if usual:
         rows = rows[np.array(page.widths(table.first, table.last), dtype=np.int64)[rows - table.first] == usual]
-    cells = dict(zip(table.columns, page.columns(table.columns, rows.tolist()), strict=True))
-    sound = _sound(cells, rows, split=isinstance(page.rows, PlainRows))
-    if not sound.all():
-        rows = rows[sound]
-        cells = {column: [own[i] for i in np.flatnonzero(sound).tolist()] for column, own in cells.items()}
+    rows, cells, lanes = _cells(table, rows, readings)
     stamps = tuple(stamps_of(cells[column], order) for column in times)
-    lanes = {column: Coded.of(cells[column]) for column in readings}
     filled = np.zeros(len(rows), dtype=np.int64)
     for own in lanes.values():
         filled += ~own.where([blank(cell) for cell in own.distinct])
     several = (filled != 1) | (len(readings) <= 1)
     read = np.logical_and.reduce([s.read for s in stamps])
-    return Ordinary(rows, stamps, lanes).take(read & several & ~_foot(cells, len(rows)))
+    texts = (cells[column] if column in cells else lanes[column].cells() for column in table.columns)
+    return Ordinary(rows, stamps, lanes).take(read & several & ~_foot(texts, len(rows)))
 
 
-def _sound(cells: Mapping[int, Sequence[Raw]], rows: Counts, *, split: bool) -> Where:
-    """Where no cell is a yes or no, and none holds further lines; `split` where neither can be."""
+def rows_known(table: Table, times: Sequence[int], readings: Sequence[int], order: str) -> list[int]:
+    """The rows of a long table that are surely readings; none of a short one."""
+    if table.last - table.first < LONG:
+        return []
+    known = ordinary_rows(table, times, readings, order, usual=usual_length(table))
+    return list(known.rows.tolist())
+
+
+def _cells(
+    table: Table, rows: Counts, readings: Sequence[int]
+) -> tuple[Counts, dict[int, list[Raw]], dict[int, Coded]]:
+    """The rows that hold plain cells alone, their cells by column, and those of the readings coded."""
+    page, where = table.page, rows.tolist()
+    if isinstance(page.rows, PlainRows) and where and (coded := page.rows.coded(readings, where)) is not None:
+        others = [column for column in table.columns if column not in readings]
+        lanes = {column: Coded(list(own), codes) for column, (own, codes) in zip(readings, coded, strict=True)}
+        return rows, dict(zip(others, page.columns(others, where), strict=True)), lanes
+    cells = dict(zip(table.columns, page.columns(table.columns, where), strict=True))
+    if not isinstance(page.rows, PlainRows) and not (sound := _sound(cells, rows)).all():
+        rows = rows[sound]
+        cells = {column: [own[i] for i in np.flatnonzero(sound).tolist()] for column, own in cells.items()}
+    return rows, cells, {column: Coded.of(cells[column]) for column in readings}
+
+
+def _sound(cells: Mapping[int, Sequence[Raw]], rows: Counts) -> Where:
+    """Where no cell is a yes or no, and none holds further lines."""
     sound = np.ones(len(rows), dtype=bool)
-    for own in cells.values() if not split else ():
+    for own in cells.values():
         types = set(map(type, own))
         if bool in types:
             sound &= np.array([not isinstance(cell, bool) for cell in own], dtype=bool)
@@ -113,10 +141,10 @@ def _sound(cells: Mapping[int, Sequence[Raw]], rows: Counts, *, split: bool) -> 
     return sound
 
 
-def _foot(cells: Mapping[int, Sequence[Raw]], size: int) -> Where:
+def _foot(columns: Iterable[Sequence[Raw]], size: int) -> Where:
     """Where the first filled cell of a row is the first word of an average or the like."""
     foot, open_ = np.zeros(size, dtype=bool), np.ones(size, dtype=bool)
-    for own in cells.values():
+    for own in columns:
         where = np.flatnonzero(open_).tolist()
         some = own if len(where) == size else [own[i] for i in where]
         if all(isinstance(cell, str) and cell[:1].isdigit() for cell in some):

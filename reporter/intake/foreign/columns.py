@@ -12,7 +12,7 @@ from reporter.intake.foreign.grid import Grid, letters
 from reporter.intake.foreign.mapping import AS_ENTERED, MappedColumn
 from reporter.intake.foreign.model import Desk, Option
 from reporter.intake.foreign.numbers import NumberStyle, number
-from reporter.intake.foreign.tables import Table, at, blank, is_numberlike
+from reporter.intake.foreign.tables import Table, blank, is_numberlike
 from reporter.intake.foreign.words import (
     basis_of,
     basis_words_clash,
@@ -70,11 +70,11 @@ class Columns:
         """The columns of readings, and why each other column is none."""
         lanes: list[Lane] = []
         ignored: dict[int, str] = {}
-        for column, header in zip(self.table.columns, self.table.headers, strict=True):
+        every = self.table.page.columns(self.table.columns, self.rows)
+        for column, header, cells in zip(self.table.columns, self.table.headers, every, strict=True):
             if column in times:
                 continue
-            cells = tuple(at(self.table.page.rows[row], column) for row in self.rows)
-            lane = Lane(column, header, cells)
+            lane = Lane(column, header, tuple(cells))
             why, key = self._gas(lane)
             if key:
                 _, correction, corrected = without_correction(folded(header))
@@ -85,8 +85,8 @@ class Columns:
 
     def _gas(self, lane: Lane) -> tuple[str, str]:
         """Why a column is no reading, or the gas it reads; both empty while that is open."""
-        filled = [cell for cell in lane.cells if not blank(cell)]
-        numbers = sum(1 for cell in filled if is_numberlike(cell) or _suffixed(cell))
+        filled = [cell for cell in dict.fromkeys(lane.cells) if not blank(cell)]
+        numbers = any(is_numberlike(cell) or _suffixed(cell) for cell in filled)
         named = () if lost_letters(lane.header) else gases_in(lane.header)
         if not filled:
             return "nothing stands in it", ""
@@ -137,7 +137,8 @@ class Columns:
     def with_units(self, lane: Lane, style: NumberStyle) -> Lane:
         """The lane with its unit: of the header, else of its cells, else asked."""
         units = [unit.unit for unit in units_in(lane.header)]
-        inside = {match[1].strip() for cell in lane.cells if isinstance(cell, str) and (match := _suffix(cell))}
+        texts = {cell for cell in lane.cells if isinstance(cell, str)}
+        inside = {match[1].strip() for cell in texts if (match := _suffix(cell))}
         own = {unit.unit for text in inside for unit in units_in(text)}
         found = list(dict.fromkeys([*units, *sorted(own)]))
         if len(found) == 1:
@@ -159,7 +160,8 @@ class Columns:
 
     def _fraction(self, lane: Lane, style: NumberStyle) -> Lane:
         """A percentage so small everywhere that it may be a fraction is asked about."""
-        values = [v for cell in lane.cells if (v := number(cell, style)) is not None and v not in sentinels()]
+        each = dict.fromkeys(lane.cells)
+        values = [v for cell in each if (v := number(cell, style)) is not None and v not in sentinels()]
         shown_percent = any((row, lane.column) in self.table.page.percent for row in self.rows)
         if lane.unit != "%" or lane.gas not in ("o2", "co2") or shown_percent or not values:
             return lane

@@ -9,6 +9,7 @@ from dataclasses import dataclass, field, replace
 from pathlib import Path
 from typing import Any
 
+from reporter.collecting import without_collecting
 from reporter.errors import RecordError
 from reporter.intake.foreign.apply import apply_to_grid
 from reporter.intake.foreign.corrections import Correction, corrections
@@ -18,7 +19,7 @@ from reporter.intake.foreign.mapping import ENDING, Mapping, differences, differ
 from reporter.intake.foreign.process_log import ProcessFile, process_of, read_process_file
 from reporter.intake.foreign.tables import Table, find_tables
 from reporter.intake.foreign.titles import strangers
-from reporter.intake.guard import look_at
+from reporter.intake.guard import names_may_be_read
 from reporter.intake.jsonrecord import looks_like_json
 from reporter.intake.read import ReadResult, read
 from reporter.intake.rows import Filled, RowReader
@@ -146,6 +147,7 @@ def _no_mapping(grid: Grid, mappings: Sequence[Mapping], fitting: Sequence[Mappi
     return problem("mapping-missing", Place(grid.source.name), found)
 
 
+@without_collecting()
 def read_folder(path: str | Path, mapping: str | Path | None = None) -> ReadResult:
     """Read a folder as one test.
 
@@ -261,7 +263,7 @@ def _is_record(file: Path) -> bool:
     content = file.read_bytes()
     if file.suffix.lower() == ".json":
         return looks_like_json(content)
-    if look_at(content).stops:
+    if not names_may_be_read(content):
         return False
     try:
         names = sheet_parts(content).values()

@@ -84,9 +84,15 @@ class Page:
         own = self.rows.widths if isinstance(self.rows, (PlainRows, SheetRows)) else list(map(len, self.rows))
         return own[first:last]
 
-    def wordy(self, row: int) -> bool:
-        """Whether a row may hold words; a quick look before a thorough one."""
-        return not isinstance(self.rows, (PlainRows, SheetRows)) or self.rows.wordy(row)
+    def wordy(self) -> list[int]:
+        """The rows that may hold a header, by a quick look before a thorough one."""
+        return self.rows.wordy() if isinstance(self.rows, (PlainRows, SheetRows)) else list(filled_rows(self))
+
+    @property
+    def end(self) -> int:
+        """One past the last row that holds anything."""
+        own = self.rows
+        return own.end if isinstance(own, (PlainRows, SheetRows)) else max(filled_rows(self), default=-1) + 1
 
     def address(self, row: int, column: int) -> str:
         """A cell as people name it: column letter and row or line, e.g. ``C12``."""
@@ -172,10 +178,18 @@ def decoded(content: bytes) -> tuple[str, str]:
 
 
 def _text(source: SourceFile) -> Grid:
+    first = source.content[: 4 * SAMPLE_BYTES]
+    if len(first) < source.size:
+        first = first[: first.rfind(b"\n") + 1] or first
+    start, _ = decoded(first)
+    if "\x00" in start:
+        return _refused(source, "not-a-workbook", "a file of bytes that are no text")
+    delimiter = delimiter_of(start)
+    if source.content.count(delimiter.encode()) + source.content.count(b"\n") > MAX_CELLS:
+        return _refused(source, "zip-bomb", f"more than {MAX_CELLS:,} cells")
     text, encoding = decoded(source.content)
     if "\x00" in text:
         return _refused(source, "not-a-workbook", "a file of bytes that are no text")
-    delimiter = delimiter_of(text)
     cut = not text.endswith(("\n", "\r"))
     plain = plain_rows(text, delimiter)
     if plain is not None and max(plain.widths, default=0) <= MAX_COLUMN and sum(plain.widths) <= MAX_CELLS:

@@ -7,7 +7,9 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 
+from reporter.collecting import without_collecting
 from reporter.errors import RecordError
+from reporter.intake.foreign import bulk
 from reporter.intake.foreign.columns import Columns, Lane, mapped
 from reporter.intake.foreign.grid import Grid, letters, read_grid
 from reporter.intake.foreign.mapping import MappedColumn, Mapping
@@ -57,6 +59,7 @@ def look(path: str | Path, answers: Answers[str, str] | None = None) -> Look:
     return look_at_grid(read_grid(path), answers or {})
 
 
+@without_collecting()
 def look_at_grid(grid: Grid, answers: Answers[str, str]) -> Look:
     """The same for a grid already read."""
     desk = Desk(answers, grid.source.name)
@@ -189,7 +192,9 @@ def _data_rows(tables: Sequence[Table], base: TimeBase) -> list[list[int]]:
         times = [table.columns[tables[0].columns.index(column)] for column in base.columns]
         others = [column for column in table.columns if column not in times]
         if base.order:
-            found.append([s.row for s in sort_rows(table, times, others, base.order) if s.stamps])
+            known = bulk.rows_known(table, times, others, base.order)
+            rest = [s.row for s in sort_rows(table, times, others, base.order, known=known) if s.stamps]
+            found.append(sorted([*known, *rest]))
         else:
             rows = range(table.first, table.last)
             cells = table.page.rows

@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import UTC, date, datetime, timedelta
+from operator import attrgetter
 from typing import Any
 
 import numpy as np
@@ -54,7 +55,7 @@ def stamps_of(cells: Sequence[Raw], order: str) -> Stamps:
             _texts(some, order, where, parts, read)
         elif kind is float:
             _serials(np.array(some, dtype=np.float64), order, where, parts, read)
-        elif kind is datetime and not any(value.tzinfo for value in some):  # type: ignore[union-attr]
+        elif kind is datetime and set(map(attrgetter("tzinfo"), some)) == {None}:
             _dates(np.array(some, dtype=STAMPS), where, parts, read)
         else:
             _each(some, order, where, parts, read)

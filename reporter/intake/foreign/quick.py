@@ -77,9 +77,14 @@ class SheetRows(Sequence[tuple[Raw, ...]]):
             if number in self._others or any(not isinstance(value, str) or value.strip() for value in row):
                 yield number
 
-    def wordy(self, row: int) -> bool:
-        """Whether a row may hold words."""
-        return str in map(type, self._rows[row])
+    def wordy(self) -> list[int]:
+        """Positions of the rows that hold a text."""
+        return [number for number, row in enumerate(self._rows) if str in map(type, row)]
+
+    @property
+    def end(self) -> int:
+        """One past the last row that holds anything."""
+        return max(self.filled(), default=-1) + 1
 
     def columns(self, columns: Sequence[int], rows: Sequence[int]) -> list[list[Raw]]:
         """The cells of some columns in some rows, None where a row is short."""

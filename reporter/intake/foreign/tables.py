@@ -7,7 +7,7 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from datetime import date, datetime, time, timedelta
 
-from reporter.intake.foreign.grid import Grid, Page, filled_rows
+from reporter.intake.foreign.grid import Grid, Page
 from reporter.intake.foreign.process_words import process_in
 from reporter.intake.foreign.words import gases_in, time_part, units_in
 from reporter.intake.table import Raw, clean, show
@@ -93,17 +93,16 @@ def find_tables(grid: Grid) -> tuple[Table, ...]:
 
 
 def _of_page(page: Page, is_header: Callable[[Sequence[str]], bool]) -> list[Table]:
-    filled = list(filled_rows(page))
     blocks: list[tuple[int, ...]] = []
     taken: set[int] = set()
-    for row in filled:
-        if row not in taken and page.wordy(row) and _perhaps_header(page.rows[row]) and is_header(_texts(page, row)):
+    for row in page.wordy():
+        if row not in taken and _perhaps_header(page.rows[row]) and is_header(_texts(page, row)):
             block = _block(page, row)
             taken.update(block)
             blocks.append(block)
     tables = []
     for number, block in enumerate(blocks):
-        last = blocks[number + 1][0] if number + 1 < len(blocks) else (filled[-1] + 1 if filled else 0)
+        last = blocks[number + 1][0] if number + 1 < len(blocks) else page.end
         tables += _side_by_side(page, block, last)
     return tables
 

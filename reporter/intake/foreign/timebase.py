@@ -44,8 +44,8 @@ def time_columns(table: Table) -> dict[int, str]:
     found = {}
     for column, header in zip(table.columns, table.headers, strict=True):
         part = time_part(header)
-        cells = [at(row, column) for row in table.page.rows[table.first : table.last]]
-        if part and any(is_timelike(cell) or _day_number(cell) for cell in cells):
+        rows = table.page.rows[table.first : table.last] if part else ()
+        if any(is_timelike(cell) or _day_number(cell) for cell in (at(row, column) for row in rows)):
             found[column] = part
     return found
 

@@ -53,12 +53,18 @@ def same(one: ForeignReadings, two: ForeignReadings) -> None:
 
 
 @pytest.mark.parametrize("name", sorted(CASES))
-def test_every_file_of_the_corpus(name: str, tmp_path: Path, both: Both) -> None:
+def test_every_file_of_the_corpus(name: str, tmp_path: Path, both: Both, monkeypatch: pytest.MonkeyPatch) -> None:
     case = CASES[name]
     path = tmp_path / case.file
     path.write_bytes(case.content)
+    looks = []
+    for least in (10**9, 0):
+        monkeypatch.setattr(bulk, "LONG", least)
+        looks.append(look(path, case.answers))
+    for part in ("questions", "evidence", "problems", "mapping"):
+        assert getattr(looks[0], part) == getattr(looks[1], part)
     try:
-        mapping = mapping_of(look(path, case.answers))
+        mapping = mapping_of(looks[0])
     except RecordError:
         return
     same(*both(lambda: apply(path, mapping, day=STARTS[0].date())))
@@ -171,6 +177,9 @@ def test_lines_without_quotation_marks_are_rows_as_the_csv_module_reads_them(tex
     assert [rows[i] for i in range(len(rows))] == expected
     assert rows.widths == [len(row) for row in expected]
     assert [*rows.filled()] == [n for n, row in enumerate(expected) if any(cell.strip() for cell in row)]
+    assert rows.end == max(rows.filled(), default=-1) + 1
+    lettered = [n for n, row in enumerate(expected) if any(any(map(str.isalpha, cell)) for cell in row)]
+    assert set(lettered) <= set(rows.wordy())
     where = range(len(expected))
     for column, cells in enumerate(rows.columns(range(4), where)):
         assert cells == [row[column] if column < len(row) else None for row in expected]
