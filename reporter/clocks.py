@@ -14,6 +14,7 @@ from numpy.typing import NDArray
 
 Floats = NDArray[np.float64]
 Bools = NDArray[np.bool_]
+Counts = NDArray[np.int64]
 
 #: Shifts looked at reach so far either way [s]: a whole day's worth of wrong time zones.
 FARTHEST = 14 * 3600.0
@@ -31,6 +32,8 @@ NEAR = 600.0
 FAR = 8.0
 #: Correlation at the best lag; by how much it must exceed that at lag zero and at any other; points in common.
 CORRELATED, BETTER, POINTS = 0.8, 0.15, 30
+#: So many pairs of values are compared at once.
+_AT_ONCE = 500_000
 
 
 @dataclass(frozen=True, slots=True)
@@ -184,19 +187,18 @@ def lag_between(one: Floats, two: Floats, step: float, farthest: float) -> Lag |
     most = min(int(farthest // step), len(one) - POINTS)
     if most < 1:
         return None
-    lags = range(-most, most + 1)
-    pairs = [_correlation(one, two, lag) for lag in lags]
-    size = np.array([abs(correlation) for correlation, _ in pairs])
+    correlations, points = _correlations(one, two, most)
+    size = np.abs(correlations)
     best = int(size.argmax())
     if size[best] < CORRELATED:
         return None
     low, high = _peak(size, best)
-    elsewhere = max((pairs[i][0] for i in range(len(size)) if not low <= i <= high), key=abs, default=0.0)
-    correlation, points = pairs[best]
-    as_stamped = pairs[most][0]
+    others = np.concatenate([correlations[:low], correlations[high + 1 :]]).tolist()
+    elsewhere = max(others, key=abs, default=0.0)
+    correlation, as_stamped = correlations[[best, most]].tolist()
     if abs(correlation) - abs(elsewhere) < BETTER:
         return None
-    return Lag(lags[best] * step, correlation, as_stamped, elsewhere, points)
+    return Lag((best - most) * step, correlation, as_stamped, elsewhere, int(points[best]))
 
 
 def departures(values: Floats) -> Floats:
@@ -213,18 +215,26 @@ def departures(values: Floats) -> Floats:
     return np.where(np.isfinite(values), (distance > FAR * usual).astype(np.float64), np.nan)
 
 
-def _correlation(one: Floats, two: Floats, lag: int) -> tuple[float, int]:
-    """The correlation of values `lag` places apart, and how many pairs it rests on."""
-    size = len(one) - abs(lag)
-    first = one[:size] if lag >= 0 else one[-lag:]
-    second = two[lag:] if lag >= 0 else two[:size]
-    both = np.isfinite(first) & np.isfinite(second)
-    points = int(both.sum())
-    if points < POINTS:
-        return 0.0, points
-    a, b = first[both] - first[both].mean(), second[both] - second[both].mean()
-    scale = float(np.sqrt((a @ a) * (b @ b)))
-    return (float(a @ b) / scale if scale > 0.0 else 0.0), points
+def _correlations(one: Floats, two: Floats, most: int) -> tuple[Floats, Counts]:
+    """The correlation of values as many places apart as each lag from -`most` to `most`, and the pairs it rests on."""
+    beyond = np.full(most, np.nan)
+    shifted = np.lib.stride_tricks.sliding_window_view(np.concatenate([beyond, two, beyond]), len(one))
+    lags = max(1, _AT_ONCE // len(one))
+    parts = [_correlated(one, shifted[start : start + lags]) for start in range(0, len(shifted), lags)]
+    return np.concatenate([part for part, _ in parts]), np.concatenate([points for _, points in parts])
+
+
+def _correlated(one: Floats, others: Floats) -> tuple[Floats, Counts]:
+    """The correlation of a series with each of others, over the pairs that both have."""
+    both = np.isfinite(one) & np.isfinite(others)
+    points = both.sum(axis=1)
+    count = np.maximum(points, 1)[:, None]
+    first, second = np.where(both, one, 0.0), np.where(both, others, 0.0)
+    first = np.where(both, first - first.sum(axis=1, keepdims=True) / count, 0.0)
+    second = np.where(both, second - second.sum(axis=1, keepdims=True) / count, 0.0)
+    scale = np.sqrt((first**2).sum(axis=1) * (second**2).sum(axis=1))
+    known = (points >= POINTS) & (scale > 0.0)
+    return np.where(known, (first * second).sum(axis=1) / np.where(known, scale, 1.0), 0.0), points
 
 
 def _peak(size: Floats, best: int) -> tuple[int, int]:
