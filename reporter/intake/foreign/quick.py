@@ -73,9 +73,10 @@ class SheetRows(Sequence[tuple[Raw, ...]]):
 
     def filled(self) -> Iterator[int]:
         """Positions of the rows that hold anything."""
-        for number, row in enumerate(self._rows):
-            if number in self._others or any(not isinstance(value, str) or value.strip() for value in row):
-                yield number
+        return (number for number in range(len(self._rows)) if self._holds(number))
+
+    def _holds(self, row: int) -> bool:
+        return row in self._others or any(not isinstance(value, str) or value.strip() for value in self._rows[row])
 
     def wordy(self) -> list[int]:
         """Positions of the rows that hold a text."""
@@ -84,7 +85,7 @@ class SheetRows(Sequence[tuple[Raw, ...]]):
     @property
     def end(self) -> int:
         """One past the last row that holds anything."""
-        return max(self.filled(), default=-1) + 1
+        return next((row for row in range(len(self._rows), 0, -1) if self._holds(row - 1)), 0)
 
     def columns(self, columns: Sequence[int], rows: Sequence[int]) -> list[list[Raw]]:
         """The cells of some columns in some rows, None where a row is short."""
