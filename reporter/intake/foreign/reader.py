@@ -11,10 +11,11 @@ import numpy as np
 from reporter.intake.dates import Fault
 from reporter.intake.foreign import bulk
 from reporter.intake.foreign.grid import Grid, Page, letters
-from reporter.intake.foreign.mapping import MappedColumn, Mapping
+from reporter.intake.foreign.mapping import Mapping
 from reporter.intake.foreign.model import Desk
 from reporter.intake.foreign.moments import moments_of
 from reporter.intake.foreign.numbers import hundredfold, style_of
+from reporter.intake.foreign.parts import Column, Lane, Part, put_among
 from reporter.intake.foreign.sort import Sorted, sort_rows, usual_length
 from reporter.intake.foreign.tables import Table, at
 from reporter.intake.foreign.times import joined, order_of
@@ -25,7 +26,6 @@ from reporter.logged import CODE, STAMPS, Counts, LoggedColumn, LoggedRows, Text
 from reporter.problems import Place
 from reporter.record import Reading, ReadingKind
 
-Lane = tuple[int, MappedColumn]
 #: Rows whose texts are taken out at a time.
 _CHUNK = 2_000
 
@@ -50,32 +50,6 @@ class _Said:
 
 
 @dataclass(slots=True)
-class _Column:
-    """One channel of one table, as it is put together."""
-
-    values: Where
-    kinds: Where
-    texts: Where
-
-
-@dataclass(slots=True)
-class _Part:
-    """One table read: positions of its rows, their moments [µs], its columns in the order of the lanes."""
-
-    page: Page
-    clock: int
-    lanes: Sequence[Lane]
-    rows: Counts
-    moments: Counts
-    columns: list[_Column]
-
-    @property
-    def numbers(self) -> Counts:
-        """The line or row numbers people see."""
-        return np.asarray(self.page.lines, dtype=np.int64)[self.rows] if self.page.lines else self.rows + 1
-
-
-@dataclass(slots=True)
 class Reader:
     """Reads the tables of a file by a mapping; what is wrong goes to `gathered`, what is no reading to `left_out`."""
 
@@ -85,7 +59,7 @@ class Reader:
     day: date | None
     left_out: list[LeftOut] = field(default_factory=list)
     merged: int = 0
-    _parts: list[_Part] = field(default_factory=list)
+    _parts: list[Part] = field(default_factory=list)
     _said: list[_Said] = field(default_factory=list)
     _words: dict[str, str] = field(init=False)
 
@@ -101,18 +75,18 @@ class Reader:
         part = self._ordinary(table, times, lanes)
         rows, moments, readings = self._others(table, times, lanes, part.rows.tolist())
         if rows:
-            _put_among(part, rows, moments, readings)
+            put_among(part, rows, moments, readings)
         self._parts.append(part)
         for one in sorted(self._said, key=lambda said: said.turn):
             self.gathered.add(one.code, one.place, one.found, expected=one.expected)
         self._said = []
 
-    def _ordinary(self, table: Table, times: Sequence[int], lanes: Sequence[Lane]) -> _Part:
+    def _ordinary(self, table: Table, times: Sequence[int], lanes: Sequence[Lane]) -> Part:
         """The rows of a long table that are surely readings; none of a short one."""
         nothing = np.zeros(0, dtype=np.int64)
-        part = _Part(table.page, times[0], lanes, nothing, nothing, [])
+        part = Part(table.page, times[0], lanes, nothing, nothing, [])
         if table.last - table.first < bulk.LONG:
-            part.columns = [_Column(np.zeros(0), np.zeros(0, dtype=np.uint8), objects([])) for _ in lanes]
+            part.columns = [Column(np.zeros(0), np.zeros(0, dtype=np.uint8), objects([])) for _ in lanes]
             return part
         readings, order = [column for column, _ in lanes], self.mapping.time.order
         known = bulk.ordinary_rows(
@@ -129,12 +103,12 @@ class Reader:
     def _day(self) -> date | None:
         return self.day if self.mapping.time.day else None
 
-    def _lane(self, page: Page, known: bulk.Ordinary, number: int, lane: Lane) -> _Column:
+    def _lane(self, page: Page, known: bulk.Ordinary, number: int, lane: Lane) -> Column:
         """The readings of ordinary rows in one column: each different cell read once, special cells by themselves."""
         column, mapped = lane
         cells = known.cells[column]
         held = bulk.held(cells.distinct, mapped.unit, self.mapping.numbers, self._words)
-        made = _Column(held.values[cells.codes], held.kinds[cells.codes], held.texts[cells.codes])
+        made = Column(held.values[cells.codes], held.kinds[cells.codes], held.texts[cells.codes])
         special = {row for row, own in (*page.percent, *page.uncalculated) if own == column}
         alone = np.flatnonzero(np.isin(known.rows, list(special))) if special else np.zeros(0, dtype=np.int64)
         for index in alone.tolist():
@@ -315,17 +289,3 @@ def _texts(table: Table, columns: Sequence[int]) -> Iterator[str]:
         cells = table.page.columns(columns, range(first, min(first + _CHUNK, table.last)))
         with_texts = [own for own in cells if str in map(type, own)]
         yield from (cell for row in zip(*with_texts, strict=True) for cell in row if isinstance(cell, str))
-
-
-def _put_among(part: _Part, rows: Sequence[int], moments: Sequence[datetime], readings: list[list[Reading]]) -> None:
-    """Add further rows to a part, each at its place in the file."""
-    every = np.append(part.rows, np.array(rows, dtype=np.int64))
-    order = np.argsort(every, kind="stable")
-    part.rows = every[order]
-    part.moments = np.append(part.moments, np.array(moments, dtype=STAMPS).astype(np.int64))[order]
-    for index, column in enumerate(part.columns):
-        own = [row[index] for row in readings]
-        values = np.array([np.nan if r.value is None else r.value for r in own])
-        column.values = np.append(column.values, values)[order]
-        column.kinds = np.append(column.kinds, np.array([CODE[r.kind] for r in own], dtype=np.uint8))[order]
-        column.texts = np.append(column.texts, objects([r.text for r in own]))[order]
