@@ -12,6 +12,7 @@ import zipfile
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import date, datetime
+from operator import itemgetter
 from typing import Any, overload
 
 from reporter.intake.guard import Look, column_number
@@ -39,10 +40,11 @@ class SheetRows(Sequence[tuple[Raw, ...]]):
         Values at positions where the reader has none, or another.
     """
 
-    __slots__ = ("_others", "_rows")
+    __slots__ = ("_others", "_rows", "_whole")
 
     def __init__(self, rows: Sequence[Sequence[Any]], others: Mapping[Position, Raw]) -> None:
         self._rows = rows
+        self._whole: dict[int, list[Any]] = {}
         self._others: dict[int, dict[int, Raw]] = {}
         for (row, column), value in others.items():
             self._others.setdefault(row, {})[column] = value
@@ -89,10 +91,10 @@ class SheetRows(Sequence[tuple[Raw, ...]]):
 
     def columns(self, columns: Sequence[int], rows: Sequence[int]) -> list[list[Raw]]:
         """The cells of some columns in some rows, None where a row is short."""
-        some = [self._rows[row] for row in rows]
         found = []
         for column in columns:
-            cells = [row[column] if column < len(row) else "" for row in some]
+            whole = self._column(column)
+            cells = whole[rows.start : rows.stop] if isinstance(rows, range) else [whole[row] for row in rows]
             if not set(map(type, cells)) <= {float, datetime}:
                 cells = [_raw(value) for value in cells]
             found.append(cells)
@@ -103,6 +105,13 @@ class SheetRows(Sequence[tuple[Raw, ...]]):
                     if row in at and column in own:
                         found[place][at[row]] = own[column]
         return found
+
+    def _column(self, column: int) -> list[Any]:
+        """A whole column as the fast reader gave it, kept: it is asked for by more than one room."""
+        if column not in self._whole:
+            wide = bool(self._rows) and column < len(self._rows[0])
+            self._whole[column] = list(map(itemgetter(column), self._rows)) if wide else [""] * len(self._rows)
+        return self._whole[column]
 
 
 def _raw(value: Any) -> Raw:
