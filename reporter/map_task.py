@@ -11,9 +11,9 @@ from reporter.intake.foreign.answers import questions_toml, read_answers
 from reporter.intake.foreign.apply import apply_to_grid
 from reporter.intake.foreign.grid import read_grid
 from reporter.intake.foreign.look import Look, look, mapping_of
-from reporter.intake.foreign.mapping import Mapping
+from reporter.intake.foreign.mapping import ENDING, Mapping
 from reporter.intake.foreign.mapping import save as save_mapping
-from reporter.intake.foreign.model import Question
+from reporter.intake.foreign.model import Question, together
 from reporter.intake.foreign.process_log import read_process_file
 from reporter.intake.foreign.resent import difference
 from reporter.intake.foreign.series_notes import notes_of_file
@@ -65,7 +65,7 @@ def map_file(
         text = f"{file.name} cannot be mapped\n{problems_text(found.problems)}"
         return Task(file.name, text, UNREADABLE, "cannot be read", len(found.problems))
     try:
-        return _said(found, name, save, questions, _changes(found, against))
+        return _said(found, name, save, (file, questions), _changes(found, against))
     except OSError as error:
         return Task(file.name, f"fluebook: {error.filename}: {error.strerror}", UNWRITTEN, "not written")
 
@@ -78,20 +78,17 @@ def _changes(found: Look, against: Path | None) -> str:
     return section(f"Against {against.name}", [paragraph(line) for line in lines])
 
 
-def _said(found: Look, name: str, save: Path | None, questions: Path | None, changes: str) -> Task:
-    file = found.grid.source
+def _said(found: Look, name: str, save: Path | None, asking: tuple[Path, Path | None], changes: str) -> Task:
+    file, (path, questions) = found.grid.source, asking
     parts = [part for part in (file.name, changes) if part]
     parts.append(section("As read", [paragraph(line) for line in found.evidence]))
     if found.questions:
-        parts.append(section("Questions", [_asked(question) for question in found.questions]))
+        asked = together(found.questions)
+        parts.append(section("Questions", [_asked(question) for question in asked]))
+        parts.append(_to_answer(path, questions))
         if questions is not None:
-            questions.write_text(questions_toml(file.name, found.questions), encoding="utf-8")
-            parts.append(f"Written: {questions.name}; fill it in and give it with --answers")
-        elif found.questions:
-            parts.append(
-                "To answer: write the questions with --questions FILE, fill it in, give it with --answers FILE"
-            )
-        return Task(file.name, "\n\n".join(parts), WITHHELD, "questions are open", len(found.questions))
+            questions.write_text(questions_toml(file.name, asked), encoding="utf-8")
+        return Task(file.name, "\n\n".join(parts), WITHHELD, "questions are open", len(asked))
     mapping = mapping_of(found, name=name)
     lines, problems = _by_mapping(found, mapping)
     parts.append(section("By this mapping", [paragraph(line) for line in lines]))
@@ -103,6 +100,15 @@ def _said(found: Look, name: str, save: Path | None, questions: Path | None, cha
         parts.append(f"Written: {save.name} (shape {mapping.fingerprint})")
     stops = any(p.grade is Grade.UNREADABLE for p in shown)
     return Task(file.name, "\n\n".join(parts), UNREADABLE if stops else OK, "mapped")
+
+
+def _to_answer(file: Path, questions: Path | None) -> str:
+    """The commands that answer the questions about a file."""
+    sheet = Path("answers.toml") if questions is None else questions
+    ask = (
+        f"To answer:\n  fluebook map {file} --questions {sheet}\n" if questions is None else f"Written: {sheet.name}\n"
+    )
+    return f"{ask}Fill that file in, then:\n  fluebook map {file} --answers {sheet} --save {file.with_suffix(ENDING)}"
 
 
 def _by_mapping(found: Look, mapping: Mapping) -> tuple[Sequence[str], Sequence[Problem]]:

@@ -97,10 +97,22 @@ def _heat_of(book: Book, about: RunBook, use: FuelUse, stem: str) -> Entry | Non
     made = _heat(book, about, use, stem)
     if isinstance(made, Entry) and made.value >= 0.0:
         return made
-    why = "the meter ran backwards" if isinstance(made, Entry) else made
+    why = _backwards(use) if isinstance(made, Entry) else made
     said = f"{use.fuel.value}, run {use.run.value}: {why}"
     book.trouble("heat-input-missing", use.place, said, concerns=(about.key("heat_input"),))
     return None
+
+
+def _backwards(use: FuelUse) -> str:
+    """Why a row gives less than no heat: where its meter ends below its start, with the reading to enter instead."""
+    if use.rate is not None or use.meter_start is None or use.meter_end is None:
+        return "the heat of this fuel is below zero"
+    start, end = use.meter_start.value, use.meter_end.value
+    turn = 10 ** len(str(int(abs(start))))
+    return (
+        f"the meter reads {end:.12g} at the end, less than {start:.12g} at the start: exchanged, reset or rolled over. "
+        f"If it went from {turn - 1} to 0, enter {turn + end:.12g} as its end; after a reset enter the rate"
+    )
 
 
 def _heat(book: Book, about: RunBook, use: FuelUse, stem: str) -> Entry | str:

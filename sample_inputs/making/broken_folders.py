@@ -101,6 +101,12 @@ def _other_unit(files: Files, readings: Rows) -> Files:
     return files | {"logger.csv": b"Unit: Boiler 7\n" + files["logger.csv"]}
 
 
+def _other_units(files: Files, readings: Rows) -> Files:
+    lines = files["logger.csv"].splitlines(keepends=True)
+    half = len(lines) // 2
+    return files | {"logger.csv": b"".join([*lines[:half], b"Units,mg/m3 dry,mg/m3 dry,,\n", *lines[half:]])}
+
+
 def _wrong_average(files: Files, readings: Rows) -> Files:
     return files | {"logger.csv": logger(readings, "Average,99.0,3.0,4.0,9.6\n")}
 
@@ -139,6 +145,7 @@ CHANGES: dict[str, Callable[[Files, Rows], Files]] = {
     "loggers-differ": _late_logger,
     "interval-blank": _coarse_logger,
     "row-out-of-line": _missing_comma,
+    "unit-changes": _other_units,
     "folder-inputs": _two_workbooks,
     "rows-left-out": _average,
     "file-of-another-test": _other_unit,

@@ -57,8 +57,8 @@ SPELLINGS = [
     Case("a header without a gas", "`ppm dry` alone", headed("Time", "ppm dry", *DRY), stops="column.B.gas"),
     Case("a column without a header", "numbers with nothing above them", headed("Time", "", *DRY),
          stops="column.B.gas"),
-    Case("a column of a status", "`NOx status` beside NOx", one_more("NOx status", ["0"] * 60),
-         answers={**END, "column.F.gas": "ignore"}),
+    Case("a column of a status", "`NOx status` beside NOx: `0`, and `1` in four rows", one_more(
+        "NOx status", ["1" if 20 <= k < 24 else "0" for k in range(60)]), says=("'1' in 4 rows", "changes no reading")),
     Case("other columns", "a load and a temperature between the readings", one_more("Load [MW]", ["3.1"] * 60)),
     Case("remarks beside the readings", "`PORT B` in a column of remarks", one_more(
         "Remark", ["PORT B" if k == 20 else "" for k in range(60)]), says=("'PORT B' in F22",)),

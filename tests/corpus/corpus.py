@@ -14,13 +14,22 @@ from tests.corpus import (
     cases_of_cells,
     cases_of_clocks,
     cases_of_columns,
+    cases_of_exports,
     cases_of_folders,
     cases_of_rows,
     cases_of_text,
 )
 from tests.corpus.case import END, Case
 
-_MODULES = (cases_of_rows, cases_of_books, cases_of_text, cases_of_cells, cases_of_clocks, cases_of_columns)
+_MODULES = (
+    cases_of_rows,
+    cases_of_books,
+    cases_of_text,
+    cases_of_cells,
+    cases_of_clocks,
+    cases_of_columns,
+    cases_of_exports,
+)
 GROUPS: dict[str, list[Case]] = {
     **{group: cases for module in _MODULES for group, cases in module.CASES.items()},
 }

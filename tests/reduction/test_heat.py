@@ -135,7 +135,7 @@ def test_the_heating_value_of_the_sheet_fuel_serves_where_fuel_use_has_none() ->
         ({"rate": number(1.0, "lb/h"), "heating_value": NATURAL}, "its heating value in Btu/ft3"),
         (
             {"meter_start": number(9.0, "ft3"), "meter_end": number(5.0, "ft3"), "heating_value": NATURAL},
-            "the meter ran backwards",
+            "If it went from 9 to 0, enter 15 as its end",
         ),
     ],
 )

@@ -129,6 +129,7 @@ def apply_to_grid(
         if hidden := "the sheet" if page.hidden else page.hidden_words():
             gathered.add("hidden-read", gathered.place(page.sheet), hidden)
     work.say_negative()
+    work.say_fractions()
     if not len(rows) and not gathered.unreadable:
         gathered.add("no-readings-table", readings.place, "a header and no row of readings")
     used = tuple(column for _, column in lanes)

@@ -3,15 +3,23 @@
 from __future__ import annotations
 
 import re
+from collections import Counter
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
 from reporter.gases import all_gases, gas
+from reporter.intake.foreign.aside import (
+    multiple_in,
+    output_in_titles,
+    rate_in,
+    reference_oxygen,
+    rivals,
+)
 from reporter.intake.foreign.corrected import corrected_words
 from reporter.intake.foreign.grid import Grid, letters
 from reporter.intake.foreign.mapping import AS_ENTERED, MappedColumn
 from reporter.intake.foreign.model import Desk, Option
-from reporter.intake.foreign.numbers import NumberStyle, number
+from reporter.intake.foreign.numbers import FRACTION_BELOW, NumberStyle, number
 from reporter.intake.foreign.tables import Table, blank, is_numberlike
 from reporter.intake.foreign.words import (
     basis_of,
@@ -21,6 +29,7 @@ from reporter.intake.foreign.words import (
     lost_letters,
     other_words,
     signal_in,
+    statistic_in,
     units_in,
     without_correction,
 )
@@ -31,8 +40,8 @@ from reporter.problems import Place
 _SUFFIX = re.compile(r"^[<>]?\s*[+\-−]?[\d.,' ]*\d\s*([^\d\s.,].*)$")
 #: Units asked about where a header names none.
 _UNITS = ("ppm", "%", "mg/m3", "ppb")
-#: A percentage below this everywhere may be a fraction.
-_FRACTION_BELOW = 0.3
+#: A column of a status has no more different cells.
+FLAGS = 12
 #: Words of a column of remarks that are said one by one.
 WORDS = 5
 
@@ -49,6 +58,7 @@ class Lane:
     basis: str = ""
     correction: float | None = None
     corrected: bool = False
+    why: str = ""
 
     @property
     def name(self) -> str:
@@ -93,12 +103,15 @@ class Columns:
         if not numbers and not named:
             self._say_words(lane)
             return "words only", ""
-        if named and (signal := signal_in(lane.header)) and not units_in(lane.header):
+        unitless = named and not units_in(lane.header) and not rate_in(lane.header) and not any(map(_suffixed, filled))
+        if unitless and (signal := signal_in(lane.header) or output_in_titles(self.table)):
             return self._signal(lane, signal), ""
-        if len(named) == 1 and not other_words(lane.header):
-            self.desk.say(f"{lane.name}: {gas(named[0]).label}, by its header")
-            return "", named[0]
-        if not named and lane.header and not units_in(lane.header) and not lost_letters(lane.header):
+        if reference_oxygen(lane.header, filled):
+            return "a reference oxygen, the same in every row", ""
+        if named and (aside := self._aside(lane, named, len(filled))) is not None:
+            return aside
+        gasless = not named and lane.header and not lost_letters(lane.header)
+        if gasless and (not units_in(lane.header) or other_words(lane.header)):
             return "no gas in its header", ""
         if not lane.header and self.table.page.lines and lane.column > self._last_named():
             found = f"{filled[0]!r}, right of the last header"
@@ -115,6 +128,31 @@ class Columns:
         found = next((g.key for g in all_gases() if g.label == answer), "")
         return ("as answered" if answer == "ignore" else ""), found
 
+    def _aside(self, lane: Lane, named: Sequence[str], different: int) -> tuple[str, str] | None:
+        """The same of a column whose header names a gas; None where that is to be asked."""
+        if rate := rate_in(lane.header):
+            return f"a rate in {rate}, no concentration", ""
+        if multiple := multiple_in(lane.header):
+            asks = "Are these numbers multiples of the unit? Export the column without a factor, or leave it out"
+            options = [Option("ignore", "leave the column out"), Option("as written", f"{multiple} is no factor")]
+            key = f"column.{letters(lane.column)}.multiple"
+            answer = self.desk.ask(key, asks, f"{multiple!r} in {lane.header!r}", options, self.place(lane.column))
+            if answer != "as written":
+                return "multiples of a unit, as answered" if answer else "", ""
+        others = rivals(self.table, lane.column, named[0])
+        if "" in others and different <= FLAGS and other_words(lane.header, "flags") and not units_in(lane.header):
+            self._say_words(lane)
+            return f"a status beside a column of {gas(named[0]).label}; it changes no reading", ""
+        if len(named) > 1 or other_words(lane.header):
+            return None
+        statistic = statistic_in(lane.header)
+        if statistic in ("lowest", "highest", "spread") and others & {"", "mean"}:
+            return f"the {statistic} of each interval, beside another column of {gas(named[0]).label}", ""
+        if statistic not in ("", "mean") or (statistic and "" in others):
+            return None
+        self.desk.say(f"{lane.name}: {gas(named[0]).label}, by its header")
+        return "", named[0]
+
     def _signal(self, lane: Lane, signal: str) -> str:
         """Why a column of an analyzer's output is left out; empty while that is open."""
         asks = "An output is no concentration: export this column in the unit of its gas, or leave it out"
@@ -125,10 +163,18 @@ class Columns:
 
     def _say_words(self, lane: Lane) -> None:
         """Say what a column of words holds, such as a change of port, each with its cell."""
-        page, rows = self.table.page, zip(self.rows, lane.cells, strict=True)
-        said = [f"{show(cell)[:60]!r} in {page.address(row, lane.column)}" for row, cell in rows if not blank(cell)]
+        page, firsts, counts = self.table.page, dict[str, str](), Counter[str]()
+        for row, cell in zip(self.rows, lane.cells, strict=True):
+            if not blank(cell):
+                text = show(cell)[:60]
+                counts[text] += 1
+                firsts.setdefault(text, page.address(row, lane.column))
+        said = [
+            f"{text!r} in {counts[text]} rows, first in {place}" if counts[text] > 1 else f"{text!r} in {place}"
+            for text, place in firsts.items()
+        ]
         more = f" and {len(said) - WORDS} more" if len(said) > WORDS else ""
-        self.desk.say(f"{lane.name} holds words: {', '.join(said[:WORDS])}{more}")
+        self.desk.say(f"{lane.name} holds {', '.join(said[:WORDS])}{more}")
 
     def _last_named(self) -> int:
         pairs = zip(self.table.columns, self.table.headers, strict=True)
@@ -165,13 +211,13 @@ class Columns:
         shown_percent = any((row, lane.column) in self.table.page.percent for row in self.rows)
         if lane.unit != "%" or lane.gas not in ("o2", "co2") or shown_percent or not values:
             return lane
-        if not 0.0 < max(values) < _FRACTION_BELOW:
+        if not 0.0 < max(values) < FRACTION_BELOW:
             return lane
         options = (Option("%", f"{max(values):g} %"), Option("1", f"{max(values):g} of the gas, {max(values):.0%}"))
         key = f"column.{letters(lane.column)}.fraction"
         found = f"no reading above {max(values):g} in a column of percent"
         unit = self.desk.ask(key, "Percent, or a fraction?", found, options, self.place(lane.column))
-        return replace(lane, unit=unit)
+        return replace(lane, unit=unit, why="percent, as answered" if unit == "%" else "")
 
     def with_basis(self, lane: Lane) -> Lane:
         """The lane with its moisture basis, by its header or asked."""
@@ -190,15 +236,17 @@ class Columns:
     def uncorrected(self, lanes: Sequence[Lane], style: NumberStyle) -> tuple[list[Lane], dict[int, str]]:
         """The lanes as measured: columns already corrected and second columns of a gas go, or are asked about."""
         ignored: dict[int, str] = {}
-        kept = list(lanes)
+        kept, open_ = list(lanes), list[Lane]()
         for lane in lanes:
             if lane.corrected:
-                why = self._corrected(lane, lanes, style)
+                why, answer = self._corrected(lane, lanes, style)
                 if why:
                     ignored[lane.column] = why
                     kept.remove(lane)
+                elif not answer:
+                    open_.append(lane)
         for key in dict.fromkeys(lane.gas for lane in kept):
-            same = [lane for lane in kept if lane.gas == key]
+            same = [lane for lane in kept if lane.gas == key and lane not in open_]
             if len(same) > 1:
                 chosen = self._choose(same, lanes, style)
                 for lane in same:
@@ -207,19 +255,19 @@ class Columns:
                         kept.remove(lane)
         return kept, ignored
 
-    def _corrected(self, lane: Lane, lanes: Sequence[Lane], style: NumberStyle) -> str:
-        """Why a column with words of correction is left out; empty while that is open, or where it is as measured."""
+    def _corrected(self, lane: Lane, lanes: Sequence[Lane], style: NumberStyle) -> tuple[str, str]:
+        """Why a column with words of correction is left out, if it is, and the answer, if it was asked and given."""
         raw = [other for other in lanes if other.gas == lane.gas and not other.corrected]
         oxygen = [other for other in lanes if other.gas == "o2" and not other.corrected]
         words = corrected_words(lane, raw[0], oxygen[0], style) if len(raw) == 1 and len(oxygen) == 1 else ""
         if words:
-            return f"already corrected: {words}"
+            return f"already corrected: {words}", ""
         found = f"{lane.header!r}" + (", and its ratio to the other column does not bear it out" if raw else "")
         options = [Option("corrected", "leave it out; readings are needed as measured"), Option("as measured")]
         key = f"column.{letters(lane.column)}.corrected"
-        asks = "Is this column already corrected to a reference oxygen?"
+        asks = "Is this column already corrected, to a reference oxygen or for drift?"
         answer = self.desk.ask(key, asks, found, options, self.place(lane.column))
-        return "already corrected, as answered" if answer == "corrected" else ""
+        return ("already corrected, as answered" if answer == "corrected" else ""), answer
 
     def _choose(self, same: Sequence[Lane], lanes: Sequence[Lane], style: NumberStyle) -> list[Lane]:
         """Which of several columns of one gas are read: always asked, with what the numbers say."""
@@ -255,4 +303,4 @@ def mapped(lane: Lane, lanes: Sequence[Lane]) -> MappedColumn:
     """The lane as a column of a mapping; its channel is the gas, or the header where several read it."""
     alone = sum(1 for other in lanes if other.gas == lane.gas) == 1
     channel = gas(lane.gas).label if alone else " ".join(lane.header.replace("|", " ").split())
-    return MappedColumn(lane.header, "reading", channel, lane.gas, lane.unit, lane.basis)
+    return MappedColumn(lane.header, "reading", channel, lane.gas, lane.unit, lane.basis, lane.why)

@@ -32,7 +32,7 @@ from reporter.synthetic import MARK, is_marked
 
 #: Name of the optional list of files, and the endings of what is taken for a logger file without it.
 MANIFEST = "folder.toml"
-LOGGERS = (".csv", ".tsv", ".txt", ".xlsx", ".xlsm")
+LOGGERS = (".csv", ".tsv", ".tab", ".txt", ".dat", ".asc", ".prn", ".log", ".xls", ".xlsx", ".xlsm")
 #: Sheets that only the field workbook has.
 _FIXED = ("test", "channels", "runs")
 
@@ -45,6 +45,7 @@ class _Inputs:
     loggers: tuple[Path, ...]
     mappings: tuple[Path, ...]
     clocks: dict[str, Correction] = field(default_factory=dict)
+    others: tuple[str, ...] = ()
 
 
 @dataclass(slots=True)
@@ -190,7 +191,8 @@ def read_folder(path: str | Path, mapping: str | Path | None = None) -> ReadResu
         record = replace(record, sources=tuple(sources), prepared=tuple(beside.done))
     grades = list(Grade)
     everything = sorted((*result.problems, *beside.problems), key=lambda p: grades.index(p.grade))
-    return ReadResult(record, tuple(everything), (*beside.understood, *beside.done))
+    others = (f"not read: {', '.join(inputs.others)}",) if inputs.others else ()
+    return ReadResult(record, tuple(everything), (*beside.understood, *beside.done, *others))
 
 
 def _source(file: Path) -> SourceFile:
@@ -233,7 +235,8 @@ def _found(folder: Path, place: Place) -> _Inputs | Problem:
         names = ", ".join(f.name for f in fixed) or "none"
         return problem("folder-inputs", place, f"field workbooks or records: {names}")
     loggers = tuple(f for f in files if f.suffix.lower() in LOGGERS and f not in fixed)
-    return _Inputs(fixed[0], loggers, mappings)
+    known = {*loggers, *mappings, fixed[0], folder / MANIFEST}
+    return _Inputs(fixed[0], loggers, mappings, others=tuple(f.name for f in files if f not in known))
 
 
 def _listed(folder: Path, data: dict[str, Any]) -> _Inputs | Problem:

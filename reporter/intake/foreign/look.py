@@ -13,6 +13,7 @@ from reporter.intake.foreign import bulk
 from reporter.intake.foreign.columns import Columns, Lane, mapped
 from reporter.intake.foreign.grid import Grid, letters, read_grid
 from reporter.intake.foreign.mapping import MappedColumn, Mapping
+from reporter.intake.foreign.missing import what_is_there
 from reporter.intake.foreign.model import Desk, Option, Question
 from reporter.intake.foreign.numbers import NumberStyle, style_of
 from reporter.intake.foreign.process import is_plant_log, process_columns
@@ -74,7 +75,7 @@ def look_at_grid(grid: Grid, answers: Answers[str, str]) -> Look:
         candidates = [table for table in tables if table in candidates or timed_rows(table)]
     if not candidates:
         place = grid.place(grid.pages[0], 0, 0)
-        found = "; ".join(table.words() for table in tables) or "no header that names a gas above rows with times"
+        found = what_is_there(grid, tables)
         return Look(
             grid, tables, problems=(*grid.problems, problem("no-readings-table", place, found)), answers=answers
         )
@@ -111,7 +112,10 @@ def _chosen(candidates: Sequence[Table], desk: Desk) -> tuple[list[Table], str]:
     if len(groups) > 1:
         options = [Option(str(n), group[0].words()) for n, group in enumerate(groups, start=1)]
         answer = desk.ask(
-            "table", "Which table holds the readings?", f"{len(groups)} tables of different shape", options
+            "table",
+            "Which table holds the readings? If several do, export each as a file of its own",
+            f"{len(groups)} tables of different shape",
+            options,
         )
         if not answer:
             return [], ""
@@ -169,7 +173,7 @@ def _mapping(grid: Grid, tables: Sequence[Table], hidden: str, desk: Desk) -> Ma
         else:
             columns.append(MappedColumn(header, "ignore", why=ignored.get(column, "")))
             desk.say(f"column {letters(column)} ({header!r}): left out, {ignored.get(column, '') or 'asked about'}")
-    style = TimeStyle(base.order, base.stamp, base.zone, base.day)
+    style = TimeStyle(base.order, base.stamp, base.zone, base.day, base.written)
     return Mapping(Path(grid.source.name).stem, grid.kind, tuple(columns), style, numbers, words, hidden)
 
 
@@ -181,7 +185,7 @@ def _of_plant(grid: Grid, tables: Sequence[Table], base: TimeBase, *, hidden: st
     own = [column for column, mapped in zip(table.columns, columns, strict=True) if mapped.use == "process"]
     texts = [c for row in rows[0] for column in own if isinstance(c := at(table.page.rows[row], column), str)]
     numbers = style_of(texts, (), desk)
-    style = TimeStyle(base.order, base.stamp, base.zone, base.day)
+    style = TimeStyle(base.order, base.stamp, base.zone, base.day, base.written)
     return Mapping(Path(grid.source.name).stem, grid.kind, columns, style, numbers, (), hidden)
 
 

@@ -106,6 +106,7 @@ def dump(mapping: Mapping) -> str:
         "[time]",
         f"order = {_quoted(time.order)}",
         f"stamp = {_quoted(time.stamp)}",
+        *([f"written_in_zone = {_quoted(time.written)}"] if time.written else []),
         *([f"convert_to_zone = {_quoted(time.zone)}"] if time.zone else []),
         *([f"day = {_quoted(time.day)}"] if time.day else []),
         "",
@@ -156,9 +157,12 @@ def parse(data: dict[str, Any]) -> Mapping:
         _one_of("stamp", time["stamp"], _STAMPS),
         str(time.get("convert_to_zone", "")),
         _one_of("day", time.get("day", ""), ("", "test date")),
+        str(time.get("written_in_zone", "")),
     )
     if style.zone:
         zone_of(style.zone)
+    if style.written and zone_of(style.written).utcoffset(None) is None:
+        raise ValueError("written_in_zone: hours from UTC, such as UTC-06:00")
     columns = tuple(_column(row) for row in data["column"])
     names = [(column.use, column.channel) for column in columns if column.use in ("reading", "process")]
     if not names or len(set(names)) != len(names):

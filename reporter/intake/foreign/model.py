@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from fnmatch import fnmatchcase
 
 from reporter.problems import Place
@@ -37,6 +37,28 @@ class Question:
         said = "; ".join(f"{o.answer!r}: {o.meaning}" if o.meaning else repr(o.answer) for o in self.options)
         where = self.place.text()
         return f"{self.key}: {self.asks} Found{f' in {where}' if where else ''}: {self.found}. Answers: {said}"
+
+
+def together(questions: Sequence[Question]) -> tuple[Question, ...]:
+    """Questions with those that ask the same of several columns as one, whose key answers them all.
+
+    ``column.B.basis`` and ``column.C.basis`` become ``column.*.basis``; each may still be answered under its own key.
+    """
+    made: dict[str, list[Question]] = {}
+    for question in questions:
+        parts = question.key.split(".")
+        alike = len(parts) == 3 and parts[0] == "column" and parts[2] in ("basis", "signal")
+        made.setdefault(f"column.*.{parts[2]}" if alike else question.key, []).append(question)
+    return tuple(
+        same[0] if len(same) == 1 else replace(same[0], key=key, found=_likewise(same))
+        for key, same in made.items()
+        for same in ([same] if len({q.answers for q in same}) == 1 else [[q] for q in same])
+    )
+
+
+def _likewise(same: Sequence[Question]) -> str:
+    columns = ", ".join(question.key.split(".")[1] for question in same[1:])
+    return f"{same[0].found}; likewise column{'s' if len(same) > 2 else ''} {columns}"
 
 
 class Desk:

@@ -159,6 +159,9 @@ def moments_of(columns: Sequence[Stamps], day: date | None, style: TimeStyle) ->
         clock[timed], offset[timed] = stamps.clock[timed], stamps.offset[timed]
     found = (on != NONE) & (clock != NONE) & np.logical_and.reduce([stamps.read for stamps in columns])
     moments = np.where(found, on, 0) * _DAY_LENGTH + np.where(found, clock, 0)
+    if style.zone and style.written:
+        ahead = zone_of(style.written).utcoffset(None)
+        offset[offset == NONE] = (ahead or timedelta(0)) // _MICROSECOND
     if style.zone and (written := found & (offset != NONE)).any():
         moments[written] = _in_zone(moments[written] - offset[written], style.zone)
     return moments, found

@@ -14,6 +14,8 @@ _MARKED = re.compile(r"^[<>]?\s*[+\-−]?(\d[\d.,'’\u2019 ]*|[.,]\d+)(?:[eE][+
 _GROUPS = re.compile(r"(?<=\d)[ '’](?=\d{3}(?!\d))")
 #: Texts looked at before the marks are decided.
 ENOUGH = 20_000
+#: A percentage of oxygen or carbon dioxide below this everywhere may be a fraction.
+FRACTION_BELOW = 0.3
 
 
 @dataclass(frozen=True, slots=True)

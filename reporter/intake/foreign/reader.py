@@ -14,11 +14,12 @@ from reporter.intake.foreign.grid import Grid, Page, letters
 from reporter.intake.foreign.mapping import Mapping
 from reporter.intake.foreign.model import Desk
 from reporter.intake.foreign.moments import moments_of
-from reporter.intake.foreign.numbers import hundredfold, style_of
+from reporter.intake.foreign.numbers import FRACTION_BELOW, hundredfold, style_of
 from reporter.intake.foreign.parts import Column, Lane, Part, put_among
 from reporter.intake.foreign.sort import Sorted, sort_rows, usual_length
 from reporter.intake.foreign.tables import Table, at
 from reporter.intake.foreign.times import joined, order_of
+from reporter.intake.foreign.unit_rows import other_units
 from reporter.intake.foreign.wording import read_cell
 from reporter.intake.gather import Gathered
 from reporter.intake.table import Raw
@@ -137,6 +138,8 @@ class Reader:
                 continue
             if not found.stamps:
                 self.left_out.append(LeftOut(place, found.why))
+                if words := other_units(table, found.row, self.mapping.columns):
+                    self._said.append(_Said((False, found.row, -1), "unit-changes", place, words))
                 if found.note:
                     self._said.append(_Said((False, found.row, -1), found.note, place, found.why))
                 continue
@@ -219,6 +222,23 @@ class Reader:
                 found[mapped.channel] = (first, place, count + len(where), low)
         for _, place, count, lowest in sorted(found.values(), key=lambda one: one[0]):
             self.gathered.add("negative-reading", place, f"{count} readings, the lowest {lowest:g}")
+
+    def say_fractions(self) -> None:
+        """Hold O2 and CO2 read as percent against their numbers: where all are very small, they may be fractions."""
+        for number, mapped in enumerate(column for column in self.mapping.columns if column.use == "reading"):
+            every = np.concatenate([part.columns[number].values for part in self._parts])
+            shown = any((row, part.lanes[number][0]) in part.page.percent for part in self._parts for row in part.rows)
+            highest = float(np.max(every, initial=0.0, where=~np.isnan(every)))
+            if mapped.unit != "%" or mapped.gas not in ("o2", "co2") or mapped.why or shown:
+                continue
+            if 0.0 < highest < FRACTION_BELOW:
+                part = self._parts[0]
+                place = self.grid.place(part.page, int(part.rows[0]), part.lanes[number][0], mapped.channel)
+                found = (
+                    f'no reading above {highest:g} in a column of percent: a fraction has its unit "1" in the mapping; '
+                    f'if it is percent, write why = "percent" below the column'
+                )
+                self.gathered.add("mapping-differs", place, found)
 
     def in_order(self) -> LoggedRows:
         """The rows by time; a time that stands twice with the same readings counts once, else is a problem."""

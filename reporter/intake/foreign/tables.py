@@ -9,14 +9,14 @@ from datetime import date, datetime, time, timedelta
 
 from reporter.intake.foreign.grid import Grid, Page
 from reporter.intake.foreign.process_words import process_in
-from reporter.intake.foreign.words import gases_in, time_part, units_in
+from reporter.intake.foreign.words import gases_in, statistic_in, time_part, units_in
 from reporter.intake.table import Raw, clean, show
 
 #: A header has at most so many rows, and two of its words in one row.
 HEADER_ROWS = 4
 _TIMELIKE = re.compile(
     r"\d{1,4}[-/.]\d{1,2}[-/.]\d{1,4}|\d{1,2}:\d{2}|\d{1,2}[\s.\-]*[^\W\d_]{3,9}\.?[\s.\-,]*\d{2,4}"
-    r"|[^\W\d_]{3,9}\.?\s+\d{1,2},?\s+\d{4}"
+    r"|[^\W\d_]{3,9}\.?\s+\d{1,2},?\s+\d{4}|^(?:19|20)\d{10}(?:\d\d)?$"
 )
 #: Oxygen as a header sometimes spells it, which looks like a number.
 _OXYGEN = ("02", "0 2")
@@ -212,11 +212,18 @@ def _side_by_side(page: Page, block: tuple[int, ...], last: int) -> list[Table]:
 
 
 def _joined(page: Page, block: tuple[int, ...], column: int) -> str:
-    """The header of one column: its texts from top to bottom, each once."""
-    parts = []
-    for row in block:
-        texts = _texts(page, row)
+    """The header of one column: its texts from top to bottom, each once.
+
+    A group's name, such as that of a gas, stands above the first of its columns alone: one that heads a statistic of it
+    (Min, Avg, Max) has it too.
+    """
+    parts: list[str] = []
+    every = [_texts(page, row) for row in block]
+    for number, texts in enumerate(every):
         text = texts[column] if column < len(texts) else ""
+        below = (own[column] for own in every[number + 1 :] if column < len(own) and own[column])
+        if not text and (under := next(below, "")) and statistic_in(under) and not gases_in(under):
+            text = next((group for group in reversed(texts[:column]) if group), "")
         if text and text not in parts:
             parts.append(text)
     return " | ".join(parts)

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import UTC, datetime, timedelta, tzinfo
 from itertools import pairwise
 
@@ -20,11 +21,15 @@ from reporter.intake.foreign.times import (
     read_stamp,
     zone_of,
 )
-from reporter.intake.foreign.words import stamp_of, time_part
+from reporter.intake.foreign.words import stamp_of, time_part, zone_in
 from reporter.intake.table import Raw, show
 
 #: Stamps looked at where only their form matters.
 ENOUGH = 5000
+_OFFSET = re.compile(r"(?:Z|[A-Z]{2,4}|[+\-]\d{2}:?\d{2})$")
+_ZONE_TITLE = re.compile(
+    r"time ?zone|zeitzone|fuseau|huso|zona horaria|fuso|utc offset|times? (?:is|are|in) ", re.IGNORECASE
+)
 _AS_ENTERED = Option(AS_ENTERED, "the item Reading stamp of the sheet Test decides")
 
 
@@ -37,6 +42,7 @@ class TimeBase:
     stamp: str
     zone: str
     day: str
+    written: str = ""
 
 
 def time_columns(table: Table) -> dict[int, str]:
@@ -76,11 +82,40 @@ def time_base(grid: Grid, tables: Sequence[Table], desk: Desk, *, of_plant: bool
         desk.ask("time-form", asks, repr(show(cells[-1][0])) if cells[-1] else "no time", (), place)
     other = Option(MOMENT, "the value stood so at 09:00") if of_plant else _AS_ENTERED
     stamp = _stamp(grid, table, columns, desk, other)
-    zone = _zone([s for part in stamps for s in part if s is not None], desk)
-    day = "" if not order else _day([s for part in stamps for s in part if s is not None], desk)
+    every = [s for part in stamps for s in part if s is not None]
+    later = [s for own in cells for cell in _turns(own) if (s := read_stamp(cell, order or "year first")) is not None]
+    written = "" if any(s.offset is not None for s in (*every, *later)) else _named_zone(table, columns)
+    ahead = zone_of(written).utcoffset(None) if written else None
+    offsets = [replace(s, offset=ahead) for s in every] if written else [*every, *later]
+    zone = _zone(offsets, desk, written)
+    day = "" if not order else _day(every, table, desk)
     if order:
         _half_days(cells, stamps, desk)
-    return TimeBase(columns, order, stamp, zone, day)
+    return TimeBase(columns, order, stamp, zone, day, written if zone else "")
+
+
+def _turns(values: Sequence[Raw]) -> list[Raw]:
+    """The cells beyond those looked at, before and behind each change of what is written after the time."""
+    found: list[Raw] = []
+    last = ""
+    for before, cell in pairwise(values[ENOUGH - 1 :] if len(values) > ENOUGH else ()):
+        if isinstance(cell, str):
+            match = _OFFSET.search(cell)
+            now = match[0] if match else ""
+            if now != last:
+                found += [before, cell]
+                last = now
+    return found
+
+
+def _named_zone(table: Table, columns: Sequence[int]) -> str:
+    """The zone of the clock that the headers of the time or a line above the table names."""
+    headers = dict(zip(table.columns, table.headers, strict=True))
+    for row in table.page.rows[: table.header_rows[0]]:
+        text = " ".join(show(cell) for cell in row if isinstance(cell, str))
+        if _ZONE_TITLE.search(text) and (zone := zone_in(text)):
+            return zone
+    return next((zone for column in columns if (zone := zone_in(headers[column]))), "")
 
 
 def _columns(grid: Grid, table: Table, desk: Desk) -> tuple[int, ...]:
@@ -164,7 +199,7 @@ def _stamp(grid: Grid, table: Table, columns: Sequence[int], desk: Desk, other: 
     return desk.ask("stamp", asks, f"the header {text!r} does not say", options, place)
 
 
-def _zone(stamps: Sequence[Stamp], desk: Desk) -> str:
+def _zone(stamps: Sequence[Stamp], desk: Desk, written: str = "") -> str:
     offsets = {stamp.offset for stamp in stamps if stamp.offset is not None}
     if not offsets:
         return ""
@@ -190,7 +225,8 @@ def _zone(stamps: Sequence[Stamp], desk: Desk) -> str:
             "UTC-07:00" if back else "America/Denver", "convert to this zone; any name of a zone, or hours from UTC"
         ),
     )
-    answer = desk.ask("time-zone", "The stamps say their offset: what is the clock of the test?", found, options)
+    says = f"The file says that its clock is {written}" if written else "The stamps say their offset"
+    answer = desk.ask("time-zone", f"{says}: what is the clock of the test?", found, options)
     return "" if answer == "as written" else answer
 
 
@@ -212,9 +248,14 @@ def _goes_back(stamps: Sequence[Stamp], zone: tzinfo | None) -> str:
     return ""
 
 
-def _day(stamps: Sequence[Stamp], desk: Desk) -> str:
+def _day(stamps: Sequence[Stamp], table: Table, desk: Desk) -> str:
     if any(stamp.day is not None and stamp.day.year > 1904 for stamp in stamps):
         return ""
+    if stamps[:1] and stamps[0].clock == timedelta(0):
+        first = show(at(table.page.rows[table.first], table.columns[0]))
+        asks = "Do these times count from the start? Export the file with the time of day instead"
+        options = (Option("test date", "no: they are times of the day of the item Test date, from midnight on"),)
+        return desk.ask("day", asks, f"no date in any row, and the first time is {first!r}", options)
     options = (Option("test date", "the item Test date of the sheet Test"),)
     return desk.ask("day", "The file holds times without a date: which day is it?", "no date in any row", options)
 

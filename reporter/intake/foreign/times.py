@@ -22,8 +22,9 @@ _THREE = re.compile(r"^(\d{1,4})([-/.])(\d{1,2})\2(\d{1,4})(?:T|,?\s+|$)")
 _NAMED_DAY = re.compile(r"^(\d{1,2})(?:st|nd|rd|th)?[\s.\-/]*([^\W\d_]+)\.?[\s.,\-/]*(\d{4}|\d{2})(?:T|,?\s+|$)")
 _NAMED_MONTH = re.compile(r"^([^\W\d_]+)\.?\s+(\d{1,2})(?:st|nd|rd|th)?,?\s+(\d{4})(?:,?\s+|$)")
 _COMPACT = re.compile(r"^((?:19|20)\d{2})(\d{2})(\d{2})(?:T|\s+|$)")
+_TOGETHER = re.compile(r"^((?:19|20)\d{6})(\d{2})(\d{2})(\d{2})?$")
 _CLOCK = re.compile(
-    r"^(\d{1,2})[:h](\d{2})(?:[:m](\d{2})(?:[.,](\d{1,6}))?s?)?\s*(?:([ap])\.?\s?m\.?)?\s*(Z|[A-Z]{2,4}|[+\-]\d{2}:?\d{2})?$",
+    r"^(\d{1,2})[:h](\d{2})(?:[:m](\d{2})(?:(?:[.,](?=\d)|:(?=\d{2,3}(?!\d)))(\d{1,6}))?s?)?\s*(?:([ap])\.?\s?m\.?)?\s*(Z|[A-Z]{2,4}|[+\-]\d{2}:?\d{2})?$",
     re.IGNORECASE,
 )
 _YEARS = range(1990, 2080)
@@ -39,13 +40,15 @@ class TimeStyle:
     `order` is ``year first``, ``day first``, ``month first``, ``serial 1900``, ``serial 1904`` or ``typed``;
     `stamp` is ``interval start``, ``interval end`` or ``as the field workbook says``; `zone` is empty where the
     clock is taken as written, else the IANA name to which stamps with an offset are converted; `day` is
-    ``test date`` where the file holds no date.
+    ``test date`` where the file holds no date; `written` is the zone of stamps that have no offset of their own, such
+    as ``UTC``, where they are converted.
     """
 
     order: str = "typed"
     stamp: str = ""
     zone: str = ""
     day: str = ""
+    written: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -96,6 +99,8 @@ def _text_stamp(text: str, order: str) -> Stamp | None:
     clock = _clock(text)
     if clock is not None:
         return clock
+    if together := _TOGETHER.match(text):
+        text = f"{together[1]} {together[2]}:{together[3]}:{together[4] or '00'}"
     for pattern in (_COMPACT, _THREE, _NAMED_DAY, _NAMED_MONTH):
         match = pattern.match(text)
         if match is None:
@@ -251,8 +256,9 @@ def joined(stamps: Sequence[Stamp | None], day: date | None, style: TimeStyle) -
     last = clocks[-1]
     assert last.clock is not None
     moment = datetime(on.year, on.month, on.day) + last.clock
-    if style.zone and last.offset is not None:
-        return moment.replace(tzinfo=timezone(last.offset)).astimezone(zone_of(style.zone)).replace(tzinfo=None)
+    own = timezone(last.offset) if last.offset is not None else zone_of(style.written) if style.written else None
+    if style.zone and own is not None:
+        return moment.replace(tzinfo=own).astimezone(zone_of(style.zone)).replace(tzinfo=None)
     return moment
 
 

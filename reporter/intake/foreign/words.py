@@ -23,6 +23,9 @@ _CORRECTED = re.compile(
 _GLUED = re.compile(r"\b(nox|no2|no|co2|co|so2|o2|02)(ppm\w*|ppb\w*|percent|pct|vol)\b", re.IGNORECASE)
 _GLUED_BEHIND = re.compile(r"\b(ppm[vdw]{0,2}|ppb)(nox|no2|no|co2|co|so2)\b", re.IGNORECASE)
 _SHORT = re.compile(r"^(?:[a-z0-9]|in|cc|cf|gr)$", re.IGNORECASE)
+_LENGTH = re.compile(r"\b\d+ ?(?:min|minutes?|sec|s|h|hr|hours?)\b")
+#: A reference oxygen in brackets behind a gas, as in ``NOx(3%)``.
+_BRACKETED = re.compile(r"(?<=[A-Za-z0-9])\s*\(\s*(\d{1,2}(?:[.,]\d+)?)\s*%\s*(?:O2|02)?\s*\)")
 #: Dimensions of what an analyzer may read.
 READABLE = frozenset({"fraction", "mass_concentration"})
 
@@ -39,6 +42,15 @@ def zone_letters() -> dict[str, float]:
 
 
 @lru_cache(4096)
+def zone_in(text: str) -> str:
+    """The zone of a clock that a header or title names, as hours from UTC such as ``UTC-06:00``; else empty."""
+    if match := re.search(r"\b(?:UTC|GMT)\s*(?:([+\-−])\s*(\d{1,2})(?::?(\d{2}))?)?", text):
+        return f"UTC{(match[1] or '+').replace('−', '-')}{int(match[2] or 0):02d}:{match[3] or '00'}"
+    named = next((word for word in re.findall(r"\b[A-Z]{3,4}\b", text) if word in zone_letters()), "")
+    return "" if not named else f"UTC{'-' if zone_letters()[named] < 0 else '+'}{abs(zone_letters()[named]):02.0f}:00"
+
+
+@lru_cache(4096)
 def signal_in(text: str) -> str:
     """The unit of an analyzer's output, such as mA or V, that a header names; empty where it names none."""
     return next((part for part in re.split(r"[^\w%.]+", clean(text)) if part in _table()["signal"]["units"]), "")
@@ -46,7 +58,7 @@ def signal_in(text: str) -> str:
 
 def parted(text: str) -> str:
     """A header with lowered digits made plain, and gas and unit parted where they are written as one word."""
-    plain = clean(text).translate(_LOWERED)
+    plain = _BRACKETED.sub(r" @\1% O2", clean(text).translate(_LOWERED))
     return _GLUED_BEHIND.sub(r"\1 \2", _GLUED.sub(r"\1 \2", plain))
 
 
@@ -135,7 +147,8 @@ def basis_words_clash(text: str) -> bool:
 def units_in(text: str) -> tuple[ReadUnit, ...]:
     """The units of a reading that a header names, each once: in brackets, in a part of its own, or as its words."""
     plain = re.sub(r"(?<=[A-Za-z0-9])-(?=[A-Za-z%])", " ", " ".join(parted(text).split()))
-    pieces = [a or b for a, b in re.findall(r"\[([^\[\]]*)\]|\(([^()]*)\)", plain)]
+    inside = [a or b for a, b in re.findall(r"\[([^\[\]]*)\]|\(([^()]*)\)", plain)]
+    pieces = [part.strip() for piece in inside for part in re.split(r"[,;]", piece)]
     pieces += [part.strip() for part in re.split(r"[|,;]", re.sub(r"\[[^\[\]]*\]|\([^()]*\)", "|", plain))]
     pieces += [part for piece in pieces for gas, _, part in [piece.partition("/")] if gases_in(gas)]
     found: dict[str, ReadUnit] = {}
@@ -199,13 +212,28 @@ def statistic_of(text: str) -> str:
 
 
 @lru_cache(4096)
+def statistic_in(header: str) -> str:
+    """Which statistic of each interval a header names: ``mean``, ``lowest``, ``highest``, ``spread``; else empty.
+
+    ``several`` where it names more than one.
+    """
+    words = f" {_LENGTH.sub(' ', folded(header))} "
+    table = _table()["column_statistics"]
+    said = [name for name, labels in table.items() if any(f" {label} " in words for label in labels)]
+    return said[0] if len(said) == 1 else "several" if said else ""
+
+
+@lru_cache(4096)
 def title_kind(text: str) -> str:
     """What a label above a table names: ``unit``, ``facility``, or empty."""
     words = folded(text)
     return next((kind for kind, labels in _table()["titles"].items() if words in labels), "")
 
 
-def other_words(text: str) -> bool:
-    """Whether a header has words of something that is no reading, such as a status or a range."""
+def other_words(text: str, kind: str = "words") -> bool:
+    """Whether a header has words of something that is no reading, such as a status or a range.
+
+    `kind` is ``words``, or ``flags`` for those of a status of each reading alone.
+    """
     rest = folded(text)
-    return any(re.search(rf"\b{re.escape(word)}\b", rest) for word in _table()["other"]["words"])
+    return any(re.search(rf"\b{re.escape(word)}\b", rest) for word in _table()["other"][kind])
