@@ -69,7 +69,7 @@ def problems_of(path: str | Path) -> tuple[Problem, ...]:
     found = read_input(path)
     if found.record is None:
         return found.problems
-    return found.problems + assess(found.record).problems
+    return assess(found.record).after(found.problems).problems
 
 
 def opened(path: str | Path, mapping: str | Path | None = None) -> Outcome:

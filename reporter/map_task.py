@@ -65,7 +65,7 @@ def map_file(
         text = f"{file.name} cannot be mapped\n{problems_text(found.problems)}"
         return Task(file.name, text, UNREADABLE, "cannot be read", len(found.problems))
     try:
-        return _said(found, name, save, (file, questions), _changes(found, against))
+        return _said(found, name, save, (file, answers, questions), _changes(found, against))
     except OSError as error:
         return Task(file.name, f"fluebook: {error.filename}: {error.strerror}", UNWRITTEN, "not written")
 
@@ -78,16 +78,18 @@ def _changes(found: Look, against: Path | None) -> str:
     return section(f"Against {against.name}", [paragraph(line) for line in lines])
 
 
-def _said(found: Look, name: str, save: Path | None, asking: tuple[Path, Path | None], changes: str) -> Task:
-    file, (path, questions) = found.grid.source, asking
+def _said(
+    found: Look, name: str, save: Path | None, asking: tuple[Path, Path | None, Path | None], changes: str
+) -> Task:
+    file, questions = found.grid.source, asking[2]
     parts = [part for part in (file.name, changes) if part]
     parts.append(section("As read", [paragraph(line) for line in found.evidence]))
     if found.questions:
         asked = together(found.questions)
         parts.append(section("Questions", [_asked(question) for question in asked]))
-        parts.append(_to_answer(path, questions))
+        parts.append(_to_answer(*asking))
         if questions is not None:
-            questions.write_text(questions_toml(file.name, asked), encoding="utf-8")
+            questions.write_text(questions_toml(file.name, asked, found.answers), encoding="utf-8")
         return Task(file.name, "\n\n".join(parts), WITHHELD, "questions are open", len(asked))
     mapping = mapping_of(found, name=name)
     lines, problems = _by_mapping(found, mapping)
@@ -102,13 +104,17 @@ def _said(found: Look, name: str, save: Path | None, asking: tuple[Path, Path | 
     return Task(file.name, "\n\n".join(parts), UNREADABLE if stops else OK, "mapped")
 
 
-def _to_answer(file: Path, questions: Path | None) -> str:
-    """The commands that answer the questions about a file."""
+def _to_answer(file: Path, answers: Path | None, questions: Path | None) -> str:
+    """The commands that answer the questions about a file; answers given before are kept."""
     sheet = Path("answers.toml") if questions is None else questions
-    ask = (
-        f"To answer:\n  fluebook map {file} --questions {sheet}\n" if questions is None else f"Written: {sheet.name}\n"
-    )
-    return f"{ask}Fill that file in, then:\n  fluebook map {file} --answers {sheet} --save {file.with_suffix(ENDING)}"
+    if questions is not None:
+        ask = f"Written: {sheet.name}"
+    else:
+        before = "" if answers is None else f" --answers {answers}"
+        sheet = sheet if answers is None else answers
+        ask = f"To answer:\n  fluebook map {file}{before} --questions {sheet}"
+    then = f"fluebook map {file} --answers {sheet} --save {file.with_suffix(ENDING)}"
+    return f"{ask}\nFill that file in, then:\n  {then}"
 
 
 def _by_mapping(found: Look, mapping: Mapping) -> tuple[Sequence[str], Sequence[Problem]]:

@@ -14,6 +14,7 @@ from reporter.equation import Citation
 from reporter.ledger import Ledger
 from reporter.problems import Grade, Problem
 from reporter.record import Channel, Limit, Reading, Record, Run
+from reporter.said_once import said_once
 
 
 class RunState(Enum):
@@ -207,7 +208,7 @@ class Outcome:
 
     def after(self, problems: tuple[Problem, ...]) -> Outcome:
         """The same outcome with the problems of reading the input before its own."""
-        return replace(self, problems=problems + self.problems)
+        return replace(self, problems=said_once(self.record, problems, self.problems))
 
     def run(self, key: str) -> RunResult:
         """The run of a key segment."""

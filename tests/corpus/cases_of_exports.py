@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 from datetime import datetime, timedelta
+from typing import Any
 
-from tests.corpus.case import END, HEADERS, Case, comma, number, plain, text
+from tests.corpus.case import END, HEADERS, Case, book, comma, number, plain, rows_on, text
 from tests.corpus.truth import TRUTH, Row
 
 DRY = tuple(HEADERS)
@@ -40,6 +41,18 @@ def tagged(names: Sequence[str] = NAMES) -> bytes:
     head = "Timestamp,Channel,Value,Unit"
     return lines(head, lambda _, r: "\n".join(
         f"{r[0]},{n} dry,{number(v)},{u}" for n, u, v in zip(names, UNITS, r[1:], strict=True)))  # fmt: skip
+
+
+def of_days(sheets: Sequence[str]) -> bytes:
+    """A workbook with twenty readings on each sheet, times without a date."""
+
+    def fill(made: Any) -> None:
+        made.remove(made.active)
+        for number, name in enumerate(sheets):
+            rows = [(row[0].time(), *row[1:]) for row in TRUTH[20 * number : 20 * number + 20]]
+            rows_on(made.create_sheet(name), rows=rows)
+
+    return book(fill)
 
 
 LOST = {(at, "CO"): ("error value", None) for at in (5, 6)}
@@ -119,6 +132,10 @@ LOGGERS = [
         above=["Start: 2026-04-20 09:50"], clock=lambda t: f"{t - TRUTH[0][0]}".rjust(8, "0")), stops="day"),
     Case("seconds since 1970", "1776700200", plain(
         clock=lambda t: f"{(t - datetime(1970, 1, 1)).total_seconds():.0f}"), stops="no-readings-table"),
+    Case("a sheet for each day", "sheets named 2026-04-20, -21, -22 with times without a date", of_days(
+        ("2026-04-20", "2026-04-21", "2026-04-22")), "logger.xlsx", stops="day"),
+    Case("a sheet for each run, times alone", "sheets named Run 1, Run 2, Run 3 with times without a date", of_days(
+        ("Run 1", "Run 2", "Run 3")), "logger.xlsx", answers={**END, "day": "test date"}, day=True),
     Case("UTC in the header", "`Time (UTC)` above 15:50 for 09:50 in Denver", plain(
         headers=(("Time (UTC)", *DRY[1:]),), clock=lambda t: f"{t + timedelta(hours=6)}"),
         answers={**END, "time-zone": "America/Denver"}),

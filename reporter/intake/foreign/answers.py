@@ -4,15 +4,15 @@ from __future__ import annotations
 
 import json
 import tomllib
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from pathlib import Path
 
 from reporter.errors import RecordError
 from reporter.intake.foreign.model import Question
 
 
-def questions_toml(file: str, questions: Sequence[Question]) -> str:
-    """The questions about a file as TOML, each with an empty answer."""
+def questions_toml(file: str, questions: Sequence[Question], given: Mapping[str, str] | None = None) -> str:
+    """The questions about a file as TOML, each with an empty answer, below them the answers already given."""
     lines = [
         f"# What can be read two ways in {json.dumps(file, ensure_ascii=False)}. Write one of the answers between the",
         "# quotation marks, then: fluebook map FILE --answers THIS_FILE --save NAME.map.toml",
@@ -31,6 +31,10 @@ def questions_toml(file: str, questions: Sequence[Question]) -> str:
             ),
             'answer = ""',
         ]
+    open_ = {question.key for question in questions}
+    for key, answer in (given or {}).items():
+        if key not in open_:
+            lines += ["", "[[question]]  # answered before", f"key = {_quoted(key)}", f"answer = {_quoted(answer)}"]
     return "\n".join(lines) + "\n"
 
 

@@ -235,8 +235,8 @@ def _found(folder: Path, place: Place) -> _Inputs | Problem:
         names = ", ".join(f.name for f in fixed) or "none"
         return problem("folder-inputs", place, f"field workbooks or records: {names}")
     loggers = tuple(f for f in files if f.suffix.lower() in LOGGERS and f not in fixed)
-    known = {*loggers, *mappings, fixed[0], folder / MANIFEST}
-    return _Inputs(fixed[0], loggers, mappings, others=tuple(f.name for f in files if f not in known))
+    others = [f.name for f in files if f not in (*loggers, fixed[0]) and f.suffix.lower() != ".toml"]
+    return _Inputs(fixed[0], loggers, mappings, others=tuple(others))
 
 
 def _listed(folder: Path, data: dict[str, Any]) -> _Inputs | Problem:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping, Sequence
 from datetime import datetime
 from typing import Literal, TypeAlias
@@ -16,6 +17,7 @@ from reporter.problems import Place, Problem, problem
 from reporter.record import Channel, Readings, Record, text_of
 from reporter.units import convert
 
+_SPAN = re.compile(r"(\d{4}-\d\d-\d\d) (\d\d:\d\d(?::\d\d)?) to (?:(\d{4}-\d\d-\d\d) )?(\d\d:\d\d(?::\d\d)?): ")
 #: Notes of one kind in one channel that are said.
 LISTED = 5
 Side: TypeAlias = Literal["left", "right"]
@@ -85,6 +87,15 @@ def _place(readings: Readings, one: Finding) -> Place:
     """The cell of the first reading; of a finding of all channels, the row in the first of them."""
     place = readings.place_of(readings.index(one.channel) if one.channel else 0, one.first)
     return Place(place.file, place.sheet, place.cell, one.channel)
+
+
+def span_of(found: str) -> tuple[datetime, datetime] | None:
+    """The first and the last time that a note of several readings begins with."""
+    match = _SPAN.match(found)
+    if match is None:
+        return None
+    day, first, last_day, last = match.groups()
+    return datetime.fromisoformat(f"{day} {first}"), datetime.fromisoformat(f"{last_day or day} {last}")
 
 
 def _span(readings: Readings, one: Finding) -> str:

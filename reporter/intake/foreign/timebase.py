@@ -88,7 +88,7 @@ def time_base(grid: Grid, tables: Sequence[Table], desk: Desk, *, of_plant: bool
     ahead = zone_of(written).utcoffset(None) if written else None
     offsets = [replace(s, offset=ahead) for s in every] if written else [*every, *later]
     zone = _zone(offsets, desk, written)
-    day = "" if not order else _day(every, table, desk)
+    day = "" if not order else _day(every, tables, desk)
     if order:
         _half_days(cells, stamps, desk)
     return TimeBase(columns, order, stamp, zone, day, written if zone else "")
@@ -248,11 +248,15 @@ def _goes_back(stamps: Sequence[Stamp], zone: tzinfo | None) -> str:
     return ""
 
 
-def _day(stamps: Sequence[Stamp], table: Table, desk: Desk) -> str:
+def _day(stamps: Sequence[Stamp], tables: Sequence[Table], desk: Desk) -> str:
     if any(stamp.day is not None and stamp.day.year > 1904 for stamp in stamps):
         return ""
+    days = dict.fromkeys(table.page.sheet for table in tables if is_timelike(table.page.sheet))
+    if len(days) > 1:
+        asks = "Is each sheet a day of its own? Type the date beside the times of each sheet, or export one file for each day"
+        return desk.ask("day", asks, f"times without a date on the sheets {', '.join(map(repr, days))}", ())
     if stamps[:1] and stamps[0].clock == timedelta(0):
-        first = show(at(table.page.rows[table.first], table.columns[0]))
+        first = show(at(tables[0].page.rows[tables[0].first], tables[0].columns[0]))
         asks = "Do these times count from the start? Export the file with the time of day instead"
         options = (Option("test date", "no: they are times of the day of the item Test date, from midnight on"),)
         return desk.ask("day", asks, f"no date in any row, and the first time is {first!r}", options)

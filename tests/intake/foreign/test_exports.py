@@ -123,3 +123,17 @@ def test_a_row_of_other_units_stops_a_mapping_used_again(tmp_path: Path) -> None
     assert problem.found == "'mg/m3' in the column of NOx, which is read in ppm"
     same = text(headers=headers, before={30: [",ppm,,,"]}).encode()
     assert {p.code for p in apply(written(tmp_path, same, "same.csv"), mapping).problems} == {"rows-left-out"}
+
+
+def test_answers_given_before_are_kept_with_the_questions_that_are_left(tmp_path: Path) -> None:
+    path = written(tmp_path, plain(headers=(("Time", "NOx ppm", *HEADERS[2:]),)))
+    sheet = tmp_path / "answers.toml"
+    map_file(path, questions=sheet)
+    half = sheet.read_text(encoding="utf-8").replace('answer = ""', 'answer = "interval end"', 1)
+    sheet.write_text(half, encoding="utf-8")
+    assert f"--answers {sheet} --questions {sheet}" in map_file(path, answers=sheet).text
+    map_file(path, answers=sheet, questions=sheet)
+    assert read_answers(sheet) == {"stamp": "interval end"}
+    whole = sheet.read_text(encoding="utf-8").replace('answer = ""', 'answer = "dry"')
+    sheet.write_text(whole, encoding="utf-8")
+    assert map_file(path, answers=sheet).code == 0
