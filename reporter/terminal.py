@@ -241,7 +241,7 @@ def _missed(outcome: Outcome, line: Applied, words: Phrases) -> str:
     numbers = ""
     if value is not None and bound is not None:
         within = words("criterion.within", bound=_number(bound))
-        asked = within if check.difference else f"{check.relation} {_number(bound)}"
+        asked = within if check.difference or check.relation == "within" else f"{check.relation} {_number(bound)}"
         numbers = f": {_number(value)}, {words('criterion.asked', bound=asked)}"
     difference, alternative = ledger.get(check.difference), ledger.get(check.alternative)
     if difference is not None and alternative is not None:

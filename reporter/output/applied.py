@@ -40,23 +40,26 @@ def applied(outcome: Outcome, checks: Iterable[Check]) -> list[Applied]:
     One reading that closes a run and opens the next is one line; so is what has the same numbers in every run,
     and both ends of a range where both are met.
     """
+    checks = tuple(checks)
+    missed = {check.value for check in checks if not check.met}
     alike: dict[tuple[str, str, str], list[Check]] = {}
     for check in checks:
-        alike.setdefault((_criterion(check), check.gas, _particulars(check)), []).append(check)
-    return [line for some in alike.values() for line in _lines(outcome, some)]
+        words = _particulars(check, ends=check.value in missed)
+        alike.setdefault((_criterion(check), check.gas, words), []).append(check)
+    return [line for (_, _, words), some in alike.items() for line in _lines(outcome, some, words)]
 
 
 def _criterion(check: Check) -> str:
     return check.title.partition(",")[0]
 
 
-def _particulars(check: Check) -> str:
-    """What a check is of, without its run, and without the end of the range where it is met."""
+def _particulars(check: Check, *, ends: bool) -> str:
+    """What a check is of, without its run; with the end of the range where a value misses one end."""
     words = _RUN.sub("", check.title.partition(",")[2].strip())
-    return _END.sub("", words).removeprefix(", ") if check.met else words
+    return words if ends else _END.sub("", words).removeprefix(", ")
 
 
-def _lines(outcome: Outcome, checks: Sequence[Check]) -> list[Applied]:
+def _lines(outcome: Outcome, checks: Sequence[Check], words: str) -> list[Applied]:
     ledger = outcome.ledger
     bounds: dict[str, set[float]] = {}
     for check in checks:
@@ -68,14 +71,14 @@ def _lines(outcome: Outcome, checks: Sequence[Check]) -> list[Applied]:
         name = "" if same else check.value
         end = "" if check.met else check.bound
         groups.setdefault((name, end, check.met), []).append(check)
-    return [_line(outcome, some) for some in groups.values()]
+    return [_line(outcome, some, words) for some in groups.values()]
 
 
-def _line(outcome: Outcome, checks: Sequence[Check]) -> Applied:
+def _line(outcome: Outcome, checks: Sequence[Check], words: str) -> Applied:
     """Several checks as one, with the runs of all."""
     first = checks[0]
     runs = tuple(dict.fromkeys(run for check in checks for run in check.runs))
-    parts = [_particulars(first), _run_words(outcome, checks, runs)]
+    parts = [words, _run_words(outcome, checks, runs)]
     about = ", ".join(part for part in parts if part)
     return Applied(_criterion(first), about, tuple(checks))
 

@@ -26,6 +26,8 @@ _BY_UNIT = {("static_pressure", "kPa"): 3, ("load", "MW"): 2}
 _ONE_MORE = "mean_of_two"
 #: A space as wide as a digit (and as a minus), for numbers that are aligned as text.
 FIGURE_SPACE = "\u2007"
+#: What a moisture without a unit is.
+FRACTION = "fraction by volume"
 _NARROW = "\u202f"
 _POWERS = str.maketrans("23", "²³")
 _LOWERED = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")

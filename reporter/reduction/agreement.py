@@ -90,7 +90,7 @@ def _carbon_dioxide(book: Book, about: RunBook, state: State, assumed: Mapping[s
     }
     bound = book.apply(agreement_bound, stem(about, "co2_bound"), inputs)
     met = book.apply(share_within, stem(about, "co2_met"), {"value": difference, "bound": bound})
-    _note(book, about, met, difference, bound, ("CO2", "Carbon dioxide against that expected of the fuel", "at most"))
+    _note(book, about, met, difference, bound, ("CO2", "Carbon dioxide against that expected of the fuel", "within"))
     if met.value != 1.0:
         point = {"slope": slope, "air_oxygen": air}
         book.apply(o2_on_line, stem(about, "o2_needed"), {**point, "co2": dioxide})

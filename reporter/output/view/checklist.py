@@ -41,7 +41,9 @@ def _line(desk: Desk, row: Mapping[str, Any], documents: tuple[BoundDocument, ..
     parts = [_part(desk, part, number, text, documents) for part in asked]
     listed = tuple(one.anchor for one in documents if one.sha256 and _line_of(desk, one) in {number, text.lower()})
     there = [part for part in parts if part.anchors]
-    anchors = tuple(dict.fromkeys([*(at for part in there for at in part.anchors), *listed]))
+    found = {*(at for part in there for at in part.anchors), *listed}
+    order = ("cover", *(heading.anchor for heading in desk.headings().values()), *(one.anchor for one in documents))
+    anchors = tuple(anchor for anchor in order if anchor in found)
     open_ = [part for part in parts if not part.anchors and not (listed and not there)]
     words = []
     if there and (open_ or any(part.lacks for part in there)):

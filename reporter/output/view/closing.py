@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from reporter.output.numbers import formulas
+from reporter.output.numbers import capital, formulas
 from reporter.output.view.cover import report_number
 from reporter.output.view.desk import Desk, said
 from reporter.output.view.model import Block, Column, Row, Table
@@ -27,7 +27,7 @@ def references(desk: Desk) -> tuple[Block, ...]:
 
 def _parts(reference: Reference) -> tuple[str, str, str]:
     """Title, edition where there is one, and what was confirmed of it."""
-    edition = "" if reference.edition == _NO_EDITION else reference.edition
+    edition = "" if reference.edition == _NO_EDITION else capital(reference.edition)
     return reference.title, edition, reference.note.rstrip(".")
 
 

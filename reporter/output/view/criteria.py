@@ -9,13 +9,13 @@ from itertools import zip_longest
 from reporter.ledger import Entry, FromEquation
 from reporter.outcome import Check
 from reporter.output.applied import Applied, applied
-from reporter.output.numbers import FIGURE_SPACE, formulas, unit_text
+from reporter.output.numbers import FIGURE_SPACE, FRACTION, formulas, unit_text
 from reporter.output.view.desk import Desk, gas_name
 from reporter.output.view.model import Block, Cell, Column, Row, Table
 from reporter.output.view.standing import dagger
 
-#: A criterion with more bounds than this has each beside its value.
-_MOST_BOUNDS = 2
+#: The citation of an equation that is no more than the criterion it serves.
+_CRITERION = "criterion"
 
 
 def criteria(desk: Desk) -> tuple[Block, ...]:
@@ -40,7 +40,7 @@ def _block(desk: Desk, title: str, checks: Sequence[Check], lines: Sequence[Appl
     cells = _cells(desk, lines, bound=not shared)
     half = -(-len(cells) // 2)
     pairs = zip_longest(cells[:half], cells[half:], fillvalue="")
-    words = f"{common}{_value_words(desk, values)}"
+    words = f"{common}{_value_words(desk, values)}{_bound_source(desk, checks)}"
     table = Table((Column(""), Column("")), tuple(Row(pair) for pair in pairs))
     return Block(title=formulas(title), anchor=desk.place(bounds), text=(words,), tables=(table,))
 
@@ -105,9 +105,9 @@ def _adopted_by(desk: Desk, checks: Sequence[Check]) -> str:
 
 
 def _share_bounds(desk: Desk, checks: Sequence[Check]) -> bool:
-    """Whether the applications of a criterion have so few bounds that they stand above the table."""
-    bounds = {(check.relation, float(desk.outcome.ledger[check.bound].value)) for check in checks}
-    return len(bounds) <= _MOST_BOUNDS
+    """Whether the bounds, as printed, stand once above the table: a single one, or one for each end of a range."""
+    bounds = {(check.relation, bound_words(desk, check)) for check in checks}
+    return len(bounds) == len({relation for relation, _ in bounds})
 
 
 def _value_words(desk: Desk, values: Sequence[Entry]) -> str:
@@ -115,16 +115,30 @@ def _value_words(desk: Desk, values: Sequence[Entry]) -> str:
     origin = values[0].origin
     if not isinstance(origin, FromEquation):
         return ""
-    units = {unit_text(value.unit) for value in values}
+    units = {_unit_words(value) for value in values}
     unit = f" [{units.pop()}]" if len(units) == 1 and units != {""} else ""
     equation = origin.equation
-    return f"{desk.words('criterion.value_by')}{unit} {desk.equation_line(equation)} ({equation.citation.text()})."
+    source = f" ({equation.citation.text()})" if equation.citation.document != _CRITERION else ""
+    return f"{desk.words('criterion.value_by')}{unit} {desk.equation_line(equation)}{source}."
+
+
+def _bound_source(desk: Desk, checks: Sequence[Check]) -> str:
+    """What a computed bound is made of, for bounds that have words of their own."""
+    said = desk.phrases.all("bound")
+    origins = [desk.outcome.ledger[check.bound].origin for check in checks]
+    names = dict.fromkeys(origin.equation.name for origin in origins if isinstance(origin, FromEquation))
+    return "".join(f" {formulas(said[name])}" for name in names if name in said)
+
+
+def _unit_words(entry: Entry) -> str:
+    """The unit of a value; a fraction by volume says so."""
+    return unit_text(entry.unit) or (FRACTION if "moisture" in entry.key else "")
 
 
 def cited(checks: Sequence[Check]) -> str:
     """Where a criterion is printed, once, without the methods that adopt it."""
     texts = [replace(check.citation, number="") if adopts(check) else check.citation for check in checks]
-    return " and ".join(dict.fromkeys(citation.text() for citation in texts))
+    return " and ".join(dict.fromkeys(formulas(citation.text()) for citation in texts))
 
 
 def adopts(check: Check) -> bool:
@@ -135,7 +149,7 @@ def adopts(check: Check) -> bool:
 def bound_words(desk: Desk, check: Check) -> str:
     """How a value has to stand to its bound, in words; of a share of span the magnitude counts."""
     bound = desk.number_text(check.bound)
-    if check.difference:
+    if check.difference or check.relation == "within":
         return desk.words("criterion.within", bound=bound)
     name = f"criterion.{check.relation.replace(' ', '_')}"
     return f"{desk.words(name)} {bound}"

@@ -64,7 +64,7 @@ def _overview(desk: Desk) -> Table:
         if any(check.gas for check in checks):
             cells += [_answer(desk, [check for check in checks if check.gas == gas]) for gas in gases]
         else:
-            cells.append(_answer(desk, checks, span=max(len(gases), 1)))
+            cells.append(_answer(desk, checks, span=len(gases)) if gases else _answer(desk, checks))
         rows.append(Row(tuple(cells)))
     parts = [desk.words("criterion.overview"), _adoptions(desk)]
     if any(dagger(desk, (check.bound, check.alternative)) for check in desk.outcome.checks):
@@ -88,7 +88,8 @@ def _answer(desk: Desk, checks: Sequence[Check], *, span: int = 1) -> AnyCell:
         return desk.missing
     met = all(check.met for check in checks)
     mark = dagger(desk, (key for check in checks for key in (check.bound, check.alternative)))
-    return Cell(desk.words("criterion.met" if met else "criterion.not_met") + mark, strong=not met, span=span)
+    answer = desk.words("criterion.met" if met else "criterion.not_met") + mark
+    return Cell(desk.words("criterion.as_a_whole", answer=answer) if span > 1 else answer, strong=not met, span=span)
 
 
 def _not_met(desk: Desk, line: Applied) -> str:
@@ -144,9 +145,11 @@ def _found_words(desk: Desk, problems: Sequence[Problem]) -> str:
     """What was found, once for the channels that share it."""
     names = {channel.channel.value for channel in desk.outcome.record.channels}
     channels: dict[str, dict[str, None]] = {}
-    for found in dict.fromkeys(problem.found for problem in problems if problem.found):
+    for found, of in dict.fromkeys((problem.found, problem.place.field) for problem in problems if problem.found):
         name, comma, rest = found.partition(", ")
         head, words = (name, rest) if comma and name in names else ("", found)
+        if found[0].isdigit() and of in names:
+            head = of
         channels.setdefault(words, {})[head] = None
     texts = [", ".join(part for part in (*heads, words) if part) for words, heads in channels.items()]
     return _MINUS.sub("−", formulas(counted("; ".join(texts))))

@@ -12,7 +12,7 @@ from reporter.gases import find_gas
 from reporter.ledger import Entry
 from reporter.minutes import minutes_text
 from reporter.outcome import RunResult, RunState
-from reporter.output.numbers import day, formulas, period, unit_text
+from reporter.output.numbers import FRACTION, day, formulas, period, unit_text
 from reporter.output.view.desk import Desk, channel_name, gas_name, said
 from reporter.output.view.model import AnyCell, Block, Cell, Column, Row, Shown, Table
 from reporter.output.view.tabular import aligned, group_row, side_by_side
@@ -254,7 +254,7 @@ def unit_and_basis(entry: Entry) -> str:
     """Unit and basis of an entry in one text; a fraction by volume says so."""
     unit = unit_text(entry.unit)
     if not unit and "moisture" in entry.key:
-        unit = "fraction by volume"
+        unit = FRACTION
     basis = entry.basis.text().replace("k = ", "k\u00a0=\u00a0")
     return formulas(", ".join(part for part in (unit, basis) if part))
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable
 from dataclasses import dataclass, field, replace
 from typing import Any
@@ -19,6 +20,8 @@ from reporter.typeset import html_formula, symbol_html, text_formula
 
 #: Significant digits of numbers put into equations.
 DIGITS = 6
+#: From here on numbers are put in with a decimal: differences of meter readings rest on their last digits.
+_LARGE = 1e6
 #: Chapters of the run as a whole: what each leads to.
 _OF_RUN = (
     ("Moisture", ("moisture",)),
@@ -128,13 +131,19 @@ def _where(entry: Entry) -> str:
     return ""
 
 
+def number_text(value: float) -> str:
+    """A number with six significant digits, from a million on to one decimal."""
+    digits = DIGITS if abs(value) < _LARGE else math.floor(math.log10(abs(value))) + 2
+    return shortest(value, digits)
+
+
 def value_text(entry: Entry) -> str:
-    """The value of an entry with six significant digits; a series by its count."""
+    """The value of an entry as it is put into equations; a series by its count."""
     if entry.is_series:
         return f"{len(entry.value)} readings"
     if entry.is_indicator:
         return "yes" if float(entry.value) == 1.0 else "no"
-    return shortest(float(entry.value), DIGITS)
+    return number_text(float(entry.value))
 
 
 def _formula(equation: Equation[Any]) -> str:
@@ -143,7 +152,7 @@ def _formula(equation: Equation[Any]) -> str:
 
 
 def _number(name: Name) -> str:
-    return f"{len(name.value)} readings" if name.series else shortest(float(name.value), DIGITS)
+    return f"{len(name.value)} readings" if name.series else number_text(float(name.value))
 
 
 def sample_run(desk: Desk) -> RunResult | None:
