@@ -48,8 +48,8 @@ def of_days(sheets: Sequence[str]) -> bytes:
 
     def fill(made: Any) -> None:
         made.remove(made.active)
-        for number, name in enumerate(sheets):
-            rows = [(row[0].time(), *row[1:]) for row in TRUTH[20 * number : 20 * number + 20]]
+        for at, name in enumerate(sheets):
+            rows = [(row[0].time(), *row[1:]) for row in TRUTH[20 * at : 20 * at + 20]]
             rows_on(made.create_sheet(name), rows=rows)
 
     return book(fill)

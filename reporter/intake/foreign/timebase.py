@@ -253,7 +253,7 @@ def _day(stamps: Sequence[Stamp], tables: Sequence[Table], desk: Desk) -> str:
         return ""
     days = dict.fromkeys(table.page.sheet for table in tables if is_timelike(table.page.sheet))
     if len(days) > 1:
-        asks = "Is each sheet a day of its own? Type the date beside the times of each sheet, or export one file for each day"
+        asks = "Is each sheet a day? Type the date beside the times of each sheet, or export one file for each day"
         return desk.ask("day", asks, f"times without a date on the sheets {', '.join(map(repr, days))}", ())
     if stamps[:1] and stamps[0].clock == timedelta(0):
         first = show(at(tables[0].page.rows[tables[0].first], tables[0].columns[0]))
