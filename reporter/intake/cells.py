@@ -12,10 +12,10 @@ from reporter.intake.sheets import ANY, Column, choice_words, fold
 from reporter.intake.table import Cell, clean, plain_number
 from reporter.units import ReadUnit, convert, dimension, read_unit, spellings_of
 
-_NUMBER = re.compile(r"^[+\-−]?(?:\d+\.?\d*|\.\d+)(?:[eE][+\-]?\d{1,3})?$")
+_NUMBER = re.compile(r"^[+\-−]?(?:\d+(?:\.\d*)?|\.\d+)(?:[eE][+\-]?\d{1,3})?$")
 _GROUPED = re.compile(r"^[+\-−]?\d{1,3}(?:,\d{3})+\.\d+$|^[+\-−]?\d{1,3}(?:,\d{3}){2,}$")
-_COMMA = re.compile(r"^[+\-−]?[\d.,' ]*\d[,'][\d.,' ]*$")
-_WITH_UNIT = re.compile(r"^([+\-−]?(?:\d+\.?\d*|\.\d+)(?:[eE][+\-]?\d{1,3})?)\s*([^\d\s.,+\-−].*)$")
+_COMMA = re.compile(r"^[+\-−]?(?=[\d.,' ]*\d[,'])[\d.,' ]*+$")
+_WITH_UNIT = re.compile(r"^([+\-−]?(?:\d+(?:\.\d*)?|\.\d+)(?:[eE][+\-]?\d{1,3})?)\s*([^\d\s.,+\-−].*)$")
 _ERROR = re.compile(r"^#[A-Z0-9/]+[!?]?$")
 
 

@@ -9,10 +9,10 @@ from datetime import date, datetime, time, timedelta
 from reporter.intake.sheets import months
 from reporter.intake.table import Cell, clean, show
 
-_ISO = re.compile(r"^(\d{4})[-/.](\d{1,2})[-/.](\d{1,2})(?:[T ]+(?P<rest>.+))?$")
-_NUMERIC = re.compile(r"^(\d{1,2})[-/.](\d{1,2})[-/.](\d{4}|\d{2})(?:,?\s+(?P<rest>.+))?$")
-_DAY_FIRST = re.compile(r"^(\d{1,2})(?:st|nd|rd|th)?[\s.\-]*([^\W\d_]+)\.?[\s.,\-]*(\d{4})(?:,?\s+(?P<rest>.+))?$")
-_MONTH_FIRST = re.compile(r"^([^\W\d_]+)\.?\s+(\d{1,2})(?:st|nd|rd|th)?,?\s+(\d{4})(?:,?\s+(?P<rest>.+))?$")
+_ISO = re.compile(r"^(\d{4})[-/.](\d{1,2})[-/.](\d{1,2})(?:[T ]++(?P<rest>.+))?$")
+_NUMERIC = re.compile(r"^(\d{1,2})[-/.](\d{1,2})[-/.](\d{4}|\d{2})(?:,?\s++(?P<rest>.+))?$")
+_DAY_FIRST = re.compile(r"^(\d{1,2})(?:st|nd|rd|th)?[\s.\-]*([^\W\d_]+)\.?[\s.,\-]*(\d{4})(?:,?\s++(?P<rest>.+))?$")
+_MONTH_FIRST = re.compile(r"^([^\W\d_]+)\.?\s+(\d{1,2})(?:st|nd|rd|th)?,?\s+(\d{4})(?:,?\s++(?P<rest>.+))?$")
 _CLOCK = re.compile(r"^(\d{1,2}):(\d{2})(?::(\d{2})(?:[.,]\d+)?)?\s*(?:([ap])\.?m\.?)?$", re.IGNORECASE)
 _CLOCK_PLAIN = re.compile(r"^(\d{2})(\d{2})$")
 _YEARS = range(1980, 2101)

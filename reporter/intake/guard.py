@@ -16,6 +16,8 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 
 from reporter.intake.cellscan import CellScan
+from reporter.intake.container import is_plain, strange_list
+from reporter.intake.corner import ATTRIBUTES, MAX_COLUMN, PREFIX, column_number, crowded_row, far_cell
 
 MEGABYTE = 1 << 20
 #: Caps on what a workbook may unpack to.
@@ -24,9 +26,7 @@ MAX_RATIO = 200
 MAX_ENTRIES = 2000
 #: A part smaller than this may be packed at any ratio (repeated styles pack very well).
 SMALL_PART = MEGABYTE
-#: Caps on the cells of one sheet: outermost column and row, area of merged cells and links.
-MAX_COLUMN = 512
-MAX_ROW = 1_048_576
+#: Cap on the area of merged cells and links of one sheet.
 MAX_AREA = 20_000
 #: Caps on what all parts hold together: cells, and other elements by name.
 MAX_CELLS = 500_000
@@ -39,20 +39,16 @@ _OLE = b"\xd0\xcf\x11\xe0\xa1\xb1\x1a\xe1"
 _OLE_ENCRYPTED = "EncryptedPackage".encode("utf-16-le")
 _DTD = re.compile(rb"<!(?:DOCTYPE|ENTITY)")
 _ENCODING = re.compile(rb"^\s*<\?xml[^>]*?encoding\s*=\s*[\"']([^\"']*)[\"']")
-_PREFIX = rb"(?:[^\s<>/:!?]+:)?"
-_ATTRIBUTES = rb"((?:[^\"'<>]|\"[^\"]*\"|'[^']*')*+)"
-_FAR = re.compile(rb"<" + _PREFIX + rb"c\s[^<>]*?\br\s*=\s*[\"']((?:[A-Z]{3,}|S[S-Z]|[T-Z][A-Z])\d+|[A-Z]+\d{7,})[\"']")
-_PERHAPS_FAR = re.compile(rb"[\"'](?:[A-Z]{3,}|S[S-Z]|[T-Z][A-Z]|[A-Z]+\d{6})\d")
 _PREFIXED = re.compile(rb":(?:c|row|si|xf|sheet)[\s>/]")
-_COUNTED = re.compile(rb"<" + _PREFIX + rb"(c|row|si|xf|sheet)[\s>/]")
-_AREA = re.compile(rb"<" + _PREFIX + rb"(?:mergeCell|hyperlink)\s" + _ATTRIBUTES + rb">")
+_COUNTED = re.compile(rb"<" + PREFIX + rb"(c|row|si|xf|sheet)[\s>/]")
+_AREA = re.compile(rb"<" + PREFIX + rb"(?:mergeCell|hyperlink)\s" + ATTRIBUTES + rb">")
 _REF = re.compile(rb"\bref\s*=\s*[\"']([^\"']*)[\"']")
 _RANGE = re.compile(rb"^\$?([A-Z]{1,3})\$?(\d{1,7})(?::\$?([A-Z]{1,3})\$?(\d{1,7}))?$")
 _FORMULA_CELL = re.compile(
-    rb"<" + _PREFIX + rb"c\s" + _ATTRIBUTES + rb">\s*<" + _PREFIX + rb"f\b[^<>]*(?:/>|>[^<]*</[^<>]*>)\s*"
-    rb"(?:</" + _PREFIX + rb"c>|<" + _PREFIX + rb"v\s*/>|<" + _PREFIX + rb"v\s*></)"
+    rb"<" + PREFIX + rb"c\s" + ATTRIBUTES + rb">\s*<" + PREFIX + rb"f\b[^<>]*(?:/>|>[^<]*</[^<>]*>)\s*"
+    rb"(?:</" + PREFIX + rb"c>|<" + PREFIX + rb"v\s*/>|<" + PREFIX + rb"v\s*></)"
 )
-_ROW_END = re.compile(rb"</" + _PREFIX + rb"(?:row|si|xf)\s*>")
+_ROW_END = re.compile(rb"</" + PREFIX + rb"(?:row|si|xf)\s*>")
 _ADDRESS = re.compile(rb"\br\s*=\s*[\"']([A-Z]+\d+)[\"']")
 _TEXT_RESULT = re.compile(rb"\bt\s*=\s*[\"']str[\"']")
 
@@ -76,6 +72,7 @@ class Look:
     macros: bool = False
     counts: Counter[bytes] = field(default_factory=Counter)
     scans: dict[str, CellScan] = field(default_factory=dict)
+    plain: bool = False
 
     @property
     def stops(self) -> bool:
@@ -98,9 +95,22 @@ def look_at(content: bytes, cells: int = MAX_CELLS) -> Look:
                     _part(archive, info, look, cells)
                     if look.stops:
                         break
+                else:
+                    _list(content, archive, look)
     except (zipfile.BadZipFile, zlib.error, EOFError, OSError, ValueError, NotImplementedError) as error:
         look.findings.append(Finding("truncated", str(error) or type(error).__name__))
     return look
+
+
+def _list(content: bytes, archive: zipfile.ZipFile, look: Look) -> None:
+    """Look at what the parts are for, now that each may be parsed."""
+    look.plain = is_plain(content, archive)
+    try:
+        strange = strange_list(archive)
+    except Exception:  # a damaged list is said by the reader of the workbook
+        look.plain, strange = False, ""
+    if strange:
+        look.findings.append(Finding("not-a-workbook", strange))
 
 
 def names_may_be_read(content: bytes) -> bool:
@@ -134,6 +144,7 @@ def _container(archive: zipfile.ZipFile, look: Look) -> bool:
     names = {info.filename for info in infos}
     look.macros = any(name.endswith("vbaProject.bin") for name in names)
     total = sum(info.file_size for info in infos)
+    twice = len({info.filename.casefold() for info in infos}) < len(infos)
     tight = [i for i in infos if i.file_size > SMALL_PART and i.file_size > MAX_RATIO * max(i.compress_size, 1)]
     if any(info.flag_bits & 1 for info in infos):
         look.findings.append(Finding("encrypted", "parts of the file are encrypted"))
@@ -141,6 +152,8 @@ def _container(archive: zipfile.ZipFile, look: Look) -> bool:
         look.findings.append(Finding("not-a-workbook", "parts packed in a way no spreadsheet program uses"))
     elif len(infos) > MAX_ENTRIES:
         look.findings.append(Finding("zip-bomb", f"{len(infos)} parts"))
+    elif twice:
+        look.findings.append(Finding("not-a-workbook", "two parts of one name"))
     elif total > MAX_TOTAL:
         look.findings.append(Finding("zip-bomb", f"{total // MEGABYTE} MB unpacked"))
     elif tight:
@@ -153,11 +166,12 @@ def _container(archive: zipfile.ZipFile, look: Look) -> bool:
 
 def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look, cells: int) -> None:
     """Look through one part, if it is XML: the name of a part says nothing about what a reader takes it for."""
-    name, area = info.filename, 0
+    name, area, wide = info.filename, 0, False
     uncalculated: set[str] = set()
     scan = CellScan()
     for number, piece in enumerate(_pieces(archive, info)):
         if number == 0:
+            wide = _is_wide(archive, info)
             kind = _kind(piece)
             if kind == "binary" and not name.endswith((".xml", ".rels")):
                 return
@@ -165,13 +179,15 @@ def _part(archive: zipfile.ZipFile, info: zipfile.ZipInfo, look: Look, cells: in
                 look.findings.append(Finding("not-a-workbook", f"the part {name} is {kind}, not UTF-8 text"))
                 return
         prefixed = _PREFIXED.search(piece) is not None
-        usual = scan.see(piece) and not prefixed
+        usual = scan.see(piece) and not (prefixed or wide)
         _count(piece, look.counts, scan, prefixed=prefixed)
         area += sum(_areas(piece))
         if _DTD.search(piece):
             look.findings.append(Finding("dtd", f"in the part {name}"))
-        elif far := _far_cell(piece, scan, usual=usual):
+        elif far := far_cell(piece, scan, usual=usual):
             look.findings.append(Finding("far-cell", "", name, far))
+        elif not usual and crowded_row(piece):
+            look.findings.append(Finding("far-cell", f"more than {MAX_COLUMN} cells in a row", name))
         elif len(piece) > MAX_ROW_BYTES:
             look.findings.append(Finding("zip-bomb", f"a row of more than {MAX_ROW_BYTES // MEGABYTE} MB", name))
         elif many := _too_many(look.counts, cells):
@@ -227,6 +243,12 @@ def _pieces(archive: zipfile.ZipFile, info: zipfile.ZipInfo) -> Iterator[bytes]:
         yield rest
 
 
+def _is_wide(archive: zipfile.ZipFile, info: zipfile.ZipInfo) -> bool:
+    """Whether a part is written in UTF-16, which is looked at as UTF-8."""
+    with archive.open(info) as stream:
+        return stream.read(2) in _WIDE_MARKS
+
+
 def _last_end_of_row(data: bytes) -> int:
     """Where the last closing tag of a row (any prefix), or of a shared string, begins; -1 if there is none."""
     ends = [match.start() for match in _ROW_END.finditer(data)]
@@ -246,19 +268,6 @@ def _kind(piece: bytes) -> str:
     return ""
 
 
-def _far_cell(piece: bytes, scan: CellScan, *, usual: bool) -> str:
-    """The address of a cell outside the allowed corner; empty if there is none."""
-    within = scan.last_column <= MAX_COLUMN and scan.last_row <= MAX_ROW
-    if (usual and within) or _PERHAPS_FAR.search(piece) is None:
-        return ""
-    for match in _FAR.finditer(piece):
-        address = match[1].decode("ascii")
-        letters = address.rstrip("0123456789")
-        if column_number(letters) > MAX_COLUMN or int(address[len(letters) :]) > MAX_ROW:
-            return address
-    return ""
-
-
 def _areas(piece: bytes) -> Iterator[int]:
     """The number of cells of each merged range and each link."""
     if b"mergeCell" not in piece and b"hyperlink" not in piece:
@@ -273,14 +282,6 @@ def _areas(piece: bytes) -> Iterator[int]:
         elif corners[3]:
             columns = column_number(corners[3].decode()) - column_number(corners[1].decode()) + 1
             yield max(1, columns) * max(1, int(corners[4]) - int(corners[2]) + 1)
-
-
-def column_number(letters: str) -> int:
-    """1 for A, 27 for AA."""
-    number = 0
-    for letter in letters:
-        number = number * 26 + ord(letter) - 64
-    return number
 
 
 def _uncalculated(piece: bytes) -> Iterator[str]:

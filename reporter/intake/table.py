@@ -121,7 +121,9 @@ def show(value: Raw) -> str:
     return plain_number(value)
 
 
-_UNIT_IN_BRACKETS = re.compile(r"^(?P<name>.*?)\s*(?:\[(?P<square>[^\[\]]*)\]|\((?P<round>[^()]*)\))\s*$", re.DOTALL)
+_UNIT_IN_BRACKETS = re.compile(
+    r"^(?P<name>.*?)(?<!\s)\s*+(?:\[(?P<square>[^\[\]]*)\]|\((?P<round>[^()]*)\))\s*$", re.DOTALL
+)
 
 
 def split_header(text: str) -> tuple[str, str]:

@@ -8,13 +8,13 @@ from __future__ import annotations
 
 import io
 import math
-import posixpath
 import warnings
 import zipfile
 from collections.abc import Iterable, Sequence
 from datetime import date, datetime, time, timedelta
 from typing import Any
 
+from reporter.intake.container import sheets_of
 from reporter.intake.gather import Gathered
 from reporter.intake.guard import Look
 from reporter.intake.headers import HEADER_WITHIN, score, split_footers, unit_row
@@ -60,22 +60,8 @@ def unknown_sheet(gathered: Gathered, title: str, names: Sequence[str]) -> None:
 
 def sheet_parts(content: bytes) -> dict[str, str]:
     """The part of the container each sheet's cells stand in, with the name of the sheet."""
-    from defusedxml.ElementTree import fromstring
-
     with zipfile.ZipFile(io.BytesIO(content)) as archive:
-        book = next(name for name in archive.namelist() if name.endswith("workbook.xml"))
-        folder, base = posixpath.split(book)
-        relations = fromstring(archive.read(f"{folder}/_rels/{base}.rels"))
-        targets = {
-            relation.get("Id"): posixpath.normpath(posixpath.join("/" + folder, relation.get("Target", "")))
-            for relation in relations
-        }
-        named = {}
-        for node in fromstring(archive.read(book)).iter():
-            if node.tag.endswith("}sheet"):
-                identity = next((v for k, v in node.attrib.items() if k.endswith("}id")), "")
-                named[targets.get(identity, "").lstrip("/")] = node.get("name", "")
-        return named
+        return dict(sheets_of(archive))
 
 
 def _table(spec: Sheet, sheet: Any, uncalculated: frozenset[str], gathered: Gathered) -> SheetTable | None:

@@ -37,7 +37,7 @@ from reporter.intake.sheets import sentinels
 from reporter.intake.table import Raw, clean, show
 from reporter.problems import Place
 
-_SUFFIX = re.compile(r"^[<>]?\s*[+\-−]?[\d.,' ]*\d\s*([^\d\s.,].*)$")
+_SUFFIX = re.compile(r"^[<>]?\s*+[+\-−]?(?:[.,' ]*+\d)++\s*+([^\d\s.,].*)$")
 #: Units asked about where a header names none.
 _UNITS = ("ppm", "%", "mg/m3", "ppb")
 #: A column of a status has no more different cells.

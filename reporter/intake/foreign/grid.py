@@ -13,10 +13,11 @@ from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Any, cast
 
-from reporter.intake.foreign.lines import PlainRows, plain_rows
-from reporter.intake.foreign.quick import SheetRows, is_long, quick_sheets, too_wide
+from reporter.intake.corner import MAX_COLUMN, MAX_ROW
+from reporter.intake.foreign.lines import MAX_CELL, PlainRows, plain_rows
+from reporter.intake.foreign.quick import SheetRows, is_long, quick_sheets, too_large
 from reporter.intake.guard import MAX_CELLS as MAX_CELLS_OF_FORM
-from reporter.intake.guard import MAX_COLUMN, Look, look_at
+from reporter.intake.guard import Look, look_at
 from reporter.intake.table import Raw
 from reporter.intake.workbook import ranges, raw, sheet_parts
 from reporter.problems import Place, Problem, problem
@@ -30,6 +31,8 @@ MAX_CELLS = 4_000_000
 MAX_LOGGED = 2_000_000
 #: Lines and bytes that decide about delimiter and encoding.
 SAMPLE_LINES, SAMPLE_BYTES = 400, 65_536
+#: A text file with a longer line, in bytes, is no table.
+MAX_LINE = 2 << 20
 #: Delimiters, those first that seldom stand inside a cell.
 DELIMITERS = ("\t", ";", "|", ",")
 _MARKS = (
@@ -178,6 +181,8 @@ def decoded(content: bytes) -> tuple[str, str]:
 
 
 def _text(source: SourceFile) -> Grid:
+    if _long_line(source.content):
+        return _refused(source, "zip-bomb", f"a line of more than {MAX_LINE >> 20} MB")
     first = source.content[: 4 * SAMPLE_BYTES]
     if len(first) < source.size:
         first = first[: first.rfind(b"\n") + 1] or first
@@ -206,6 +211,9 @@ def _text(source: SourceFile) -> Grid:
             if len(row) > MAX_COLUMN or cells > MAX_CELLS:
                 found = f"more than {MAX_COLUMN} columns or {MAX_CELLS:,} cells"
                 return _refused(source, "zip-bomb", found, cell=f"A{before + 1}")
+            if max(map(len, row), default=0) > MAX_CELL:
+                found = f"a cell of more than {MAX_CELL:,} characters"
+                return _refused(source, "zip-bomb", found, cell=f"A{before + 1}")
             rows.append(tuple(row))
             lines.append(before + 1)
             before = reader.line_num
@@ -213,6 +221,14 @@ def _text(source: SourceFile) -> Grid:
         return _refused(source, "truncated", str(error))
     page = Page("", tuple(rows), tuple(lines))
     return Grid(source, "text", (page,), encoding, delimiter, cut_off=cut)
+
+
+def _long_line(content: bytes) -> bool:
+    """Whether so many bytes stand together without the end of a line."""
+    return any(
+        content.find(b"\n", start, start + MAX_LINE) < 0 and content.find(b"\r", start, start + MAX_LINE) < 0
+        for start in range(0, len(content) - MAX_LINE, MAX_LINE)
+    )
 
 
 def delimiter_of(text: str) -> str:
@@ -240,7 +256,7 @@ def _workbook(source: SourceFile) -> Grid:
         return _refused(source, seen.findings[0].code, seen.findings[0].found, cell=seen.findings[0].cell)
     notes = (problem("macro-enabled", Place(source.name)),) if seen.macros else ()
     if is_long(seen):
-        if found := too_wide(seen):
+        if found := too_large(source.content, seen):
             return _refused(source, "zip-bomb", found)
         return _long_workbook(source, seen, notes)
     if seen.counts[b"c"] > MAX_CELLS_OF_FORM:
@@ -252,6 +268,8 @@ def _workbook(source: SourceFile) -> Grid:
             warnings.simplefilter("ignore")
             book = openpyxl.load_workbook(io.BytesIO(source.content), data_only=True, keep_links=False)
             parts = {name: part for part, name in sheet_parts(source.content).items()} if seen.uncalculated else {}
+            if far := _far_cell(book.worksheets):
+                return _refused(source, "far-cell", "", *far)
             pages = tuple(_page(sheet, parts.get(sheet.title, ""), seen) for sheet in book.worksheets)
             late = book.epoch.year == 1904
     except Exception as error:  # whatever the library raises on a damaged file means one thing
@@ -262,12 +280,23 @@ def _workbook(source: SourceFile) -> Grid:
 def _long_workbook(source: SourceFile, seen: Look, notes: tuple[Problem, ...]) -> Grid:
     try:
         sheets, late = quick_sheets(source.content, seen, sheet_parts(source.content))
-    except Exception as error:  # whatever the library raises on a damaged file means one thing
+    except (KeyboardInterrupt, SystemExit):
+        raise
+    except BaseException as error:  # whatever the library raises on a damaged file, its own panic too, means one thing
         return _refused(source, "truncated", f"{type(error).__name__} while reading the workbook")
     pages = tuple(
         Page(s.title, s.rows, (), s.hidden, s.hidden_rows, s.percent, s.uncalculated, s.merged) for s in sheets
     )
     return Grid(source, "workbook", pages, epoch_1904=late, problems=notes)
+
+
+def _far_cell(sheets: Sequence[Any]) -> tuple[str, str] | None:
+    """The sheet and address of a cell beyond the last allowed row or column, wherever its address came from."""
+    for sheet in sheets:
+        row, column = max((r for r, _ in sheet._cells), default=1), max((c for _, c in sheet._cells), default=1)
+        if row > MAX_ROW or column > MAX_COLUMN:
+            return sheet.title, f"{letters(column - 1)}{row}"
+    return None
 
 
 def _page(sheet: Any, part: str, seen: Look) -> Page:

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import csv
 import re
 from collections.abc import Iterator, Sequence
 from typing import overload
@@ -16,6 +15,8 @@ _LETTER = re.compile(r"(?!(?<=\d)T\d)[^\W\d_]")
 _ZEROES = ("02", "0 2")
 #: Bytes of a cell that are looked at as one number.
 _WORD = 8
+#: A text file with a longer cell, in characters, is no table.
+MAX_CELL = 4_000
 
 
 class PlainRows(Sequence[tuple[str, ...]]):
@@ -124,7 +125,7 @@ class PlainRows(Sequence[tuple[str, ...]]):
 
 
 def plain_rows(text: str, delimiter: str) -> PlainRows | None:
-    """The rows of a text; None where only the csv module can tell them: quotation marks, or a very long line."""
+    """The rows of a text; None where only the csv module can tell them: quotation marks, or a very long cell."""
     if '"' in text:
         return None
     if "\r" in text:
@@ -132,6 +133,8 @@ def plain_rows(text: str, delimiter: str) -> PlainRows | None:
     lines = text.split("\n")
     if not lines[-1]:
         lines.pop()
-    if max(map(len, lines), default=0) > csv.field_size_limit():
+    if max(map(len, lines), default=0) > MAX_CELL and any(
+        max(map(len, line.split(delimiter))) > MAX_CELL for line in lines if len(line) > MAX_CELL
+    ):
         return None
     return PlainRows(lines, delimiter)

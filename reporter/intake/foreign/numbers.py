@@ -10,7 +10,7 @@ from itertools import islice
 from reporter.intake.foreign.model import Desk, Option
 from reporter.intake.table import Raw, clean
 
-_MARKED = re.compile(r"^[<>]?\s*[+\-−]?(\d[\d.,'’\u2019 ]*|[.,]\d+)(?:[eE][+\-]?\d{1,3})?\s*(?:%|[^\W\d_].*)?$")
+_MARKED = re.compile(r"^[<>]?\s*[+\-−]?(\d[\d.,'’\u2019 ]*+|[.,]\d+)(?:[eE][+\-]?\d{1,3})?\s*(?:%|[^\W\d_].*)?$")
 _GROUPS = re.compile(r"(?<=\d)[ '’](?=\d{3}(?!\d))")
 #: Texts looked at before the marks are decided.
 ENOUGH = 20_000

@@ -15,7 +15,10 @@ from datetime import date, datetime
 from operator import itemgetter
 from typing import Any, overload
 
-from reporter.intake.guard import Look, column_number
+import numpy as np
+
+from reporter.intake.corner import column_number
+from reporter.intake.guard import Look
 from reporter.intake.table import Raw
 from reporter.intake.workbook import raw
 
@@ -23,6 +26,10 @@ from reporter.intake.workbook import raw
 MANY_CELLS = 100_000
 #: It lays a sheet out as a full rectangle: so many fields at most, whether filled or not.
 MAX_FIELDS = 4_000_000
+#: So many bytes of text at most, counted as often as cells show it.
+MAX_TEXT = 400 << 20
+_SHARED = re.compile(rb"<si[\s>/]")
+_USED = re.compile(rb" t=\"s\"[^<>]*>\s*<v>(\d{1,9})</v>")
 _CELL = re.compile(r"([A-Z]+)(\d+)")
 _PERCENTS = frozenset({9, 10})
 
@@ -138,13 +145,34 @@ class QuickSheet:
 
 def is_long(look: Look) -> bool:
     """Whether a workbook is long, and all of it is written in the way the fast reader may be trusted with."""
-    return look.counts[b"c"] > MANY_CELLS and not any(scan.odd for scan in look.scans.values())
+    return look.counts[b"c"] > MANY_CELLS and look.plain and not any(scan.odd for scan in look.scans.values())
 
 
-def too_wide(look: Look) -> str:
-    """How the sheets of a long workbook are larger than their cells tell; empty if they are not."""
+def too_large(content: bytes, look: Look) -> str:
+    """How a long workbook is larger in memory than its cells tell; empty if it is not."""
     fields = sum(scan.last_row * scan.last_column for scan in look.scans.values())
-    return f"cells spread over {fields:,} fields" if fields > MAX_FIELDS else ""
+    if fields > MAX_FIELDS:
+        return f"cells spread over {fields:,} fields"
+    if max(scan.longest for scan in look.scans.values()) * look.counts[b"c"] <= MAX_TEXT:
+        return ""
+    size = _text_size(content)
+    return f"{size >> 20} MB of repeated text" if size > MAX_TEXT else ""
+
+
+def _text_size(content: bytes) -> int:
+    """The bytes of the shared texts of all cells, each as often as it is used: the fast reader copies them."""
+    with zipfile.ZipFile(io.BytesIO(content)) as archive:
+        names = archive.namelist()
+        shared = next((name for name in names if name.lower().endswith("sharedstrings.xml")), None)
+        if shared is None:
+            return 0
+        lengths = np.diff([found.start() for found in _SHARED.finditer(archive.read(shared) + b"<si>")])
+        used = (np.array(_USED.findall(archive.read(name)), dtype=np.int64) for name in names if _is_sheet(name))
+        return sum(int(lengths[each[each < len(lengths)]].sum()) for each in used)
+
+
+def _is_sheet(name: str) -> bool:
+    return name.lower().endswith(".xml") and not name.lower().endswith("sharedstrings.xml")
 
 
 def quick_sheets(content: bytes, look: Look, parts: Mapping[str, str]) -> tuple[list[QuickSheet], bool]:
@@ -165,8 +193,9 @@ def quick_sheets(content: bytes, look: Look, parts: Mapping[str, str]) -> tuple[
     with zipfile.ZipFile(io.BytesIO(content)) as archive:
         formats = _percent_formats(archive)
         shares = {name: _percent_cells(archive, part, formats) for name, part in by_name.items()} if formats else {}
-        book_part = next(name for name in archive.namelist() if name.endswith("workbook.xml"))
-        late = re.search(rb"\bdate1904\s*=\s*[\"'](?:1|true)[\"']", archive.read(book_part)) is not None
+        late = _is_late(archive.read("xl/workbook.xml"))
+    if any(part not in look.scans for part in parts):
+        raise ValueError("a sheet stands in a part that was not looked at")
     book = CalamineWorkbook.from_filelike(io.BytesIO(content))
     sheets = []
     for about in book.sheets_metadata:
@@ -184,6 +213,14 @@ def quick_sheets(content: bytes, look: Look, parts: Mapping[str, str]) -> tuple[
             QuickSheet(about.name, rows, hidden, hidden_rows, shares.get(about.name, frozenset()), never, merged)
         )
     return sheets, late
+
+
+def _is_late(book: bytes) -> bool:
+    """Whether days count from 1904."""
+    from defusedxml.ElementTree import fromstring
+
+    marks = (node.get("date1904") for node in fromstring(book) if node.tag.endswith("}workbookPr"))
+    return any(mark in ("1", "true") for mark in marks)
 
 
 def _position(cell: str) -> Position:

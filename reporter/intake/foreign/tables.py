@@ -20,7 +20,7 @@ _TIMELIKE = re.compile(
 )
 #: Oxygen as a header sometimes spells it, which looks like a number.
 _OXYGEN = ("02", "0 2")
-_NUMBER = re.compile(r"^[<>]?\s*[+\-−]?[\d.,'’ ]*\d[\d.,'’ ]*(?:[eE][+\-]?\d+)?\s*%?$")
+_NUMBER = re.compile(r"^[<>]?\s*+[+\-−]?(?:[.,'’ ]*+\d)++[.,'’ ]*+(?:[eE][+\-]?\d+)?\s*%?$")
 
 
 @dataclass(frozen=True, slots=True)

@@ -131,7 +131,7 @@ def stamp_of(text: str) -> str:
 
 def basis_of(text: str) -> str:
     """``dry`` or ``wet`` as a header says it; empty where it says neither, or both."""
-    plain = re.sub(r"\d+ ?sec\b", " ", folded(without_correction(folded(text))[0]))
+    plain = re.sub(r"(?<!\d)\d++ ?sec\b", " ", folded(without_correction(folded(text))[0]))
     words = re.sub(r"[/%]", " ", plain).split()
     said = {basis for basis, names in _table()["basis"].items() for name in names if name in words}
     said |= {unit.moisture.value for unit in units_in(text) if unit.moisture is not None}
