@@ -140,6 +140,10 @@ def entry_point() -> None:
     except BrokenPipeError:
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         sys.exit(OK)
+    except OSError as error:  # files are said where they are opened: what is left is the output itself
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        print(f"fluebook: the output cannot be written: {error.strerror}", file=sys.stderr)
+        sys.exit(UNWRITTEN)
 
 
 def _check(given: argparse.Namespace, out: TextIO, err: TextIO) -> int:

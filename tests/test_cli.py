@@ -158,3 +158,12 @@ def test_a_person_who_stops_a_command_meets_one_line() -> None:
     made = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=False)
     assert made.returncode == 130
     assert made.stderr.splitlines() == ["fluebook: stopped; an unfinished report leaves no file"]
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="a device that is always full is needed")
+def test_an_output_that_is_full_is_said_without_a_traceback() -> None:
+    with Path("/dev/full").open("w") as full:
+        command = [sys.executable, "-m", "reporter", "fuel", "natural gas"]
+        done = subprocess.run(command, stdout=full, stderr=subprocess.PIPE, text=True)
+    assert done.returncode == 4
+    assert done.stderr == "fluebook: the output cannot be written: No space left on device\n"
