@@ -141,13 +141,16 @@ LOGGERS = [
         answers={**END, "time-zone": "America/Denver"}),
     Case("hours from UTC in a line above", "`Time zone: UTC-06:00`, kept as the clock of the test", plain(
         above=["Time zone: UTC-06:00"]), answers={**END, "time-zone": "as written"}),
+    Case("a title that says data", "`Survey data,NOx and CO at Boiler 2` above the table", plain(
+        above=["Survey data,NOx and CO at Boiler 2", ""])),
     Case("polish file", "Data and Godzina, suchy, in the old code page", text(
         headers=(("Data i godzina", "Tlenki azotu [ppm, suchy]", "Tlenek węgla [ppm, suchy]", "Tlen [% obj., suchy]",
                   "Dwutlenek węgla [%, suchy]"),), delimiter=";", show=comma).encode("cp1250")),
     Case("italian file", "Data and Ora, secco, day first", text(
-        headers=(("Data Ora", "Ossidi di azoto (ppm secco)", "Monossido di carbonio (ppm secco)", "Ossigeno (% secco)",
+        headers=(("Data", "Ora", "Ossidi di azoto (ppm secco)", "Monossido di carbonio (ppm secco)",
+                  "Ossigeno (% secco)",
                   "Anidride carbonica (% secco)"),), delimiter=";", show=comma,
-        clock=lambda t: f"{t:%d/%m/%Y %H:%M}").encode("cp1252")),
+        clock=lambda t: f"{t:%d/%m/%Y;%H:%M}").encode("cp1252")),
     Case("five columns of two hundred", "196 columns of tags around the four gases", lines(
         ",".join(["Time", *(f"TAG{k:03d}" for k in range(100)), *DRY[1:], *(f"TAG{k:03d}" for k in range(100, 196))]),
         lambda k, r: ",".join([str(r[0]), *[str(k)] * 100, *map(number, r[1:]), *[str(k)] * 96]))),

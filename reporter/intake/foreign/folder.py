@@ -18,7 +18,7 @@ from reporter.intake.foreign.join import join, zone_words
 from reporter.intake.foreign.mapping import ENDING, Mapping, differences, differences_of, load
 from reporter.intake.foreign.process_log import ProcessFile, process_of, read_process_file
 from reporter.intake.foreign.tables import Table, find_tables
-from reporter.intake.foreign.titles import strangers
+from reporter.intake.foreign.titles import strange_folder, strangers
 from reporter.intake.guard import names_may_be_read
 from reporter.intake.jsonrecord import looks_like_json
 from reporter.intake.read import ReadResult, read
@@ -55,6 +55,7 @@ class _Files:
     grids: Sequence[Grid]
     mappings: Sequence[Mapping]
     clocks: dict[str, Correction]
+    folder: str = ""
     problems: list[Problem] = field(default_factory=list)
     understood: list[str] = field(default_factory=list)
     done: list[str] = field(default_factory=list)
@@ -82,10 +83,13 @@ class _Files:
     def readings(self, channels: Sequence[Filled], reader: RowReader, test: dict[str, Any]) -> Readings | None:
         """The readings of all logger files, by the channels of the field workbook; None where something stops."""
         made = []
+        serials = [text for channel in channels if (text := channel.text("serial_number"))]
+        titles = [title for mapping in self.mappings for title in mapping.titles]
+        self.problems += strange_folder(self.folder, test, titles)
         for grid, mapping, tables in self.chosen:
             if mapping.has("reading"):
                 found = apply_to_grid(grid, mapping, day=reader.day, tables=tables)
-                self.problems += [*found.problems, *strangers(grid, tables, test, mapping.titles)]
+                self.problems += [*found.problems, *strangers(grid, tables, test, mapping.titles, serials)]
                 self.understood += [f"{found.report.file}: {line}" for line in found.report.lines()]
                 made.append(replace(found, readings=self.corrected(grid.source.name, found.readings)))
         if self._stops():
@@ -180,7 +184,7 @@ def read_folder(path: str | Path, mapping: str | Path | None = None) -> ReadResu
             problems.append(problem("mapping-unreadable", Place(file.name), error.message))
     if problems:
         return ReadResult(None, tuple(problems))
-    beside = _Files([read_grid(file) for file in inputs.loggers], mappings, inputs.clocks)
+    beside = _Files([read_grid(file) for file in inputs.loggers], mappings, inputs.clocks, folder.resolve().name)
     result = read(inputs.workbook, series=beside)
     record = result.record
     if any(p.grade is Grade.UNREADABLE for p in beside.problems):

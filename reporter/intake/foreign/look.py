@@ -25,6 +25,9 @@ from reporter.intake.foreign.wording import words_of
 from reporter.intake.foreign.words import units_in
 from reporter.problems import Problem, problem
 
+#: Columns left out that are named.
+NAMED = 6
+
 
 @dataclass(frozen=True, slots=True)
 class Look:
@@ -162,6 +165,7 @@ def _mapping(grid: Grid, tables: Sequence[Table], hidden: str, desk: Desk) -> Ma
     ignored |= corrected
     lanes = [reader.with_basis(reader.with_units(lane, numbers)) for lane in lanes]
     words = words_of(lanes, numbers, desk, grid)
+    left: dict[str, list[str]] = {}
     if not lanes:
         return None
     for column, header in zip(table.columns, table.headers, strict=True):
@@ -172,9 +176,17 @@ def _mapping(grid: Grid, tables: Sequence[Table], hidden: str, desk: Desk) -> Ma
             columns.append(mapped(lane, lanes))
         else:
             columns.append(MappedColumn(header, "ignore", why=ignored.get(column, "")))
-            desk.say(f"column {letters(column)} ({header!r}): left out, {ignored.get(column, '') or 'asked about'}")
+            left.setdefault(ignored.get(column, "") or "asked about", []).append(f"{letters(column)} ({header!r})")
+    _say_left_out(left, desk)
     style = TimeStyle(base.order, base.stamp, base.zone, base.day, base.written)
     return Mapping(Path(grid.source.name).stem, grid.kind, tuple(columns), style, numbers, words, hidden)
+
+
+def _say_left_out(left: Answers[str, Sequence[str]], desk: Desk) -> None:
+    """Say which columns are left out, by the reason; of many with one reason the first ones."""
+    for why, names in left.items():
+        more = f" and {len(names) - NAMED} more" if len(names) > NAMED else ""
+        desk.say(f"column{'s' if len(names) > 1 else ''} {', '.join(names[:NAMED])}{more}: left out, {why}")
 
 
 def _of_plant(grid: Grid, tables: Sequence[Table], base: TimeBase, *, hidden: str, desk: Desk) -> Mapping:

@@ -13,6 +13,8 @@ from reporter.intake.foreign.words import gases_in
 
 #: So many columns of a load beside gases, and the log may be the plant's.
 SEVERAL = 2
+#: Columns that a question names.
+NAMED = 4
 
 
 def is_plant_log(table: Table, desk: Desk) -> bool | None:
@@ -30,7 +32,8 @@ def is_plant_log(table: Table, desk: Desk) -> bool | None:
         Option("plant", "the plant's own log: every column goes to the sheet Process, no gas of it is a reading"),
     )
     asks = "Is this the log of the test's analyzers, or the plant's own?"
-    answer = desk.ask("whose-log", asks, f"gases beside {', '.join(map(repr, loads))}", options)
+    more = f" and {len(loads) - NAMED} more" if len(loads) > NAMED else ""
+    answer = desk.ask("whose-log", asks, f"gases beside {', '.join(map(repr, loads[:NAMED]))}{more}", options)
     return None if not answer else answer == "plant"
 
 

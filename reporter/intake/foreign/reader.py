@@ -225,15 +225,16 @@ class Reader:
 
     def say_fractions(self) -> None:
         """Hold O2 and CO2 read as percent against their numbers: where all are very small, they may be fractions."""
+        parts = [part for part in self._parts if len(part.rows)]
         for number, mapped in enumerate(column for column in self.mapping.columns if column.use == "reading"):
-            every = np.concatenate([part.columns[number].values for part in self._parts])
-            shown = any((row, part.lanes[number][0]) in part.page.percent for part in self._parts for row in part.rows)
-            highest = float(np.max(every, initial=0.0, where=~np.isnan(every)))
-            if mapped.unit != "%" or mapped.gas not in ("o2", "co2") or mapped.why or shown:
+            if not parts or mapped.unit != "%" or mapped.gas not in ("o2", "co2") or mapped.why:
                 continue
+            if any(own == part.lanes[number][0] for part in parts for _, own in part.page.percent):
+                continue
+            every = np.concatenate([part.columns[number].values for part in parts])
+            highest = float(np.max(every, initial=0.0, where=~np.isnan(every)))
             if 0.0 < highest < FRACTION_BELOW:
-                part = self._parts[0]
-                place = self.grid.place(part.page, int(part.rows[0]), part.lanes[number][0], mapped.channel)
+                place = self.grid.place(parts[0].page, int(parts[0].rows[0]), parts[0].lanes[number][0], mapped.channel)
                 found = (
                     f'no reading above {highest:g} in a column of percent: a fraction has its unit "1" in the mapping; '
                     f'if it is percent, write why = "percent" below the column'

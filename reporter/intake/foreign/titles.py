@@ -1,9 +1,10 @@
-"""What the lines above a table say of the unit and the facility, held against the field workbook."""
+"""What the lines above a table and the name of a folder say of unit, facility and analyzers, against the test."""
 
 from __future__ import annotations
 
 import re
 from collections.abc import Iterator, Sequence
+from itertools import pairwise
 from typing import Any
 
 from reporter.intake.foreign.grid import Grid, Page
@@ -18,8 +19,10 @@ _ITEMS = {"unit": ("unit_tested", "stack"), "facility": ("facility", "client", "
 _TELLING = 3
 
 
-def strangers(grid: Grid, tables: Sequence[Table], test: dict[str, Any], known: Sequence[str]) -> list[Problem]:
-    """The titles of a file that name another unit or facility than the sheet Test.
+def strangers(
+    grid: Grid, tables: Sequence[Table], test: dict[str, Any], known: Sequence[str], serials: Sequence[str] = ()
+) -> list[Problem]:
+    """The titles of a file that name another unit, facility or analyzer than the field workbook.
 
     Parameters
     ----------
@@ -29,17 +32,42 @@ def strangers(grid: Grid, tables: Sequence[Table], test: dict[str, Any], known: 
         The items of the sheet Test.
     known
         Titles that the mapping says are of this test.
+    serials
+        The serial numbers of the sheet Channels.
     """
     found = []
     own = {folded(text) for text in known}
     for page in grid.pages:
         first = min((table.header_rows[0] for table in tables if table.page is page), default=0)
         for kind, text, place in _titles(grid, page, first):
+            if kind == "serial":
+                if serials and not {folded(text), _joined(text)} & {*own, *map(_joined, serials)}:
+                    expected = f"{', '.join(dict.fromkeys(serials))}, as on the sheet Channels"
+                    found.append(problem("file-of-another-test", place, f"analyzer {text!r}", expected=expected))
+                continue
             names = [given.value for item in _ITEMS[kind] if (given := test.get(item)) is not None]
             if names and folded(text) not in own and not any(_alike(text, name) for name in names):
                 expected = f"{names[0]}, as on the sheet Test"
                 found.append(problem("file-of-another-test", place, f"{kind} {text!r}", expected=expected))
     return found
+
+
+def strange_folder(name: str, test: dict[str, Any], known: Sequence[str]) -> list[Problem]:
+    """That a folder is named by another unit than that of the sheet Test, as in ``boiler_7``; a date is no number."""
+    names = [given.value for item in _ITEMS["unit"] if (given := test.get(item)) is not None]
+    words = re.findall(r"[a-z]+|\d+", folded(name))
+    titles = [f"{label} {number}" for label, number in pairwise(words) if title_kind(label) == "unit"]
+    strange = [title for title in titles if re.search(r" \d{1,3}$", title)]
+    own = {folded(text) for text in known}
+    if not names or not strange or any(title in own or _alike(title, own_) for title in strange for own_ in names):
+        return []
+    expected = f"{names[0]}, as on the sheet Test"
+    return [problem("file-of-another-test", Place(name), f"a folder named {strange[0]!r}", expected=expected)]
+
+
+def _joined(text: str) -> str:
+    """A serial number without blanks and marks."""
+    return "".join(mark for mark in folded(text) if mark.isalnum())
 
 
 def _titles(grid: Grid, page: Page, end: int) -> Iterator[tuple[str, str, Place]]:

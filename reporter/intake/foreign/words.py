@@ -117,6 +117,7 @@ def time_part(text: str) -> str:
         part: any(re.search(rf"(?<![a-z]){re.escape(word)}(?![a-z])", words) for word in table[part])
         for part in ("both", "date", "time")
     }
+    named["date"] = named["date"] or words in table["date_alone"]
     if named["both"] or (named["date"] and named["time"]):
         return "both"
     return "date" if named["date"] else "time" if named["time"] else ""

@@ -9,7 +9,7 @@ from reporter.intake.foreign.grid import grid_of
 from reporter.intake.foreign.look import look_at_grid
 from reporter.intake.foreign.mapping import dump, parse
 from reporter.intake.foreign.tables import find_tables
-from reporter.intake.foreign.titles import strangers
+from reporter.intake.foreign.titles import strange_folder, strangers
 from reporter.record import Given
 from tests.corpus.case import END, plain
 from tests.corpus.truth import TRUTH
@@ -40,6 +40,44 @@ def test_a_title_against_the_sheet_test(title: str, strange: bool) -> None:
     made = strangers(grid, find_tables(grid), TEST, ())
     assert [p.code for p in made] == ["file-of-another-test"] * strange
     assert strangers(grid, find_tables(grid), TEST, (title.replace(",", ":").partition(":")[2].strip(":, "),)) == []
+
+
+@pytest.mark.parametrize(
+    ("name", "strange"),
+    [
+        ("boiler_7", True),
+        ("Unit 3 day 2", True),
+        ("boiler7_2026-04-20", True),
+        ("boiler_2", False),
+        ("B-02", False),
+        ("boiler 2026-04-20", False),
+        ("day 7", False),
+        ("unit", False),
+    ],
+)
+def test_the_name_of_a_folder_against_the_sheet_test(name: str, strange: bool) -> None:
+    assert [p.code for p in strange_folder(name, TEST, ())] == ["file-of-another-test"] * strange
+    assert strange_folder(name, TEST, ("Boiler 7", "unit 3")) == []
+    assert strange_folder(name, {}, ()) == []
+
+
+@pytest.mark.parametrize(
+    ("title", "strange"),
+    [
+        ("Analyzer serial: X-0077", True),
+        ("Analyser S/N,0077", True),
+        ("Analyzer serial: a 0001", False),
+        ("Serial,0077", False),
+    ],
+)
+def test_the_serial_number_of_an_analyzer_against_the_sheet_channels(title: str, strange: bool) -> None:
+    """The serial number of the logger itself is on no sheet: only that of an analyzer is held."""
+    grid = grid_of("a.csv", plain(above=[title]))
+    tables = find_tables(grid)
+    made = strangers(grid, tables, TEST, (), ("A-0001", "A-0002"))
+    assert [p.code for p in made] == ["file-of-another-test"] * strange
+    assert strangers(grid, tables, TEST, ("X-0077", "0077"), ("A-0001",)) == []
+    assert strangers(grid, tables, TEST, ()) == []
 
 
 def test_titles_of_a_mapping_are_kept() -> None:
