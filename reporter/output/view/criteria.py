@@ -9,7 +9,7 @@ from itertools import zip_longest
 from reporter.ledger import Entry, FromEquation
 from reporter.outcome import Check
 from reporter.output.applied import Applied, applied
-from reporter.output.numbers import FIGURE_SPACE, FRACTION, formulas, unit_text
+from reporter.output.numbers import FIGURE_SPACE, FRACTION, capital, formulas, unit_text
 from reporter.output.view.desk import Desk, gas_name
 from reporter.output.view.model import Block, Cell, Column, Row, Table
 from reporter.output.view.standing import dagger
@@ -79,7 +79,7 @@ def _common_bounds(desk: Desk, checks: Sequence[Check]) -> str:
     """The criterion in a sentence; its paragraph alone where the bounds stand beside the values."""
     source = f"{cited(checks)}{_adopted_by(desk, checks)}"
     if not _share_bounds(desk, checks):
-        return f"{source}. "
+        return f"{capital(source)}. "
     words = _bounds_in_words(desk, checks)
     others = dict.fromkeys(desk.number_text(check.alternative) for check in checks if check.alternative)
     if others:

@@ -12,7 +12,7 @@ from itertools import pairwise
 
 #: A table of at most so many rows is not broken over pages; one of groups may be longer, so that no group's name
 #: stands at the foot of a page without its rows.
-KEPT, KEPT_GROUPED = 8, 12
+KEPT, KEPT_GROUPED = 8, 20
 
 
 @dataclass(frozen=True, slots=True)
