@@ -60,6 +60,8 @@ def read(path: str | Path, series: Series | None = None) -> ReadResult:
     name = whole_text(file.name)
     gathered = Gathered(name)
     try:
+        if file.exists() and not file.is_file():
+            raise ValueError  # a device or a pipe may never end
         too_large = file.is_file() and file.stat().st_size > MAX_FILE
         with file.open("rb") as stream:
             content = b"" if too_large else stream.read(MAX_FILE + 1)

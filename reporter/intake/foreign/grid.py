@@ -133,6 +133,8 @@ def read_grid(path: str | Path) -> Grid:
     """The grid of a file; what cannot be opened has problems and no pages."""
     file = Path(path)
     try:
+        if file.exists() and not file.is_file():
+            return _refused(SourceFile(file.name, "", 0), "not-a-workbook", "a folder, a device or a pipe")
         with file.open("rb") as stream:
             content = stream.read(MAX_FILE + 1)
     except (OSError, ValueError) as error:

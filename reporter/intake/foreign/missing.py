@@ -6,7 +6,7 @@ import re
 from collections.abc import Sequence
 
 from reporter.intake.foreign.grid import Grid, Page, letters
-from reporter.intake.foreign.tables import Table, blank, is_numberlike, is_timelike
+from reporter.intake.foreign.tables import MOST_TABLES, Table, blank, find_headers, is_numberlike, is_timelike
 from reporter.intake.foreign.words import gases_in, time_part
 from reporter.intake.table import Raw, clean, show
 
@@ -27,6 +27,8 @@ def what_is_there(grid: Grid, tables: Sequence[Table]) -> str:
     if tables:
         return "; ".join(_untimed(table) for table in tables)
     for page in grid.pages:
+        if len(find_headers(page)) > MOST_TABLES:
+            return f"more than {MOST_TABLES:,} headers in one table of rows"
         if words := _long(page) or _unnamed(page) or _unparted(page):
             return words
     return "no header that names a gas above rows with times"

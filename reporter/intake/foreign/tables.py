@@ -14,6 +14,8 @@ from reporter.intake.table import Raw, clean, show
 
 #: A header has at most so many rows, and two of its words in one row.
 HEADER_ROWS = 4
+#: Headers of one sheet, at the most: a log whose header stands on each printed page has hundreds.
+MOST_TABLES = 2_000
 _TIMELIKE = re.compile(
     r"\d{1,4}[-/.]\d{1,2}[-/.]\d{1,4}|\d{1,2}:\d{2}|\d{1,2}[\s.\-]*[^\W\d_]{3,9}\.?[\s.\-,]*\d{2,4}"
     r"|[^\W\d_]{3,9}\.?\s+\d{1,2},?\s+\d{4}|^(?:19|20)\d{10}(?:\d\d)?$"
@@ -87,24 +89,37 @@ def at(row: Sequence[Raw], column: int) -> Raw:
 
 
 def find_tables(grid: Grid) -> tuple[Table, ...]:
-    """Every table of readings: a header that names a gas, and rows below it; of a plant's log where there is none."""
+    """Every table of readings: a header that names a gas, and rows below it; of a plant's log where there is none.
+
+    A sheet with more headers than `MOST_TABLES` is no log, and has no table.
+    """
     found = tuple(table for page in grid.pages for table in _of_page(page, _is_header))
     return found or tuple(table for page in grid.pages for table in _of_page(page, _is_process_header))
 
 
 def _of_page(page: Page, is_header: Callable[[Sequence[str]], bool]) -> list[Table]:
+    blocks = find_headers(page, is_header)
+    tables: list[Table] = []
+    if len(blocks) <= MOST_TABLES:
+        for number, block in enumerate(blocks):
+            last = blocks[number + 1][0] if number + 1 < len(blocks) else page.end
+            tables += _side_by_side(page, block, last)
+    return tables
+
+
+def find_headers(page: Page, is_header: Callable[[Sequence[str]], bool] | None = None) -> list[tuple[int, ...]]:
+    """The rows of each header of a page (that names a gas, where not said otherwise); at most one too many."""
+    known = is_header or _is_header
     blocks: list[tuple[int, ...]] = []
     taken: set[int] = set()
     for row in page.wordy():
-        if row not in taken and _perhaps_header(page.rows[row]) and is_header(_texts(page, row)):
+        if row not in taken and _perhaps_header(page.rows[row]) and known(_texts(page, row)):
             block = _block(page, row)
             taken.update(block)
             blocks.append(block)
-    tables = []
-    for number, block in enumerate(blocks):
-        last = blocks[number + 1][0] if number + 1 < len(blocks) else page.end
-        tables += _side_by_side(page, block, last)
-    return tables
+            if len(blocks) > MOST_TABLES:
+                break
+    return blocks
 
 
 def _texts(page: Page, row: int) -> list[str]:

@@ -3,23 +3,27 @@
 from __future__ import annotations
 
 import io
+import os
 import re
 import time
 import zipfile
 from collections.abc import Callable
+from pathlib import Path
 
 import pytest
 import xlsxwriter
 
 from reporter.intake.cells import number_text
 from reporter.intake.foreign import quick
-from reporter.intake.foreign.grid import grid_of
+from reporter.intake.foreign.grid import grid_of, read_grid
+from reporter.intake.foreign.look import look_at_grid
 from reporter.intake.foreign.model import Desk
 from reporter.intake.foreign.numbers import style_of
 from reporter.intake.foreign.tables import is_numberlike
 from reporter.intake.foreign.times import read_stamp
 from reporter.intake.foreign.words import basis_of
 from reporter.intake.guard import look_at
+from reporter.intake.read import read
 from reporter.intake.table import split_header
 
 SHEET = "xl/worksheets/sheet1.xml"
@@ -171,3 +175,21 @@ def test_a_text_with_a_very_long_line_or_cell_is_refused(name: str) -> None:
     grid = grid_of("long.csv", BAD_TEXTS[name])
     assert time.process_time() - start < 0.5
     assert [p.code for p in grid.problems] == ["zip-bomb"]
+
+
+@pytest.mark.parametrize("rows", [1, 2])
+def test_a_header_without_end_is_no_log(rows: int) -> None:
+    table = "Time,NOx (ppm),O2 (%)\n2026-04-20 08:00:00,10.1,4.0\n".splitlines(keepends=True)[:rows]
+    start = time.process_time()
+    found = look_at_grid(grid_of("many.csv", "".join(table * 40_000).encode()), {})
+    assert time.process_time() - start < 5.0
+    assert [(p.code, p.found) for p in found.problems] == [
+        ("no-readings-table", "more than 2,000 headers in one table of rows")
+    ]
+
+
+def test_a_pipe_that_never_ends_is_not_opened(tmp_path: Path) -> None:
+    pipe = tmp_path / "pipe.csv"
+    os.mkfifo(pipe)
+    assert [p.code for p in read_grid(pipe).problems] == ["not-a-workbook"]
+    assert [p.code for p in read(pipe).problems] == ["not-a-workbook"]
