@@ -150,17 +150,20 @@ def _reasons(outcome: Outcome) -> dict[datetime, tuple[str, ...]]:
     readings = outcome.record.readings
     rows = {time: number for number, time in enumerate(readings.times.tolist())}
     found: dict[datetime, dict[str, None]] = {}
+    shut: dict[tuple[datetime, str], list[str]] = {}
     for series in _series(outcome):
         column = readings.column(series.channel)
         counted = {number for number, kind in enumerate(column.kinds.tolist()) if KINDS[kind] is not ReadingKind.NUMBER}
         for time, _, reason in series.left_out:
-            text = said["left_out"].format(channel=series.channel, reason=reason)
-            found.setdefault(time, {})[text] = None
+            shut.setdefault((time, reason), []).append(series.channel)
         for time, value in series.used:
             if rows[time] in counted:
                 written = column.texts[rows[time]]
                 text = said["counted"].format(channel=series.channel, text=written, value=value)
                 found.setdefault(time, {})[text] = None
+    for (time, reason), channels in shut.items():
+        text = said["left_out"].format(channel=", ".join(dict.fromkeys(channels)), reason=reason)
+        found.setdefault(time, {})[text] = None
     return {time: tuple(texts) for time, texts in found.items()}
 
 

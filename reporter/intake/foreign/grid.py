@@ -35,6 +35,8 @@ SAMPLE_LINES, SAMPLE_BYTES = 400, 65_536
 MAX_LINE = 2 << 20
 #: Delimiters, those first that seldom stand inside a cell.
 DELIMITERS = ("\t", ";", "|", ",")
+#: Control characters that no text table holds.
+_CONTROLS = bytes([*range(9), *range(14, 26), 28, 29, 30, 31, 127])
 _MARKS = (
     (codecs.BOM_UTF8, "utf-8-sig"),
     (codecs.BOM_UTF32_LE, "utf-32"),
@@ -175,6 +177,8 @@ def decoded(content: bytes) -> tuple[str, str]:
         return content.decode("utf-8"), "utf-8"
     except UnicodeDecodeError:
         pass
+    if len(start) - len(start.translate(None, _CONTROLS)) > len(start) // 100:
+        return "\x00", ""  # no text in any old code page
     from charset_normalizer import from_bytes
 
     best = from_bytes(start, cp_isolation=["cp1252", "cp1250", "mac_roman", "cp850"]).best()

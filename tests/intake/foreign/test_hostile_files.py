@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import io
 import os
+import random
 import re
 import time
 import zipfile
@@ -193,3 +194,11 @@ def test_a_pipe_that_never_ends_is_not_opened(tmp_path: Path) -> None:
     os.mkfifo(pipe)
     assert [p.code for p in read_grid(pipe).problems] == ["not-a-workbook"]
     assert [p.code for p in read(pipe).problems] == ["not-a-workbook"]
+
+
+def test_bytes_that_are_no_text_are_told_at_once() -> None:
+    content = random.Random(1).randbytes(3_000_000)
+    start = time.process_time()
+    found = grid_of("noise.csv", content)
+    assert time.process_time() - start < 0.5
+    assert [(p.code, p.found) for p in found.problems] == [("not-a-workbook", "a file of bytes that are no text")]
