@@ -133,7 +133,9 @@ def main(arguments: Sequence[str] | None = None, out: TextIO | None = None, err:
 def entry_point() -> None:
     """The installed command; a reader that closes the pipe early is no fault, nor is a person who stops it."""
     try:
-        sys.exit(main())
+        code = main()
+        sys.stdout.flush()
+        sys.exit(code)
     except KeyboardInterrupt:
         print("fluebook: stopped; an unfinished report leaves no file", file=sys.stderr)
         sys.exit(_STOPPED)

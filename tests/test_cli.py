@@ -161,7 +161,9 @@ def test_a_person_who_stops_a_command_meets_one_line() -> None:
 
 
 @pytest.mark.skipif(not Path("/dev/full").exists(), reason="a device that is always full is needed")
-def test_an_output_that_is_full_is_said_without_a_traceback() -> None:
+@pytest.mark.parametrize("at_once", ["", "1"])
+def test_an_output_that_is_full_is_said_without_a_traceback(at_once: str, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setenv("PYTHONUNBUFFERED", at_once)
     with Path("/dev/full").open("w") as full:
         command = [sys.executable, "-m", "reporter", "fuel", "natural gas"]
         done = subprocess.run(command, stdout=full, stderr=subprocess.PIPE, text=True)
