@@ -16,7 +16,7 @@ from reporter.intake.foreign.mapping import save as save_mapping
 from reporter.intake.foreign.model import Question, together
 from reporter.intake.foreign.process_log import read_process_file
 from reporter.intake.foreign.resent import difference
-from reporter.intake.foreign.series_notes import notes_of_file
+from reporter.intake.series_notes import notes_of_file
 from reporter.problems import Grade, Problem
 from reporter.tasks import Task
 from reporter.terminal import problems_text

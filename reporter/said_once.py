@@ -44,7 +44,7 @@ def said_once(record: Record, read: Sequence[Problem], own: Sequence[Problem]) -
 
 def _of_these(note: Problem, run: Run, entered: Sequence[datetime]) -> bool:
     """Whether a note of the series is of minutes of a run for which a calibration was entered."""
-    from reporter.intake.foreign.series_notes import span_of
+    from reporter.intake.series_notes import span_of
 
     span = span_of(note.found) if note.code == SERIES else None
     if span is None or _AIR in note.found or span[0] < run.start.value - NEAR or span[1] > run.end.value + NEAR:

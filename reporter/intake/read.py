@@ -94,7 +94,7 @@ def _read(
         _look_for_attachments(record, folder, gathered)
     if record is None:
         return ReadResult(None, gathered.all())
-    from reporter.intake.foreign.series_notes import notes_of_record
+    from reporter.intake.series_notes import notes_of_record
 
     return ReadResult(record, (*gathered.all(), *notes_of_record(record)))
 

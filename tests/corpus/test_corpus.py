@@ -11,7 +11,7 @@ import pytest
 
 from reporter.errors import RecordError
 from reporter.intake.foreign import ForeignReadings, apply, load, look, mapping_of, save
-from reporter.intake.foreign.series_notes import notes_of_file
+from reporter.intake.series_notes import notes_of_file
 from reporter.problems import Grade
 from tests.corpus.case import Case, Held
 from tests.corpus.corpus import CASES, README, readme

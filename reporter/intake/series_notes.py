@@ -5,17 +5,19 @@ from __future__ import annotations
 import re
 from collections.abc import Mapping, Sequence
 from datetime import datetime
-from typing import Literal, TypeAlias
+from typing import TYPE_CHECKING, Literal, TypeAlias
 
 import numpy as np
 
 from reporter.errors import UnitError
-from reporter.intake.foreign.apply import ForeignReadings
-from reporter.intake.foreign.series_findings import Finding, Trace, findings
+from reporter.intake.series_findings import Finding, Trace, findings
 from reporter.logged import Moments
 from reporter.problems import Place, Problem, problem
 from reporter.record import Channel, Readings, Record, text_of
 from reporter.units import convert
+
+if TYPE_CHECKING:
+    from reporter.intake.foreign.apply import ForeignReadings
 
 _SPAN = re.compile(r"(\d{4}-\d\d-\d\d) (\d\d:\d\d(?::\d\d)?) to (?:(\d{4}-\d\d-\d\d) )?(\d\d:\d\d(?::\d\d)?): ")
 #: Notes of one kind in one channel that are said.

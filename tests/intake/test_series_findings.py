@@ -7,7 +7,7 @@ from datetime import datetime, timedelta
 import numpy as np
 import pytest
 
-from reporter.intake.foreign.series_findings import Finding, Trace, Values, findings
+from reporter.intake.series_findings import Finding, Trace, Values, findings
 
 COUNT = 120
 START = datetime(2026, 4, 20, 9, 0)
