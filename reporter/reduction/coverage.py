@@ -64,6 +64,34 @@ def coverage(*, number: Value, interval: Value, duration: Value, hundred: Value 
 
 
 @equation(
+    "t_gap",
+    "min",
+    {"whole": "min", "number": "1", "interval": "min"},
+    _EACH_MINUTE,
+    symbols={"whole": "t_clock", "number": "n", "interval": "Δt"},
+    difference=True,
+)
+def unfilled_minutes(*, whole: Value, number: Value, interval: Value) -> Value:
+    """Clock minutes of a run without a valid reading, where each reading fills one clock minute of its own.
+
+    Parameters
+    ----------
+    whole
+        Clock minutes of the run [min].
+    number
+        Number of valid readings [1].
+    interval
+        Logging interval [min].
+
+    Returns
+    -------
+    float
+        Minutes without a valid reading [min].
+    """
+    return whole - number * interval
+
+
+@equation(
     "t_valid",
     "min",
     {"duration": "min", "missing": "min"},
@@ -96,11 +124,20 @@ def enter_coverage(book: Book, lane: Lane, span: Window, entry: Entry, series: S
     length = book.given_duration(run)
     step = book.state("readings.interval", span.interval.total_seconds() / 60.0, "min", "logging interval")
     book.apply(coverage, lane.key(run, "coverage"), {"number": number, "interval": step, "duration": length})
-    gaps = min(float(len(series.missing_minutes)), length.value)
-    place = cells_of(book, lane.name, span.at)
-    origin = FromCells(place, f"{len(series.missing_minutes)} of {series.minutes} clock minutes")
-    missing = book.ledger.enter(lane.key(run, "missing_minutes"), gaps, "min", origin)
+    missing = _missing(book, lane, span, series, number, step)
     book.apply(valid_minutes, lane.key(run, "valid_minutes"), {"duration": length, "missing": missing})
+
+
+def _missing(book: Book, lane: Lane, span: Window, series: Series, number: Entry, step: Entry) -> Entry:
+    """The minutes without a valid reading: of the number of readings where each fills a minute of its own, so that a
+    reading taken out of the results workbook shows; else as they were counted."""
+    key, length = lane.key(span.run, "missing_minutes"), book.given_duration(span.run)
+    gaps, whole = len(series.missing_minutes), float(series.minutes)
+    if step.value == 1.0 and whole == length.value and gaps == whole - number.value:
+        every = book.state(f"run.{span.run.key}.clock_minutes", whole, "min", "clock minutes of the run")
+        return book.apply(unfilled_minutes, key, {"whole": every, "number": number, "interval": step})
+    origin = FromCells(cells_of(book, lane.name, span.at), f"{gaps} of {series.minutes} clock minutes")
+    return book.ledger.enter(key, min(float(gaps), length.value), "min", origin)
 
 
 def long_enough(book: Book, run: Run, lane: Lane | None, limit: Limit) -> Entry:

@@ -14,8 +14,8 @@ from reporter.outcome import Comparison, Outcome
 from tests.output.test_workbook import content_of, homes, outcome_of, wrong_entries
 from tests.spreadsheet import need_office, recalculated
 
-#: Key of an input cell and its new number, or (position, number) for one reading of a range.
-Change = dict[str, float | tuple[int, float]]
+#: Key of an input cell and its new number, or (position, number) for one reading of a range, None to take it out.
+Change = dict[str, float | tuple[int, float | None]]
 
 
 def input_of(outcome: Outcome, title: str, gas: str, argument: str) -> str:
@@ -46,6 +46,10 @@ def reading_far_above_span(outcome: Outcome) -> Change:
     return {"run.1.nox.readings": (0, 25_000.0)}
 
 
+def one_reading_taken_out(outcome: Outcome) -> Change:
+    return {"run.1.nox.readings": (7, None)}
+
+
 def certificate(outcome: Outcome) -> Change:
     key = input_of(outcome, "System bias, upscale gas, after run 3", "NOx", "direct")
     return {key: outcome.ledger[key].value - 0.4}
@@ -68,6 +72,7 @@ CASES: dict[str, Callable[[Outcome], Change]] = {
         zero_gas_after_run_2,
         one_reading,
         reading_far_above_span,
+        one_reading_taken_out,
         certificate,
         lower_limit,
         limit_on_the_result,
@@ -100,7 +105,7 @@ def leaves(outcome: Outcome, changed: Change) -> dict[str, Any]:
     for key, value in changed.items():
         if isinstance(value, tuple):
             series = list(outcome.ledger[key].value)
-            series[value[0]] = value[1]
+            series[value[0] : value[0] + 1] = [] if value[1] is None else [value[1]]
             made[key] = tuple(series)
         else:
             made[key] = value
@@ -167,6 +172,8 @@ def test_cases_change_what_they_are_meant_to(books: dict[str, Any]) -> None:
     assert results(books["gas_boiler_us.bias_after_run_3"])[0] == few
     assert states(books["gas_boiler_us.bias_after_run_3"])["3"] == "invalid unless the authority agrees"
     assert results(books["gas_boiler_us.reading_far_above_span"])[0] == few
+    # 59 minutes with a valid reading, where the limit asks for 60
+    assert results(books["gas_boiler_us.one_reading_taken_out"])[0] == few
     assert results(books["gas_boiler_us.one_reading"])[0] == "at or below the limit as entered"
     assert results(books["gas_boiler_us.lower_limit"])[0] == "above the limit as entered"
     assert results(books["gas_boiler_us.limit_on_the_result"])[0] == "at or below the limit as entered"
